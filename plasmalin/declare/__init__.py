@@ -1,0 +1,1 @@
+"""Declare: fields, parameters, operators with their rank, and laws."""

@@ -1,0 +1,550 @@
+"""The user's plasma: fields, parameters and nonlinear laws."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Any
+
+from sympy import Expr, S, Symbol, expand
+
+from ..errors import DeclarationError, RankError
+from .constants import codata
+from .fields import AXES, Components, Field, FieldAtom, components, exact
+from .operators import OPERATORS, WAVE_SYMBOLS, WORDS, Cross, Curl, identity, rank_of
+from .reader import read_expression, read_law
+
+if TYPE_CHECKING:
+    from ..linearize.linearized import LinearizedModel
+
+RESERVED = {s.name for s in WAVE_SYMBOLS} | {"i", "t", "identity", "components", "sqrt", "exp"}
+
+
+@dataclass(frozen=True)
+class Law:
+    """One nonlinear law, ``lhs = rhs``, of rank 0, 1 or 2."""
+
+    name: str
+    lhs: Expr
+    rhs: Expr
+    rank: int
+
+    @property
+    def residual(self) -> Expr:
+        return self.lhs - self.rhs
+
+    def __str__(self) -> str:
+        return f"{self.lhs} = {self.rhs}"
+
+
+@dataclass(frozen=True)
+class Parameter:
+    """A declared parameter: its symbol, its default number and whether it was only implied."""
+
+    symbol: Symbol
+    value: float | None = None
+    implied: bool = False
+
+
+class FluidModel:
+    """A set of nonlinear fluid laws for one plasma.
+
+    Parameters
+    ----------
+    title : str
+        What the model describes, in words.
+    axes : str, default "xyz"
+        The components that a vector has: "x", "xz", "xyz" or another selection in this order.
+
+    Raises
+    ------
+    DeclarationError
+        When the axes are not a selection of x, y, z in order.
+
+    Examples
+    --------
+    >>> import plasmalin as plin
+    >>> model = plin.FluidModel("cold electrons", axes="x")
+    >>> n = model.scalar("n_e", background="n_0")
+    >>> v = model.vector("v_e")
+    >>> law = model.law("continuity", plin.partial_t(n) + plin.div(n * v))
+    >>> print(law)
+    div(n_e*v_e) + partial_t(n_e) = 0
+    """
+
+    def __init__(self, title: str, axes: str = "xyz") -> None:
+        if not axes or "".join(a for a in AXES if a in axes) != axes:
+            raise DeclarationError(
+                f"axes={axes!r}: give 'x', 'xz', 'xyz' or another selection of x, y, z in order"
+            )
+        self.title, self.axes = title, axes
+        self._fields: dict[str, Field] = {}
+        self._parameters: dict[str, Parameter] = {}
+        self._vectors: dict[str, Expr] = {}
+        self._laws: dict[str, Law] = {}
+
+    def __repr__(self) -> str:
+        return (
+            f"<FluidModel {self.title!r}: axes {self.axes}, {len(self._fields)} fields, "
+            f"{len(self._laws)} laws>"
+        )
+
+    # What has been declared --------------------------------------------------------------------
+
+    @property
+    def fields(self) -> dict[str, Field]:
+        """The fields by name, in the order of declaration."""
+        return dict(self._fields)
+
+    @property
+    def laws(self) -> dict[str, Law]:
+        """The laws by name, in the order of declaration."""
+        return {name: self._current_law(law) for name, law in self._laws.items()}
+
+    @property
+    def symbols(self) -> dict[str, Symbol]:
+        """The parameters' symbols by name."""
+        return {name: p.symbol for name, p in self._parameters.items()}
+
+    @property
+    def values(self) -> dict[str, float]:
+        """The default numbers by parameter name, constants of nature among them."""
+        return {n: p.value for n, p in self._parameters.items() if p.value is not None}
+
+    @property
+    def vector_parameters(self) -> dict[str, Expr]:
+        """The vector parameters by name."""
+        return dict(self._vectors)
+
+    # Fields ------------------------------------------------------------------------------------
+
+    def scalar(self, name: str, background: Any = 0, *, latex: str | None = None) -> Field:
+        """Declare a scalar field.
+
+        Parameters
+        ----------
+        name : str
+            Any identifier; E, N, S, I, beta, gamma, lambda are ordinary names.
+        background : 0, str or expression, default 0
+            The uniform zeroth-order value. A name that is not yet a parameter becomes one.
+        latex : str, optional
+            How to print the name in LaTeX.
+
+        Returns
+        -------
+        Field
+            With ``.background`` and ``.perturbation``.
+
+        Raises
+        ------
+        DeclarationError
+            When the name is taken, or the background holds a field.
+        """
+        return self._declare(Field(self._new_name(name), 0, self._value(background), latex_name=latex))
+
+    def vector(self, name: str, background: Any = 0, *, latex: str | None = None) -> Field:
+        """Declare a vector field.
+
+        Parameters
+        ----------
+        name : str
+        background : 0 or tuple, default 0
+            One entry per axis of the model, each 0, a name or an expression in parameters.
+        latex : str, optional
+            How to print the name in LaTeX (it is set bold).
+
+        Returns
+        -------
+        Field
+
+        Raises
+        ------
+        DeclarationError
+            When the name is taken, or the background does not fit the axes.
+        """
+        name = self._new_name(name)
+        return self._declare(Field(name, 1, self._vector(name, background), latex_name=latex))
+
+    def tensor(
+        self, name: str, background: Any = 0, *, symmetric: bool = True, latex: str | None = None
+    ) -> Field:
+        """Declare a rank-2 tensor field.
+
+        Parameters
+        ----------
+        name : str
+        background : 0 or tuple of tuples, default 0
+            One row per axis; entries as in `scalar`.
+        symmetric : bool, default True
+            Whether the tensor equals its transpose: six unknowns in three axes instead of nine.
+        latex : str, optional
+
+        Returns
+        -------
+        Field
+
+        Raises
+        ------
+        DeclarationError
+            When the name is taken, or the background does not fit the axes or the symmetry.
+        """
+        name = self._new_name(name)
+        value = self._tensor(name, background)
+        if symmetric and isinstance(value, Components):
+            size = range(len(self.axes))
+            if any(value.entry((i, j)) != value.entry((j, i)) for i in size for j in size):
+                raise DeclarationError(f"tensor '{name}': the background is not symmetric")
+        return self._declare(Field(name, 2, value, symmetric=symmetric, latex_name=latex))
+
+    def _declare(self, field: Field) -> Field:
+        self._fields[field.name] = field
+        return field
+
+    def _new_name(self, name: str) -> str:
+        if not isinstance(name, str) or not name.isidentifier() or name.startswith("_"):
+            raise DeclarationError(
+                f"{name!r} is not a name: use letters, digits and _, starting with a letter"
+            )
+        if name in RESERVED or name in OPERATORS:
+            raise DeclarationError(f"the name '{name}' is reserved; choose another")
+        if name in self._fields:
+            raise DeclarationError(f"a field '{name}' is declared already; choose another name")
+        if name in self._parameters or name in self._vectors:
+            raise DeclarationError(f"a parameter '{name}' is declared already; choose another name")
+        return name
+
+    def _value(self, given: Any) -> Expr:
+        """A background or a component: 0, a name, a text or an expression in parameters."""
+        if isinstance(given, str):
+            return read_expression(given, self._names(), unknown=self._imply)
+        value = self._canonical(exact(given))
+        if value.atoms(FieldAtom):
+            raise DeclarationError(f"the background '{value}' holds a field; use parameters only")
+        if rank_of(value) > 0:
+            raise RankError(f"the background '{value}' is not a scalar; give one entry per axis")
+        return value
+
+    def _vector(self, name: str, given: Any) -> Expr:
+        if isinstance(given, Components):
+            given = given.args
+        if not isinstance(given, str) and not _sequence(given) and given == 0:
+            return S.Zero
+        if not _sequence(given) or len(given) != len(self.axes):
+            raise DeclarationError(
+                f"'{name}': the background {given!r} does not fit the axes '{self.axes}'; "
+                f"give 0 or a tuple with {len(self.axes)} entries"
+            )
+        return components(*(self._value(entry) for entry in given))
+
+    def _tensor(self, name: str, given: Any) -> Expr:
+        if isinstance(given, Components):
+            given = tuple(row.args for row in given.args)
+        if not isinstance(given, str) and not _sequence(given) and given == 0:
+            return S.Zero
+        size = len(self.axes)
+        if not _sequence(given) or [len(r) if _sequence(r) else 0 for r in given] != [size] * size:
+            raise DeclarationError(
+                f"'{name}': the background {given!r} does not fit the axes '{self.axes}'; "
+                f"give 0 or {size} rows of {size} entries"
+            )
+        return components(*(tuple(self._value(entry) for entry in row) for row in given))
+
+    # Parameters --------------------------------------------------------------------------------
+
+    def parameter(self, name: str, *, positive: bool = False, value: float | None = None) -> Symbol:
+        """Declare a real parameter.
+
+        Parameters
+        ----------
+        name : str
+        positive : bool, default False
+            Whether it is known to be positive; a number that is not is then refused.
+        value : float, optional
+            A default number in SI units, used where `values` gives none.
+
+        Returns
+        -------
+        Symbol
+
+        Raises
+        ------
+        DeclarationError
+            When the name is taken by a field or by a parameter declared otherwise.
+        """
+        known = self._parameters.get(name)
+        if known is None:
+            self._new_name(name)
+        elif not known.implied and (known.symbol.is_positive or False) != positive:
+            raise DeclarationError(f"the parameter '{name}' is declared already, otherwise")
+        symbol = Symbol(name, positive=True) if positive else Symbol(name, real=True)
+        number = value if value is not None else (known.value if known else None)
+        self._parameters[name] = Parameter(symbol, number)
+        return symbol
+
+    def parameters(self, names: str | Iterable[str], *, positive: bool = False) -> Any:
+        """Declare several parameters: ``n0, T = model.parameters("n_0 T_e", positive=True)``.
+
+        Parameters
+        ----------
+        names : str or iterable of str
+            Names separated by spaces or commas.
+        positive : bool, default False
+
+        Returns
+        -------
+        Symbol or tuple of Symbol
+            One symbol for one name, else a tuple.
+
+        Raises
+        ------
+        DeclarationError
+            As `parameter`.
+        """
+        listed = names.replace(",", " ").split() if isinstance(names, str) else list(names)
+        made = tuple(self.parameter(name, positive=positive) for name in listed)
+        return made[0] if len(made) == 1 else made
+
+    def constants(self, names: str | Iterable[str]) -> Any:
+        """Declare constants of nature; their CODATA numbers come with them.
+
+        Parameters
+        ----------
+        names : str or iterable of str
+            Among those of `plasmalin.constants`: e, epsilon_0, mu_0, c, m_e, m_p, u, k_B, G ...
+
+        Returns
+        -------
+        Symbol or tuple of Symbol
+
+        Raises
+        ------
+        DeclarationError
+            When a name is not a known constant.
+        """
+        listed = names.replace(",", " ").split() if isinstance(names, str) else list(names)
+        made = tuple(self.parameter(n, positive=True, value=codata(n)) for n in listed)
+        return made[0] if len(made) == 1 else made
+
+    def vector_parameter(self, name: str, entries: Any) -> Expr:
+        """Declare a constant vector: ``g = model.vector_parameter("g", (0, 0, "-g_0"))``.
+
+        Parameters
+        ----------
+        name : str
+            The name by which laws in text refer to it.
+        entries : tuple
+            One entry per axis: a number, a name or an expression in parameters.
+
+        Returns
+        -------
+        Expr
+            The vector, written by its components.
+
+        Raises
+        ------
+        DeclarationError
+            When the name is taken or the entries do not fit the axes.
+        """
+        name = self._new_name(name)
+        self._vectors[name] = self._vector(name, entries)
+        return self._vectors[name]
+
+    def _imply(self, name: str) -> Expr:
+        """A background names a parameter that is not declared yet."""
+        self._new_name(name)
+        symbol = Symbol(name, real=True)
+        self._parameters[name] = Parameter(symbol, implied=True)
+        return symbol
+
+    # Laws --------------------------------------------------------------------------------------
+
+    def law(self, name: str, lhs: Any, rhs: Any = 0) -> Law:
+        """Add a law ``lhs = rhs``.
+
+        Parameters
+        ----------
+        name : str
+            What the law is called in the ledger and in messages.
+        lhs, rhs : expressions, or one string for `lhs`
+            A string holds the whole law, "partial_t(n_e) + div(n_e*v_e) = 0"; its names are looked up among
+            what is declared, ``^`` and ``**`` both mean power, nothing is evaluated as code.
+
+        Returns
+        -------
+        Law
+
+        Raises
+        ------
+        ReadError
+            When a text cannot be read.
+        RankError
+            When ranks do not fit.
+        DeclarationError
+            When the name or the law is there already, a symbol is not declared, no field is in the law,
+            or a cross product or curl leaves the model's axes.
+        """
+        if name in self._laws:
+            raise DeclarationError(f"a law '{name}' is declared already; choose another name")
+        try:
+            law = self._made_law(name, lhs, rhs)
+        except RankError as error:
+            raise RankError(f"law '{name}': {error}") from None
+        self._laws[name] = law
+        return law
+
+    def _made_law(self, name: str, lhs: Any, rhs: Any) -> Law:
+        if isinstance(lhs, str):
+            if not (isinstance(rhs, int) and rhs == 0):
+                raise DeclarationError(f"law '{name}': as text, give the whole law as one string")
+            left, right = read_law(lhs, self._names())
+        else:
+            left, right = exact(lhs), exact(rhs)
+        left, right = self._checked(name, left), self._checked(name, right)
+        rank = _common_rank(left, right)
+        law = Law(name, left, right, rank)
+        if not law.residual.atoms(Field):
+            raise DeclarationError(f"law '{name}' holds no field: {law}")
+        for other in self._laws.values():
+            if _same(law, other):
+                raise DeclarationError(f"law '{name}' repeats law '{other.name}': leave one out")
+        return law
+
+    def _checked(self, name: str, expr: Expr) -> Expr:
+        try:
+            expr = self._canonical(expr)
+        except DeclarationError as error:
+            raise DeclarationError(f"law '{name}': {error}") from None
+        if len(self.axes) < 3:
+            for node in expr.atoms(Cross, Curl):
+                raise DeclarationError(
+                    f"law '{name}': {node} leaves the axes '{self.axes}' of the model; "
+                    "declare it with axes='xyz'"
+                )
+        for node in expr.atoms(Components):
+            if node.size != len(self.axes):
+                raise RankError(f"{node} has {node.size} entries, the model has axes '{self.axes}'")
+        return expr
+
+    def remove_law(self, name: str) -> None:
+        """Take a law out of the model, for example to put another in its place.
+
+        Raises
+        ------
+        DeclarationError
+            When there is no such law.
+        """
+        if name not in self._laws:
+            raise DeclarationError(f"no law '{name}'; there are: {', '.join(self._laws)}")
+        del self._laws[name]
+
+    def _current_law(self, law: Law) -> Law:
+        return Law(law.name, self._canonical(law.lhs), self._canonical(law.rhs), law.rank)
+
+    def _canonical(self, expr: Expr) -> Expr:
+        """The expression in the model's own symbols and fields, found by name."""
+        replaced: dict[Any, Any] = {}
+        for atom in expr.atoms(Symbol, Field):
+            own = self._own(atom)
+            if own is not atom:
+                replaced[atom] = own
+        return expr.xreplace(replaced) if replaced else expr
+
+    def _own(self, atom: Any) -> Any:
+        if isinstance(atom, Field):
+            if atom.name not in self._fields or self._fields[atom.name].rank != atom.rank:
+                raise DeclarationError(f"the field '{atom.name}' belongs to another model")
+            return self._refreshed(self._fields[atom.name])
+        if atom in WAVE_SYMBOLS:
+            return atom
+        if atom.name not in self._parameters:
+            raise DeclarationError(
+                f"'{atom.name}' is not declared; use model.parameter({atom.name!r}) first"
+            )
+        return self._parameters[atom.name].symbol
+
+    def _refreshed(self, field: Field) -> Field:
+        """The field with its background in symbols that were declared after it."""
+        background = self._canonical(field.background) if field.background.free_symbols else None
+        if background is None or background == field.background:
+            return field
+        args = list(field.__getnewargs__())
+        args[2] = background
+        self._fields[field.name] = Field(*args)
+        return self._fields[field.name]
+
+    def _names(self) -> Mapping[str, Any]:
+        """What a text may refer to."""
+        symbols = {s.name: s for s in WAVE_SYMBOLS}
+        special = {"identity": identity, "components": components}
+        return {**symbols, **special, **OPERATORS, **self.symbols, **self._vectors, **self._fields}
+
+    # The road ----------------------------------------------------------------------------------
+
+    def linearize(self, assume: Iterable[str] = ()) -> LinearizedModel:
+        """Split every field into background and perturbation and keep the first order.
+
+        Parameters
+        ----------
+        assume : iterable of str, optional
+            Names of laws that a fixed external source balances, as typed.
+
+        Returns
+        -------
+        LinearizedModel
+
+        Raises
+        ------
+        BackgroundError
+            When a law contradicts the background.
+        UndeterminedError
+            When laws and unknowns do not match in number, naming what is undetermined.
+
+        Examples
+        --------
+        >>> import plasmalin as plin
+        >>> model = plin.FluidModel("free streaming", axes="x")
+        >>> n = model.scalar("n", background="n_0")
+        >>> v = model.vector("v")
+        >>> _ = model.law("continuity", plin.partial_t(n) + plin.div(n * v))
+        >>> _ = model.law("momentum", plin.partial_t(v) + plin.advect(v, v))
+        >>> linear = model.linearize()
+        """
+        from ..linearize.linearized import linearize
+
+        return linearize(self, tuple(assume))
+
+    def save(self, path: Any) -> None:
+        """Write the model as a TOML file that `plasmalin.load` reads back.
+
+        Parameters
+        ----------
+        path : path-like
+        """
+        from .files import save_model
+
+        save_model(self, path)
+
+
+def _sequence(given: Any) -> bool:
+    return isinstance(given, tuple | list)
+
+
+def _common_rank(left: Expr, right: Expr) -> int:
+    ranks = {rank_of(side) for side in (left, right) if side != 0}
+    if len(ranks) == 2:
+        low, high = sorted(ranks)
+        raise RankError(
+            f"one side is a {WORDS[low]}, the other a {WORDS[high]}; both sides need the same rank"
+        )
+    return ranks.pop() if ranks else 0
+
+
+def _same(law: Law, other: Law) -> bool:
+    """Whether two laws differ by a number at most."""
+    if law.rank != other.rank or law.residual.atoms(Field) != other.residual.atoms(Field):
+        return False
+    mine, theirs = expand(law.residual), expand(other.residual)
+    ratio = mine.as_ordered_terms()[0] / theirs.as_ordered_terms()[0]
+    return bool(ratio.is_number) and expand(mine - ratio * theirs) == 0
+
+

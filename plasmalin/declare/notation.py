@@ -1,0 +1,223 @@
+"""How an expression is printed: one-line text as in a paper, and LaTeX.
+
+Plain ``str`` gives the grammar that laws are read in; `paper` gives what a person reads.
+"""
+
+from __future__ import annotations
+
+import unicodedata
+from typing import Any, cast
+
+from sympy import Add, Expr, Integer, Mul, Pow, Rational, Symbol
+from sympy.core.function import Function
+from sympy.printing.latex import LatexPrinter
+from sympy.printing.str import StrPrinter
+
+from .fields import GREEK, Background, Components, Field, FieldAtom, Perturbation
+from .operators import Advect, Identity, Multiplier, Operator, PartialT
+
+SUPERSCRIPT = str.maketrans("0123456789-", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻")
+HATS = {"x": "x̂", "y": "ŷ", "z": "ẑ"}
+DEFAULT_AXES = {1: "x", 2: "xz", 3: "xyz"}
+GREEK_LETTER = {
+    name: unicodedata.lookup(
+        f"GREEK {'CAPITAL' if name[0].isupper() else 'SMALL'} LETTER {name.upper().replace('LAMBDA', 'LAMDA')}"
+    )
+    for name in GREEK
+}
+SIGNS = {
+    "grad": "∇",
+    "div": "∇·",
+    "curl": "∇×",
+    "laplacian": "∇²",
+    "partial_t": "∂_t ",
+    "dot": "·",
+    "cross": "×",
+    "outer": "⊗",
+    "ddot": ":",
+}
+
+
+def paper(expr: Any, axes: str = "") -> str:
+    """An expression on one line as a paper would print it, e.g. ``n_0 ∇·ṽ_e``."""
+    return TextPrinter(axes).show(expr)
+
+
+def latex(expr: Any, axes: str = "") -> str:
+    """An expression in LaTeX, time derivatives first."""
+    return cast(str, PaperLatex(axes).doprint(expr))
+
+
+def name_text(name: str) -> str:
+    """A name with its Greek letters: omega_pe becomes ω_pe."""
+    return "_".join(GREEK_LETTER.get(part, part) for part in name.split("_"))
+
+
+def term_order(term: Expr) -> tuple[int, str]:
+    """Sort key of the terms of a sum: time derivatives first, then as SymPy prints them."""
+    return (0 if term.atoms(PartialT) else 1, str(term).lstrip("-"))
+
+
+class TextPrinter:
+    """Recursive printer; levels of binding: 0 sum, 1 product, 2 operand."""
+
+    def __init__(self, axes: str) -> None:
+        self.axes = axes
+
+    def show(self, expr: Any, level: int = 0) -> str:
+        text, binding = self._text(expr)
+        return f"({text})" if binding < level else text
+
+    def _text(self, expr: Any) -> tuple[str, int]:
+        if isinstance(expr, Add):
+            return self._sum(expr), 0
+        if isinstance(expr, Mul):
+            return self._product(expr)
+        if isinstance(expr, Pow):
+            return self._power(expr)
+        if isinstance(expr, Components):
+            return self._components(expr)
+        if isinstance(expr, Operator):
+            return self._operator(expr)
+        return self._atom(expr)
+
+    def _atom(self, expr: Any) -> tuple[str, int]:
+        if isinstance(expr, Perturbation):
+            text = name_text(expr.field.name)
+            return unicodedata.normalize("NFC", f"{text[0]}\u0303{text[1:]}"), 3
+        if isinstance(expr, Background):
+            name = name_text(expr.field.name)
+            return f"{name}0" if "_" in name else f"{name}_0", 3
+        if isinstance(expr, Field | Symbol):
+            return name_text(expr.name), 3
+        if isinstance(expr, Identity):
+            return "I", 3
+        if isinstance(expr, Function):
+            return f"{expr.func.__name__}({', '.join(self.show(a) for a in expr.args)})", 3
+        if isinstance(expr, Rational) and not isinstance(expr, Integer):
+            return str(expr), 1
+        if expr.is_Number:
+            return str(expr).replace("-", "−"), 0 if expr < 0 else 3
+        if type(expr).__name__ == "Remainder":
+            return f"O₂[{self.show(expr.args[0])}]", 3
+        return {"pi": "π", "I": "i"}.get(str(expr), str(expr)), 3
+
+    def _sum(self, expr: Add) -> str:
+        out = ""
+        for term in sorted(expr.args, key=term_order):
+            text = self.show(term, 0)
+            negative = text.startswith("−")
+            joint = (" − " if negative else " + ") if out else ("−" if negative else "")
+            out += joint + text.removeprefix("−")
+        return out
+
+    def _product(self, expr: Mul) -> tuple[str, int]:
+        number, rest = expr.as_coeff_Mul()
+        above, below = _fraction(rest)
+        sign = "−" if number < 0 else ""
+        size = abs(number)
+        top = ([] if size.p == 1 else [str(size.p)]) if size.is_Rational else [str(size)]
+        bottom = [str(size.q)] if size.is_Rational and size.q != 1 else []
+        top += [self.show(f, 2 if isinstance(f, Add) else 1) for f in above]
+        bottom += [self.show(f, 1 if isinstance(f, Pow | Symbol) else 2) for f in below]
+        last = [self.show(f, 1) for f in above if _place(f) > 1]
+        if bottom and last:
+            head, binding = self._product_text(sign, top[: len(top) - len(last)] or ["1"], bottom)
+            return " ".join([head, *last]), binding
+        return self._product_text(sign, top or ["1"], bottom)
+
+    def _product_text(self, sign: str, top: list[str], bottom: list[str]) -> tuple[str, int]:
+        text = sign + " ".join(top)
+        if bottom:
+            low = " ".join(bottom)
+            text += f"/({low})" if len(bottom) > 1 else f"/{low}"
+        return text, 0 if sign else 1
+
+    def _power(self, expr: Pow) -> tuple[str, int]:
+        base, exponent = expr.args
+        if exponent == Rational(1, 2):
+            return f"√({self.show(base)})", 3
+        if exponent.could_extract_minus_sign() and exponent.is_number:
+            return f"1/{self.show(Pow(base, -exponent), 2)}", 1  # type: ignore[operator]
+        head = self.show(base, 3)
+        if isinstance(exponent, Integer):
+            return head + str(exponent).translate(SUPERSCRIPT), 3
+        return f"{head}^{self.show(exponent, 3)}", 3
+
+    def _components(self, expr: Components) -> tuple[str, int]:
+        names = self.axes if len(self.axes) == expr.size else DEFAULT_AXES[expr.size]
+        if expr.rank == 2:
+            rows = (", ".join(self.show(x) for x in row.args) for row in expr.args)
+            return f"[{'; '.join(rows)}]", 3
+        parts = [
+            HATS[name] if a == 1 else f"{self.show(a, 1)} {HATS[name]}"
+            for a, name in zip(expr.args, names, strict=True)
+            if a != 0
+        ]
+        return " + ".join(parts), 1 if len(parts) == 1 else 0
+
+    def _operator(self, expr: Operator) -> tuple[str, int]:
+        if isinstance(expr, Advect):
+            return f"({self._stream(expr.args[0])}){self.show(expr.args[1], 3)}", 2
+        if isinstance(expr, Multiplier):
+            return f"[{self.show(expr.args[1])}]{self.show(expr.args[0], 3)}", 2
+        if expr.word == "norm":
+            return f"|{self.show(expr.args[0])}|", 3
+        if expr.word in ("transpose", "trace"):
+            inner = self.show(expr.args[0], 3)
+            return (f"{inner}ᵀ", 3) if expr.word == "transpose" else (f"tr {inner}", 2)
+        sign = SIGNS[expr.word]
+        if len(expr.args) == 1:
+            return sign + self.show(expr.args[0], 2), 2
+        return sign.join(self.show(a, 2) for a in expr.args), 1
+
+    def _stream(self, v: Any) -> str:
+        """v.grad inside parentheses; along known components as d_x, d_y, d_z."""
+        if not isinstance(v, Components):
+            return f"{self.show(v, 2)}·∇"
+        names = self.axes if len(self.axes) == v.size else DEFAULT_AXES[v.size]
+        parts = [
+            f"∂_{n}" if a == 1 else f"{self.show(a, 1)} ∂_{n}"
+            for a, n in zip(v.args, names, strict=True)
+            if a != 0
+        ]
+        return " + ".join(parts)
+
+
+def _fraction(expr: Any) -> tuple[list[Any], list[Any]]:
+    """Factors above and below the line, scalars before operators."""
+    above, below = [], []
+    for f in Mul.make_args(expr):
+        if isinstance(f, Pow) and f.exp.is_number and f.exp.is_negative:
+            below.append(Pow(f.base, -f.exp))
+        else:
+            above.append(f)
+    above.sort(key=lambda f: (_place(f), str(f)))
+    return [f for f in above if f != 1], sorted(below, key=str)
+
+
+def _place(factor: Any) -> int:
+    """Parameters, then scalar fields, operators, and unit vectors last."""
+    if isinstance(factor, Components):
+        return 3
+    if isinstance(factor, Operator) or (isinstance(factor, FieldAtom) and factor.rank > 0):
+        return 2
+    return 1 if isinstance(factor, FieldAtom) else 0
+
+
+class PaperLatex(LatexPrinter):
+    """SymPy's LaTeX with time derivatives first and unit vectors along the model's axes."""
+
+    def __init__(self, axes: str) -> None:
+        super().__init__({"mul_symbol": r"\,"})
+        self.axes = axes
+
+    def _as_ordered_terms(self, expr: Any, order: Any = None) -> list[Any]:
+        return sorted(Add.make_args(expr), key=term_order)
+
+
+class LawPrinter(StrPrinter):
+    """Text that the law reader takes back, time derivatives first."""
+
+    def _as_ordered_terms(self, expr: Any, order: Any = None) -> list[Any]:
+        return sorted(Add.make_args(expr), key=term_order)

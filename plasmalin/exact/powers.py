@@ -1,0 +1,59 @@
+"""Powers taken apart: every generator is ``base**(unit/root)``.
+
+``M**(3/2)`` is the third power of the generator ``M**(1/2)``; ``n**(gamma + 1)`` is ``n`` times the generator
+``n**gamma``; ``exp(2*a)`` is the square of ``exp(a)``. Base and unit name the generator's family; its root is the least
+common denominator of the powers that occur.
+"""
+
+from collections.abc import Iterator
+from fractions import Fraction
+from functools import lru_cache
+from typing import TypeAlias
+
+import sympy as sp
+
+from .rational import exact_rational
+
+Family: TypeAlias = tuple[sp.Expr, sp.Expr]
+
+# Only prime factors below this are split off the base of a root.
+SMALL_PRIMES = 2**15
+
+
+@lru_cache(maxsize=4096)
+def split_power(expr: sp.Expr) -> tuple[tuple[Family, Fraction], ...]:
+    """The families of an opaque expression and the power of each; compound bases are not opened."""
+    base, exponent = expr.as_base_exp() if isinstance(expr, sp.Pow | sp.exp) else (expr, sp.S.One)
+    return tuple(
+        ((piece, unit), sign * power)
+        for unit, power in _units(exponent)
+        for piece, sign in (_primes(base) if unit == 1 else ((base, 1),))
+    )
+
+
+def is_plain(base: sp.Expr) -> bool:
+    """Whether a base is itself a generator, rather than a sum, product or number of others."""
+    return not isinstance(base, sp.Add | sp.Mul | sp.Pow | sp.Number | sp.core.numbers.ImaginaryUnit)
+
+
+def generator(family: Family, root: int) -> sp.Expr:
+    base, unit = family
+    return sp.Pow(base, unit / sp.Integer(root))
+
+
+def _units(exponent: sp.Expr) -> Iterator[tuple[sp.Expr, Fraction]]:
+    for term in sp.Add.make_args(sp.expand(exponent)):
+        power, unit = term.as_coeff_Mul()
+        if power.is_Rational or power.is_Float:
+            yield unit, exact_rational(power)
+        else:
+            yield term, Fraction(1)
+
+
+def _primes(base: sp.Expr) -> Iterator[tuple[sp.Expr, int]]:
+    if not base.is_Rational or base.p < 0:
+        yield base, 1
+        return
+    for number, sign in ((base.p, 1), (base.q, -1)):
+        for prime, power in sp.factorint(number, limit=SMALL_PRIMES).items():
+            yield sp.Integer(prime), sign * power

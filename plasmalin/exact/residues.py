@@ -1,0 +1,69 @@
+"""Common divisors over Z[i] through one large prime field in which -1 has a square root.
+
+A prime P = 1 mod 4 splits as pi * conj(pi), and Z[i]/pi is the field of P elements: i becomes an integer r with
+r**2 = -1. FLINT takes the common divisor there; each coefficient is then lifted to the Gaussian integer of least size.
+The caller checks the candidate by division and asks for the next one, from a larger prime, when it fails.
+"""
+
+from collections.abc import Iterator
+from functools import lru_cache
+from typing import TypeAlias
+
+from flint import fmpz_mod_mpoly, fmpz_mod_mpoly_ctx, fmpz_mpoly
+
+# 3 * 2**n + 1 is prime for these n; `_field` proves it again by Proth's theorem (from memory).
+PROTH_EXPONENTS = (189, 534, 2208, 3912, 20909)
+
+Pair: TypeAlias = tuple[fmpz_mpoly, fmpz_mpoly]
+
+
+def gaussian_gcd(p: Pair, q: Pair) -> Iterator[Pair]:
+    """Candidates for the common divisor, each from a larger prime."""
+    names = p[0].context().names()
+    for n in PROTH_EXPONENTS:
+        prime, root, pi = _field(n)
+        ring = fmpz_mod_mpoly_ctx.get(names, modulus=prime, ordering="lex")
+        image = _image(p, ring, root).gcd(_image(q, ring, root))
+        yield _lifted(image, _leading(p, root), prime, pi, p[0])
+
+
+@lru_cache
+def _field(n: int) -> tuple[int, int, tuple[int, int]]:
+    """A prime 3 * 2**n + 1, a square root of -1 modulo it, and a Gaussian prime above it."""
+    prime = 3 * 2**n + 1
+    root = next(r for r in (pow(a, prime // 4, prime) for a in range(2, 60)) if r * r % prime == prime - 1)
+    u, v = prime, root
+    while u * u > prime:
+        u, v = v, u % v
+    return prime, root, (u, v if (u + v * root) % prime == 0 else -v)
+
+
+def _image(p: Pair, ring: fmpz_mod_mpoly_ctx, root: int) -> fmpz_mod_mpoly:
+    re, im = (ring.from_dict(part.to_dict()) for part in p)
+    return re + im * root
+
+
+def _leading(p: Pair, root: int) -> int:
+    exponents = max(part.monomial(0) for part in p if part)
+    return int(p[0][exponents]) + int(p[1][exponents]) * root
+
+
+def _lifted(
+    image: fmpz_mod_mpoly, scale: int, prime: int, pi: tuple[int, int], like: fmpz_mpoly
+) -> Pair:
+    """The primitive Gaussian polynomial of least size that is ``scale * image`` modulo pi."""
+    re: dict[tuple[int, ...], int] = {}
+    im: dict[tuple[int, ...], int] = {}
+    for exponents, c in image.to_dict().items():
+        re[exponents], im[exponents] = _least(int(c) * scale % prime, prime, pi)
+    ring = like.context()
+    a, b = ring.from_dict(re), ring.from_dict(im)
+    content = a.content() if not b else b.content() if not a else a.content().gcd(b.content())
+    return a / content, b / content
+
+
+def _least(c: int, prime: int, pi: tuple[int, int]) -> tuple[int, int]:
+    """The Gaussian integer c - pi * round(c / pi)."""
+    u, v = pi
+    a, b = (2 * c * u + prime) // (2 * prime), (-2 * c * v + prime) // (2 * prime)
+    return c - (a * u - b * v), -(a * v + b * u)

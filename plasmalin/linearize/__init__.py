@@ -1,0 +1,1 @@
+"""Linearize: orders of smallness, the ledger, the background and its conditions, the audit."""

@@ -1,0 +1,244 @@
+"""The linearized model: equations with tildes, ledger, background."""
+
+from __future__ import annotations
+
+import html
+from collections.abc import Mapping
+from dataclasses import dataclass
+from functools import cached_property
+from typing import TYPE_CHECKING, Any, cast
+
+from sympy import Add, Eq, Expr, Symbol
+
+from ..declare.fields import Field, Perturbation
+from ..declare.model import FluidModel, Law
+from ..declare.notation import latex, paper
+from ..errors import DeclarationError, UndeterminedError
+from ..exact.matching import maximum_matching
+from .background import Equilibrium, balance, conditions
+from .ledger import KEPT, Ledger, entries
+
+if TYPE_CHECKING:
+    from ..waves.matrix import WaveMatrix
+    from .audit import Audit
+
+
+class Equations(dict[str, Eq]):
+    """Linearized laws by name; prints in vector form."""
+
+    def __init__(self, given: Mapping[str, Eq], axes: str) -> None:
+        super().__init__(given)
+        self._axes = axes
+
+    def __str__(self) -> str:
+        width = max(map(len, self), default=0)
+        return "\n".join(
+            f"{name:<{width}}   {paper(eq.lhs, self._axes)} = {paper(eq.rhs, self._axes)}"
+            for name, eq in self.items()
+        )
+
+    def latex(self, name: str) -> str:
+        """One equation in LaTeX, without dollar signs."""
+        return f"{latex(self[name].lhs, self._axes)} = {latex(self[name].rhs, self._axes)}"
+
+    def _repr_html_(self) -> str:
+        rows = "".join(
+            f'<tr><td style="text-align:left">{html.escape(name)}</td>'
+            f'<td style="text-align:left">$\\displaystyle {html.escape(self.latex(name))}$</td></tr>'
+            for name in self
+        )
+        return f"<table>{rows}</table>"
+
+
+@dataclass(frozen=True, eq=False)
+class LinearizedModel:
+    """The first-order laws of a model, with the account of every term.
+
+    Attributes
+    ----------
+    title, axes : str
+    fields : mapping of str to Field
+    laws : mapping of str to Law
+        The nonlinear laws as declared.
+    symbols : mapping of str to Symbol
+        The parameters by name.
+    defaults : mapping of str to float
+        Default numbers, SI.
+    ledger : Ledger
+        Every piece of every term: order, fate, reason.
+    background : Equilibrium
+        The equilibrium in words.
+    """
+
+    title: str
+    axes: str
+    fields: Mapping[str, Field]
+    laws: Mapping[str, Law]
+    symbols: Mapping[str, Symbol]
+    defaults: Mapping[str, float]
+    ledger: Ledger
+    background: Equilibrium
+
+    @cached_property
+    def equations(self) -> Equations:
+        """The linearized laws by name, in vector form, first-order fields with a tilde."""
+        return Equations(
+            {
+                name: cast(Eq, Eq(self._side(name, "left"), self._side(name, "right"), evaluate=False))
+                for name in self.laws
+            },
+            self.axes,
+        )
+
+    def _side(self, law: str, side: str) -> Expr:
+        kept = (p.value for p in self.ledger if p.law == law and p.side == side and p.fate == KEPT)
+        return Add(*kept)
+
+    @property
+    def conditions(self) -> tuple[Eq, ...]:
+        """What the background must satisfy, e.g. ``Eq(e*(n_e0 - n_i0), 0)``."""
+        return conditions(self.background.balances)
+
+    def plane_wave(self, direction: Any = None, *, angle: str | None = None) -> WaveMatrix:
+        """Put in plane waves exp[i(k.x − omega t)].
+
+        Parameters
+        ----------
+        direction : str or tuple
+            An axis ("x": wave number k along it), or one entry per axis: names, numbers or expressions,
+            ``("k_x", 0, "k_z")``.
+        angle : str, optional
+            Instead of `direction`: the name of the angle θ from z in the x-z plane, k (sin θ, 0, cos θ).
+
+        Returns
+        -------
+        WaveMatrix
+
+        Raises
+        ------
+        DeclarationError
+            When the direction does not fit the model's axes, or a name is a parameter already.
+
+        Examples
+        --------
+        >>> import plasmalin as plin
+        >>> model = plin.FluidModel("sound", axes="x")
+        >>> rho = model.scalar("rho", background="rho_0")
+        >>> v = model.vector("v")
+        >>> p_0 = model.parameter("p_0")
+        >>> _ = model.law("continuity", plin.partial_t(rho) + plin.div(rho * v))
+        >>> _ = model.law("momentum", rho * plin.partial_t(v), -p_0 * plin.grad(rho))
+        >>> wave = model.linearize().plane_wave("x")
+        """
+        from ..waves.matrix import plane_wave
+
+        return plane_wave(self, direction, angle)
+
+    def audit(self, *, seed: int = 0) -> Audit:
+        """Check the linearization by an independent numerical path.
+
+        The nonlinear laws are evaluated as declared on a periodic Fourier grid for small plane waves, and
+        compared with the wave matrix row by row; the remainder must fall as the square of the amplitude.
+
+        Parameters
+        ----------
+        seed : int, default 0
+            Seed of the random parameters, wave vectors and amplitudes.
+
+        Returns
+        -------
+        Audit
+            Prints as a table; ``.passed`` tells the outcome.
+        """
+        from .audit import audit
+
+        return audit(self, seed=seed)
+
+    def report(self) -> str:
+        """Equations, background and ledger as plain text."""
+        parts = [self.title, "", str(self.equations), "", str(self.background), "", str(self.ledger)]
+        return "\n".join(parts)
+
+    def __str__(self) -> str:
+        return f"{self.title}\n{self.equations}"
+
+    def __repr__(self) -> str:
+        return f"<LinearizedModel {self.title!r}: {len(self.laws)} laws, {len(self.fields)} fields>"
+
+    def _repr_html_(self) -> str:
+        return f"<p>{html.escape(self.title)}</p>{self.equations._repr_html_()}"
+
+
+def linearize(model: FluidModel, assume: tuple[str, ...] = ()) -> LinearizedModel:
+    """Linearize a model; see `FluidModel.linearize`."""
+    laws = model.laws
+    for name in assume:
+        if name not in laws:
+            raise DeclarationError(f"assume: no law '{name}'; there are: {', '.join(laws)}")
+    pieces, balances = [], []
+    for law in laws.values():
+        assumed = law.name in assume
+        ledger = Ledger(list(entries(law, assumed)), model.axes)
+        balances.append(balance(law, ledger, assumed, len(model.axes)))
+        pieces += list(ledger)
+    whole = Ledger(pieces, model.axes)
+    _check_determined(model.fields, laws, whole, model.axes)
+    background = Equilibrium(tuple(balances), model.fields, model.axes)
+    return LinearizedModel(
+        model.title,
+        model.axes,
+        model.fields,
+        laws,
+        model.symbols,
+        model.values,
+        whole,
+        background,
+    )
+
+
+def entry_count(rank: int, size: int, symmetric: bool = False) -> int:
+    """How many components something of a rank has."""
+    return size * (size + 1) // 2 if rank == 2 and symmetric else size**rank
+
+
+def _check_determined(
+    fields: Mapping[str, Field], laws: Mapping[str, Law], ledger: Ledger, axes: str
+) -> None:
+    """As many component equations as unknown components, each unknown determined by some law."""
+    occurs = {name: _unknowns(ledger, name) for name in laws}
+    for name, found in occurs.items():
+        if not found:
+            raise UndeterminedError(
+                f"law '{name}' has no first-order part on this background; leave it out or change the background"
+            )
+    rows = [n for n, law in laws.items() for _ in range(_equation_count(law, ledger, axes))]
+    columns = [n for n, f in fields.items() for _ in range(entry_count(f.rank, len(axes), f.symmetric))]
+    pairs = [(i, j) for i, r in enumerate(rows) for j, c in enumerate(columns) if c in occurs[r]]
+    matched = maximum_matching(pairs, len(rows), len(columns))
+    count = f"{len(rows)} component equations for {len(columns)} unknown components"
+    free = sorted({columns[j] for j in range(len(columns)) if j not in matched.values()})
+    if free:
+        raise UndeterminedError(
+            f"{count}: nothing determines {', '.join(repr(n) for n in free)}; add a law that holds it or drop the field"
+        )
+    spare = sorted({rows[i] for i in range(len(rows)) if i not in matched})
+    if spare:
+        raise UndeterminedError(
+            f"{count}: law {', '.join(repr(n) for n in spare)} is one too many; "
+            "leave out what follows from the other laws or declare the missing field"
+        )
+
+
+def _equation_count(law: Law, ledger: Ledger, axes: str) -> int:
+    return entry_count(law.rank, len(axes), law.rank == 2 and symmetric_law(law))
+
+
+def symmetric_law(law: Law) -> bool:
+    """Whether a rank-2 law is for a symmetric tensor: its fields of rank 2 are all symmetric."""
+    tensors = [f for f in law.residual.atoms(Field) if f.rank == 2]
+    return bool(tensors) and all(f.symmetric for f in tensors)
+
+
+def _unknowns(ledger: Ledger, law: str) -> set[str]:
+    kept = (p.value for p in ledger if p.law == law and p.fate == KEPT)
+    return {x.field.name for value in kept for x in value.atoms(Perturbation)}

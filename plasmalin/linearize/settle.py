@@ -1,0 +1,265 @@
+"""What a piece is worth on the background: values put in, derivatives of uniform backgrounds gone.
+
+The result is a sum of terms, each a uniform coefficient times an operator on one perturbation,
+written as an author would: div(n0 v~) becomes n0 div v~, div(u0 n~) becomes (u0 . grad) n~.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from typing import Any
+
+from sympy import Add, Expr, Mul, S, sqrt
+
+from ..declare.fields import Background, Components, Perturbation, components
+from ..declare.operators import (
+    WAVE_SYMBOLS,
+    Advect,
+    Cross,
+    Curl,
+    Ddot,
+    Div,
+    Dot,
+    Grad,
+    Identity,
+    Laplacian,
+    Multiplier,
+    Norm,
+    Operator,
+    Outer,
+    PartialT,
+    Trace,
+    Transpose,
+    k_abs,
+    rank_of,
+)
+from ..errors import BackgroundError
+
+
+def is_uniform(expr: Expr) -> bool:
+    """Whether an expression with values put in is the same everywhere and at all times."""
+    return not expr.atoms(Perturbation)
+
+
+def settle(expr: Expr) -> Expr:
+    """A raw piece (of order 0 or 1) with the background's values put in, as a sum of plain terms."""
+    if isinstance(expr, Background):
+        return expr.value
+    if not expr.args or not expr.atoms(Background, Operator):
+        return expr
+    args = [settle(a) for a in expr.args]
+    if isinstance(expr, Mul):
+        return _product(args)
+    if isinstance(expr, Components):
+        return components(*args) if expr.rank == 1 else components(*(r.args for r in args))
+    if isinstance(expr, Operator):
+        return S.Zero if any(a == 0 for a in args) else _distributed(type(expr), args)
+    return expr.func(*args)
+
+
+def _product(args: list[Expr]) -> Expr:
+    """A product, multiplied out over the factors that hold a perturbation."""
+    total = [S.One]
+    for a in args:
+        parts = Add.make_args(a) if not is_uniform(a) or rank_of(a) > 0 else (a,)
+        total = [t * x for t in total for x in parts]
+    return Add(*total)
+
+
+def _distributed(kind: type[Operator], args: list[Expr]) -> Expr:
+    """Linear in the one argument that varies; the other arguments are uniform."""
+    if kind is Multiplier:
+        return Add(*(_multiplier(x, args[1]) for x in Add.make_args(args[0])))
+    if kind is Norm:
+        return _norm(args[0])
+    total = [()]
+    for a in args:
+        total = [(*t, x) for t in total for x in Add.make_args(a)]  # type: ignore[misc]
+    return Add(*(RULES[kind](*choice) for choice in total))
+
+
+def _factored(term: Expr) -> tuple[Expr, Expr]:
+    """A term as uniform scalar coefficient times the rest (a perturbation, operator or vector)."""
+    rest, scalars = [], []
+    for a in Mul.make_args(term):
+        plain = is_uniform(a) and not isinstance(a, Components | Identity | Operator)
+        (scalars if plain else rest).append(a)
+    return Mul(*scalars), Mul(*rest)
+
+
+def _vector_times_scalar(rest: Expr) -> tuple[Expr, Expr] | None:
+    """A uniform vector or tensor times a varying scalar, as that pair."""
+    args = Mul.make_args(rest)
+    fixed = [a for a in args if isinstance(a, Components | Identity)]
+    if len(fixed) != 1 or len(args) < 2:
+        return None
+    return fixed[0], Mul(*(a for a in args if a is not fixed[0]))
+
+
+def _through(kind: type[Operator]) -> Callable[[Expr], Expr]:
+    """Rule for partial_t and laplacian: uniform factors of any rank come out."""
+
+    def rule(x: Expr) -> Expr:
+        if is_uniform(x):
+            return S.Zero
+        coefficient, rest = _factored(x)
+        pair = _vector_times_scalar(rest)
+        if pair:
+            return coefficient * pair[0] * kind(pair[1])
+        return coefficient * kind(rest)
+
+    return rule
+
+
+def _grad(x: Expr) -> Expr:
+    if is_uniform(x):
+        return S.Zero
+    coefficient, rest = _factored(x)
+    pair = _vector_times_scalar(rest)
+    if pair and isinstance(pair[0], Components):
+        return coefficient * Outer(Grad(pair[1]), pair[0])
+    return coefficient * Grad(rest)
+
+
+def _div(x: Expr) -> Expr:
+    if is_uniform(x):
+        return S.Zero
+    coefficient, rest = _factored(x)
+    pair = _vector_times_scalar(rest)
+    if pair and isinstance(pair[0], Identity):
+        return coefficient * Grad(pair[1])
+    if pair and pair[0].rank == 1:
+        return coefficient * Advect(pair[0], pair[1])
+    if pair:
+        return coefficient * Dot(Grad(pair[1]), pair[0])
+    if isinstance(rest, Outer):
+        a, b = rest.args
+        return coefficient * (Advect(a, b) if is_uniform(a) else b * Div(a))
+    return coefficient * Div(rest)
+
+
+def _curl(x: Expr) -> Expr:
+    if is_uniform(x):
+        return S.Zero
+    coefficient, rest = _factored(x)
+    pair = _vector_times_scalar(rest)
+    if pair:
+        return coefficient * Cross(Grad(pair[1]), pair[0])
+    return coefficient * Curl(rest)
+
+
+def _advect(a: Expr, x: Expr) -> Expr:
+    if is_uniform(x):
+        return S.Zero
+    (ca, ra), (cx, rx) = _factored(a), _factored(x)
+    pair = _vector_times_scalar(rx)
+    if pair:
+        return ca * cx * pair[0] * Advect(ra, pair[1])
+    return ca * cx * Advect(ra, rx)
+
+
+def _bilinear(kind: type[Operator]) -> Callable[..., Expr]:
+    """Rule for products of vectors and tensors: scalars come out, uniform pairs are worked out."""
+
+    def rule(a: Expr, b: Expr) -> Expr:
+        (ca, ra), (cb, rb) = _scalar_out(a), _scalar_out(b)
+        if isinstance(ra, Components) and isinstance(rb, Components):
+            return ca * cb * worked_out(kind, ra, rb)
+        return ca * cb * kind(ra, rb)
+
+    return rule
+
+
+def _scalar_out(term: Expr) -> tuple[Expr, Expr]:
+    """A term as scalar factor (uniform or not) times its one vector or tensor."""
+    args = Mul.make_args(term)
+    ranked = [a for a in args if rank_of(a) > 0]
+    return Mul(*(a for a in args if a is not ranked[0])), ranked[0]
+
+
+def worked_out(kind: type[Operator], a: Components, b: Components) -> Expr:
+    """A product of two vectors or tensors that are known by their components."""
+    size = range(a.size)
+    if kind is Cross:
+        x, y = a.args, b.args
+        pairs = ((1, 2), (2, 0), (0, 1))
+        return components(*(x[i] * y[j] - x[j] * y[i] for i, j in pairs))  # type: ignore[operator]
+    if kind is Outer:
+        return components(*(tuple(p * q for q in b.args) for p in a.args))  # type: ignore[operator]
+    if kind is Ddot:
+        return Add(*(a.entry((i, j)) * b.entry((i, j)) for i in size for j in size))
+    if a.rank == 1 and b.rank == 1:
+        return Add(*(a.entry((i,)) * b.entry((i,)) for i in size))
+    if a.rank == 1:
+        return components(*(Add(*(a.entry((i,)) * b.entry((i, j)) for i in size)) for j in size))
+    if b.rank == 1:
+        return components(*(Add(*(a.entry((i, j)) * b.entry((j,)) for j in size)) for i in size))
+    return components(
+        *(
+            tuple(Add(*(a.entry((i, m)) * b.entry((m, j)) for m in size)) for j in size)
+            for i in size
+        )
+    )
+
+
+def _transpose(x: Expr) -> Expr:
+    scalar, tensor = _scalar_out(x)
+    if isinstance(tensor, Components):
+        return scalar * components(*zip(*(row.args for row in tensor.args), strict=True))
+    symmetric = isinstance(tensor, Identity) or getattr(getattr(tensor, "field", None), "symmetric", False)
+    return scalar * (tensor if symmetric else Transpose(tensor))
+
+
+def _trace(x: Expr) -> Expr:
+    scalar, tensor = _scalar_out(x)
+    if isinstance(tensor, Components):
+        return scalar * Add(*(tensor.entry((i, i)) for i in range(tensor.size)))
+    if isinstance(tensor, Outer):
+        return scalar * Dot(*tensor.args)
+    return scalar * Trace(tensor)
+
+
+def _norm(x: Expr) -> Expr:
+    if not is_uniform(x):
+        return Norm(x)
+    values = _combined(x)
+    return sqrt(Add(*(v**2 for v in values.args)))  # type: ignore[operator]
+
+
+def _combined(x: Expr) -> Components:
+    """A uniform vector as one set of components."""
+    parts = [_scalar_out(term) for term in Add.make_args(x)]
+    size = range(parts[0][1].size)  # type: ignore[attr-defined]
+    made = components(*(Add(*(s * v.entry((i,)) for s, v in parts)) for i in size))  # type: ignore[attr-defined]
+    return made  # type: ignore[return-value]
+
+
+def _multiplier(x: Expr, g: Expr) -> Expr:
+    """On a uniform background the multiplier acts by its value at k = 0, omega = 0."""
+    if not is_uniform(x):
+        coefficient, rest = _factored(x)
+        return coefficient * Multiplier(rest, g)
+    at_rest = g.subs({s: 0 for s in WAVE_SYMBOLS if s is not k_abs}).subs(k_abs, 0)
+    if at_rest.is_finite is False or at_rest.has(S.NaN, S.ComplexInfinity):
+        raise BackgroundError(
+            f"multiplier({x}, {g}): the factor has no value at k = 0, where the uniform background sits; "
+            "let it act on a perturbation only, e.g. on a field whose background is 0"
+        )
+    return at_rest * x
+
+
+RULES: dict[Any, Callable[..., Expr]] = {
+    PartialT: _through(PartialT),
+    Laplacian: _through(Laplacian),
+    Grad: _grad,
+    Div: _div,
+    Curl: _curl,
+    Advect: _advect,
+    Dot: _bilinear(Dot),
+    Cross: _bilinear(Cross),
+    Outer: _bilinear(Outer),
+    Ddot: _bilinear(Ddot),
+    Transpose: _transpose,
+    Trace: _trace,
+}
+

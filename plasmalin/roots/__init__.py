@@ -1,0 +1,1 @@
+"""Roots: all complex roots with proof, and branches tracked through crossings."""

@@ -1,0 +1,177 @@
+"""From a wave matrix and numbers to the exact polynomials whose roots are wanted.
+
+The determinant is taken with every fixed number put in as an exact rational; what is swept stays symbolic.
+Each irreducible factor is a `Family`: one polynomial in omega for every grid point.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from fractions import Fraction
+from random import Random
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+from numpy.typing import NDArray
+from sympy import Abs, Dummy, Expr, Symbol, sqrt
+
+from ..errors import UndeterminedError
+from ..exact.determinant import determinant
+from ..exact.polynomial import ExactPolynomial
+from .family import Family
+
+if TYPE_CHECKING:
+    from ..waves.matrix import WaveMatrix
+    from .values import Numbers
+
+DIGITS = 45
+"""Decimal digits to which sin(theta), sqrt(M) and other functions of numbers are evaluated."""
+
+
+@dataclass(frozen=True)
+class Problem:
+    """The exact polynomials of one call.
+
+    Attributes
+    ----------
+    factors : tuple of (Family, int)
+        Irreducible factors that hold omega other than as omega itself, with multiplicity.
+    grid : tuple of (hi, lo) arrays, shape (points,)
+        The swept quantities in double-double, in the order of the families' exponents.
+    zeros : int
+        Roots at zero that these numbers bring beyond the identically zero modes.
+    degree : int
+        How many roots the relation has in general, zero modes left out.
+    zero_modes : int
+    """
+
+    factors: tuple[tuple[Family, int], ...]
+    grid: tuple[tuple[NDArray[Any], NDArray[Any]], ...]
+    zeros: int
+    degree: int
+    zero_modes: int
+
+
+def pose(wave: WaveMatrix, numbers: Numbers) -> Problem:
+    """The exact problem for a wave matrix and its numbers.
+
+    Raises
+    ------
+    UndeterminedError
+        When the determinant vanishes identically, in general or for these numbers.
+    """
+    entries = {ij: c.subs(numbers.solved) if numbers.solved else c for ij, c in wave.entries.items()}
+    degree, zero_modes = general_degree(wave)
+    whole = determinant(entries, len(wave.rows), wave.omega, values=dict(numbers.fixed))
+    if whole.degree < 0:
+        raise UndeterminedError(
+            "for these values the determinant vanishes identically; a value such as a zero wave number, "
+            "density or mass takes a law away: change it or leave that law out"
+        )
+    whole = whole.primitive()[1]
+    swept = tuple(g for g in whole.generators if g.free_symbols)
+    factors = tuple(
+        (_family(p, swept), m) for p, m in whole.factor()[1] if p.lowest == 0
+    )
+    zeros = whole.lowest - zero_modes
+    return Problem(factors, tuple(_grid(g, numbers) for g in swept), zeros, degree, zero_modes)
+
+
+def general_degree(wave: WaveMatrix) -> tuple[int, int]:
+    """The degree and the zero modes of the relation, from one random exact evaluation.
+
+    A polynomial that is not zero vanishes at random points with negligible probability (Schwartz 1980, J. ACM
+    27, 701), so both are those of the symbolic relation.
+
+    Raises
+    ------
+    UndeterminedError
+        When the determinant vanishes identically.
+    """
+    random = Random(20)
+    symbols: set[Any] = set()
+    for entry in wave.entries.values():
+        symbols |= entry.free_symbols
+    values = {
+        s: Fraction(random.randint(10**3, 10**4), random.randint(10**2, 10**3))
+        for s in sorted(symbols - {wave.omega}, key=str)
+    }
+    sample = determinant(wave.entries, len(wave.rows), wave.omega, values=values)
+    if sample.degree < 0:
+        from ..waves.relation import undetermined_message
+
+        raise UndeterminedError(undetermined_message(wave))
+    return sample.degree - sample.lowest, sample.lowest
+
+
+def _family(polynomial: ExactPolynomial, swept: tuple[Expr, ...]) -> Family:
+    """Numbers such as pi or sqrt(2) are folded into the coefficients; the swept stay."""
+    places = [polynomial.generators.index(g) + 1 if g in polynomial.generators else None for g in swept]
+    constants = {
+        i: _rational(g)
+        for i, g in enumerate(polynomial.generators, 1)
+        if not g.free_symbols
+    }
+    gathered: dict[tuple[int, ...], list[Fraction]] = {}
+    for exponents, re, im in polynomial.terms():
+        scale = Fraction(1)
+        for i, value in constants.items():
+            scale *= value ** exponents[i]
+        key = (exponents[0], *(exponents[p] if p else 0 for p in places))
+        into = gathered.setdefault(key, [Fraction(0), Fraction(0)])
+        into[0] += re * scale
+        into[1] += im * scale
+    kept = {key: (re, im) for key, (re, im) in gathered.items() if re or im}
+    table = np.array(list(kept), dtype=np.int64).reshape(len(kept), 1 + len(swept))
+    return Family(table, tuple(kept.values()))
+
+
+def _rational(number: Expr) -> Fraction:
+    value = number.evalf(DIGITS)
+    sign, mantissa, exponent, _ = value._mpf_
+    return Fraction(-int(mantissa) if sign else int(mantissa)) * Fraction(2) ** int(exponent)
+
+
+def _grid(generator: Expr, numbers: Numbers) -> tuple[NDArray[Any], NDArray[Any]]:
+    """A swept quantity over the flattened grid: plain arrays exactly, functions of them in double-double."""
+    size = int(np.prod(numbers.shape, dtype=np.int64))
+    if isinstance(generator, Symbol):
+        hi = numbers.swept[generator].reshape(size)
+        return hi, np.zeros_like(hi)
+    return _evaluated(generator, numbers, size)
+
+
+def _evaluated(generator: Expr, numbers: Numbers, size: int) -> tuple[NDArray[Any], NDArray[Any]]:
+    import mpmath
+    from sympy import lambdify
+
+    symbols = sorted(generator.free_symbols, key=str)
+    loose = [Dummy(s.name) for s in symbols]
+    function = lambdify(loose, _analytic(generator.subs(list(zip(symbols, loose, strict=True)))), "mpmath")
+    with mpmath.workdps(DIGITS):
+        columns = [_column(mpmath, s, numbers, size) for s in symbols]
+        values = [function(*(_mp(mpmath, x) for x in point)) for point in zip(*columns, strict=True)]
+        dtype = np.complex128 if any(getattr(v, "imag", 0) != 0 for v in values) else np.float64
+        hi = np.array([_double(v, dtype) for v in values], dtype=dtype)
+        low = [_double(v - _mp(mpmath, h), dtype) for v, h in zip(values, hi.tolist(), strict=True)]
+    return hi, np.array(low, dtype=dtype)
+
+
+def _column(mpmath: Any, symbol: Any, numbers: Numbers, size: int) -> list[Any]:
+    if symbol in numbers.swept:
+        return list(numbers.swept[symbol].reshape(size).tolist())
+    value = numbers.fixed[symbol]
+    return [mpmath.mpf(value.numerator) / value.denominator] * size
+
+
+def _analytic(generator: Expr) -> Expr:
+    """|k| as sqrt(k^2), which continues it to complex k with positive real part."""
+    return generator.replace(Abs, lambda a: sqrt(a**2))
+
+
+def _mp(mpmath: Any, value: Any) -> Any:
+    return mpmath.mpmathify(complex(value) if isinstance(value, complex) else value)
+
+
+def _double(value: Any, dtype: Any) -> Any:
+    return complex(value) if dtype is np.complex128 else float(value.real)

@@ -1,0 +1,199 @@
+"""Numbers for a wave matrix: looked up, completed from the background's conditions, and checked."""
+
+from __future__ import annotations
+
+import difflib
+from collections.abc import Mapping
+from dataclasses import dataclass
+from fractions import Fraction
+from typing import TYPE_CHECKING, Any, cast
+
+import numpy as np
+from numpy.typing import NDArray
+from sympy import Expr, Symbol
+
+from ..declare.operators import WAVE_SYMBOLS
+from ..errors import BackgroundError, ValuesError
+from ..exact.rational import exact_rational
+
+if TYPE_CHECKING:
+    from ..waves.matrix import WaveMatrix
+
+BREACH = 1e-9
+"""Largest residual of a background condition, relative to its largest term, that counts as rounding."""
+
+
+@dataclass(frozen=True)
+class Numbers:
+    """What every symbol of a wave matrix is worth.
+
+    Attributes
+    ----------
+    fixed : dict of Symbol to Fraction
+        Single real numbers, as the exact binary rationals that they are.
+    swept : dict of Symbol to array
+        Arrays (and complex numbers), broadcast to `shape`.
+    solved : dict of Symbol to Expr
+        Parameters that were not given and follow from the background's conditions.
+    shape : tuple of int
+    """
+
+    fixed: dict[Symbol, Fraction]
+    swept: dict[Symbol, NDArray[Any]]
+    solved: dict[Symbol, Expr]
+    shape: tuple[int, ...]
+
+
+def gather(wave: WaveMatrix, values: Mapping[Any, Any], waves: Mapping[str, Any]) -> Numbers:
+    """Numbers for every symbol that the wave matrix holds.
+
+    Raises
+    ------
+    ValuesError
+        For unknown, missing or doubled names, numbers that are not finite or of the wrong kind, and shapes
+        that do not broadcast.
+    BackgroundError
+        When the numbers break a condition of the background.
+    """
+    symbols = {**wave.linear.symbols, **{s.name: s for s in wave.wave_symbols}}
+    given = _given(symbols, values, waves)
+    arrays = {symbols[n]: _array(n, v, symbols[n] in wave.wave_symbols) for n, v in given.items()}
+    shape = _broadcast(arrays)
+    fixed, swept = {}, {}
+    for symbol, array in arrays.items():
+        if array.ndim == 0 and not np.iscomplexobj(array):
+            fixed[symbol] = exact_rational(float(array))
+        else:
+            swept[symbol] = np.broadcast_to(array, shape)
+    solved = _solve_missing(wave, set(arrays))
+    numbers = Numbers(fixed, swept, solved, shape)
+    _check_conditions(wave, numbers)
+    return numbers
+
+
+def _given(symbols: dict[str, Symbol], values: Mapping[Any, Any], waves: Mapping[str, Any]) -> dict[str, Any]:
+    if not isinstance(values, Mapping):
+        raise ValuesError(f"values must be a mapping from names to numbers, not {type(values).__name__}")
+    named = {key.name if isinstance(key, Symbol) else str(key): v for key, v in values.items()}
+    twice = sorted(set(named) & set(waves))
+    if twice:
+        raise ValuesError(f"{', '.join(twice)} given twice: in the values and as a keyword")
+    given = {**named, **waves}
+    for name in given:
+        if name not in symbols:
+            near = difflib.get_close_matches(name, symbols, 3)
+            hint = f"did you mean {' or '.join(near)}?" if near else f"known are {', '.join(symbols)}"
+            raise ValuesError(f"'{name}' is not a parameter or wave number of this model; {hint}")
+    return given
+
+
+def _array(name: str, value: Any, is_wave: bool) -> NDArray[Any]:
+    try:
+        array = np.asarray(value)
+        array = array.astype(np.complex128 if np.iscomplexobj(array) else np.float64)
+    except (TypeError, ValueError):
+        raise ValuesError(f"'{name}' = {value!r} is not a number or an array of numbers") from None
+    if np.iscomplexobj(array):
+        if not np.any(array.imag):
+            array = array.real
+        elif not is_wave:
+            raise ValuesError(f"'{name}' is a real parameter but its value is complex")
+    if array.ndim == 0 and not np.isfinite(array):
+        raise ValuesError(f"'{name}' = {value!r} is not finite; give a finite number")
+    return cast("NDArray[Any]", array)
+
+
+def _broadcast(arrays: Mapping[Symbol, NDArray[Any]]) -> tuple[int, ...]:
+    try:
+        return np.broadcast_shapes(*(a.shape for a in arrays.values()))
+    except ValueError:
+        shapes = ", ".join(f"{s.name}: {a.shape}" for s, a in arrays.items() if a.ndim)
+        raise ValuesError(f"the shapes of the values do not broadcast together: {shapes}") from None
+
+
+def with_defaults(wave: WaveMatrix, values: Mapping[Any, Any]) -> dict[Any, Any]:
+    """The values with the model's own defaults for what is not given."""
+    named = {key.name if isinstance(key, Symbol) else key for key in values}
+    defaults = {n: v for n, v in wave.linear.defaults.items() if n not in named}
+    return {**defaults, **values}
+
+
+def needed_symbols(wave: WaveMatrix) -> set[Symbol]:
+    """The symbols that the wave matrix holds, omega left out."""
+    found: set[Any] = set()
+    for entry in wave.entries.values():
+        found |= entry.free_symbols
+    return found - set(WAVE_SYMBOLS[:1])
+
+
+def _solve_missing(wave: WaveMatrix, known: set[Symbol]) -> dict[Symbol, Expr]:
+    """Parameters that are not given, from the conditions that hold them."""
+    from sympy import solve
+
+    missing = needed_symbols(wave) - known
+    solved: dict[Symbol, Expr] = {}
+    pending = [c.lhs.xreplace({}) for c in wave.linear.conditions]
+    progress = True
+    while missing and progress:
+        progress = False
+        for condition in pending:
+            unknown = condition.free_symbols - known - set(solved)
+            if len(unknown) == 1:
+                symbol = unknown.pop()
+                found = solve(condition.subs(solved), symbol)
+                if len(found) == 1:
+                    solved[symbol] = found[0]
+                    missing.discard(symbol)
+                    progress = True
+    if missing:
+        names = ", ".join(sorted(s.name for s in missing))
+        raise ValuesError(
+            f"no value for {names}; give it in values= (or as a keyword for a wave number)"
+        )
+    return solved
+
+
+def _check_conditions(wave: WaveMatrix, numbers: Numbers) -> None:
+    known = set(numbers.fixed) | set(numbers.swept)
+    for symbol in known:
+        _check_sign(symbol, numbers)
+    for balance in wave.linear.background.balances:
+        for residual in () if balance.assumed else balance.residuals:
+            if residual.free_symbols <= known:
+                _check_residual(balance.law, residual, numbers)
+
+
+def _check_sign(symbol: Symbol, numbers: Numbers) -> None:
+    if symbol.is_positive:
+        value = numbers.swept.get(symbol)
+        worst = numbers.fixed[symbol] if value is None else np.nanmin(value, initial=np.inf)
+        if worst <= 0:
+            raise ValuesError(
+                f"'{symbol.name}' is declared positive but its value is {float(worst):.6g}"
+            )
+
+
+def _check_residual(law: str, residual: Expr, numbers: Numbers) -> None:
+    from sympy import Add, expand, lambdify
+
+    terms = Add.make_args(expand(residual))
+    symbols = sorted(residual.free_symbols, key=str)
+    numeric = [
+        numbers.swept[s] if s in numbers.swept else float(numbers.fixed[s]) for s in symbols
+    ]
+    with np.errstate(all="ignore"):
+        parts = [np.abs(np.asarray(lambdify(symbols, t, "numpy")(*numeric))) for t in terms]
+        total = np.abs(np.asarray(lambdify(symbols, Add(*terms), "numpy")(*numeric)))
+        largest = np.max([np.broadcast_to(p, numbers.shape) for p in parts], axis=0)
+        breach = np.max(np.nan_to_num(total / np.where(largest > 0, largest, 1.0)), initial=0.0)
+    if breach > BREACH:
+        names = ", ".join(s.name for s in symbols if s.name not in NATURE)
+        raise BackgroundError(
+            f"law '{law}' leaves {residual} = {float(np.nanmax(total)):.6g} on the background "
+            f"({100 * float(breach):.3g} % of its largest term); change one of {names}, "
+            "or leave one out and it is solved for"
+        )
+
+
+NATURE = {"e", "epsilon_0", "mu_0", "c", "m_e", "m_p", "k_B", "G"}
+"""Names that a user does not change to restore a balance."""

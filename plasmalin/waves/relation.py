@@ -1,0 +1,229 @@
+"""The exact dispersion relation: a polynomial in omega with integer coefficients in the parameters."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from functools import cached_property
+from typing import TYPE_CHECKING, Any
+
+from sympy import Expr, Poly, Symbol, latex, sympify
+
+from ..declare.notation import paper
+from ..errors import DeclarationError, UndeterminedError
+from ..exact.determinant import determinant, underdetermined_block
+from ..exact.polynomial import ExactPolynomial
+
+if TYPE_CHECKING:
+    from .matrix import WaveMatrix
+
+LONGEST_LATEX = 4000
+
+
+@dataclass(frozen=True)
+class Factor:
+    """An irreducible factor of the relation.
+
+    Attributes
+    ----------
+    expr : Expr
+        The factor, a polynomial in omega.
+    multiplicity : int
+    degree : int
+        In omega.
+    """
+
+    polynomial: ExactPolynomial
+    multiplicity: int
+
+    @property
+    def expr(self) -> Expr:
+        return self.polynomial.as_expr()
+
+    @property
+    def degree(self) -> int:
+        return self.polynomial.degree
+
+    def __str__(self) -> str:
+        power = f"  (multiplicity {self.multiplicity})" if self.multiplicity > 1 else ""
+        return f"{paper(collected(self.polynomial))} = 0{power}"
+
+
+class Relation:
+    """A dispersion relation D(omega, k) = 0, exact.
+
+    Made by `WaveMatrix.relation`. The content (all that does not hold omega) is divided out.
+
+    Attributes
+    ----------
+    exact : ExactPolynomial
+        Primitive in omega, integer (or Gaussian integer) coefficients in the parameters.
+    """
+
+    def __init__(self, exact: ExactPolynomial, symbols: Mapping[str, Symbol]) -> None:
+        self.exact = exact
+        self._symbols = dict(symbols)
+
+    @property
+    def zero_modes(self) -> int:
+        """The multiplicity of omega = 0."""
+        return self.exact.lowest
+
+    @property
+    def degree(self) -> int:
+        """The number of roots in omega that are not identically zero, with multiplicity."""
+        return self.exact.degree - self.exact.lowest
+
+    @cached_property
+    def factors(self) -> tuple[Factor, ...]:
+        """The irreducible factors that hold omega, the zero modes (omega itself) last."""
+        found = [Factor(p, m) for p, m in self.exact.factor()[1]]
+        return tuple(sorted(found, key=lambda f: f.polynomial.lowest > 0))
+
+    @cached_property
+    def polynomial(self) -> Poly:
+        """The whole relation as a SymPy polynomial in omega, zero modes included."""
+        return self.exact.as_poly()
+
+    def as_expr(self) -> Expr:
+        """The whole relation as an expression, its factors multiplied out."""
+        return self.exact.as_expr()
+
+    def substitute(self, values: Mapping[Any, Any]) -> Relation:
+        """The relation with parameters replaced by numbers or expressions, exactly.
+
+        Parameters
+        ----------
+        values : mapping
+            From symbols or names to numbers (floats are the exact rationals that they are) or expressions.
+
+        Returns
+        -------
+        Relation
+
+        Raises
+        ------
+        DeclarationError
+            When a name is not in the relation's model.
+        UndeterminedError
+            When nothing of the relation is left.
+        """
+        made = {self._symbol(key): sympify(value, strict=True) for key, value in values.items()}
+        replaced = self.exact.substitute(made)
+        if replaced.degree < 0:
+            raise UndeterminedError("with these values the relation vanishes identically")
+        return Relation(replaced.primitive()[1], self._symbols)
+
+    def _symbol(self, key: Any) -> Any:
+        if not isinstance(key, str):
+            return key
+        known = {**{s.name: s for g in self.exact.generators for s in g.free_symbols}, **self._symbols}
+        if key not in known:
+            raise DeclarationError(f"'{key}' is not in the relation; it holds {', '.join(sorted(known))}")
+        return known[key]
+
+    def solve_for(self, name: str) -> list[Expr]:
+        """Closed forms, where the degree allows.
+
+        Parameters
+        ----------
+        name : str
+            "omega", or any symbol of the relation.
+
+        Returns
+        -------
+        list of Expr
+            Every root with its multiplicity; zero modes are left out for omega.
+
+        Raises
+        ------
+        DeclarationError
+            When a factor has no closed form: degree above 4, or above 2 in the square.
+        """
+        target = self.exact.main if name == "omega" else self._symbol(name)
+        found: list[Expr] = []
+        for factor in self.factors:
+            if target is self.exact.main and factor.polynomial.lowest > 0:
+                continue
+            found += closed_forms(factor, target) * factor.multiplicity
+        return found
+
+    def __str__(self) -> str:
+        lines = [str(f) for f in self.factors if f.polynomial.lowest == 0]
+        if self.zero_modes:
+            lines.append(f"ω^{self.zero_modes} = 0: {self.zero_modes} zero modes")
+        return "\n".join(lines)
+
+    def __repr__(self) -> str:
+        return (
+            f"<Relation: degree {self.degree}, zero modes {self.zero_modes}, {len(self.exact)} terms>"
+        )
+
+    def latex(self) -> str:
+        """The relation as a product of its factors, set equal to zero."""
+        parts = []
+        for f in self.factors:
+            power = f"^{{{f.multiplicity}}}" if f.multiplicity > 1 else ""
+            body = latex(collected(f.polynomial))
+            parts.append(f"{body}{power}" if f.polynomial.lowest else rf"\left({body}\right){power}")
+        return " ".join(parts) + " = 0"
+
+    def _repr_latex_(self) -> str | None:
+        if len(self.exact) > LONGEST_LATEX // 8:
+            return None
+        text = self.latex()
+        return f"$\\displaystyle {text}$" if len(text) < LONGEST_LATEX else None
+
+
+def collected(polynomial: ExactPolynomial) -> Expr:
+    """A polynomial as it is printed: by powers of omega, divided by what the leading term allows."""
+    from sympy import Add, cancel
+
+    powers = polynomial.coefficients()
+    lead = powers[max(powers)]
+    if len(lead.as_ordered_terms()) > 1 or lead.is_number:
+        return Add(*(c * polynomial.main**p for p, c in powers.items()))
+    return Add(*(cancel(c / lead) * polynomial.main**p for p, c in powers.items()))
+
+
+def closed_forms(factor: Factor, target: Symbol) -> list[Expr]:
+    """Roots of one factor in radicals."""
+    from sympy import roots, sqrt
+
+    poly = Poly(collected(factor.polynomial), target)
+    if poly.degree() == 0:
+        return []
+    even = all(m[0] % 2 == 0 for m in poly.monoms())
+    reduced = Poly({(m[0] // 2,): c for m, c in poly.terms()}, target) if even else poly
+    if reduced.degree() > (2 if even else 4):
+        raise DeclarationError(
+            f"the factor of degree {poly.degree()} in {target} has no closed form; use wave.roots(...) for numbers"
+        )
+    found = [x for x, m in roots(reduced).items() for _ in range(m)]
+    return [s * sqrt(x) for x in found for s in (1, -1)] if even else found
+
+
+def derive_relation(wave: WaveMatrix) -> Relation:
+    """The determinant of a wave matrix as a relation."""
+    size = len(wave.rows)
+    exact = determinant(wave.entries, size, wave.omega)
+    if exact.degree < 0:
+        raise UndeterminedError(undetermined_message(wave))
+    if exact.degree == 0:
+        raise UndeterminedError(
+            "no unknown changes in time: omega does not occur in the determinant; "
+            "a law with a time derivative is missing"
+        )
+    return Relation(exact.primitive()[1], wave.linear.symbols)
+
+
+def undetermined_message(wave: WaveMatrix) -> str:
+    """Which laws and unknowns make the determinant vanish."""
+    rows, columns = underdetermined_block(wave.entries, len(wave.rows), wave.omega)
+    laws = ", ".join(f"'{wave.rows[i]}'" for i in rows)
+    unknowns = ", ".join(wave.columns[j].symbol.name for j in columns)
+    return (
+        f"the laws do not determine the waves for this wave vector: the determinant vanishes identically. "
+        f"The equations {laws} are dependent, and {unknowns} stay free; "
+        "replace one of these laws, or drop an unknown that nothing fixes"
+    )

@@ -1,0 +1,336 @@
+"""Exact polynomials in one main symbol, with Gaussian integer coefficients in parameters."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+from fractions import Fraction
+from functools import cached_property
+from typing import Any
+
+import sympy as sp
+
+from .gaussian import Gaussian, gcd, gcd_of
+from .ratio import Ratio
+from .reader import Reader, ring_of
+from .ring import Ring, transplanted
+from .univariate import Root, complex_roots
+
+
+class ExactPolynomial:
+    """A polynomial in `main` whose coefficients are polynomials in `generators`.
+
+    Attributes
+    ----------
+    main : Symbol
+    generators : tuple of Expr
+        Symbols and opaque expressions such as sin(theta), sqrt(M), pi or n_0**gamma, sorted by name.
+    """
+
+    def __init__(self, ring: Ring, value: Gaussian) -> None:
+        self._ring, self._value = ring, value
+
+    @property
+    def main(self) -> sp.Symbol:
+        return self._ring.main
+
+    @property
+    def generators(self) -> tuple[sp.Expr, ...]:
+        return self._ring.generators
+
+    @property
+    def is_real(self) -> bool:
+        return not self._value.im
+
+    @cached_property
+    def degree(self) -> int:
+        """The highest power of `main`; −1 for zero."""
+        parts = [p.degrees()[0] for p in (self._value.re, self._value.im) if p]
+        return int(max(parts, default=-1))
+
+    @cached_property
+    def lowest(self) -> int:
+        """The lowest power of `main`; −1 for zero."""
+        return min((e[0] for e, _, _ in self.terms()), default=-1)
+
+    def __len__(self) -> int:
+        if self.is_real:
+            return len(self._value.re)
+        return len(set(self._value.re.monoms()) | set(self._value.im.monoms()))
+
+    def terms(self) -> Iterator[tuple[tuple[int, ...], int, int]]:
+        """Exponents (main first, then the generators), real and imaginary coefficient."""
+        re, im = self._value.re, self._value.im
+        if not im:
+            yield from ((tuple(map(int, e)), int(c), 0) for e, c in re.terms())
+            return
+        both: dict[Any, list[int]] = {}
+        for place, part in enumerate((re, im)):
+            for e, c in part.terms():
+                both.setdefault(e, [0, 0])[place] = int(c)
+        yield from ((tuple(map(int, e)), c[0], c[1]) for e, c in both.items())
+
+    def coefficients(self) -> dict[int, sp.Expr]:
+        """The coefficient of every power of `main` that occurs, highest first."""
+        groups: dict[int, list[sp.Expr]] = {}
+        for exponents, re, im in self.terms():
+            number = sp.Integer(re) + sp.I * im if im else sp.Integer(re)
+            powers = (g**n for g, n in zip(self.generators, exponents[1:], strict=True) if n)
+            groups.setdefault(exponents[0], []).append(sp.Mul(number, *powers))
+        return {power: sp.Add(*groups[power]) for power in sorted(groups, reverse=True)}
+
+    def as_expr(self) -> sp.Expr:
+        return sp.Add(*(c * self.main**p for p, c in self.coefficients().items()))
+
+    def as_poly(self) -> sp.Poly:
+        """A SymPy polynomial in `main`, its coefficients in the ring of the generators."""
+        base = sp.ZZ if self.is_real else sp.ZZ_I
+        domain = base[self.generators] if self.generators else base
+        groups: dict[tuple[int, ...], Any] = {}
+        for exponents, re, im in self.terms():
+            number = base(re) if self.is_real else base(re, im)
+            groups.setdefault((exponents[0],), {})[exponents[1:]] = number
+        if not self.generators:
+            plain = {power: next(iter(c.values())) for power, c in groups.items()}
+            return sp.Poly.from_dict(plain, self.main, domain=domain)
+        made = {power: domain.ring.from_dict(c) for power, c in groups.items()}
+        return sp.Poly.from_dict(made, self.main, domain=domain)
+
+    # Arithmetic --------------------------------------------------------------------------------
+
+    def _key(self) -> tuple[Any, ...]:
+        return self.main, self.generators, frozenset(self.terms())
+
+    def __eq__(self, other: object) -> bool:
+        return isinstance(other, ExactPolynomial) and self._key() == other._key()
+
+    def __hash__(self) -> int:
+        return hash(self._key())
+
+    def __reduce__(self) -> tuple[Any, ...]:
+        return _restored, (self.main, self.generators, tuple(self.terms()))
+
+    def _with(self, value: Gaussian) -> ExactPolynomial:
+        return ExactPolynomial(self._ring, value)
+
+    def _joined(self, other: ExactPolynomial) -> tuple[Ring, Gaussian, Gaussian]:
+        if self._ring == other._ring:
+            return self._ring, self._value, other._value
+        ring = ring_of([*self.generators, *other.generators, self.main], self.main)
+        return ring, self._moved(ring), other._moved(ring)
+
+    def _moved(self, ring: Ring) -> Gaussian:
+        """The value in a larger ring, generators that became roots of new ones raised to their power."""
+        images = [(0, 1)]
+        for g in self.generators:
+            (family, power), *rest = _split(g)
+            if rest:
+                raise ArithmeticError(f"{g} is not a generator of one family")
+            i, root = ring.places[family]
+            images.append((i, int(power * root)))
+        return Gaussian(transplanted(self._value.re, images, ring), transplanted(self._value.im, images, ring))
+
+    def __mul__(self, other: ExactPolynomial) -> ExactPolynomial:
+        ring, a, b = self._joined(other)
+        return ExactPolynomial(ring, Reader(ring).reduced(a * b))
+
+    def gcd(self, other: ExactPolynomial) -> ExactPolynomial:
+        """A greatest common divisor over the Gaussian rationals."""
+        ring, a, b = self._joined(other)
+        return ExactPolynomial(ring, gcd(a, b))
+
+    def exact_div(self, other: ExactPolynomial) -> ExactPolynomial:
+        """The quotient by a known divisor.
+
+        Raises
+        ------
+        ArithmeticError
+            When the division leaves a rest.
+        """
+        ring, a, b = self._joined(other)
+        return ExactPolynomial(ring, a.over(b))
+
+    def primitive(self) -> tuple[ExactPolynomial, ExactPolynomial]:
+        """The content, free of `main`, and the primitive part with its sign normalized."""
+        parts = sorted(self._slices().values(), key=lambda p: len(p.re) + len(p.im))
+        content = gcd_of(parts, self._ring.constant(0))
+        if not content:
+            return self._with(self._ring.constant(1)), self
+        return self._with(content), self._with(self._value.over(content).normalized()).real_if_possible()
+
+    def _slices(self) -> dict[int, Gaussian]:
+        """The coefficient of every power of `main`, in the same ring."""
+        found: dict[int, tuple[dict[Any, Any], dict[Any, Any]]] = {}
+        for place, part in enumerate((self._value.re, self._value.im)):
+            for e, c in part.terms():
+                found.setdefault(int(e[0]), ({}, {}))[place][(0, *e[1:])] = c
+        make = self._ring.context.from_dict
+        return {power: Gaussian(make(a), make(b)) for power, (a, b) in found.items()}
+
+    def real_if_possible(self) -> ExactPolynomial:
+        """Times the power of i that makes it real, where there is one."""
+        return self._with(Gaussian(self._value.im, self._value.re)) if self._value.phase == 1 else self
+
+    def _turned_main(self, power: int) -> Gaussian:
+        """With `main` replaced by i**power times main."""
+        parts: tuple[dict[Any, Any], dict[Any, Any]] = ({}, {})
+        for e, re, im in self.terms():
+            for c, source in ((re, 0), (im, 1)):
+                turn = (source + power * e[0]) % 4
+                if c:
+                    into = parts[turn % 2]
+                    into[e] = into.get(e, 0) + (-c if turn > 1 else c)
+        make = self._ring.context.from_dict
+        return Gaussian(make(parts[0]), make(parts[1]))
+
+    def factor(self) -> tuple[ExactPolynomial, tuple[tuple[ExactPolynomial, int], ...]]:
+        """The content and the factors that hold `main`, irreducible over the rationals, with multiplicity.
+
+        A polynomial that is real in i times `main` (damping without drift) is factored there; one with
+        Gaussian coefficients through the factors of its norm.
+        """
+        content, primitive = self.primitive()
+        if primitive.degree < 1:
+            return content, ()
+        if primitive.is_real:
+            found = primitive._real_factors(primitive._value.re, 0)
+        elif (turned := primitive._turned_main(1)).phase is not None:
+            found = primitive._real_factors(turned.part, 3)
+        else:
+            found = primitive._gaussian_factors()
+        return content, tuple(sorted(found, key=lambda f: (f[0].degree, len(f[0]), str(f[0].as_expr()) if len(f[0]) < 50 else "")))
+
+    def _real_factors(self, value: Any, back: int) -> list[tuple[ExactPolynomial, int]]:
+        found = []
+        for factor, multiplicity in value.factor()[1]:
+            if factor.degrees()[0] > 0:
+                made = self._with(Gaussian(factor, self._ring.context.constant(0)))
+                made = self._with(made._turned_main(back).normalized()) if back else made
+                found.append((made._normal(), int(multiplicity)))
+        return found
+
+    def _normal(self) -> ExactPolynomial:
+        return self._with(self._value.normalized()).real_if_possible()
+
+    def _gaussian_factors(self) -> list[tuple[ExactPolynomial, int]]:
+        rest, found = self._value, dict[ExactPolynomial, int]()
+        for factor, _ in rest.norm().factor()[1]:
+            if factor.degrees()[0] == 0:
+                continue
+            part = Gaussian(factor, self._ring.context.constant(0))
+            while (common := gcd(rest, part)).re.degrees()[0] + common.im.degrees()[0] > 0:
+                rest = rest.over(common)
+                made = self._with(common)._normal()
+                found[made] = found.get(made, 0) + 1
+        return list(found.items())
+
+    def substitute(self, values: Mapping[Any, Any]) -> ExactPolynomial:
+        """With symbols replaced by exact numbers or expressions; floats are their binary rationals.
+
+        Denominators are cleared, so the result is right up to a factor free of `main`.
+        """
+        known = {s: _exact_number(v) for s, v in values.items()}
+        images = [self.main, *(g.xreplace(known) for g in self.generators)]
+        ring = ring_of(images, self.main)
+        reader = Reader(ring)
+        ratios = [reader.ratio(x) for x in images]
+        return ExactPolynomial(ring, reader.reduced(self._composed(ratios, ring)))._normal()
+
+    def _composed(self, images: list[Ratio], ring: Ring) -> Gaussian:
+        """Every variable replaced by a ratio; the sum of terms over the common denominator."""
+        top = ring.constant(0)
+        highest = [0] * len(images)
+        for e, _, _ in self.terms():
+            highest = [max(a, b) for a, b in zip(highest, e, strict=True)]
+        powers = [_powers(r, n, ring) for r, n in zip(images, highest, strict=True)]
+        for e, re, im in self.terms():
+            term = ring.constant(re, im)
+            for table, n in zip(powers, e, strict=True):
+                term = term * table[n]
+            top = top + term
+        return top
+
+    def discriminant(self) -> ExactPolynomial:
+        """The discriminant with respect to `main` (real polynomials)."""
+        found = self._value.re.discriminant(0)
+        return self._with(Gaussian(found, self._ring.context.constant(0)))
+
+    def complex_roots(self, digits: int = 30) -> list[Root]:
+        """All roots with proven radii, when no generators are left.
+
+        Raises
+        ------
+        ArithmeticError
+            When the polynomial still holds generators.
+        """
+        if self.generators:
+            raise ArithmeticError("complex_roots() needs numbers for all parameters; substitute them first")
+        slices = self._slices()
+        table = [slices.get(n, self._ring.constant(0)) for n in range(self.degree + 1)]
+        return complex_roots([(Fraction(int(_number(p.re))), Fraction(int(_number(p.im)))) for p in table], digits)
+
+    def __repr__(self) -> str:
+        return f"<ExactPolynomial in {self.main}: degree {self.degree}, {len(self)} terms>"
+
+
+def _powers(ratio: Ratio, highest: int, ring: Ring) -> list[Gaussian]:
+    """top**n * bottom**(highest − n) for every n."""
+    tops, bottoms = [ring.constant(1)], [ring.constant(1)]
+    for _ in range(highest):
+        tops.append(tops[-1] * ratio.top)
+        bottoms.append(bottoms[-1] * ratio.bottom)
+    return [tops[n] * bottoms[highest - n] for n in range(highest + 1)]
+
+
+def _number(p: Any) -> int:
+    return int(p.leading_coefficient()) if p else 0
+
+
+def _exact_number(value: Any) -> Any:
+    if isinstance(value, sp.Basic) and not isinstance(value, sp.Float):
+        return value.replace(lambda x: isinstance(x, sp.Float), _exact_number) if value.atoms(sp.Float) else value
+    from .rational import exact_rational
+
+    number = exact_rational(value)
+    return sp.Rational(number.numerator, number.denominator)
+
+
+def _split(generator: sp.Expr) -> Any:
+    from .powers import split_power
+
+    return split_power(generator)
+
+
+def _restored(main: sp.Symbol, generators: tuple[sp.Expr, ...], terms: Any) -> ExactPolynomial:
+    ring = Ring(main, generators)
+    make = ring.context.from_dict
+    value = Gaussian(make({e: a for e, a, _ in terms if a}), make({e: b for e, _, b in terms if b}))
+    return ExactPolynomial(ring, value)
+
+
+def ratio_expr(ratio: Ratio, ring: Ring) -> sp.Expr:
+    """A ratio as a SymPy expression."""
+    top, bottom = (ExactPolynomial(ring, p).as_expr() for p in (ratio.top, ratio.bottom))
+    return top / bottom
+
+
+def polynomial(expr: sp.Expr, main: sp.Symbol) -> ExactPolynomial:
+    """An expression as an exact polynomial, up to a denominator free of `main`.
+
+    Raises
+    ------
+    NonPolynomialError
+        When it is not a polynomial in `main`.
+    """
+    from ..errors import NonPolynomialError
+
+    ring = ring_of([expr], main)
+    ratio = Reader(ring).ratio(expr).lowest()
+    if ratio.bottom.re.degrees()[0] + ratio.bottom.im.degrees()[0] > 0:
+        raise NonPolynomialError(f"{expr} is a ratio in {main}; use its numerator")
+    return ExactPolynomial(ring, ratio.top)
+
+
+def numerator(expr: sp.Expr, main: sp.Symbol) -> ExactPolynomial:
+    """The numerator of a ratio, in lowest terms."""
+    ring = ring_of([expr], main)
+    return ExactPolynomial(ring, Reader(ring).ratio(expr).lowest().top)

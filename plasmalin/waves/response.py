@@ -1,0 +1,3 @@
+from typing import Any
+Reduced=Any
+reduced=None

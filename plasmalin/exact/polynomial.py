@@ -9,6 +9,7 @@ from typing import Any
 
 import sympy as sp
 
+from .factoring import irreducible_factors
 from .gaussian import Gaussian, gcd, gcd_of
 from .ratio import Ratio
 from .reader import Reader, ring_of
@@ -201,7 +202,7 @@ class ExactPolynomial:
 
     def _real_factors(self, value: Any, back: int) -> list[tuple[ExactPolynomial, int]]:
         found = []
-        for factor, multiplicity in value.factor()[1]:
+        for factor, multiplicity in irreducible_factors(value):
             if factor.degrees()[0] > 0:
                 made = self._with(Gaussian(factor, self._ring.context.constant(0)))
                 made = self._with(made._turned_main(back).normalized()) if back else made
@@ -213,7 +214,7 @@ class ExactPolynomial:
 
     def _gaussian_factors(self) -> list[tuple[ExactPolynomial, int]]:
         rest, found = self._value, dict[ExactPolynomial, int]()
-        for factor, _ in rest.norm().factor()[1]:
+        for factor, _ in irreducible_factors(rest.norm()):
             if factor.degrees()[0] == 0:
                 continue
             part = Gaussian(factor, self._ring.context.constant(0))

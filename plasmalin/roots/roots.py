@@ -11,8 +11,8 @@ from numpy.typing import NDArray
 
 from ..errors import ValuesError
 from .enclose import Enclosure, enclose, merge
-from .solve import Problem, pose
-from .values import gather, with_defaults
+from .solve import Problem, grid_of, pose
+from .values import Numbers, gather, with_defaults
 
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
@@ -101,22 +101,29 @@ class Roots(NDArrayOperatorsMixin):
 
 def find_roots(wave: WaveMatrix, values: Mapping[Any, Any], waves: dict[str, Any]) -> Roots:
     """All roots; see `WaveMatrix.roots`."""
-    zero_modes, workers = bool(waves.pop("zero_modes", False)), waves.pop("workers", 1)
+    zero_modes = bool(waves.pop("zero_modes", False))
     numbers = gather(wave, with_defaults(wave, values), waves)
     problem = pose(wave, numbers)
-    points = int(np.prod(numbers.shape, dtype=np.int64))
-    found = solve(problem, points, zero_modes, workers)
+    found = solve(problem, numbers, zero_modes)
     shape = (*numbers.shape, found.omega.shape[1])
     return Roots(
-        found.omega.reshape(shape), found.radius.reshape(shape), found.status.reshape(shape), found.method
+        found.omega.reshape(shape),
+        found.radius.reshape(shape),
+        found.status.reshape(shape),
+        found.method,
     )
 
 
-def solve(problem: Problem, points: int, zero_modes: bool, workers: Any) -> Enclosure:
+def solve(problem: Problem, numbers: Numbers, zero_modes: bool) -> Enclosure:
     """Every factor enclosed and merged, with the exact zeros in their place."""
-    parts = [enclose(family, problem.grid, points=points, workers=workers) for family, _ in problem.factors]
-    zeros = problem.zeros + (problem.zero_modes if zero_modes else 0)
-    total = problem.degree + (problem.zero_modes if zero_modes else 0)
-    return merge(parts, [m for _, m in problem.factors], points=points, zeros=zeros, degree=total)
-
-
+    points = int(np.prod(numbers.shape, dtype=np.int64))
+    grid = grid_of(problem, numbers)
+    parts = [enclose(family, grid, points=points) for family, _ in problem.factors]
+    extra = problem.zero_modes if zero_modes else 0
+    return merge(
+        parts,
+        [m for _, m in problem.factors],
+        points=points,
+        zeros=problem.zeros + extra,
+        degree=problem.degree + extra,
+    )

@@ -13,12 +13,12 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 from numpy.typing import NDArray
-from sympy import Abs, Dummy, Expr, Symbol, sqrt
+from sympy import Abs, Dummy, Expr, Symbol, lambdify, sqrt
 
 from ..errors import UndeterminedError
 from ..exact.determinant import determinant
 from ..exact.polynomial import ExactPolynomial
-from .family import Family
+from .family import Family, Grid
 
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
@@ -36,8 +36,8 @@ class Problem:
     ----------
     factors : tuple of (Family, int)
         Irreducible factors that hold omega other than as omega itself, with multiplicity.
-    grid : tuple of (hi, lo) arrays, shape (points,)
-        The swept quantities in double-double, in the order of the families' exponents.
+    generators : tuple of Expr
+        The swept quantities, in the order of the families' exponents: symbols, sin(theta), |k| ...
     zeros : int
         Roots at zero that these numbers bring beyond the identically zero modes.
     degree : int
@@ -46,7 +46,7 @@ class Problem:
     """
 
     factors: tuple[tuple[Family, int], ...]
-    grid: tuple[tuple[NDArray[Any], NDArray[Any]], ...]
+    generators: tuple[Expr, ...]
     zeros: int
     degree: int
     zero_modes: int
@@ -74,7 +74,12 @@ def pose(wave: WaveMatrix, numbers: Numbers) -> Problem:
         (_family(p, swept), m) for p, m in whole.factor()[1] if p.lowest == 0
     )
     zeros = whole.lowest - zero_modes
-    return Problem(factors, tuple(_grid(g, numbers) for g in swept), zeros, degree, zero_modes)
+    return Problem(factors, swept, zeros, degree, zero_modes)
+
+
+def grid_of(problem: Problem, numbers: Numbers) -> Grid:
+    """The swept quantities over the flattened grid, in double-double."""
+    return [_grid(g, numbers) for g in problem.generators]
 
 
 def general_degree(wave: WaveMatrix) -> tuple[int, int]:
@@ -143,7 +148,6 @@ def _grid(generator: Expr, numbers: Numbers) -> tuple[NDArray[Any], NDArray[Any]
 
 def _evaluated(generator: Expr, numbers: Numbers, size: int) -> tuple[NDArray[Any], NDArray[Any]]:
     import mpmath
-    from sympy import lambdify
 
     symbols = sorted(generator.free_symbols, key=str)
     loose = [Dummy(s.name) for s in symbols]
@@ -175,3 +179,26 @@ def _mp(mpmath: Any, value: Any) -> Any:
 
 def _double(value: Any, dtype: Any) -> Any:
     return complex(value) if dtype is np.complex128 else float(value.real)
+
+
+def rates_of(problem: Problem, numbers: Numbers, symbol: Symbol) -> list[NDArray[Any]]:
+    """How fast each swept quantity changes with one symbol, in doubles."""
+    size = int(np.prod(numbers.shape, dtype=np.int64))
+    rates = []
+    for generator in problem.generators:
+        slope = _loose_slope(generator, symbol)
+        symbols = sorted(slope.free_symbols, key=str)
+        columns = [
+            numbers.swept[s].reshape(size) if s in numbers.swept else float(numbers.fixed[s])
+            for s in symbols
+        ]
+        value = lambdify(symbols, slope, "numpy")(*columns)
+        rates.append(np.broadcast_to(np.asarray(value), (size,)))
+    return rates
+
+
+def _loose_slope(generator: Expr, symbol: Symbol) -> Expr:
+    """The derivative, with sign(k) for |k| as k / sqrt(k^2)."""
+    loose = Dummy(symbol.name)
+    slope = _analytic(generator.subs(symbol, loose)).diff(loose)
+    return slope.subs(loose, symbol)

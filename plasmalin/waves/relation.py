@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
-from sympy import Expr, Poly, Symbol, latex, sympify
+from sympy import Add, Expr, Poly, S, Symbol, latex, sympify
 
 from ..declare.notation import paper
 from ..errors import DeclarationError, UndeterminedError
@@ -177,13 +177,11 @@ class Relation:
 
 def collected(polynomial: ExactPolynomial) -> Expr:
     """A polynomial as it is printed: by powers of omega, divided by what the leading term allows."""
-    from sympy import Add, cancel
-
     powers = polynomial.coefficients()
     lead = powers[max(powers)]
-    if len(lead.as_ordered_terms()) > 1 or lead.is_number:
-        return Add(*(c * polynomial.main**p for p, c in powers.items()))
-    return Add(*(cancel(c / lead) * polynomial.main**p for p, c in powers.items()))
+    scale = lead if not isinstance(lead, Add) else S.One
+    terms = (Add(*(t / scale for t in Add.make_args(c))) for c in powers.values())
+    return Add(*(c * polynomial.main**p for p, c in zip(powers, terms, strict=True)))
 
 
 def closed_forms(factor: Factor, target: Symbol) -> list[Expr]:

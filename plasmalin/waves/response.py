@@ -1,3 +1,85 @@
-from typing import Any
-Reduced=Any
-reduced=None
+"""Elimination of unknowns: the dispersion tensor of chosen fields."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from functools import cached_property
+from typing import TYPE_CHECKING
+
+from sympy import Expr, ImmutableDenseMatrix, Symbol
+
+from ..errors import UndeterminedError
+from ..exact.determinant import eliminate
+from ..exact.matching import maximum_matching
+
+if TYPE_CHECKING:
+    from .matrix import WaveMatrix
+
+
+@dataclass(frozen=True, eq=False)
+class Reduced:
+    """A wave matrix after the other unknowns have been eliminated.
+
+    Attributes
+    ----------
+    amplitudes : tuple of Symbol
+        The unknowns that stay.
+    laws : tuple of str
+        The equations that stay, one per row.
+    entries : dict of (int, int) to Expr
+        Exact ratios in lowest terms.
+    """
+
+    amplitudes: tuple[Symbol, ...]
+    laws: tuple[str, ...]
+    entries: Mapping[tuple[int, int], Expr]
+
+    @cached_property
+    def matrix(self) -> ImmutableDenseMatrix:
+        """``matrix * amplitudes = 0``, shape (kept, kept)."""
+        size = len(self.amplitudes)
+        return ImmutableDenseMatrix(size, size, lambda i, j: self.entries.get((int(i), int(j)), 0))
+
+    def _repr_latex_(self) -> str | None:
+        from sympy import latex
+
+        text = latex(self.matrix)
+        return f"$\\displaystyle {text}$" if len(text) < 4000 else None
+
+    def __repr__(self) -> str:
+        names = ", ".join(s.name for s in self.amplitudes)
+        return f"<Reduced to {names}: rows {'; '.join(self.laws)}>"
+
+
+def reduced(wave: WaveMatrix, fields: tuple[str, ...]) -> Reduced:
+    """The Schur complement on the named fields; see `WaveMatrix.reduce`."""
+    columns = list(dict.fromkeys(j for name in fields for j in wave.column(name)))
+    rows = _rows_that_stay(wave, columns)
+    entries = eliminate(wave.entries, wave.omega, len(wave.rows), rows, columns)
+    return Reduced(
+        tuple(wave.amplitudes[j] for j in columns), tuple(str(wave.rows[i]) for i in rows), entries
+    )
+
+
+def _rows_that_stay(wave: WaveMatrix, columns: list[int]) -> list[int]:
+    """Rows left over when every other unknown takes an equation, evolution equations first."""
+    others = [j for j in range(len(wave.rows)) if j not in columns]
+    pairs = [(i, j) for (i, j) in wave.entries if j in others]
+    evolving = {(i, j) for i, j in pairs if wave.entries[i, j].has(wave.omega)}
+    taken = _matched(evolving, set(), wave)
+    taken |= _matched(set(pairs), taken, wave)
+    if len(taken) < len(others):
+        names = ", ".join(wave.columns[j].symbol.name for j in others if j not in dict(taken).values())
+        raise UndeterminedError(f"{names} cannot be eliminated: no law is left that determines them")
+    used = {i for i, _ in taken}
+    return [i for i in range(len(wave.rows)) if i not in used]
+
+
+def _matched(
+    pairs: set[tuple[int, int]], taken: set[tuple[int, int]], wave: WaveMatrix
+) -> set[tuple[int, int]]:
+    """A matching on what is still free."""
+    rows, columns = {i for i, _ in taken}, {j for _, j in taken}
+    free = [(i, j) for i, j in pairs if i not in rows and j not in columns]
+    return set(maximum_matching(free, len(wave.rows), len(wave.rows)).items())

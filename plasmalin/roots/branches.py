@@ -1,0 +1,279 @@
+"""Branches: roots that are continuous along a wave number or a parameter."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, replace
+from functools import cached_property
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+from numpy.typing import NDArray
+from sympy import Symbol
+
+from ..errors import DeclarationError, ValuesError
+from .enclose import ZERO, Enclosure, enclose
+from .polarisation import null_vectors
+from .slopes import ScaledFamily
+from .solve import Problem, grid_of, pose, rates_of
+from .tracking import Event, track
+from .values import Numbers, gather, with_defaults
+
+if TYPE_CHECKING:
+    from ..waves.matrix import WaveMatrix
+
+
+@dataclass(frozen=True, eq=False)
+class Branches:
+    """Tracked roots along one quantity.
+
+    Attributes
+    ----------
+    name : str
+        What varies.
+    along : ndarray of float64, shape (n,)
+        Its values; rad/m for a wave number.
+    omega : ndarray of complex128, shape (branch, n), rad/s
+    radius : ndarray of float64, shape (branch, n), rad/s
+        Proven error bounds.
+    status : ndarray of str, shape (branch, n)
+    slope : ndarray of complex128, shape (branch, n)
+        d omega / d(what varies).
+    factor : tuple of int
+        For each branch the irreducible factor that it belongs to (−1: a zero mode).
+    events : tuple of Event
+        Where branches of one factor meet.
+    """
+
+    wave: WaveMatrix
+    numbers: Numbers
+    name: str
+    along: NDArray[np.float64]
+    omega: NDArray[np.complex128]
+    radius: NDArray[np.float64]
+    status: NDArray[Any]
+    slope: NDArray[np.complex128]
+    factor: tuple[int, ...]
+    events: tuple[Event, ...]
+    method: str
+
+    def __len__(self) -> int:
+        return len(self.omega)
+
+    @property
+    def frequency(self) -> NDArray[np.float64]:
+        """Re omega, rad/s, shape (branch, n)."""
+        return self.omega.real
+
+    @property
+    def growth_rate(self) -> NDArray[np.float64]:
+        """Im omega, rad/s, shape (branch, n); positive for growth."""
+        return self.omega.imag
+
+    @cached_property
+    def wave_number(self) -> NDArray[Any]:
+        """|k| along the sweep, rad/m, shape (n,)."""
+        from sympy import Add, lambdify, sqrt
+
+        square = Add(*(c**2 for c in self.wave.k))
+        symbols = sorted(square.free_symbols, key=str)
+        columns = [
+            self.numbers.swept[s] if s in self.numbers.swept else float(self.numbers.fixed[s])
+            for s in symbols
+        ]
+        value = lambdify(symbols, sqrt(square), "numpy")(*columns)
+        return np.broadcast_to(np.asarray(value), self.along.shape)
+
+    @property
+    def phase_velocity(self) -> NDArray[np.float64]:
+        """Re omega / |k|, m/s, shape (branch, n)."""
+        with np.errstate(divide="ignore", invalid="ignore"):
+            return self.frequency / self.wave_number
+
+    @property
+    def group_velocity(self) -> NDArray[np.float64]:
+        """Re d omega/dk along the sweep, m/s, shape (branch, n).
+
+        Raises
+        ------
+        ValuesError
+            When what varies is not a wave number.
+        """
+        if self.name not in {s.name for s in self.wave.wave_symbols}:
+            raise ValuesError(f"group_velocity needs a sweep over a wave number, this one is over '{self.name}'")
+        return self.slope.real
+
+    def most_unstable(self) -> tuple[float, complex, int]:
+        """The grid point of largest growth: (value of what varies, omega, branch).
+
+        Raises
+        ------
+        ValuesError
+            When no root is finite.
+        """
+        growth = np.where(np.isfinite(self.growth_rate), self.growth_rate, -np.inf)
+        if not np.isfinite(growth).any():
+            raise ValuesError("no finite root on this sweep")
+        branch, point = np.unravel_index(int(growth.argmax()), growth.shape)
+        return float(self.along[point]), complex(self.omega[branch, point]), int(branch)
+
+    def amplitudes(self, field: str, per: str) -> NDArray[np.complex128]:
+        """The polarization: a field's amplitude per unit of another.
+
+        Parameters
+        ----------
+        field : str
+            A field, or one amplitude such as "v_e_x".
+        per : str
+            A scalar field, or one amplitude.
+
+        Returns
+        -------
+        ndarray of complex128, shape (branch, n) or (branch, n, component)
+            NaN where the mode does not move `per`.
+
+        Raises
+        ------
+        DeclarationError
+            When a name is unknown, or `per` has several components.
+        """
+        unit = self.wave.column(per)
+        if len(unit) > 1:
+            names = ", ".join(self.wave.columns[j].symbol.name for j in unit)
+            raise DeclarationError(f"per={per!r} has several components; name one of {names}")
+        vectors = null_vectors(self.wave, self.numbers, self.omega)
+        chosen = vectors[:, :, self.wave.column(field)]
+        with np.errstate(divide="ignore", invalid="ignore"):
+            ratio = np.where(
+                vectors[:, :, unit] != 0, chosen / vectors[:, :, unit], complex(np.nan, np.nan)
+            )
+        scalar = len(self.wave.column(field)) == 1
+        return ratio[:, :, 0] if scalar else ratio
+
+    def plot(self, ax: Any = None, **line: Any) -> Any:
+        """Frequency and growth rate on one axis of what varies.
+
+        Parameters
+        ----------
+        ax : pair of matplotlib Axes, optional
+            For frequency and growth; a new figure without.
+        **line
+            Line properties, passed on to matplotlib.
+
+        Returns
+        -------
+        pair of matplotlib Axes
+        """
+        from ..present.plot import plot_branches
+
+        return plot_branches(self, ax, **line)
+
+    def to_xarray(self) -> Any:
+        """An xarray Dataset with dimensions (branch, name); needs the extra ``labels``."""
+        from ..present.labels import to_xarray
+
+        return to_xarray(self)
+
+    def to_dataframe(self) -> Any:
+        """A pandas DataFrame, one row per branch and point; needs the extra ``labels``."""
+        from ..present.labels import to_dataframe
+
+        return to_dataframe(self)
+
+    def save(self, path: Any) -> None:
+        """Write arrays and the model's description to an npz archive (no pickles).
+
+        Parameters
+        ----------
+        path : path-like
+            Ending in ``.npz``.
+        """
+        from ..present.archive import save_branches
+
+        save_branches(self, path)
+
+    def __repr__(self) -> str:
+        return f"<Branches: {len(self)} branches along {self.name}, {len(self.along)} points>"
+
+
+def find_branches(
+    wave: WaveMatrix, name: str, along: Any, values: Mapping[Any, Any], waves: dict[str, Any]
+) -> Branches:
+    """All branches; see `WaveMatrix.branches`."""
+    zero_modes = bool(waves.pop("zero_modes", False))
+    given = {key.name if isinstance(key, Symbol) else key for key in values} | set(waves)
+    if name in given:
+        raise ValuesError(f"'{name}' is what varies; leave it out of the other values")
+    points = np.asarray(along, dtype=float)
+    if points.ndim != 1 or not len(points):
+        raise ValuesError(f"the values of '{name}' have shape {points.shape}; give one dimension, not empty")
+    numbers = gather(wave, with_defaults(wave, {**values, name: points}), waves)
+    if numbers.shape != points.shape or len(numbers.swept) > 1 + _complex_scalars(numbers, name):
+        raise ValuesError("only one quantity varies along branches; give single numbers for the others")
+    return _Sweep(wave, pose(wave, numbers), numbers, name).branches(points, zero_modes)
+
+
+def _complex_scalars(numbers: Numbers, name: str) -> int:
+    """Complex wave numbers are kept among the swept though they do not vary."""
+    return sum(
+        s.name != name and bool((a == a.flat[0]).all()) for s, a in numbers.swept.items()
+    )
+
+
+class _Sweep:
+    """Solves and tracks every factor along one quantity."""
+
+    def __init__(self, wave: WaveMatrix, problem: Problem, numbers: Numbers, name: str) -> None:
+        self.wave, self.problem, self.numbers, self.name = wave, problem, numbers, name
+        self.symbol = next(s for s in numbers.swept if s.name == name)
+
+    def at(self, s: NDArray[np.float64]) -> Numbers:
+        others = {k: np.broadcast_to(a.flat[0], s.shape) for k, a in self.numbers.swept.items()}
+        return replace(self.numbers, swept={**others, self.symbol: s}, shape=s.shape)
+
+    def branches(self, points: NDArray[np.float64], zero_modes: bool) -> Branches:
+        s = np.unique(points[np.isfinite(points)])
+        place = np.searchsorted(s, np.where(np.isfinite(points), points, s[0] if len(s) else 0.0))
+        tracks: list[Enclosure] = []
+        slopes, factor, events = [], [], list[Event]()
+        for number, (family, multiplicity) in enumerate(self.problem.factors):
+            found, slope, met = self._factor(family, s)
+            tracks += [found] * multiplicity
+            slopes += [slope] * multiplicity
+            factor += [number] * (found.omega.shape[1] * multiplicity)
+            events += met
+        zeros = self.problem.zeros + (self.problem.zero_modes if zero_modes else 0)
+        tracks.append(Enclosure.empty(len(s), zeros, ZERO))
+        slopes.append(np.zeros((len(s), zeros), complex))
+        factor += [-1] * zeros
+        arrays = [np.concatenate([getattr(t, n) for t in tracks], axis=1) for n in ("omega", "radius", "status")]
+        arrays.append(np.concatenate(slopes, axis=1))
+        first = np.lexsort((arrays[0][0].imag, arrays[0][0].real)) if len(s) else np.arange(len(factor))
+        omega, radius, status, slope = (a[place][:, first].T for a in arrays)
+        omega, radius = omega.copy(), radius.copy()
+        omega[:, ~np.isfinite(points)], radius[:, ~np.isfinite(points)] = np.nan, np.inf
+        return Branches(
+            self.wave, self.numbers, self.name, points, omega, radius, status, slope,
+            tuple(factor[b] for b in first), tuple(events), tracks[0].method,
+        )  # fmt: skip
+
+    def _factor(self, family: Any, s: NDArray[np.float64]) -> tuple[Enclosure, Any, list[Event]]:
+        found = self._enclosed(family, s)
+        scaled = ScaledFamily(family, found.omega, [hi for hi, _ in grid_of(self.problem, self.at(s))])
+
+        def slopes(omega: NDArray[Any], points: NDArray[np.float64]) -> NDArray[Any]:
+            numbers = self.at(points)
+            grid = [hi for hi, _ in grid_of(self.problem, numbers)]
+            return scaled.slope(omega, grid, rates_of(self.problem, numbers, self.symbol))
+
+        def solve(points: NDArray[np.float64]) -> tuple[NDArray[Any], NDArray[Any]]:
+            omega = self._enclosed(family, points).omega
+            return omega, slopes(omega, points)
+
+        slope = slopes(found.omega, s)
+        order, events = track(solve, s, found.omega, slope)
+        taken = (np.take_along_axis(a, order, axis=1) for a in (found.omega, found.radius, found.status))
+        return Enclosure(*taken, found.method), np.take_along_axis(slope, order, axis=1), events
+
+    def _enclosed(self, family: Any, s: NDArray[np.float64]) -> Enclosure:
+        return enclose(family, grid_of(self.problem, self.at(s)), points=len(s))

@@ -50,7 +50,8 @@ def determinant(
     Returns
     -------
     ExactPolynomial
-        The zero polynomial where the matrix is singular.
+        The zero polynomial where the matrix is singular. Known relations between generators are not used up, so
+        that it factors; `ExactPolynomial.reduced` uses them.
 
     Raises
     ------
@@ -63,7 +64,17 @@ def determinant(
     top = ratio.top
     if top and ratio.bottom.re.degrees()[0] + ratio.bottom.im.degrees()[0] > 0:
         top = top.over(gcd(top, ratio.bottom))
-    return ExactPolynomial(ring, top).real_if_possible()
+    return _as_free_as_it_may(ExactPolynomial(ring, top).real_if_possible())
+
+
+def _as_free_as_it_may(raw: ExactPolynomial) -> ExactPolynomial:
+    """Relations such as sin^2 + cos^2 = 1 are left for later, since a reduced product no longer shows its factors.
+
+    Only where they change the powers of main that occur are they used at once.
+    """
+    reduced = raw.reduced()
+    same = (raw.degree, raw.lowest) == (reduced.degree, reduced.lowest)
+    return raw if same else reduced
 
 
 def _filled(entries: Entries, values: Mapping[Any, Any]) -> dict[tuple[int, int], sp.Expr]:
@@ -99,7 +110,7 @@ def exact_determinant(entries: Entries, rows: Sequence[int], columns: Sequence[i
         return Ratio(zero, one)
     cleared = _cleared(inside, ring)
     top = _block_determinant(cleared.table, matching, ring)
-    top = Reader(ring, cleared.phase).reduced(top).turned(cleared.turns)
+    top = top.turned(cleared.turns)
     return Ratio(_unphased(top, cleared.phase), _unphased(cleared.bottom, cleared.phase))
 
 

@@ -132,7 +132,7 @@ class ExactPolynomial:
 
     def __mul__(self, other: ExactPolynomial) -> ExactPolynomial:
         ring, a, b = self._joined(other)
-        return ExactPolynomial(ring, Reader(ring).reduced(a * b))
+        return ExactPolynomial(ring, a * b)
 
     def gcd(self, other: ExactPolynomial) -> ExactPolynomial:
         """A greatest common divisor over the Gaussian rationals."""
@@ -167,6 +167,10 @@ class ExactPolynomial:
         make = self._ring.context.from_dict
         return {power: Gaussian(make(a), make(b)) for power, (a, b) in found.items()}
 
+    def reduced(self) -> ExactPolynomial:
+        """With the known relations between generators used: cos^2 = 1 − sin^2, |k|^2 = k^2."""
+        return self._with(Reader(self._ring).reduced(self._value))
+
     def real_if_possible(self) -> ExactPolynomial:
         """Times the power of i that makes it real, where there is one."""
         return self._with(Gaussian(self._value.im, self._value.re)) if self._value.phase == 1 else self
@@ -198,7 +202,7 @@ class ExactPolynomial:
             found = primitive._real_factors(turned.part, 3)
         else:
             found = primitive._gaussian_factors()
-        return content, tuple(sorted(found, key=lambda f: (f[0].degree, len(f[0]), str(f[0].as_expr()) if len(f[0]) < 50 else "")))
+        return content, tuple(sorted(found, key=_factor_order))
 
     def _real_factors(self, value: Any, back: int) -> list[tuple[ExactPolynomial, int]]:
         found = []
@@ -210,7 +214,7 @@ class ExactPolynomial:
         return found
 
     def _normal(self) -> ExactPolynomial:
-        return self._with(self._value.normalized()).real_if_possible()
+        return self._with(self.reduced()._value.normalized()).real_if_possible()
 
     def _gaussian_factors(self) -> list[tuple[ExactPolynomial, int]]:
         rest, found = self._value, dict[ExactPolynomial, int]()
@@ -273,6 +277,12 @@ class ExactPolynomial:
         return f"<ExactPolynomial in {self.main}: degree {self.degree}, {len(self)} terms>"
 
 
+def _factor_order(factor: tuple[ExactPolynomial, int]) -> tuple[int, int, str]:
+    polynomial, _ = factor
+    text = str(polynomial.as_expr()) if len(polynomial) < 50 else ""
+    return polynomial.degree, len(polynomial), text
+
+
 def _powers(ratio: Ratio, highest: int, ring: Ring) -> list[Gaussian]:
     """top**n * bottom**(highest − n) for every n."""
     tops, bottoms = [ring.constant(1)], [ring.constant(1)]
@@ -310,7 +320,7 @@ def _restored(main: sp.Symbol, generators: tuple[sp.Expr, ...], terms: Any) -> E
 
 def ratio_expr(ratio: Ratio, ring: Ring) -> sp.Expr:
     """A ratio as a SymPy expression."""
-    top, bottom = (ExactPolynomial(ring, p).as_expr() for p in (ratio.top, ratio.bottom))
+    top, bottom = (ExactPolynomial(ring, p).reduced().as_expr() for p in (ratio.top, ratio.bottom))
     return top / bottom
 
 

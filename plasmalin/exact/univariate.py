@@ -8,6 +8,8 @@ from typing import Any, TypeAlias
 
 import flint
 
+from .gaussian_field import squarefree_parts
+
 Root: TypeAlias = tuple[Fraction, Fraction, Fraction, int]
 """Real and imaginary part of the centre, radius, multiplicity."""
 
@@ -69,45 +71,88 @@ def _fraction(exact: Any) -> Fraction:
 
 
 def _complex_coefficients(coefficients: list[tuple[Fraction, Fraction]], digits: int) -> list[Root]:
-    """Square-free parts by exact division, then enclosures at rising precision."""
+    """Real in z = i s where that is so (damping without drift); else square-free parts, refined discs."""
+    turned = _real_when_turned(coefficients)
+    if turned:
+        return [(-im, re, radius, m) for re, im, radius, m in _real_coefficients(turned, digits)]
     return [
-        (*centre, m) for part, m in _squarefree(coefficients) for centre in _simple_roots(part, digits)
+        (*centre, m)
+        for part, m in squarefree_parts(coefficients)
+        for centre in _simple_roots(part, digits)
     ]
+
+
+def _real_when_turned(coefficients: list[tuple[Fraction, Fraction]]) -> list[Fraction] | None:
+    """Coefficients in s of the polynomial at z = i s, times a unit, when they are all real."""
+    turned = [_times_i(c, n) for n, c in enumerate(coefficients)]
+    for unit in (0, 3):
+        made = [_times_i(c, unit) for c in turned]
+        if not any(im for _, im in made):
+            return [re for re, _ in made]
+    return None
+
+
+def _times_i(c: tuple[Fraction, Fraction], power: int) -> tuple[Fraction, Fraction]:
+    re, im = c
+    return ((re, im), (-im, re), (-re, -im), (im, -re))[power % 4]
 
 
 def _simple_roots(
     coefficients: list[tuple[Fraction, Fraction]], digits: int
 ) -> list[tuple[Fraction, Fraction, Fraction]]:
+    """Roots isolated at rising precision, then refined by Newton steps.
+
+    The disc about z of radius n |p(z) / p'(z)| holds a root (Laguerre); inside an isolating disc it is that root.
+    """
     before, bits = flint.ctx.prec, 2 * _bits(digits) + 64
     try:
-        while bits < 200_000:
+        while bits < 100_000:
             flint.ctx.prec = bits
             poly = flint.acb_poly([flint.acb(_arb(re), _arb(im)) for re, im in coefficients])
-            try:
-                found = [_centre(z) for z in poly.roots()]
-            except ValueError:
-                found = []
-            if found and all(_tight(z, digits) for z in found):
-                return found
+            found = [_refined(poly, z, digits) for z in _isolated(poly)]
+            if len(found) == len(coefficients) - 1 and all(found):
+                return [z for z in found if z]
             bits *= 2
     finally:
         flint.ctx.prec = before
-    raise ArithmeticError("the roots could not be separated at 200,000 bits")
+    raise ArithmeticError("the roots could not be separated at 100,000 bits")
 
 
-def _tight(z: tuple[Fraction, Fraction, Fraction], digits: int) -> bool:
-    re, im, radius = z
-    return radius <= max(abs(re), abs(im)) / Fraction(10) ** digits
+def _isolated(poly: Any) -> list[Any]:
+    try:
+        return list(poly.roots())
+    except ValueError:
+        return []
+
+
+def _refined(poly: Any, isolating: Any, digits: int) -> tuple[Fraction, Fraction, Fraction] | None:
+    """The root in an isolating disc to the wanted digits, each part on its own; None when precision lacks."""
+    slope = poly.derivative()
+    z = isolating.mid()
+    for _ in range(60):
+        step = poly(z) / slope(z)
+        radius = poly.degree() * abs(step)
+        if not radius.is_finite():
+            return None
+        reach = _fraction(radius.upper().mid()) + _fraction(radius.rad())
+        centre = _fraction(z.real.mid()), _fraction(z.imag.mid())
+        if reach <= _wanted(centre, digits) and _inside(centre, reach, isolating):
+            re, im = (x if abs(x) > reach else Fraction(0) for x in centre)
+            return re, im, 3 * reach
+        z = (z - step).mid()
+    return None
+
+
+def _wanted(centre: tuple[Fraction, Fraction], digits: int) -> Fraction:
+    """Each part to so many digits, but no part beyond 30 more digits of the whole."""
+    small, large = sorted(abs(x) for x in centre)
+    return max(small / 10**digits, large / 10 ** (digits + 30))
+
+
+def _inside(centre: tuple[Fraction, Fraction], reach: Fraction, isolating: Any) -> bool:
+    gaps = (abs(c - _fraction(x.mid())) + reach <= _fraction(x.rad()) for c, x in zip(centre, (isolating.real, isolating.imag), strict=True))
+    return all(gaps)
 
 
 def _arb(x: Fraction) -> Any:
     return flint.arb(flint.fmpq(x.numerator, x.denominator))
-
-
-def _squarefree(
-    coefficients: list[tuple[Fraction, Fraction]],
-) -> list[tuple[list[tuple[Fraction, Fraction]], int]]:
-    """Yun's square-free decomposition over the Gaussian rationals, z^m split off first."""
-    from .gaussian_field import squarefree_parts
-
-    return squarefree_parts(coefficients)

@@ -28,7 +28,8 @@ class Event:
     Attributes
     ----------
     kind : str
-        "crossing" (both go on as before) or "onset" (a real pair turns complex, or back).
+        "crossing" (both go on as before) or "onset" (they coalesce, and the difference of the two turns by a
+        right angle: two real roots become a growing and a damped one, or back).
     at : float
         The value of the swept quantity.
     omega : complex
@@ -144,9 +145,10 @@ def _met(left: _End, right: _End, events: list[Event]) -> NDArray[np.int64]:
     found = linear_sum_assignment(np.where(np.isfinite(cost), cost, 1e3))[1]
     changed = [b for b in range(len(found)) if np.sum(near[b]) > 1]
     if changed:
-        complex_now = bool((left.omega[changed].imag != 0).any() != (right.omega[found[changed]].imag != 0).any())
-        at = complex(left.omega[changed].mean())
-        events.append(Event("onset" if complex_now else "crossing", float(0.5 * (left.s + right.s)), at))
+        before, after = left.omega[changed[:2]], right.omega[found[changed[:2]]]
+        turned = ((after[1] - after[0]) * np.conj(before[1] - before[0])) ** 2
+        kind = "onset" if turned.real < 0 else "crossing"
+        events.append(Event(kind, float(0.5 * (left.s + right.s)), complex(before.mean())))
     return np.asarray(found, np.int64) if changed or len(set(step[0].tolist())) < len(found) else step[0]
 
 

@@ -83,11 +83,11 @@ class Relation:
     @cached_property
     def polynomial(self) -> Poly:
         """The whole relation as a SymPy polynomial in omega, zero modes included."""
-        return self.exact.as_poly()
+        return self.exact.reduced().as_poly()
 
     def as_expr(self) -> Expr:
         """The whole relation as an expression, its factors multiplied out."""
-        return self.exact.as_expr()
+        return self.exact.reduced().as_expr()
 
     def substitute(self, values: Mapping[Any, Any]) -> Relation:
         """The relation with parameters replaced by numbers or expressions, exactly.

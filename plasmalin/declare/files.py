@@ -1,0 +1,346 @@
+"""Model files: a FluidModel, its numbers, a wave and a sweep as TOML."""
+
+from __future__ import annotations
+
+import difflib
+import os
+import tempfile
+import tomllib
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+from importlib import resources
+from pathlib import Path
+from typing import Any
+
+from sympy import Tuple
+
+from ..errors import DeclarationError, ModelFileError, PlasmalinError
+from .constants import CODATA, codata
+from .fields import Components, Field
+from .model import FluidModel
+
+LARGEST = 1_000_000
+JOULE_PER = {"eV": 1.0, "keV": 1e3, "MeV": 1e6}
+"""Energies are given in these units times the elementary charge."""
+
+KEYS: dict[str, set[str]] = {
+    "file": {"model", "scalar", "vector", "tensor", "parameters", "vector_parameter", "law", "wave", "sweep", "claim"},
+    "[model]": {"title", "axes", "constants", "assume"},
+    "[[scalar]]": {"name", "background", "latex"},
+    "[[vector]]": {"name", "background", "latex"},
+    "[[tensor]]": {"name", "background", "latex", "symmetric"},
+    "[[vector_parameter]]": {"name", "entries"},
+    "[[law]]": {"name", "text"},
+    "[wave]": {"direction", "angle"},
+    "[parameters] entry": {"value", "unit", "positive"},
+    "[sweep] entry": {"from", "to", "points", "spacing"},
+}  # fmt: skip
+
+
+@dataclass(frozen=True)
+class Sweep:
+    """What varies, from where to where."""
+
+    name: str
+    start: float
+    stop: float
+    points: int
+    logarithmic: bool
+
+
+@dataclass(frozen=True)
+class ModelFile:
+    """A model file as read.
+
+    Attributes
+    ----------
+    model : FluidModel
+        With the file's numbers as defaults.
+    wave : dict
+        Keyword arguments of `LinearizedModel.plane_wave`.
+    sweep : Sweep or None
+    assume : tuple of str
+        Laws that an external source balances.
+    claims : tuple of dict
+        Claimed relations, as they stand.
+    """
+
+    model: FluidModel
+    wave: Mapping[str, Any]
+    sweep: Sweep | None
+    assume: tuple[str, ...]
+    claims: tuple[Mapping[str, Any], ...]
+
+
+def load(path: str | os.PathLike[str]) -> FluidModel:
+    """Read a model from a TOML file.
+
+    Parameters
+    ----------
+    path : path-like
+
+    Returns
+    -------
+    FluidModel
+        The file's numbers are its defaults.
+
+    Raises
+    ------
+    ModelFileError
+        When the file cannot be read, naming the section and the entry at fault.
+    """
+    return read_model_file(path).model
+
+
+def load_example(name: str) -> FluidModel:
+    """A shipped example by its name, such as "xenon-iodine-plume".
+
+    Parameters
+    ----------
+    name : str
+
+    Returns
+    -------
+    FluidModel
+
+    Raises
+    ------
+    ModelFileError
+        When there is no such example.
+    """
+    return read_model_file(example_path(name)).model
+
+
+def example_names() -> list[str]:
+    """The names of the shipped examples."""
+    folder = resources.files("plasmalin") / "examples"
+    return sorted(f.name.removesuffix(".toml") for f in folder.iterdir() if f.name.endswith(".toml"))
+
+
+def example_path(name: str) -> Path:
+    """Where a shipped example lies."""
+    if name not in example_names():
+        raise ModelFileError(f"no example '{name}'; there are {', '.join(example_names())}")
+    return Path(str(resources.files("plasmalin") / "examples" / f"{name}.toml"))
+
+
+def read_model_file(path: str | os.PathLike[str]) -> ModelFile:
+    """Read a whole model file.
+
+    Raises
+    ------
+    ModelFileError
+        When it cannot be read or does not describe a model.
+    """
+    data = _parsed(Path(path))
+    try:
+        return _built(data)
+    except ModelFileError as error:
+        raise ModelFileError(f"{Path(path).name}: {error}") from None
+    except PlasmalinError as error:
+        raise ModelFileError(f"{Path(path).name}: {error}") from error
+
+
+def _parsed(path: Path) -> dict[str, Any]:
+    try:
+        if path.stat().st_size > LARGEST:
+            raise ModelFileError(f"{path.name}: larger than {LARGEST} bytes, not a model file")
+        return tomllib.loads(path.read_text(encoding="utf-8"))
+    except OSError as error:
+        raise ModelFileError(f"cannot read {path}: {error.strerror}") from None
+    except (UnicodeDecodeError, tomllib.TOMLDecodeError, RecursionError) as error:
+        raise ModelFileError(f"{path.name} is not a TOML file: {error}") from None
+
+
+def _built(data: dict[str, Any]) -> ModelFile:
+    _known(data, "file")
+    head = _table(data, "model")
+    _known(head, "[model]")
+    model = FluidModel(_text(head, "title", "[model]"), axes=_text(head, "axes", "[model]", "xyz"))
+    _parameters(model, head, _table(data, "parameters"))
+    for kind in ("scalar", "vector", "tensor"):
+        for entry in _list(data, kind):
+            _field(model, kind, entry)
+    for entry in _list(data, "vector_parameter"):
+        _known(entry, "[[vector_parameter]]")
+        entries = _plain(entry.get("entries"))
+        model.vector_parameter(_text(entry, "name", "[[vector_parameter]]"), entries)
+    for entry in _list(data, "law"):
+        _known(entry, "[[law]]")
+        model.law(_text(entry, "name", "[[law]]"), _text(entry, "text", "[[law]]"))
+    assume = head.get("assume", [])
+    if not isinstance(assume, list) or any(not isinstance(n, str) for n in assume):
+        raise ModelFileError("[model] assume: give a list of law names")
+    return ModelFile(
+        model, _wave(_table(data, "wave")), _sweep(_table(data, "sweep")), tuple(assume), tuple(_list(data, "claim"))
+    )
+
+
+def _known(table: Mapping[str, Any], section: str) -> None:
+    for key in table:
+        if key not in KEYS[section]:
+            near = difflib.get_close_matches(key, KEYS[section], 1)
+            hint = f"did you mean '{near[0]}'?" if near else f"known are {', '.join(sorted(KEYS[section]))}"
+            raise ModelFileError(f"{section}: unknown entry '{key}'; {hint}")
+
+
+def _table(data: Mapping[str, Any], name: str) -> dict[str, Any]:
+    found = data.get(name, {})
+    if not isinstance(found, dict):
+        raise ModelFileError(f"'{name}' must be a section [{name}]")
+    return found
+
+
+def _list(data: Mapping[str, Any], name: str) -> list[dict[str, Any]]:
+    found = data.get(name, [])
+    if not isinstance(found, list) or any(not isinstance(e, dict) for e in found):
+        raise ModelFileError(f"'{name}' must be a list of sections [[{name}]]")
+    return found
+
+
+def _text(table: Mapping[str, Any], key: str, section: str, default: str | None = None) -> str:
+    found = table.get(key, default)
+    if not isinstance(found, str):
+        raise ModelFileError(f"{section}: '{key}' must be a text, not {found!r}")
+    return found
+
+
+def _number(value: Any, where: str) -> float:
+    if isinstance(value, bool) or not isinstance(value, int | float) or value != value or abs(value) == float("inf"):
+        raise ModelFileError(f"{where}: {value!r} is not a finite number")
+    return float(value)
+
+
+def _plain(value: Any) -> Any:
+    return tuple(_plain(v) for v in value) if isinstance(value, list) else value
+
+
+def _parameters(model: FluidModel, head: Mapping[str, Any], table: Mapping[str, Any]) -> None:
+    constants = head.get("constants", [])
+    if not isinstance(constants, list) or any(not isinstance(n, str) for n in constants):
+        raise ModelFileError("[model] constants: give a list of names")
+    if constants:
+        model.constants(constants)
+    for name, given in table.items():
+        entry = given if isinstance(given, dict) else {"value": given}
+        _known(entry, "[parameters] entry")
+        where = f"[parameters] {name}"
+        value = _number(entry["value"], where) * _factor(entry.get("unit"), where) if "value" in entry else None
+        positive = entry.get("positive", name in constants or (value is not None and value > 0))
+        if not isinstance(positive, bool):
+            raise ModelFileError(f"{where}: 'positive' must be true or false")
+        model.parameter(name, positive=positive, value=value)
+
+
+def _factor(unit: Any, where: str) -> float:
+    if unit is None:
+        return 1.0
+    if unit not in JOULE_PER:
+        raise ModelFileError(f"{where}: unit {unit!r} is not understood; give SI, or one of {', '.join(JOULE_PER)}")
+    return JOULE_PER[unit] * codata("e")
+
+
+def _field(model: FluidModel, kind: str, entry: Mapping[str, Any]) -> None:
+    section = f"[[{kind}]]"
+    _known(entry, section)
+    name = _text(entry, "name", section)
+    options = {key: entry[key] for key in ("latex", "symmetric") if key in entry}
+    declare: Callable[..., Field] = getattr(model, kind)
+    background = _plain(entry.get("background", 0))
+    for x in _flat(background):
+        if not isinstance(x, str | int | float) or isinstance(x, bool):
+            raise ModelFileError(f"{section} {name}: the background {x!r} is not a number or a text")
+    declare(name, background, **options)
+
+
+def _flat(value: Any) -> list[Any]:
+    return [x for v in value for x in _flat(v)] if isinstance(value, tuple) else [value]
+
+
+def _wave(table: Mapping[str, Any]) -> dict[str, Any]:
+    _known(table, "[wave]")
+    return {key: _plain(value) for key, value in table.items()}
+
+
+def _sweep(table: Mapping[str, Any]) -> Sweep | None:
+    if not table:
+        return None
+    if len(table) != 1:
+        raise ModelFileError(f"[sweep]: one quantity varies, {len(table)} are given")
+    name, entry = next(iter(table.items()))
+    if not isinstance(entry, dict):
+        raise ModelFileError(f"[sweep] {name}: give {{ from = ..., to = ..., points = ... }}")
+    _known(entry, "[sweep] entry")
+    start, stop = (_number(entry.get(key), f"[sweep] {name} {key}") for key in ("from", "to"))
+    points = entry.get("points", 200)
+    if not isinstance(points, int) or not 1 <= points <= 1_000_000:
+        raise ModelFileError(f"[sweep] {name}: points = {points!r} is not a whole number from 1 to 1000000")
+    spacing = entry.get("spacing", "linear")
+    if spacing not in ("linear", "log"):
+        raise ModelFileError(f"[sweep] {name}: spacing = {spacing!r}; give \"linear\" or \"log\"")
+    if spacing == "log" and not (start > 0 and stop > 0):
+        raise ModelFileError(f"[sweep] {name}: a log spacing needs positive ends")
+    return Sweep(name, start, stop, points, spacing == "log")
+
+
+# Writing ---------------------------------------------------------------------------------------
+
+
+def save_model(model: FluidModel, path: str | os.PathLike[str]) -> None:
+    """Write a model as a TOML file; it appears whole or not at all."""
+    write_whole(path, model_text(model).encode())
+
+
+def model_text(model: FluidModel) -> str:
+    """A model as the text of a TOML file."""
+    constants = [n for n, value in model.values.items() if n in CODATA and value == codata(n)]
+    lines = ["[model]", f"title = {_quoted(model.title)}", f"axes = {_quoted(model.axes)}"]
+    if constants:
+        lines.append(f"constants = [{', '.join(map(_quoted, constants))}]")
+    lines += ["", "[parameters]"]
+    for name, symbol in model.symbols.items():
+        if name not in constants:
+            value = f"value = {model.values[name]!r}, " if name in model.values else ""
+            lines.append(f"{name} = {{ {value}positive = {str(bool(symbol.is_positive)).lower()} }}")
+    for kind, fields in _by_kind(model).items():
+        for field in fields:
+            lines += ["", f"[[{kind}]]", f"name = {_quoted(field.name)}", f"background = {_value(field.background)}"]
+            lines += [f"latex = {_quoted(field.latex_name)}"] if field.latex_name else []
+            lines += ["symmetric = false"] if field.rank == 2 and not field.symmetric else []
+    for name, vector in model.vector_parameters.items():
+        lines += ["", "[[vector_parameter]]", f"name = {_quoted(name)}", f"entries = {_value(vector)}"]
+    for law in model.laws.values():
+        lines += ["", "[[law]]", f"name = {_quoted(law.name)}", f"text = {_quoted(str(law))}"]
+    return "\n".join(lines) + "\n"
+
+
+def _by_kind(model: FluidModel) -> dict[str, list[Field]]:
+    kinds = {"scalar": 0, "vector": 1, "tensor": 2}
+    return {kind: [f for f in model.fields.values() if f.rank == r] for kind, r in kinds.items()}
+
+
+def _value(value: Any) -> str:
+    if isinstance(value, Components | Tuple):
+        return f"[{', '.join(_value(a) for a in value.args)}]"
+    return "0" if value == 0 else _quoted(str(value))
+
+
+def _quoted(text: str) -> str:
+    escaped = text.replace("\\", "\\\\").replace('"', '\\"').replace("\n", "\\n").replace("\t", "\\t")
+    if any(ord(c) < 32 for c in escaped):
+        raise DeclarationError(f"{text!r} holds a control character and cannot be written to a file")
+    return f'"{escaped}"'
+
+
+def write_whole(path: str | os.PathLike[str], content: bytes) -> None:
+    """Write a file by way of a temporary one beside it, so that it appears whole or not at all."""
+    target = Path(path)
+    handle, temporary = tempfile.mkstemp(dir=target.parent, prefix=".", suffix=target.suffix)
+    try:
+        with os.fdopen(handle, "wb") as file:
+            file.write(content)
+        Path(temporary).chmod(0o644)
+        Path(temporary).replace(target)
+    except BaseException:
+        Path(temporary).unlink(missing_ok=True)
+        raise

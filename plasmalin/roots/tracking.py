@@ -71,7 +71,16 @@ def track(
             left, right = (_End(s[j], omega[j], slope[j]) for j in (i, i + 1))
             step = _refined(solve, left, right, 0, events)
         order[i + 1] = step[order[i]]
-    return order, events
+    return order, _distinct(events)
+
+
+def _distinct(events: list[Event]) -> list[Event]:
+    """Meetings that differ by rounding only, once; a coalescence counts before a crossing."""
+    kept: list[Event] = []
+    for event in sorted(events, key=lambda e: e.kind, reverse=True):
+        if not any(np.isclose(event.at, k.at, 1e-9) and np.isclose(event.omega, k.omega, 1e-6) for k in kept):
+            kept.append(event)
+    return sorted(kept, key=lambda e: e.at)
 
 
 @dataclass(frozen=True)

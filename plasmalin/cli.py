@@ -1,0 +1,123 @@
+"""The command line: ``plasmalin derive FILE|EXAMPLE [--out DIR]``, ``plasmalin example [NAME]``."""
+
+from __future__ import annotations
+
+import argparse
+import io
+import sys
+from collections.abc import Sequence
+from pathlib import Path
+
+import numpy as np
+from numpy.typing import NDArray
+
+from . import __version__
+from .declare.files import ModelFile, Sweep, example_names, example_path, read_model_file, write_whole
+from .errors import ModelFileError, PlasmalinError
+from .present.archive import csv_text, save_branches
+from .present.report import CAUTION, branch_table, derivation, growth_text, relation_text
+from .roots.branches import Branches
+from .waves.matrix import WaveMatrix
+
+
+def main(arguments: Sequence[str] | None = None) -> int:
+    """Run the command line; returns the exit code: 0 done, 1 the input is at fault, 2 the command is."""
+    options = _parser().parse_args(arguments)
+    try:
+        return int(options.run(options))
+    except PlasmalinError as error:
+        print(f"plasmalin: {error}", file=sys.stderr)
+    except OSError as error:
+        print(f"plasmalin: {error.filename}: {error.strerror}", file=sys.stderr)
+    return 1
+
+
+def _parser() -> argparse.ArgumentParser:
+    parser = argparse.ArgumentParser(prog="plasmalin", description="From fluid laws to dispersion relations.")
+    parser.add_argument("--version", action="version", version=f"plasmalin {__version__}")
+    commands = parser.add_subparsers(required=True, metavar="COMMAND")
+    derive = commands.add_parser("derive", help="derive, solve, plot and write the derivation")
+    derive.add_argument("source", metavar="FILE|EXAMPLE", help="a TOML model file, or the name of a shipped example")
+    derive.add_argument("--out", type=Path, metavar="DIR", help="write derivation.md, branches.csv, .npz and .png here")
+    derive.set_defaults(run=_derive)
+    example = commands.add_parser("example", help="list the shipped examples, or print one")
+    example.add_argument("name", nargs="?", metavar="NAME")
+    example.add_argument("--out", type=Path, metavar="FILE", help="copy it to this file instead of printing it")
+    example.set_defaults(run=_example)
+    return parser
+
+
+def _example(options: argparse.Namespace) -> int:
+    if options.name is None:
+        for name in example_names():
+            print(f"{name}: {read_model_file(example_path(name)).model.title}")
+        return 0
+    text = example_path(options.name).read_text(encoding="utf-8")
+    if options.out is None:
+        print(text, end="")
+    else:
+        write_whole(options.out, text.encode())
+    return 0
+
+
+def _derive(options: argparse.Namespace) -> int:
+    file = read_model_file(_source(options.source))
+    if not file.wave:
+        raise ModelFileError(f"{options.source}: no section [wave]; give direction = \"x\" or one entry per axis")
+    wave = file.model.linearize(assume=file.assume).plane_wave(**file.wave)
+    branches = _swept(wave, file)
+    _print(wave, branches)
+    if options.out is not None:
+        _write(options.out, wave, branches)
+        print(f"\nwritten to {options.out}: derivation.md" + (", branches.csv, .npz, .png" if branches else ""))
+    return 0
+
+
+def _source(name: str) -> Path:
+    path = Path(name)
+    if path.suffix == ".toml" or path.exists():
+        return path
+    return example_path(name)
+
+
+def _swept(wave: WaveMatrix, file: ModelFile) -> Branches | None:
+    return None if file.sweep is None else wave.branches(file.sweep.name, _points(file.sweep))
+
+
+def _points(sweep: Sweep) -> NDArray[np.float64]:
+    spread = np.geomspace if sweep.logarithmic else np.linspace
+    return spread(sweep.start, sweep.stop, sweep.points)
+
+
+def _print(wave: WaveMatrix, branches: Branches | None) -> None:
+    print(f"{wave.linear.title}\n\nLinearized laws\n{wave.linear.equations}\n\n{wave.linear.background}\n")
+    print(f"Dispersion relation\n{relation_text(wave)}")
+    if branches is not None:
+        print(f"\nBranches\n{branch_table(branches)}\n\n{growth_text(branches)}\n{CAUTION}")
+
+
+def _write(folder: Path, wave: WaveMatrix, branches: Branches | None) -> None:
+    folder.mkdir(parents=True, exist_ok=True)
+    write_whole(folder / "derivation.md", derivation(wave, branches).encode())
+    if branches is not None:
+        write_whole(folder / "branches.csv", csv_text(branches).encode())
+        save_branches(branches, folder / "branches.npz")
+        write_whole(folder / "branches.png", _figure(branches))
+
+
+def _figure(branches: Branches) -> bytes:
+    import matplotlib
+
+    matplotlib.use("Agg")
+    from matplotlib import pyplot
+
+    upper, _ = branches.plot()
+    upper.set_title(branches.wave.linear.title, fontsize="medium")
+    buffer = io.BytesIO()
+    upper.figure.savefig(buffer, dpi=150)
+    pyplot.close(upper.figure)
+    return buffer.getvalue()
+
+
+if __name__ == "__main__":
+    raise SystemExit(main())

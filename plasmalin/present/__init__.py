@@ -1,0 +1,1 @@
+"""Present: what a person reads. Figures, labelled data, archives, reports."""

@@ -1,0 +1,82 @@
+"""The derivation as a document in Markdown, and the table of branches as text."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from ..declare.notation import latex, paper
+
+if TYPE_CHECKING:
+    from ..roots.branches import Branches
+    from ..waves.matrix import WaveMatrix
+
+CAUTION = (
+    "These numbers come from a linear fluid model. Before a device, a discharge or a spacecraft relies on them, "
+    "have them checked against local codes and by licensed practice."
+)
+LONG_RELATION = 400
+
+
+def relation_text(wave: WaveMatrix) -> str:
+    """The relation factor by factor; a long one by its size."""
+    relation = wave.relation
+    if len(relation.exact) <= LONG_RELATION:
+        return str(relation)
+    lines = [f"{relation!r}"]
+    for f in relation.factors:
+        short = len(f.polynomial) <= LONG_RELATION // 4
+        lines.append(str(f) if short else f"a factor of degree {f.degree} in ω, {len(f.polynomial)} terms")
+    return "\n".join(lines)
+
+
+def branch_table(branches: Branches, rows: int = 7) -> str:
+    """Frequency and growth rate of every branch at a few points, as plain text."""
+    chosen = np.unique(np.linspace(0, len(branches.along) - 1, rows).astype(int))
+    head = f"{'branch':>6} {branches.name:>12} {'frequency':>14} {'growth rate':>14} {'error bound':>12}   rad/s"
+    lines = [head]
+    for b in range(len(branches)):
+        for i in chosen:
+            lines.append(
+                f"{b:>6} {branches.along[i]:>12.5g} {branches.frequency[b, i]:>14.6g} "
+                f"{branches.growth_rate[b, i]:>14.6g} {branches.radius[b, i]:>12.1e}"
+            )
+    return "\n".join(lines)
+
+
+def growth_text(branches: Branches) -> str:
+    """One sentence on the largest growth of the sweep."""
+    s, omega, branch = branches.most_unstable()
+    scale = float(np.nanmax(np.abs(branches.omega[branch]), initial=0.0))
+    if omega.imag <= 1e-14 * scale:
+        return f"No branch grows on this sweep over {branches.name}."
+    return (
+        f"Largest growth on the sweep: branch {branch} at {branches.name} = {s:.6g}, "
+        f"ω = {omega.real:.6g} + {omega.imag:.6g} i rad/s."
+    )
+
+
+def derivation(wave: WaveMatrix, branches: Branches | None) -> str:
+    """The whole derivation in Markdown: laws, background, every term's fate, relation, branches."""
+    linear = wave.linear
+    parts = [f"# {linear.title}", "", "Plane waves exp[i(k·x − ωt)], SI units, growth is Im ω > 0.", ""]
+    parts += ["## Nonlinear laws", ""]
+    parts += [f"- {name}: ${latex(law.lhs, linear.axes)} = {latex(law.rhs, linear.axes)}$" for name, law in linear.laws.items()]
+    parts += ["", "## Background", "", "```text", str(linear.background), "```", ""]
+    if linear.conditions:
+        parts += ["Conditions:", ""]
+        parts += [f"- ${latex(c.lhs, linear.axes)} = 0$" for c in linear.conditions] + [""]
+    parts += ["## Linearized laws", ""]
+    parts += [f"- {name}: ${linear.equations.latex(name)}$" for name in linear.equations]
+    parts += ["", "## Every term and its fate", "", "```text", str(linear.ledger), "```", ""]
+    vector = ", ".join(paper(c) for c in wave.k)
+    parts += ["## Dispersion relation", "", f"Wave vector ({vector}) along {', '.join(linear.axes)}.", ""]
+    formula = wave.relation._repr_latex_()
+    parts += [f"${formula.strip('$')}$" if formula else f"```text\n{relation_text(wave)}\n```", ""]
+    parts += [f"{wave.relation.degree} roots and {wave.relation.zero_modes} zero modes.", ""]
+    if branches is not None:
+        parts += ["## Branches", "", growth_text(branches), "", "```text", branch_table(branches), "```", ""]
+        parts += [f"- branches of one factor meet ({e.kind}) at {branches.name} = {e.at:.10g}" for e in branches.events]
+        parts += ["", f"Roots: {branches.method}.", ""]
+    return "\n".join([*parts, CAUTION, ""])

@@ -128,7 +128,7 @@ class FieldAtom(AtomicExpr):
         raise NotImplementedError
 
     def _hashable_content(self) -> tuple[Any, ...]:
-        return self.__getnewargs__()
+        return tuple("" if x is None else x for x in self.__getnewargs__())
 
     def __getnewargs__(self) -> tuple[Any, ...]:
         raise NotImplementedError

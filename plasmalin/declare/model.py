@@ -11,6 +11,7 @@ from sympy import Expr, S, Symbol, expand
 from ..errors import DeclarationError, RankError
 from .constants import codata
 from .fields import AXES, Components, Field, FieldAtom, components, exact
+from .notation import law_text
 from .operators import OPERATORS, WAVE_SYMBOLS, WORDS, Cross, Curl, identity, rank_of
 from .reader import read_expression, read_law
 
@@ -34,7 +35,7 @@ class Law:
         return self.lhs - self.rhs
 
     def __str__(self) -> str:
-        return f"{self.lhs} = {self.rhs}"
+        return f"{law_text(self.lhs)} = {law_text(self.rhs)}"
 
 
 @dataclass(frozen=True)
@@ -69,7 +70,7 @@ class FluidModel:
     >>> v = model.vector("v_e")
     >>> law = model.law("continuity", plin.partial_t(n) + plin.div(n * v))
     >>> print(law)
-    div(n_e*v_e) + partial_t(n_e) = 0
+    partial_t(n_e) + div(n_e*v_e) = 0
     """
 
     def __init__(self, title: str, axes: str = "xyz") -> None:

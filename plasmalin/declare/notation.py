@@ -217,7 +217,21 @@ class PaperLatex(LatexPrinter):
 
 
 class LawPrinter(StrPrinter):
-    """Text that the law reader takes back, time derivatives first."""
+    """Text that the law reader takes back, time derivatives first, doubles to the last digit."""
 
     def _as_ordered_terms(self, expr: Any, order: Any = None) -> list[Any]:
         return sorted(Add.make_args(expr), key=term_order)
+
+    def _print_Exp1(self, expr: Any) -> str:
+        return "exp(1)"
+
+    def _print_ImaginaryUnit(self, expr: Any) -> str:
+        return "i"
+
+    def _print_Float(self, expr: Any) -> str:
+        return repr(float(expr))
+
+
+def law_text(expr: Expr) -> str:
+    """An expression in the grammar that laws are read in."""
+    return cast(str, LawPrinter().doprint(expr))

@@ -41,7 +41,7 @@ def exact_rational(x: Real) -> Fraction:
     if isinstance(x, sp.Rational):
         return Fraction(int(x.p), int(x.q))
     try:
-        value = float(x)
+        value = math.nan if isinstance(x, str) else float(x)
     except (TypeError, ValueError):
         raise ValuesError(f"{x!r} is not a real number; give an int, a float or a Fraction.") from None
     if not math.isfinite(value):

@@ -54,7 +54,7 @@ def _dress(branches: Branches, upper: Any, lower: Any, scale: float) -> None:
         lower.set_xscale("log")
     sizes = np.abs(branches.frequency[np.isfinite(branches.frequency) & (branches.frequency != 0)])
     if len(sizes) and sizes.max() > 1e3 * np.median(sizes):
-        upper.set_yscale("symlog", linthresh=_threshold(sizes))
+        _signed_decades(upper, sizes)
     growth = branches.growth_rate[np.isfinite(branches.growth_rate)]
     if not len(growth) or np.abs(growth).max() <= FLAT * scale:
         lower.set_ylim(-1, 1)
@@ -66,6 +66,11 @@ def _dress(branches: Branches, upper: Any, lower: Any, scale: float) -> None:
         axis.axhline(0.0, color="0.7", linewidth=0.6, zorder=0)
 
 
-def _threshold(sizes: Any) -> float:
-    """Linear around zero up to the slow branches, a decade at a time above."""
-    return float(10.0 ** np.floor(np.log10(np.percentile(sizes, 50))))
+def _signed_decades(axis: Any, sizes: Any) -> None:
+    """Linear around zero up to the slow branches, decades beyond, with ticks that do not crowd."""
+    low = int(np.floor(np.log10(np.percentile(sizes, 20))))
+    high = int(np.ceil(np.log10(sizes.max())))
+    step = max(1, (high - low) // 4)
+    decades = [10.0**n for n in range(high, low, -step)]
+    axis.set_yscale("symlog", linthresh=10.0**low)
+    axis.set_yticks([*(-d for d in decades), 0.0, *decades])

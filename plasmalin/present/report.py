@@ -16,7 +16,7 @@ CAUTION = (
     "These numbers come from a linear fluid model. Before a device, a discharge or a spacecraft relies on them, "
     "have them checked against local codes and by licensed practice."
 )
-LONG_RELATION = 400
+LONG_RELATION = 120
 
 
 def relation_text(wave: WaveMatrix) -> str:

@@ -46,7 +46,7 @@ class Factor:
 
     def __str__(self) -> str:
         power = f"  (multiplicity {self.multiplicity})" if self.multiplicity > 1 else ""
-        return f"{paper(collected(self.polynomial))} = 0{power}"
+        return f"{_by_powers(self.polynomial)} = 0{power}"
 
 
 class Relation:
@@ -175,13 +175,33 @@ class Relation:
         return f"$\\displaystyle {text}$" if len(text) < LONGEST_LATEX else None
 
 
-def collected(polynomial: ExactPolynomial) -> Expr:
-    """A polynomial as it is printed: by powers of omega, divided by what the leading term allows."""
+def _by_powers(polynomial: ExactPolynomial) -> str:
+    """Text with the highest power of omega first."""
+    out = ""
+    for power, c in normalized_coefficients(polynomial).items():
+        term = paper(c * polynomial.main**power) if not isinstance(c, Add) else _bracketed(c, power)
+        joint = (" − " if term.startswith("−") else " + ") if out else ("−" if term.startswith("−") else "")
+        out += joint + term.removeprefix("−")
+    return out
+
+
+def _bracketed(coefficient: Expr, power: int) -> str:
+    unit = paper(Symbol("omega") ** power)
+    return paper(coefficient) if power == 0 else f"({paper(coefficient)}) {unit}"
+
+
+def normalized_coefficients(polynomial: ExactPolynomial) -> dict[int, Expr]:
+    """Coefficients by power, highest first, divided by a leading one that is a single product."""
     powers = polynomial.coefficients()
     lead = powers[max(powers)]
     scale = lead if not isinstance(lead, Add) else S.One
-    terms = (Add(*(t / scale for t in Add.make_args(c))) for c in powers.values())
-    return Add(*(c * polynomial.main**p for p, c in zip(powers, terms, strict=True)))
+    return {p: Add(*(t / scale for t in Add.make_args(c))) for p, c in powers.items()}
+
+
+def collected(polynomial: ExactPolynomial) -> Expr:
+    """A polynomial as it is printed: by powers of omega, divided by what the leading term allows."""
+    coefficients = normalized_coefficients(polynomial)
+    return Add(*(c * polynomial.main**p for p, c in coefficients.items()))
 
 
 def closed_forms(factor: Factor, target: Symbol) -> list[Expr]:

@@ -12,7 +12,14 @@ import numpy as np
 from numpy.typing import NDArray
 
 from . import __version__
-from .declare.files import ModelFile, Sweep, example_names, example_path, read_model_file, write_whole
+from .declare.files import (
+    ModelFile,
+    Sweep,
+    example_names,
+    example_path,
+    read_model_file,
+    write_whole,
+)
 from .errors import ModelFileError, PlasmalinError
 from .present.archive import csv_text, save_branches
 from .present.report import CAUTION, branch_table, derivation, growth_text, relation_text
@@ -33,16 +40,27 @@ def main(arguments: Sequence[str] | None = None) -> int:
 
 
 def _parser() -> argparse.ArgumentParser:
-    parser = argparse.ArgumentParser(prog="plasmalin", description="From fluid laws to dispersion relations.")
+    parser = argparse.ArgumentParser(
+        prog="plasmalin", description="From fluid laws to dispersion relations."
+    )
     parser.add_argument("--version", action="version", version=f"plasmalin {__version__}")
     commands = parser.add_subparsers(required=True, metavar="COMMAND")
     derive = commands.add_parser("derive", help="derive, solve, plot and write the derivation")
-    derive.add_argument("source", metavar="FILE|EXAMPLE", help="a TOML model file, or the name of a shipped example")
-    derive.add_argument("--out", type=Path, metavar="DIR", help="write derivation.md, branches.csv, .npz and .png here")
+    derive.add_argument(
+        "source", metavar="FILE|EXAMPLE", help="a TOML model file, or the name of a shipped example"
+    )
+    derive.add_argument(
+        "--out",
+        type=Path,
+        metavar="DIR",
+        help="write derivation.md, branches.csv, .npz and .png here",
+    )
     derive.set_defaults(run=_derive)
     example = commands.add_parser("example", help="list the shipped examples, or print one")
     example.add_argument("name", nargs="?", metavar="NAME")
-    example.add_argument("--out", type=Path, metavar="FILE", help="copy it to this file instead of printing it")
+    example.add_argument(
+        "--out", type=Path, metavar="FILE", help="copy it to this file instead of printing it"
+    )
     example.set_defaults(run=_example)
     return parser
 
@@ -63,13 +81,18 @@ def _example(options: argparse.Namespace) -> int:
 def _derive(options: argparse.Namespace) -> int:
     file = read_model_file(_source(options.source))
     if not file.wave:
-        raise ModelFileError(f"{options.source}: no section [wave]; give direction = \"x\" or one entry per axis")
+        raise ModelFileError(
+            f'{options.source}: no section [wave]; give direction = "x" or one entry per axis'
+        )
     wave = file.model.linearize(assume=file.assume).plane_wave(**file.wave)
     branches = _swept(wave, file)
     _print(wave, branches)
     if options.out is not None:
         _write(options.out, wave, branches)
-        print(f"\nwritten to {options.out}: derivation.md" + (", branches.csv, .npz, .png" if branches else ""))
+        print(
+            f"\nwritten to {options.out}: derivation.md"
+            + (", branches.csv, .npz, .png" if branches else "")
+        )
     return 0
 
 
@@ -90,7 +113,9 @@ def _points(sweep: Sweep) -> NDArray[np.float64]:
 
 
 def _print(wave: WaveMatrix, branches: Branches | None) -> None:
-    print(f"{wave.linear.title}\n\nLinearized laws\n{wave.linear.equations}\n\n{wave.linear.background}\n")
+    print(
+        f"{wave.linear.title}\n\nLinearized laws\n{wave.linear.equations}\n\n{wave.linear.background}\n"
+    )
     print(f"Dispersion relation\n{relation_text(wave)}")
     if branches is not None:
         print(f"\nBranches\n{branch_table(branches)}\n\n{growth_text(branches)}\n{CAUTION}")

@@ -82,9 +82,7 @@ def two_ion_species_acoustic():
     for s in "12":
         n0, z, m, t = model.parameters(f"n{s} Z{s} m{s} T{s}", positive=True)
         n, _, inertia = fluid(model, s, m, n0)
-        model.law(
-            f"{s} momentum", inertia, -z * n * grad(phi) - grad(n0 * t * (n / n0) ** gi)
-        )
+        model.law(f"{s} momentum", inertia, -z * n * grad(phi) - grad(n0 * t * (n / n0) ** gi))
         charge, at_rest = charge + z * n, at_rest + z * n0
     model.law("Poisson", laplacian(phi), at_rest * sympy.exp(phi / te) - charge)
     return model.linearize().plane_wave("x")

@@ -92,7 +92,7 @@ def test_field_of_another_model(model, n):
 def test_cross_and_curl_leave_the_axes(axes):
     model = plin.FluidModel("flat", axes=axes)
     v = model.vector("v")
-    with pytest.raises(plin.DeclarationError, match=f"leaves the axes '{axes}'"):
+    with pytest.raises(plin.DeclarationError, match="leaves the axes"):
         model.law("curl", partial_t(v), curl(v))
     with pytest.raises(plin.DeclarationError, match="leaves the axes"):
         model.law("cross", partial_t(v), cross(v, grad(dot(v, v))))
@@ -106,7 +106,7 @@ def test_components_of_the_wrong_size():
 
 
 def test_background_does_not_fit(model, n):
-    with pytest.raises(plin.DeclarationError, match="'u'.*does not fit the axes 'xyz'"):
+    with pytest.raises(plin.DeclarationError, match=r"'u'.*does not fit the axes 'xyz'"):
         model.vector("u", background=(1, 2))
     with pytest.raises(plin.DeclarationError, match="holds a field"):
         model.scalar("m", background=2 * n)

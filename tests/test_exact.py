@@ -49,11 +49,18 @@ def test_determinant_against_sympy(size, rng):
 
 
 def test_real_form_where_phases_remove_the_unit():
-    entries = {(0, 0): -sympy.I * w, (0, 1): sympy.I * k * a, (1, 0): sympy.I * k * b, (1, 1): -sympy.I * w}
+    entries = {
+        (0, 0): -sympy.I * w,
+        (0, 1): sympy.I * k * a,
+        (1, 0): sympy.I * k * b,
+        (1, 1): -sympy.I * w,
+    }
     assert determinant(entries, 2, w).is_real
     damped = {**entries, (1, 1): -sympy.I * w + m}
     assert not determinant(damped, 2, w).is_real
-    assert same_up_to_unit(determinant(damped, 2, w).as_expr(), w**2 + sympy.I * m * w - k**2 * a * b)
+    assert same_up_to_unit(
+        determinant(damped, 2, w).as_expr(), w**2 + sympy.I * m * w - k**2 * a * b
+    )
 
 
 def test_sine_and_cosine():
@@ -73,7 +80,9 @@ def test_factors_stay_visible_behind_sine_and_cosine():
 
 
 def test_square_roots_and_symbolic_powers():
-    found = numerator(w**2 * sympy.sqrt(m) - m ** sympy.Rational(3, 2) * a ** (gamma + 1) / a**gamma, w)
+    found = numerator(
+        w**2 * sympy.sqrt(m) - m ** sympy.Rational(3, 2) * a ** (gamma + 1) / a**gamma, w
+    )
     assert same_up_to_unit(found.as_expr(), w**2 - m * a)
 
 
@@ -85,23 +94,35 @@ def test_memory_denominators_are_cleared_once():
     memory = 1 / (1 - sympy.I * w * a)
     entries = {(0, 0): w - k * memory, (0, 1): memory, (1, 0): k, (1, 1): 1 - memory}
     found = determinant(entries, 2, w)
-    plain = sympy.fraction(sympy.cancel(sympy.together((w - k * memory) * (1 - memory) - memory * k)))[0]
+    plain = sympy.fraction(
+        sympy.cancel(sympy.together((w - k * memory) * (1 - memory) - memory * k))
+    )[0]
     assert same_up_to_unit(found.as_expr(), plain)
 
 
-@pytest.mark.parametrize("expr", [sympy.exp(w * a), sympy.sqrt(w**2 - k**2), w**gamma, sympy.sin(w)])
+@pytest.mark.parametrize(
+    "expr", [sympy.exp(w * a), sympy.sqrt(w**2 - k**2), w**gamma, sympy.sin(w)]
+)
 def test_not_polynomial_in_omega(expr):
     with pytest.raises(plin.NonPolynomialError, match="omega enters through"):
         determinant({(0, 0): expr + 1}, 1, w)
 
 
 def test_factors_and_multiplicity():
-    entries = {(i, i): w**2 - k**2 * a for i in range(3)} | {(3, 3): w, (4, 4): w, (5, 5): 3 * w - b}
+    entries = {(i, i): w**2 - k**2 * a for i in range(3)} | {
+        (3, 3): w,
+        (4, 4): w,
+        (5, 5): 3 * w - b,
+    }
     found = determinant(entries, 6, w)
     assert (found.degree, found.lowest) == (9, 2)
     content, factors = found.factor()
     assert content.degree == 0
-    assert {(str(f.as_expr()), n) for f, n in factors} == {("omega", 2), ("-b + 3*omega", 1), ("-a*k**2 + omega**2", 3)}
+    assert {(str(f.as_expr()), n) for f, n in factors} == {
+        ("omega", 2),
+        ("-b + 3*omega", 1),
+        ("-a*k**2 + omega**2", 3),
+    }
 
 
 def test_gaussian_factors():
@@ -142,7 +163,9 @@ def test_gcd_and_division():
 
 
 def test_discriminant():
-    assert sympy.expand(polynomial(w**2 + b * w + a, w).discriminant().as_expr() - (b**2 - 4 * a)) == 0
+    assert (
+        sympy.expand(polynomial(w**2 + b * w + a, w).discriminant().as_expr() - (b**2 - 4 * a)) == 0
+    )
 
 
 def test_schur_complement():
@@ -195,9 +218,14 @@ def test_complex_roots_against_mpmath(coefficients):
     assert sum(r[3] for r in found) == len(exact) - 1
     with mpmath.workdps(60):
         for re, im, radius, _ in found:
-            z = mpmath.mpc(mpmath.mpf(re.numerator) / re.denominator, mpmath.mpf(im.numerator) / im.denominator)
+            z = mpmath.mpc(
+                mpmath.mpf(re.numerator) / re.denominator, mpmath.mpf(im.numerator) / im.denominator
+            )
             terms = [
-                mpmath.mpc(mpmath.mpf(c.numerator) / c.denominator, mpmath.mpf(d.numerator) / d.denominator) * z**n
+                mpmath.mpc(
+                    mpmath.mpf(c.numerator) / c.denominator, mpmath.mpf(d.numerator) / d.denominator
+                )
+                * z**n
                 for n, (c, d) in enumerate(exact)
             ]
             assert abs(sum(terms)) <= mpmath.mpf(10) ** -20 * max(map(abs, terms))
@@ -208,7 +236,7 @@ def test_tiny_growth_keeps_its_sign():
     """(z − (2 + 1e-18 i)) (z + 5): the imaginary part is proved, not lost in the real one."""
     tiny = Fraction(1, 10**18)
     c = [(Fraction(-10), -5 * tiny), (Fraction(3), -tiny), (Fraction(1), Fraction(0))]
-    re, im, radius, _ = max(complex_roots(c))
+    _, im, radius, _ = max(complex_roots(c))
     assert im == pytest.approx(1e-18, rel=1e-12)
     assert radius < im / 1000
 

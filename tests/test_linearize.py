@@ -63,7 +63,9 @@ def whole(expr):
 
 
 def scalar_laws(n, phi, t, gamma):
-    leaves = st.sampled_from([n, phi, t, n * phi, n**gamma, sympy.exp(phi / t), 1 / n, sympy.sqrt(n)])
+    leaves = st.sampled_from(
+        [n, phi, t, n * phi, n**gamma, sympy.exp(phi / t), 1 / n, sympy.sqrt(n)]
+    )
 
     def grow(inner):
         pair = st.tuples(inner, inner)
@@ -128,9 +130,11 @@ def test_equilibrium_is_a_condition():
     linear = model.linearize()
     s = model.symbols
     (condition,) = linear.conditions
-    assert sympy.expand(condition.lhs - (s["n_a0"] - s["n_b0"])) * sympy.expand(
-        condition.lhs + (s["n_a0"] - s["n_b0"])
-    ) == 0
+    assert (
+        sympy.expand(condition.lhs - (s["n_a0"] - s["n_b0"]))
+        * sympy.expand(condition.lhs + (s["n_a0"] - s["n_b0"]))
+        == 0
+    )
     assert "Poisson: 0 = n_a0 − n_b0" in str(linear.background)
 
 
@@ -170,7 +174,10 @@ def test_multiplying_a_law_that_the_background_contradicts_changes_the_relation(
 def test_multiplying_a_law_that_the_background_satisfies_changes_nothing():
     def balanced(power):
         def law(rho, psi, big_g):
-            return rho**power * laplacian(psi), 4 * sympy.pi * big_g * rho**power * (rho - rho.background)
+            return rho**power * laplacian(psi), 4 * sympy.pi * big_g * rho**power * (
+                rho - rho.background
+            )
+
         return gravity(law).linearize().plane_wave("x").relation.as_expr()
 
     assert sympy.expand(balanced(0) - balanced(1)) == 0
@@ -189,7 +196,9 @@ def test_assumed_source_is_printed_with_its_warning():
 def test_nothing_determines_a_field():
     model = warm_electrons()
     model.remove_law("Poisson")
-    with pytest.raises(plin.UndeterminedError, match=r"2 component equations for 3.*nothing determines 'phi'"):
+    with pytest.raises(
+        plin.UndeterminedError, match=r"2 component equations for 3.*nothing determines 'phi'"
+    ):
         model.linearize()
 
 
@@ -216,7 +225,7 @@ def test_norm_without_background_is_not_smooth():
     assert str(model.linearize().equations["quadratic drag"].rhs) == "0"
     model.remove_law("w")
     model.law("speed", partial_t(w), norm(v) * w)
-    with pytest.raises(plin.BackgroundError, match="law 'speed'.*not smooth"):
+    with pytest.raises(plin.BackgroundError, match=r"law 'speed'.*not smooth"):
         model.linearize()
 
 
@@ -241,7 +250,9 @@ def test_multiplier_without_value_on_the_background():
 def test_audit_finds_a_wrong_piece():
     linear = warm_electrons().linearize()
     pieces = [
-        dataclasses.replace(p, value=2 * p.value) if p.fate == "kept" and p.law == "Poisson" and p.side == "right" else p
+        dataclasses.replace(p, value=2 * p.value)
+        if p.fate == "kept" and p.law == "Poisson" and p.side == "right"
+        else p
         for p in linear.ledger
     ]
     wrong = dataclasses.replace(linear, ledger=Ledger(pieces, linear.axes))

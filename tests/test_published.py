@@ -45,9 +45,7 @@ def test_published_roots(waves, name, index):
     values = {n: v for n, v in known.items() if n in wave.linear.symbols}
     vector = {s.name: numbers.get(s.name, 0.0) for s in wave.wave_symbols}
     found = wave.roots(values, **vector).require().omega
-    published = [
-        complex(a, b) for a, b in zip(point["omega_re"], point["omega_im"], strict=True)
-    ]
+    published = [complex(a, b) for a, b in zip(point["omega_re"], point["omega_im"], strict=True)]
     if name in EXTRA:
         published += EXTRA[name](numbers["k"], known)
     assert len(found) == len(published)

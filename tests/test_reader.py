@@ -64,7 +64,7 @@ def test_binding(model, text, value):
         ("n_e/v_e", "division by the vector"),
         ("n_e + 0^-1", "zero to a power"),
         ("n_e; import os", "the character ';'"),
-        ("__import__('os').system('x')", "the character \"'\""),
+        ("__import__('os').system('x')", 'the character "\'"'),
         ("n_e.__class__", r"the character '\.'"),
         ("n_e + lambda: 0", "the character ':'"),
     ],

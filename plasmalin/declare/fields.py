@@ -13,7 +13,7 @@ from ..errors import RankError
 AXES = "xyz"
 
 
-class Components(Expr):
+class Components(Expr):  # type: ignore[misc]
     """A vector or rank-2 tensor given by its components along the model's axes.
 
     Make one with `components`; a tensor's arguments are its rows, as SymPy tuples.
@@ -41,10 +41,16 @@ class Components(Expr):
 
     def _latex(self, printer: LatexPrinter, exp: str | None = None) -> str:
         if self.rank == 2:
-            rows = r" \\ ".join(" & ".join(printer._print(x) for x in row.args) for row in self.args)
+            rows = r" \\ ".join(
+                " & ".join(printer._print(x) for x in row.args) for row in self.args
+            )
             return rf"\begin{{pmatrix}} {rows} \end{{pmatrix}}"
         terms = [
-            (rf"\hat{{\mathbf {axis}}}" if a == 1 else rf"{printer.parenthesize(a, 50)}\,\hat{{\mathbf {axis}}}")
+            (
+                rf"\hat{{\mathbf {axis}}}"
+                if a == 1
+                else rf"{printer.parenthesize(a, 50)}\,\hat{{\mathbf {axis}}}"
+            )
             for a, axis in zip(self.args, axis_names(self.size), strict=True)
             if a != 0
         ]
@@ -112,7 +118,7 @@ def exact(value: Any) -> Expr:
     return made
 
 
-class FieldAtom(AtomicExpr):
+class FieldAtom(AtomicExpr):  # type: ignore[misc]
     """What fields, backgrounds and perturbations share: a name, a rank, no assumptions."""
 
     is_commutative = True
@@ -195,7 +201,7 @@ class Field(FieldAtom):
 
     @property
     def perturbation(self) -> Perturbation:
-        return Perturbation(self)
+        return cast(Perturbation, Perturbation(self))
 
     def _latex(self, printer: LatexPrinter, exp: str | None = None) -> str:
         return with_power(decorated(self), exp)
@@ -271,8 +277,12 @@ def decorated(field: Field, mark: str = "") -> str:
         stem = rf"\mathsf{{{stem}}}"
     if mark == "~":
         stem = rf"\tilde{{{stem}}}"
-    parts = [subscript if field.latex_name else ",".join(latex_word(p) for p in subscript.split("_"))]
-    low = "".join(p.strip("{}") if field.latex_name else p for p in parts) + ("0" if mark == "0" else "")
+    parts = [
+        subscript if field.latex_name else ",".join(latex_word(p) for p in subscript.split("_"))
+    ]
+    low = "".join(p.strip("{}") if field.latex_name else p for p in parts) + (
+        "0" if mark == "0" else ""
+    )
     return f"{stem}_{{{low}}}" if low else stem
 
 

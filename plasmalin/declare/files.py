@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import difflib
+import math
 import os
 import tempfile
 import tomllib
@@ -114,7 +115,9 @@ def load_example(name: str) -> FluidModel:
 def example_names() -> list[str]:
     """The names of the shipped examples."""
     folder = resources.files("plasmalin") / "examples"
-    return sorted(f.name.removesuffix(".toml") for f in folder.iterdir() if f.name.endswith(".toml"))
+    return sorted(
+        f.name.removesuffix(".toml") for f in folder.iterdir() if f.name.endswith(".toml")
+    )
 
 
 def example_path(name: str) -> Path:
@@ -172,7 +175,11 @@ def _built(data: dict[str, Any]) -> ModelFile:
     if not isinstance(assume, list) or any(not isinstance(n, str) for n in assume):
         raise ModelFileError("[model] assume: give a list of law names")
     return ModelFile(
-        model, _wave(_table(data, "wave")), _sweep(_table(data, "sweep")), tuple(assume), tuple(_list(data, "claim"))
+        model,
+        _wave(_table(data, "wave")),
+        _sweep(_table(data, "sweep")),
+        tuple(assume),
+        tuple(_list(data, "claim")),
     )
 
 
@@ -180,7 +187,11 @@ def _known(table: Mapping[str, Any], section: str) -> None:
     for key in table:
         if key not in KEYS[section]:
             near = difflib.get_close_matches(key, KEYS[section], 1)
-            hint = f"did you mean '{near[0]}'?" if near else f"known are {', '.join(sorted(KEYS[section]))}"
+            hint = (
+                f"did you mean '{near[0]}'?"
+                if near
+                else f"known are {', '.join(sorted(KEYS[section]))}"
+            )
             raise ModelFileError(f"{section}: unknown entry '{key}'; {hint}")
 
 
@@ -206,7 +217,7 @@ def _text(table: Mapping[str, Any], key: str, section: str, default: str | None 
 
 
 def _number(value: Any, where: str) -> float:
-    if isinstance(value, bool) or not isinstance(value, int | float) or value != value or abs(value) == float("inf"):
+    if isinstance(value, bool) or not isinstance(value, int | float) or not math.isfinite(value):
         raise ModelFileError(f"{where}: {value!r} is not a finite number")
     return float(value)
 
@@ -225,7 +236,11 @@ def _parameters(model: FluidModel, head: Mapping[str, Any], table: Mapping[str, 
         entry = given if isinstance(given, dict) else {"value": given}
         _known(entry, "[parameters] entry")
         where = f"[parameters] {name}"
-        value = _number(entry["value"], where) * _factor(entry.get("unit"), where) if "value" in entry else None
+        value = (
+            _number(entry["value"], where) * _factor(entry.get("unit"), where)
+            if "value" in entry
+            else None
+        )
         positive = entry.get("positive", name in constants or (value is not None and value > 0))
         if not isinstance(positive, bool):
             raise ModelFileError(f"{where}: 'positive' must be true or false")
@@ -236,7 +251,9 @@ def _factor(unit: Any, where: str) -> float:
     if unit is None:
         return 1.0
     if unit not in JOULE_PER:
-        raise ModelFileError(f"{where}: unit {unit!r} is not understood; give SI, or one of {', '.join(JOULE_PER)}")
+        raise ModelFileError(
+            f"{where}: unit {unit!r} is not understood; give SI, or one of {', '.join(JOULE_PER)}"
+        )
     return JOULE_PER[unit] * codata("e")
 
 
@@ -249,7 +266,9 @@ def _field(model: FluidModel, kind: str, entry: Mapping[str, Any]) -> None:
     background = _plain(entry.get("background", 0))
     for x in _flat(background):
         if not isinstance(x, str | int | float) or isinstance(x, bool):
-            raise ModelFileError(f"{section} {name}: the background {x!r} is not a number or a text")
+            raise ModelFileError(
+                f"{section} {name}: the background {x!r} is not a number or a text"
+            )
     declare(name, background, **options)
 
 
@@ -274,10 +293,12 @@ def _sweep(table: Mapping[str, Any]) -> Sweep | None:
     start, stop = (_number(entry.get(key), f"[sweep] {name} {key}") for key in ("from", "to"))
     points = entry.get("points", 200)
     if not isinstance(points, int) or not 1 <= points <= 1_000_000:
-        raise ModelFileError(f"[sweep] {name}: points = {points!r} is not a whole number from 1 to 1000000")
+        raise ModelFileError(
+            f"[sweep] {name}: points = {points!r} is not a whole number from 1 to 1000000"
+        )
     spacing = entry.get("spacing", "linear")
     if spacing not in ("linear", "log"):
-        raise ModelFileError(f"[sweep] {name}: spacing = {spacing!r}; give \"linear\" or \"log\"")
+        raise ModelFileError(f'[sweep] {name}: spacing = {spacing!r}; give "linear" or "log"')
     if spacing == "log" and not (start > 0 and stop > 0):
         raise ModelFileError(f"[sweep] {name}: a log spacing needs positive ends")
     return Sweep(name, start, stop, points, spacing == "log")
@@ -301,14 +322,26 @@ def model_text(model: FluidModel) -> str:
     for name, symbol in model.symbols.items():
         if name not in constants:
             value = f"value = {model.values[name]!r}, " if name in model.values else ""
-            lines.append(f"{name} = {{ {value}positive = {str(bool(symbol.is_positive)).lower()} }}")
+            lines.append(
+                f"{name} = {{ {value}positive = {str(bool(symbol.is_positive)).lower()} }}"
+            )
     for kind, fields in _by_kind(model).items():
         for field in fields:
-            lines += ["", f"[[{kind}]]", f"name = {_quoted(field.name)}", f"background = {_value(field.background)}"]
+            lines += [
+                "",
+                f"[[{kind}]]",
+                f"name = {_quoted(field.name)}",
+                f"background = {_value(field.background)}",
+            ]
             lines += [f"latex = {_quoted(field.latex_name)}"] if field.latex_name else []
             lines += ["symmetric = false"] if field.rank == 2 and not field.symmetric else []
     for name, vector in model.vector_parameters.items():
-        lines += ["", "[[vector_parameter]]", f"name = {_quoted(name)}", f"entries = {_value(vector)}"]
+        lines += [
+            "",
+            "[[vector_parameter]]",
+            f"name = {_quoted(name)}",
+            f"entries = {_value(vector)}",
+        ]
     for law in model.laws.values():
         lines += ["", "[[law]]", f"name = {_quoted(law.name)}", f"text = {_quoted(str(law))}"]
     return "\n".join(lines) + "\n"
@@ -326,9 +359,13 @@ def _value(value: Any) -> str:
 
 
 def _quoted(text: str) -> str:
-    escaped = text.replace("\\", "\\\\").replace('"', '\\"').replace("\n", "\\n").replace("\t", "\\t")
+    escaped = (
+        text.replace("\\", "\\\\").replace('"', '\\"').replace("\n", "\\n").replace("\t", "\\t")
+    )
     if any(ord(c) < 32 for c in escaped):
-        raise DeclarationError(f"{text!r} holds a control character and cannot be written to a file")
+        raise DeclarationError(
+            f"{text!r} holds a control character and cannot be written to a file"
+        )
     return f'"{escaped}"'
 
 

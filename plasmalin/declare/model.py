@@ -141,7 +141,9 @@ class FluidModel:
         DeclarationError
             When the name is taken, or the background holds a field.
         """
-        return self._declare(Field(self._new_name(name), 0, self._value(background), latex_name=latex))
+        return self._declare(
+            Field(self._new_name(name), 0, self._value(background), latex_name=latex)
+        )
 
     def vector(self, name: str, background: Any = 0, *, latex: str | None = None) -> Field:
         """Declare a vector field.
@@ -202,7 +204,7 @@ class FluidModel:
         return field
 
     def _new_name(self, name: str) -> str:
-        if not isinstance(name, str) or not name.isidentifier() or name.startswith("_"):
+        if not str(name).isidentifier() or name.startswith("_"):
             raise DeclarationError(
                 f"{name!r} is not a name: use letters, digits and _, starting with a letter"
             )
@@ -275,7 +277,7 @@ class FluidModel:
         known = self._parameters.get(name)
         if known is None:
             self._new_name(name)
-        elif not known.implied and (known.symbol.is_positive or False) != positive:
+        elif not known.implied and bool(known.symbol.is_positive) != positive:
             raise DeclarationError(f"the parameter '{name}' is declared already, otherwise")
         symbol = Symbol(name, positive=True) if positive else Symbol(name, real=True)
         number = value if value is not None else (known.value if known else None)
@@ -547,5 +549,3 @@ def _same(law: Law, other: Law) -> bool:
     mine, theirs = expand(law.residual), expand(other.residual)
     ratio = mine.as_ordered_terms()[0] / theirs.as_ordered_terms()[0]
     return bool(ratio.is_number) and expand(mine - ratio * theirs) == 0
-
-

@@ -138,7 +138,7 @@ class TextPrinter:
         if exponent == Rational(1, 2):
             return f"√({self.show(base)})", 3
         if exponent.could_extract_minus_sign() and exponent.is_number:
-            return f"1/{self.show(Pow(base, -exponent), 2)}", 1  # type: ignore[operator]
+            return f"1/{self.show(Pow(base, -exponent), 2)}", 1
         head = self.show(base, 3)
         if isinstance(exponent, Integer):
             return head + str(exponent).translate(SUPERSCRIPT), 3
@@ -205,7 +205,7 @@ def _place(factor: Any) -> int:
     return 1 if isinstance(factor, FieldAtom) else 0
 
 
-class PaperLatex(LatexPrinter):
+class PaperLatex(LatexPrinter):  # type: ignore[misc]
     """SymPy's LaTeX with time derivatives first and unit vectors along the model's axes."""
 
     def __init__(self, axes: str) -> None:
@@ -216,7 +216,7 @@ class PaperLatex(LatexPrinter):
         return sorted(Add.make_args(expr), key=term_order)
 
 
-class LawPrinter(StrPrinter):
+class LawPrinter(StrPrinter):  # type: ignore[misc]
     """Text that the law reader takes back, time derivatives first, doubles to the last digit."""
 
     def _as_ordered_terms(self, expr: Any, order: Any = None) -> list[Any]:

@@ -68,7 +68,7 @@ def _rank_of_sum(expr: Add) -> int:
     return ranks[0]
 
 
-class Operator(Expr):
+class Operator(Expr):  # type: ignore[misc]
     """A linear or bilinear operation on fields; its rank is fixed when it is made."""
 
     is_commutative = True
@@ -252,7 +252,7 @@ class Multiplier(Operator):
         return rf"\left[{args[1]}\right] {args[0]}"
 
 
-class Identity(AtomicExpr):
+class Identity(AtomicExpr):  # type: ignore[misc]
     """The unit tensor."""
 
     is_commutative = True
@@ -385,4 +385,3 @@ OPERATORS: dict[str, Any] = {
     )
 }
 """The operators by the word that a law in text uses."""
-

@@ -96,7 +96,9 @@ class Cleared:
     phase: int
 
 
-def exact_determinant(entries: Entries, rows: Sequence[int], columns: Sequence[int], ring: Ring) -> Ratio:
+def exact_determinant(
+    entries: Entries, rows: Sequence[int], columns: Sequence[int], ring: Ring
+) -> Ratio:
     """The determinant of a square submatrix, exactly, main written as itself."""
     zero, one = ring.constant(0), ring.constant(1)
     place = {i: a for a, i in enumerate(rows)}, {j: b for b, j in enumerate(columns)}
@@ -116,7 +118,9 @@ def exact_determinant(entries: Entries, rows: Sequence[int], columns: Sequence[i
 
 def _block_determinant(table: Table, matching: Mapping[int, int], ring: Ring) -> Gaussian:
     blocks = diagonal_blocks(table, matching)
-    sign = _parity([i for rows, _ in blocks for i in rows]) * _parity([j for _, cs in blocks for j in cs])
+    sign = _parity([i for rows, _ in blocks for i in rows]) * _parity(
+        [j for _, cs in blocks for j in cs]
+    )
     result = ring.constant(sign)
     for rows, columns in blocks:
         lines = [{b: table[i, j] for b, j in enumerate(columns) if (i, j) in table} for i in rows]
@@ -140,7 +144,9 @@ def _cleared(entries: Entries, ring: Ring) -> Cleared:
     first = None
     for phase in (0, 1):
         reader = Reader(ring, phase)
-        table, bottom = _without_denominators({ij: reader.ratio(c) for ij, c in entries.items()}, ring)
+        table, bottom = _without_denominators(
+            {ij: reader.ratio(c) for ij, c in entries.items()}, ring
+        )
         turns = _phases(table)
         if turns is not None:
             real = {(i, j): p.turned(-turns[0][i] - turns[1][j]) for (i, j), p in table.items()}
@@ -151,7 +157,9 @@ def _cleared(entries: Entries, ring: Ring) -> Cleared:
     return first
 
 
-def _without_denominators(ratios: Mapping[tuple[int, int], Ratio], ring: Ring) -> tuple[Table, Gaussian]:
+def _without_denominators(
+    ratios: Mapping[tuple[int, int], Ratio], ring: Ring
+) -> tuple[Table, Gaussian]:
     table: Table = {}
     bottom = ring.constant(1)
     for row in {i for i, _ in ratios}:
@@ -212,7 +220,11 @@ def _unphased(p: Gaussian, phase: int) -> Gaussian:
 
 
 def eliminate(
-    entries: Entries, main: sp.Symbol, size: int, keep_rows: Sequence[int], keep_columns: Sequence[int]
+    entries: Entries,
+    main: sp.Symbol,
+    size: int,
+    keep_rows: Sequence[int],
+    keep_columns: Sequence[int],
 ) -> dict[tuple[int, int], sp.Expr]:
     """The Schur complement on some rows and columns, exact and in lowest terms.
 
@@ -228,7 +240,9 @@ def eliminate(
     columns = [j for j in range(size) if j not in keep_columns]
     inner = exact_determinant(entries, rows, columns, ring)
     if not inner.top:
-        raise UndeterminedError("the unknowns to be eliminated are not determined by the other laws")
+        raise UndeterminedError(
+            "the unknowns to be eliminated are not determined by the other laws"
+        )
     found = {}
     for (a, i), (b, j) in product(enumerate(keep_rows), enumerate(keep_columns)):
         border = exact_determinant(entries, [*rows, i], [*columns, j], ring)
@@ -251,8 +265,16 @@ def underdetermined_block(
     for c in entries.values():
         symbols |= c.free_symbols
     random = Random(7)
-    point = {s: sp.Rational(random.randint(100, 999), random.randint(10, 99)) for s in sorted(symbols, key=str)}
-    numbers = {ij: sp.nsimplify(c.xreplace(point).evalf(60), rational=True) if c.xreplace(point).atoms(sp.Function) else sp.expand(c.xreplace(point)) for ij, c in entries.items()}
+    point = {
+        s: sp.Rational(random.randint(100, 999), random.randint(10, 99))
+        for s in sorted(symbols, key=str)
+    }
+    numbers = {
+        ij: sp.nsimplify(c.xreplace(point).evalf(60), rational=True)
+        if c.xreplace(point).atoms(sp.Function)
+        else sp.expand(c.xreplace(point))
+        for ij, c in entries.items()
+    }
     matrix = sp.Matrix(size, size, lambda i, j: numbers.get((int(i), int(j)), sp.S.Zero))
     return _sparsest(matrix.T), _sparsest(matrix)
 
@@ -263,5 +285,3 @@ def _sparsest(matrix: sp.Matrix) -> tuple[int, ...]:
     null = DomainMatrix.from_Matrix(matrix, extension=True).to_field().nullspace().to_Matrix()
     supports = [tuple(j for j in range(null.cols) if null[i, j] != 0) for i in range(null.rows)]
     return min(supports, key=len, default=())
-
-

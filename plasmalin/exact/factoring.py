@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from math import gcd
+from typing import Any
 
-from flint import Ordering, fmpq, fmpq_mpoly_ctx, fmpz_mpoly
+from flint import Ordering, fmpq, fmpq_mpoly_ctx, fmpz_mpoly, fmpz_mpoly_ctx
 
 
 def irreducible_factors(p: fmpz_mpoly) -> list[tuple[fmpz_mpoly, int]]:
@@ -19,9 +20,9 @@ def irreducible_factors(p: fmpz_mpoly) -> list[tuple[fmpz_mpoly, int]]:
     return [(_integer(f, ring), int(m)) for f, m in whole.factor()[1]]
 
 
-def _integer(factor: object, ring: object) -> fmpz_mpoly:
-    terms = dict(factor.terms())  # type: ignore[attr-defined]
+def _integer(factor: Any, ring: fmpz_mpoly_ctx) -> fmpz_mpoly:
+    terms = dict(factor.terms())
     scale = 1
     for c in terms.values():
         scale = scale * int(c.q) // gcd(scale, int(c.q))
-    return ring.from_dict({e: int(c * scale) for e, c in terms.items()})  # type: ignore[attr-defined]
+    return ring.from_dict({e: int(c * scale) for e, c in terms.items()})

@@ -114,7 +114,11 @@ def gcd(p: Gaussian, q: Gaussian) -> Gaussian:
         return (p if p else q).normalized()
     if p.phase is not None and q.phase is not None:
         return _real(p.part.gcd(q.part))
-    if any(x.phase is not None and len(x.part) == 1 for x in (p, q)) or p.is_constant or q.is_constant:
+    if (
+        any(x.phase is not None and len(x.part) == 1 for x in (p, q))
+        or p.is_constant
+        or q.is_constant
+    ):
         return _real(reduce(lambda a, b: a.gcd(b), (p.re, p.im, q.re, q.im)))
     return _gaussian_gcd(p, q)
 

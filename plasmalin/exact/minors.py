@@ -20,8 +20,8 @@ def minors_determinant(rows: Sequence[Mapping[int, Gaussian]], ring: Ring) -> Ga
         plain = [{j: p.re for j, p in rows[i].items()} for i in order]
         value = _expand(plain, ring.context.constant(1), ring.context.constant(0))
         return Gaussian(sign * value, ring.context.constant(0))
-    value = _expand([dict(rows[i]) for i in order], ring.constant(1), ring.constant(0))
-    return value if sign > 0 else -value
+    whole: Gaussian = _expand([dict(rows[i]) for i in order], ring.constant(1), ring.constant(0))
+    return whole if sign > 0 else -whole
 
 
 def row_order(rows: Sequence[Mapping[int, Gaussian]]) -> list[int]:

@@ -128,7 +128,9 @@ class ExactPolynomial:
                 raise ArithmeticError(f"{g} is not a generator of one family")
             i, root = ring.places[family]
             images.append((i, int(power * root)))
-        return Gaussian(transplanted(self._value.re, images, ring), transplanted(self._value.im, images, ring))
+        return Gaussian(
+            transplanted(self._value.re, images, ring), transplanted(self._value.im, images, ring)
+        )
 
     def __mul__(self, other: ExactPolynomial) -> ExactPolynomial:
         ring, a, b = self._joined(other)
@@ -156,7 +158,9 @@ class ExactPolynomial:
         content = gcd_of(parts, self._ring.constant(0))
         if not content:
             return self._with(self._ring.constant(1)), self
-        return self._with(content), self._with(self._value.over(content).normalized()).real_if_possible()
+        return self._with(content), self._with(
+            self._value.over(content).normalized()
+        ).real_if_possible()
 
     def _slices(self) -> dict[int, Gaussian]:
         """The coefficient of every power of `main`, in the same ring."""
@@ -173,7 +177,9 @@ class ExactPolynomial:
 
     def real_if_possible(self) -> ExactPolynomial:
         """Times the power of i that makes it real, where there is one."""
-        return self._with(Gaussian(self._value.im, self._value.re)) if self._value.phase == 1 else self
+        return (
+            self._with(Gaussian(self._value.im, self._value.re)) if self._value.phase == 1 else self
+        )
 
     def _turned_main(self, power: int) -> Gaussian:
         """With `main` replaced by i**power times main."""
@@ -194,39 +200,49 @@ class ExactPolynomial:
         Gaussian coefficients through the factors of its norm.
         """
         content, primitive = self.primitive()
-        if primitive.degree < 1:
-            return content, ()
-        if primitive.is_real:
-            found = primitive._real_factors(primitive._value.re, 0)
-        elif (turned := primitive._turned_main(1)).phase is not None:
-            found = primitive._real_factors(turned.part, 3)
-        else:
-            found = primitive._gaussian_factors()
+        found = [(self._with(p)._normal(), m) for p, m in primitive._split()]
         return content, tuple(sorted(found, key=_factor_order))
 
-    def _real_factors(self, value: Any, back: int) -> list[tuple[ExactPolynomial, int]]:
-        found = []
-        for factor, multiplicity in irreducible_factors(value):
-            if factor.degrees()[0] > 0:
-                made = self._with(Gaussian(factor, self._ring.context.constant(0)))
-                made = self._with(made._turned_main(back).normalized()) if back else made
-                found.append((made._normal(), int(multiplicity)))
+    def _split(self) -> list[tuple[Gaussian, int]]:
+        """The factors that hold `main`, relations between generators not used."""
+        if self.degree < 1:
+            return []
+        if self.is_real:
+            return [(_real(p), m) for p, m in irreducible_factors(self._value.re) if _holds_main(p)]
+        turned = self._turned_main(1)
+        if turned.phase is not None:
+            found = [(_real(p), m) for p, m in irreducible_factors(turned.part) if _holds_main(p)]
+            return [(self._with(p)._turned_main(3), m) for p, m in found]
+        return self._gaussian_factors()
+
+    def _gaussian_factors(self) -> list[tuple[Gaussian, int]]:
+        rest, found = self._value, list[tuple[Gaussian, int]]()
+        for factor, _ in irreducible_factors(rest.norm()):
+            multiplicity, last = 0, None
+            while _holds_main(factor):
+                common = gcd(rest, _real(factor))
+                if not (_holds_main(common.re) or _holds_main(common.im)):
+                    break
+                rest = rest.over(common)
+                if last is not None and common != last:
+                    found.append((last, multiplicity))
+                    multiplicity = 0
+                last, multiplicity = common, multiplicity + 1
+            if last is not None:
+                found.append((last, multiplicity))
         return found
+
+    def factored_expr(self) -> sp.Expr:
+        """The same polynomial as an expression, written as a product of its factors."""
+        parts = self._split()
+        product = self._ring.constant(1)
+        for p, m in parts:
+            product = product * p**m
+        rest = self._with(self._value.over(product)).reduced().as_expr()
+        return sp.Mul(rest, *(self._with(p).reduced().as_expr() ** m for p, m in parts))
 
     def _normal(self) -> ExactPolynomial:
         return self._with(self.reduced()._value.normalized()).real_if_possible()
-
-    def _gaussian_factors(self) -> list[tuple[ExactPolynomial, int]]:
-        rest, found = self._value, dict[ExactPolynomial, int]()
-        for factor, _ in irreducible_factors(rest.norm()):
-            if factor.degrees()[0] == 0:
-                continue
-            part = Gaussian(factor, self._ring.context.constant(0))
-            while (common := gcd(rest, part)).re.degrees()[0] + common.im.degrees()[0] > 0:
-                rest = rest.over(common)
-                made = self._with(common)._normal()
-                found[made] = found.get(made, 0) + 1
-        return list(found.items())
 
     def substitute(self, values: Mapping[Any, Any]) -> ExactPolynomial:
         """With symbols replaced by exact numbers or expressions; floats are their binary rationals.
@@ -268,13 +284,25 @@ class ExactPolynomial:
             When the polynomial still holds generators.
         """
         if self.generators:
-            raise ArithmeticError("complex_roots() needs numbers for all parameters; substitute them first")
+            raise ArithmeticError(
+                "complex_roots() needs numbers for all parameters; substitute them first"
+            )
         slices = self._slices()
         table = [slices.get(n, self._ring.constant(0)) for n in range(self.degree + 1)]
-        return complex_roots([(Fraction(int(_number(p.re))), Fraction(int(_number(p.im)))) for p in table], digits)
+        return complex_roots(
+            [(Fraction(int(_number(p.re))), Fraction(int(_number(p.im)))) for p in table], digits
+        )
 
     def __repr__(self) -> str:
         return f"<ExactPolynomial in {self.main}: degree {self.degree}, {len(self)} terms>"
+
+
+def _real(p: Any) -> Gaussian:
+    return Gaussian(p, p.context().constant(0))
+
+
+def _holds_main(p: Any) -> bool:
+    return bool(p) and int(p.degrees()[0]) > 0
 
 
 def _factor_order(factor: tuple[ExactPolynomial, int]) -> tuple[int, int, str]:
@@ -298,7 +326,11 @@ def _number(p: Any) -> int:
 
 def _exact_number(value: Any) -> Any:
     if isinstance(value, sp.Basic) and not isinstance(value, sp.Float):
-        return value.replace(lambda x: isinstance(x, sp.Float), _exact_number) if value.atoms(sp.Float) else value
+        return (
+            value.replace(lambda x: isinstance(x, sp.Float), _exact_number)
+            if value.atoms(sp.Float)
+            else value
+        )
     from .rational import exact_rational
 
     number = exact_rational(value)
@@ -320,7 +352,7 @@ def _restored(main: sp.Symbol, generators: tuple[sp.Expr, ...], terms: Any) -> E
 
 def ratio_expr(ratio: Ratio, ring: Ring) -> sp.Expr:
     """A ratio as a SymPy expression."""
-    top, bottom = (ExactPolynomial(ring, p).reduced().as_expr() for p in (ratio.top, ratio.bottom))
+    top, bottom = (ExactPolynomial(ring, p).factored_expr() for p in (ratio.top, ratio.bottom))
     return top / bottom
 
 

@@ -33,7 +33,9 @@ def split_power(expr: sp.Expr) -> tuple[tuple[Family, Fraction], ...]:
 
 def is_plain(base: sp.Expr) -> bool:
     """Whether a base is itself a generator, rather than a sum, product or number of others."""
-    return not isinstance(base, sp.Add | sp.Mul | sp.Pow | sp.Number | sp.core.numbers.ImaginaryUnit)
+    return not isinstance(
+        base, sp.Add | sp.Mul | sp.Pow | sp.Number | sp.core.numbers.ImaginaryUnit
+    )
 
 
 def generator(family: Family, root: int) -> sp.Expr:

@@ -43,7 +43,9 @@ def exact_rational(x: Real) -> Fraction:
     try:
         value = math.nan if isinstance(x, str) else float(x)
     except (TypeError, ValueError):
-        raise ValuesError(f"{x!r} is not a real number; give an int, a float or a Fraction.") from None
+        raise ValuesError(
+            f"{x!r} is not a real number; give an int, a float or a Fraction."
+        ) from None
     if not math.isfinite(value):
         raise ValuesError(f"{x!r} is not finite; give a finite number.")
     return Fraction(value)

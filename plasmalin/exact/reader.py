@@ -70,7 +70,9 @@ class Reader:
                 number *= fmpq(value.numerator, value.denominator)
             else:
                 base, n = (
-                    factor.args if isinstance(factor, sp.Pow) and factor.exp.is_Integer else (factor, sp.S.One)
+                    factor.args
+                    if isinstance(factor, sp.Pow) and factor.exp.is_Integer
+                    else (factor, sp.S.One)
                 )
                 monomial = self._monomial(base)
                 if monomial is None:
@@ -87,7 +89,12 @@ class Reader:
         return self._units[base]
 
     def _look_up(self, base: sp.Expr) -> tuple[tuple[int, int], ...] | None:
-        if isinstance(base, sp.Add | sp.Mul) or base.is_Number or base is sp.I or base.func in QUOTIENTS:
+        if (
+            isinstance(base, sp.Add | sp.Mul)
+            or base.is_Number
+            or base is sp.I
+            or base.func in QUOTIENTS
+        ):
             return None
         if isinstance(base, sp.Pow) and base.exp.is_Integer:
             return None
@@ -133,7 +140,9 @@ class Reader:
 
     def _nonzero(self, bottom: Gaussian, expr: sp.Expr) -> Gaussian:
         if not bottom:
-            raise ValuesError(f"{expr} has a denominator that is identically zero; remove it or change the values.")
+            raise ValuesError(
+                f"{expr} has a denominator that is identically zero; remove it or change the values."
+            )
         return bottom
 
     # relations -----------------------------------------------------------------------------------
@@ -177,7 +186,10 @@ def _lowered(p: Gaussian, i: int, n: int, top: Gaussian, bottom: Gaussian) -> Ga
     re, im = _slices(p.re, i, n), _slices(p.im, i, n)
     zero = p.re.context().constant(0)
     degree = max(*re, *im)
-    pieces = (Gaussian(re.get(j, zero), im.get(j, zero)) * top**j * bottom ** (degree - j) for j in range(degree + 1))
+    pieces = (
+        Gaussian(re.get(j, zero), im.get(j, zero)) * top**j * bottom ** (degree - j)
+        for j in range(degree + 1)
+    )
     return reduce(add, pieces)
 
 
@@ -185,5 +197,5 @@ def _slices(p: fmpz_mpoly, i: int, n: int) -> dict[int, fmpz_mpoly]:
     slices: dict[int, dict[Exponents, fmpz]] = {0: {}}
     for exponents, c in p.terms():
         quotient, rest = divmod(exponents[i], n)
-        slices.setdefault(quotient, {})[exponents[:i] + (rest,) + exponents[i + 1 :]] = c
+        slices.setdefault(quotient, {})[(*exponents[:i], rest, *exponents[i + 1 :])] = c
     return {j: p.context().from_dict(terms) for j, terms in slices.items()}

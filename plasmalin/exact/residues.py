@@ -7,6 +7,7 @@ The caller checks the candidate by division and asks for the next one, from a la
 
 from collections.abc import Iterator
 from functools import lru_cache
+from math import gcd
 from typing import TypeAlias
 
 from flint import fmpz_mod_mpoly, fmpz_mod_mpoly_ctx, fmpz_mpoly
@@ -31,7 +32,9 @@ def gaussian_gcd(p: Pair, q: Pair) -> Iterator[Pair]:
 def _field(n: int) -> tuple[int, int, tuple[int, int]]:
     """A prime 3 * 2**n + 1, a square root of -1 modulo it, and a Gaussian prime above it."""
     prime = 3 * 2**n + 1
-    root = next(r for r in (pow(a, prime // 4, prime) for a in range(2, 60)) if r * r % prime == prime - 1)
+    root = next(
+        r for r in (pow(a, prime // 4, prime) for a in range(2, 60)) if r * r % prime == prime - 1
+    )
     u, v = prime, root
     while u * u > prime:
         u, v = v, u % v
@@ -58,7 +61,7 @@ def _lifted(
         re[exponents], im[exponents] = _least(int(c) * scale % prime, prime, pi)
     ring = like.context()
     a, b = ring.from_dict(re), ring.from_dict(im)
-    content = a.content() if not b else b.content() if not a else a.content().gcd(b.content())
+    content = gcd(*(int(c) for part in (a, b) for c in part.coeffs())) or 1
     return a / content, b / content
 
 

@@ -70,9 +70,9 @@ class Census:
 
     def _children(self, expr: sp.Expr) -> Iterable[sp.Expr]:
         if isinstance(expr, sp.Add | sp.Mul):
-            return expr.args
+            return tuple(expr.args)
         if isinstance(expr, sp.Pow) and expr.exp.is_Integer:
-            return expr.args[:1]
+            return tuple(expr.args[:1])
         if expr == self.main:
             return ()
         if self.main in expr.free_symbols:
@@ -109,4 +109,6 @@ def place(ring: Ring, family: Family, power: Fraction) -> tuple[int, int]:
 def transplanted(p: fmpz_mpoly, images: list[tuple[int, int]], ring: Ring) -> fmpz_mpoly:
     """``p`` with variable j replaced by the power ``images[j][1]`` of variable ``images[j][0]`` of ``ring``."""
     gens = ring.context.gens()
-    return p.compose(*(gens[i] ** n if n else ring.context.constant(1) for i, n in images), ctx=ring.context)
+    return p.compose(
+        *(gens[i] ** n if n else ring.context.constant(1) for i, n in images), ctx=ring.context
+    )

@@ -67,7 +67,9 @@ def _centre(z: Any) -> tuple[Fraction, Fraction, Fraction]:
 
 def _fraction(exact: Any) -> Fraction:
     mantissa, exponent = exact.man_exp()
-    return Fraction(int(mantissa)) * Fraction(2) ** int(exponent)
+    return Fraction(int(mantissa)) * Fraction(
+        2 ** max(int(exponent), 0), 2 ** max(-int(exponent), 0)
+    )
 
 
 def _complex_coefficients(coefficients: list[tuple[Fraction, Fraction]], digits: int) -> list[Root]:
@@ -102,14 +104,15 @@ def _simple_roots(
 ) -> list[tuple[Fraction, Fraction, Fraction]]:
     """Roots isolated at rising precision, then refined by Newton steps.
 
-    The disc about z of radius n |p(z) / p'(z)| holds a root (Laguerre); inside an isolating disc it is that root.
+    The disc about z of radius n |p(z) / p'(z)| holds a root (Laguerre).
     """
     before, bits = flint.ctx.prec, 2 * _bits(digits) + 64
     try:
         while bits < 100_000:
             flint.ctx.prec = bits
             poly = flint.acb_poly([flint.acb(_arb(re), _arb(im)) for re, im in coefficients])
-            found = [_refined(poly, z, digits) for z in _isolated(poly)]
+            boxes = _isolated(poly)
+            found = [_refined(poly, boxes, i, digits) for i in range(len(boxes))]
             if len(found) == len(coefficients) - 1 and all(found):
                 return [z for z in found if z]
             bits *= 2
@@ -125,18 +128,26 @@ def _isolated(poly: Any) -> list[Any]:
         return []
 
 
-def _refined(poly: Any, isolating: Any, digits: int) -> tuple[Fraction, Fraction, Fraction] | None:
-    """The root in an isolating disc to the wanted digits, each part on its own; None when precision lacks."""
+def _refined(
+    poly: Any, boxes: list[Any], i: int, digits: int
+) -> tuple[Fraction, Fraction, Fraction] | None:
+    """The root in one box to the wanted digits, each part on its own; None when precision lacks.
+
+    All roots lie in the boxes, one in each; so a disc that holds a root and meets no other box holds this one.
+    """
+    re, im, radius = _centre(boxes[i])
+    if radius <= _wanted((re, im), digits):
+        return re, im, radius
     slope = poly.derivative()
-    z = isolating.mid()
+    z = boxes[i].mid()
     for _ in range(60):
         step = poly(z) / slope(z)
-        radius = poly.degree() * abs(step)
-        if not radius.is_finite():
+        distance = poly.degree() * abs(step)
+        if not distance.is_finite():
             return None
-        reach = _fraction(radius.upper().mid()) + _fraction(radius.rad())
+        reach = _fraction(distance.upper().mid()) + _fraction(distance.rad())
         centre = _fraction(z.real.mid()), _fraction(z.imag.mid())
-        if reach <= _wanted(centre, digits) and _inside(centre, reach, isolating):
+        if reach <= _wanted(centre, digits) and _meets_no_other(centre, reach, boxes, i):
             re, im = (x if abs(x) > reach else Fraction(0) for x in centre)
             return re, im, 3 * reach
         z = (z - step).mid()
@@ -146,12 +157,18 @@ def _refined(poly: Any, isolating: Any, digits: int) -> tuple[Fraction, Fraction
 def _wanted(centre: tuple[Fraction, Fraction], digits: int) -> Fraction:
     """Each part to so many digits, but no part beyond 30 more digits of the whole."""
     small, large = sorted(abs(x) for x in centre)
-    return max(small / 10**digits, large / 10 ** (digits + 30))
+    wanted: Fraction = max(small / 10**digits, large / 10 ** (digits + 30))
+    return wanted
 
 
-def _inside(centre: tuple[Fraction, Fraction], reach: Fraction, isolating: Any) -> bool:
-    gaps = (abs(c - _fraction(x.mid())) + reach <= _fraction(x.rad()) for c, x in zip(centre, (isolating.real, isolating.imag), strict=True))
-    return all(gaps)
+def _meets_no_other(
+    centre: tuple[Fraction, Fraction], reach: Fraction, boxes: list[Any], i: int
+) -> bool:
+    def apart(box: Any) -> bool:
+        sides = zip(centre, (box.real, box.imag), strict=True)
+        return any(abs(c - _fraction(x.mid())) > reach + _fraction(x.rad()) for c, x in sides)
+
+    return all(apart(box) for j, box in enumerate(boxes) if j != i)
 
 
 def _arb(x: Fraction) -> Any:

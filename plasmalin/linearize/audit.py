@@ -262,9 +262,16 @@ class _Evaluator:
         along = dict(zip(self.axes, self.setting.k, strict=True))
         for place, m in enumerate(self.harmonics):
             if np.any(spectrum[..., place]):
-                numbers = {s: m * along.get(a, 0.0) for s, a in ((k_x, "x"), (k_y, "y"), (k_z, "z"))}
+                numbers = {
+                    s: m * along.get(a, 0.0) for s, a in ((k_x, "x"), (k_y, "y"), (k_z, "z"))
+                }
                 length = abs(m) * float(np.linalg.norm(self.setting.k))
-                known = {**self.setting.numbers, **numbers, k_abs: length, omega: m * self.setting.omega}
+                known = {
+                    **self.setting.numbers,
+                    **numbers,
+                    k_abs: length,
+                    omega: m * self.setting.omega,
+                }
                 factor = lambdify(list(known), g, "numpy")(*known.values())
                 spectrum[..., place] *= factor
         return np.fft.ifft(spectrum).real
@@ -285,11 +292,12 @@ class _Evaluator:
         return np.asarray(self.setting.k @ self.setting.k * self._d(self._d(f)))
 
     def _advect(self, v: Array, f: Array) -> Array:
-        return np.tensordot(self.setting.k, v, 1) * self._d(f)
+        return np.asarray(np.tensordot(self.setting.k, v, 1) * self._d(f))
 
     def _dot(self, a: Array, b: Array) -> Array:
         left, right = "ij"[-(a.ndim - 1) :], "jk"[: b.ndim - 1]
-        return np.einsum(f"{left}p,{right}p->{(left + right).replace('j', '')}p", _spread(a), _spread(b))
+        rule = f"{left}p,{right}p->{(left + right).replace('j', '')}p"
+        return np.asarray(np.einsum(rule, _spread(a), _spread(b)))
 
     def _cross(self, a: Array, b: Array) -> Array:
         return np.cross(a, b, axis=0)
@@ -304,7 +312,7 @@ class _Evaluator:
         return np.swapaxes(a, 0, 1)
 
     def _trace(self, a: Array) -> Array:
-        return np.trace(a)
+        return np.asarray(np.trace(a))
 
     def _norm(self, v: Array) -> Array:
         return np.asarray(np.sqrt((v * v).sum(0)))

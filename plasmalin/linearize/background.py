@@ -63,7 +63,9 @@ class Equilibrium:
         The backgrounds that are not zero.
     """
 
-    def __init__(self, balances: tuple[Balance, ...], fields: Mapping[str, Field], axes: str) -> None:
+    def __init__(
+        self, balances: tuple[Balance, ...], fields: Mapping[str, Field], axes: str
+    ) -> None:
         self.balances, self._axes = balances, axes
         self.fields = {n: f.background for n, f in fields.items() if f.background != 0}
 
@@ -80,9 +82,11 @@ class Equilibrium:
         if not assumed:
             return []
         return [
-            f"Warning: an external source is assumed to balance {', '.join(repr(n) for n in assumed)} as typed. "
-            "The result then depends on how that law is written: multiplying a law by a field leaves the "
-            "relation unchanged if and only if the background satisfies the law."
+            (
+                f"Warning: an external source is assumed to balance {', '.join(repr(n) for n in assumed)} as typed. "
+                "The result then depends on how that law is written: multiplying a law by a field leaves the "
+                "relation unchanged if and only if the background satisfies the law."
+            )
         ]
 
     def __repr__(self) -> str:
@@ -132,7 +136,7 @@ def scalar_entries(value: Expr, size: int) -> list[Expr]:
 def _entry(term: Expr, index: tuple[int, int]) -> Expr:
     made = S.One
     for a in term.args if not isinstance(term, Components) else (term,):
-        made *= a.entry(index) if isinstance(a, Components) else a  # type: ignore[assignment]
+        made *= a.entry(index) if isinstance(a, Components) else a
     return made
 
 

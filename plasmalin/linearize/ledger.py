@@ -134,7 +134,9 @@ class Ledger(Sequence[Piece]):
         law = None
         for name, term, pieces in self._groups():
             if name != law:
-                rows.append(f'<tr><th colspan="3" style="text-align:left">{html.escape(name)}</th></tr>')
+                rows.append(
+                    f'<tr><th colspan="3" style="text-align:left">{html.escape(name)}</th></tr>'
+                )
                 law = name
             rows.append(
                 f'<tr><td colspan="3" style="text-align:left">${html.escape(latex(term, self._axes))}$</td></tr>'

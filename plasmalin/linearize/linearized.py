@@ -84,7 +84,9 @@ class LinearizedModel:
         """The linearized laws by name, in vector form, first-order fields with a tilde."""
         return Equations(
             {
-                name: cast(Eq, Eq(self._side(name, "left"), self._side(name, "right"), evaluate=False))
+                name: cast(
+                    Eq, Eq(self._side(name, "left"), self._side(name, "right"), evaluate=False)
+                )
                 for name in self.laws
             },
             self.axes,
@@ -156,7 +158,15 @@ class LinearizedModel:
 
     def report(self) -> str:
         """Equations, background and ledger as plain text."""
-        parts = [self.title, "", str(self.equations), "", str(self.background), "", str(self.ledger)]
+        parts = [
+            self.title,
+            "",
+            str(self.equations),
+            "",
+            str(self.background),
+            "",
+            str(self.ledger),
+        ]
         return "\n".join(parts)
 
     def __str__(self) -> str:
@@ -211,8 +221,10 @@ def _check_determined(
             raise UndeterminedError(
                 f"law '{name}' has no first-order part on this background; leave it out or change the background"
             )
-    rows = [n for n, law in laws.items() for _ in range(_equation_count(law, ledger, axes))]
-    columns = [n for n, f in fields.items() for _ in range(entry_count(f.rank, len(axes), f.symmetric))]
+    rows = [n for n, law in laws.items() for _ in range(_equation_count(law, axes))]
+    columns = [
+        n for n, f in fields.items() for _ in range(entry_count(f.rank, len(axes), f.symmetric))
+    ]
     pairs = [(i, j) for i, r in enumerate(rows) for j, c in enumerate(columns) if c in occurs[r]]
     matched = maximum_matching(pairs, len(rows), len(columns))
     count = f"{len(rows)} component equations for {len(columns)} unknown components"
@@ -229,7 +241,7 @@ def _check_determined(
         )
 
 
-def _equation_count(law: Law, ledger: Ledger, axes: str) -> int:
+def _equation_count(law: Law, axes: str) -> int:
     return entry_count(law.rank, len(axes), law.rank == 2 and symmetric_law(law))
 
 

@@ -7,7 +7,7 @@ written as an author would: div(n0 v~) becomes n0 div v~, div(u0 n~) becomes (u0
 from __future__ import annotations
 
 from collections.abc import Callable
-from typing import Any
+from typing import Any, cast
 
 from sympy import Add, Expr, Mul, S, sqrt
 
@@ -72,15 +72,16 @@ def _distributed(kind: type[Operator], args: list[Expr]) -> Expr:
         return Add(*(_multiplier(x, args[1]) for x in Add.make_args(args[0])))
     if kind is Norm:
         return _norm(args[0])
-    total = [()]
+    total: list[tuple[Expr, ...]] = [()]
     for a in args:
-        total = [(*t, x) for t in total for x in Add.make_args(a)]  # type: ignore[misc]
+        total = [(*t, x) for t in total for x in Add.make_args(a)]
     return Add(*(RULES[kind](*choice) for choice in total))
 
 
 def _factored(term: Expr) -> tuple[Expr, Expr]:
     """A term as uniform scalar coefficient times the rest (a perturbation, operator or vector)."""
-    rest, scalars = [], []
+    rest: list[Expr] = []
+    scalars: list[Expr] = []
     for a in Mul.make_args(term):
         plain = is_uniform(a) and not isinstance(a, Components | Identity | Operator)
         (scalars if plain else rest).append(a)
@@ -183,9 +184,9 @@ def worked_out(kind: type[Operator], a: Components, b: Components) -> Expr:
     if kind is Cross:
         x, y = a.args, b.args
         pairs = ((1, 2), (2, 0), (0, 1))
-        return components(*(x[i] * y[j] - x[j] * y[i] for i, j in pairs))  # type: ignore[operator]
+        return components(*(x[i] * y[j] - x[j] * y[i] for i, j in pairs))
     if kind is Outer:
-        return components(*(tuple(p * q for q in b.args) for p in a.args))  # type: ignore[operator]
+        return components(*(tuple(p * q for q in b.args) for p in a.args))
     if kind is Ddot:
         return Add(*(a.entry((i, j)) * b.entry((i, j)) for i in size for j in size))
     if a.rank == 1 and b.rank == 1:
@@ -206,7 +207,9 @@ def _transpose(x: Expr) -> Expr:
     scalar, tensor = _scalar_out(x)
     if isinstance(tensor, Components):
         return scalar * components(*zip(*(row.args for row in tensor.args), strict=True))
-    symmetric = isinstance(tensor, Identity) or getattr(getattr(tensor, "field", None), "symmetric", False)
+    symmetric = isinstance(tensor, Identity) or getattr(
+        getattr(tensor, "field", None), "symmetric", False
+    )
     return scalar * (tensor if symmetric else Transpose(tensor))
 
 
@@ -223,15 +226,15 @@ def _norm(x: Expr) -> Expr:
     if not is_uniform(x):
         return Norm(x)
     values = _combined(x)
-    return sqrt(Add(*(v**2 for v in values.args)))  # type: ignore[operator]
+    return sqrt(Add(*(v**2 for v in values.args)))
 
 
 def _combined(x: Expr) -> Components:
     """A uniform vector as one set of components."""
     parts = [_scalar_out(term) for term in Add.make_args(x)]
-    size = range(parts[0][1].size)  # type: ignore[attr-defined]
-    made = components(*(Add(*(s * v.entry((i,)) for s, v in parts)) for i in size))  # type: ignore[attr-defined]
-    return made  # type: ignore[return-value]
+    size = range(parts[0][1].size)
+    made = components(*(Add(*(s * v.entry((i,)) for s, v in parts)) for i in size))
+    return cast(Components, made)
 
 
 def _multiplier(x: Expr, g: Expr) -> Expr:
@@ -262,4 +265,3 @@ RULES: dict[Any, Callable[..., Expr]] = {
     Transpose: _transpose,
     Trace: _trace,
 }
-

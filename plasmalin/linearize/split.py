@@ -21,7 +21,7 @@ Pieces = list[tuple[int, Expr]]
 """Pieces of an expression with the order of each; a `Remainder` counts as order 2 and holds all above."""
 
 
-class Remainder(Expr):
+class Remainder(Expr):  # type: ignore[misc]
     """What a smooth function leaves beyond first order: exact minus zeroth minus first order."""
 
     is_commutative = True
@@ -31,7 +31,7 @@ class Remainder(Expr):
     def exact(self) -> Expr:
         """The remainder written out."""
         whole, known = self.args
-        return whole - known  # type: ignore[operator, no-any-return]
+        return whole - known
 
     def _sympystr(self, printer: Printer) -> str:
         return f"O2[{printer._print(self.args[0])}]"
@@ -119,7 +119,7 @@ def _split_norm(expr: Norm) -> Pieces:
 
 def _value_is_zero(expr: Expr) -> bool:
     values: dict[Any, Any] = {b: b.value for b in expr.atoms(Background)}
-    return expr.xreplace(values) == 0
+    return bool(expr.xreplace(values) == 0)
 
 
 def _taylor(expr: Expr) -> Pieces:
@@ -152,7 +152,10 @@ def _slope(expr: Expr, shape: Expr, slot: Dummy) -> Expr:
 
 
 def _has_kink(slope: Expr) -> bool:
-    return any(f.__name__ in ("sign", "Heaviside", "DiracDelta", "Piecewise") for f in map(type, slope.atoms(Expr)))
+    return any(
+        f.__name__ in ("sign", "Heaviside", "DiracDelta", "Piecewise")
+        for f in map(type, slope.atoms(Expr))
+    )
 
 
 def first_order_factors(expr: Expr) -> int | None:

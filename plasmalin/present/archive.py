@@ -54,5 +54,12 @@ def header(branches: Branches) -> dict[str, object]:
 def csv_text(branches: Branches) -> str:
     """The rows of the branches as comma-separated values, 17 digits."""
     buffer = io.StringIO()
-    np.savetxt(buffer, rows(branches), fmt=["%d"] + ["%.17g"] * 4, delimiter=",", header=",".join(columns(branches)), comments="")
+    np.savetxt(
+        buffer,
+        rows(branches),
+        fmt=["%d"] + ["%.17g"] * 4,
+        delimiter=",",
+        header=",".join(columns(branches)),
+        comments="",
+    )
     return buffer.getvalue()

@@ -48,7 +48,11 @@ def _axes() -> Any:
 
 def _dress(branches: Branches, upper: Any, lower: Any, scale: float) -> None:
     s = branches.along[np.isfinite(branches.along)]
-    unit = " (rad/m)" if branches.name in {k.name for k in branches.wave.wave_symbols if "k" in k.name} else ""
+    unit = (
+        " (rad/m)"
+        if branches.name in {k.name for k in branches.wave.wave_symbols if "k" in k.name}
+        else ""
+    )
     if len(s) and s.min() > 0 and s.max() > WIDE * s.min():
         upper.set_xscale("log")
         lower.set_xscale("log")
@@ -58,7 +62,9 @@ def _dress(branches: Branches, upper: Any, lower: Any, scale: float) -> None:
     growth = branches.growth_rate[np.isfinite(branches.growth_rate)]
     if not len(growth) or np.abs(growth).max() <= FLAT * scale:
         lower.set_ylim(-1, 1)
-        lower.text(0.5, 0.5, "no growth, no damping", transform=lower.transAxes, ha="center", va="bottom")
+        lower.text(
+            0.5, 0.5, "no growth, no damping", transform=lower.transAxes, ha="center", va="bottom"
+        )
     upper.set_ylabel(r"frequency $\mathrm{Re}\,\omega$ (rad/s)")
     lower.set_ylabel(r"growth rate $\mathrm{Im}\,\omega$ (rad/s)")
     lower.set_xlabel(f"{branches.name}{unit}")

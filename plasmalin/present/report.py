@@ -27,7 +27,9 @@ def relation_text(wave: WaveMatrix) -> str:
     lines = [f"{relation!r}"]
     for f in relation.factors:
         short = len(f.polynomial) <= LONG_RELATION // 4
-        lines.append(str(f) if short else f"a factor of degree {f.degree} in ω, {len(f.polynomial)} terms")
+        lines.append(
+            str(f) if short else f"a factor of degree {f.degree} in ω, {len(f.polynomial)} terms"
+        )
     return "\n".join(lines)
 
 
@@ -60,9 +62,17 @@ def growth_text(branches: Branches) -> str:
 def derivation(wave: WaveMatrix, branches: Branches | None) -> str:
     """The whole derivation in Markdown: laws, background, every term's fate, relation, branches."""
     linear = wave.linear
-    parts = [f"# {linear.title}", "", "Plane waves exp[i(k·x − ωt)], SI units, growth is Im ω > 0.", ""]
+    parts = [
+        f"# {linear.title}",
+        "",
+        "Plane waves exp[i(k·x − ωt)], SI units, growth is Im ω > 0.",
+        "",
+    ]
     parts += ["## Nonlinear laws", ""]
-    parts += [f"- {name}: ${latex(law.lhs, linear.axes)} = {latex(law.rhs, linear.axes)}$" for name, law in linear.laws.items()]
+    parts += [
+        f"- {name}: ${latex(law.lhs, linear.axes)} = {latex(law.rhs, linear.axes)}$"
+        for name, law in linear.laws.items()
+    ]
     parts += ["", "## Background", "", "```text", str(linear.background), "```", ""]
     if linear.conditions:
         parts += ["Conditions:", ""]
@@ -71,12 +81,29 @@ def derivation(wave: WaveMatrix, branches: Branches | None) -> str:
     parts += [f"- {name}: ${linear.equations.latex(name)}$" for name in linear.equations]
     parts += ["", "## Every term and its fate", "", "```text", str(linear.ledger), "```", ""]
     vector = ", ".join(paper(c) for c in wave.k)
-    parts += ["## Dispersion relation", "", f"Wave vector ({vector}) along {', '.join(linear.axes)}.", ""]
+    parts += [
+        "## Dispersion relation",
+        "",
+        f"Wave vector ({vector}) along {', '.join(linear.axes)}.",
+        "",
+    ]
     formula = wave.relation._repr_latex_()
     parts += [f"${formula.strip('$')}$" if formula else f"```text\n{relation_text(wave)}\n```", ""]
     parts += [f"{wave.relation.degree} roots and {wave.relation.zero_modes} zero modes.", ""]
     if branches is not None:
-        parts += ["## Branches", "", growth_text(branches), "", "```text", branch_table(branches), "```", ""]
-        parts += [f"- branches of one factor meet ({e.kind}) at {branches.name} = {e.at:.10g}" for e in branches.events]
+        parts += [
+            "## Branches",
+            "",
+            growth_text(branches),
+            "",
+            "```text",
+            branch_table(branches),
+            "```",
+            "",
+        ]
+        parts += [
+            f"- branches of one factor meet ({e.kind}) at {branches.name} = {e.at:.10g}"
+            for e in branches.events
+        ]
         parts += ["", f"Roots: {branches.method}.", ""]
     return "\n".join([*parts, CAUTION, ""])

@@ -86,9 +86,9 @@ class Branches:
 
     @property
     def phase_velocity(self) -> NDArray[np.float64]:
-        """Re omega / |k|, m/s, shape (branch, n)."""
+        """Re omega over the length of k, m/s, shape (branch, n)."""
         with np.errstate(divide="ignore", invalid="ignore"):
-            return self.frequency / self.wave_number
+            return np.asarray(self.frequency / self.wave_number)
 
     @property
     def group_velocity(self) -> NDArray[np.float64]:
@@ -100,7 +100,9 @@ class Branches:
             When what varies is not a wave number.
         """
         if self.name not in {s.name for s in self.wave.wave_symbols}:
-            raise ValuesError(f"group_velocity needs a sweep over a wave number, this one is over '{self.name}'")
+            raise ValuesError(
+                f"group_velocity needs a sweep over a wave number, this one is over '{self.name}'"
+            )
         return self.slope.real
 
     def most_unstable(self) -> tuple[float, complex, int]:
@@ -206,18 +208,20 @@ def find_branches(
         raise ValuesError(f"'{name}' is what varies; leave it out of the other values")
     points = np.asarray(along, dtype=float)
     if points.ndim != 1 or not len(points):
-        raise ValuesError(f"the values of '{name}' have shape {points.shape}; give one dimension, not empty")
+        raise ValuesError(
+            f"the values of '{name}' have shape {points.shape}; give one dimension, not empty"
+        )
     numbers = gather(wave, with_defaults(wave, {**values, name: points}), waves)
     if numbers.shape != points.shape or len(numbers.swept) > 1 + _complex_scalars(numbers, name):
-        raise ValuesError("only one quantity varies along branches; give single numbers for the others")
+        raise ValuesError(
+            "only one quantity varies along branches; give single numbers for the others"
+        )
     return _Sweep(wave, pose(wave, numbers), numbers, name).branches(points, zero_modes)
 
 
 def _complex_scalars(numbers: Numbers, name: str) -> int:
     """Complex wave numbers are kept among the swept though they do not vary."""
-    return sum(
-        s.name != name and bool((a == a.flat[0]).all()) for s, a in numbers.swept.items()
-    )
+    return sum(s.name != name and bool((a == a.flat[0]).all()) for s, a in numbers.swept.items())
 
 
 class _Sweep:
@@ -246,9 +250,14 @@ class _Sweep:
         tracks.append(Enclosure.empty(len(s), zeros, ZERO))
         slopes.append(np.zeros((len(s), zeros), complex))
         factor += [-1] * zeros
-        arrays = [np.concatenate([getattr(t, n) for t in tracks], axis=1) for n in ("omega", "radius", "status")]
+        arrays = [
+            np.concatenate([getattr(t, n) for t in tracks], axis=1)
+            for n in ("omega", "radius", "status")
+        ]
         arrays.append(np.concatenate(slopes, axis=1))
-        first = np.lexsort((arrays[0][0].imag, arrays[0][0].real)) if len(s) else np.arange(len(factor))
+        first = (
+            np.lexsort((arrays[0][0].imag, arrays[0][0].real)) if len(s) else np.arange(len(factor))
+        )
         omega, radius, status, slope = (a[place][:, first].T for a in arrays)
         omega, radius = omega.copy(), radius.copy()
         omega[:, ~np.isfinite(points)], radius[:, ~np.isfinite(points)] = np.nan, np.inf
@@ -259,7 +268,9 @@ class _Sweep:
 
     def _factor(self, family: Any, s: NDArray[np.float64]) -> tuple[Enclosure, Any, list[Event]]:
         found = self._enclosed(family, s)
-        scaled = ScaledFamily(family, found.omega, [hi for hi, _ in grid_of(self.problem, self.at(s))])
+        scaled = ScaledFamily(
+            family, found.omega, [hi for hi, _ in grid_of(self.problem, self.at(s))]
+        )
 
         def slopes(omega: NDArray[Any], points: NDArray[np.float64]) -> NDArray[Any]:
             numbers = self.at(points)
@@ -272,8 +283,7 @@ class _Sweep:
 
         slope = slopes(found.omega, s)
         order, events = track(solve, s, found.omega, slope)
-        taken = (np.take_along_axis(a, order, axis=1) for a in (found.omega, found.radius, found.status))
-        return Enclosure(*taken, found.method), np.take_along_axis(slope, order, axis=1), events
+        return found.reordered(order), np.take_along_axis(slope, order, axis=1), events
 
     def _enclosed(self, family: Any, s: NDArray[np.float64]) -> Enclosure:
         return enclose(family, grid_of(self.problem, self.at(s)), points=len(s))

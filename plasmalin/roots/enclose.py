@@ -46,6 +46,13 @@ class Enclosure:
         shape = (points, roots)
         return cls(np.zeros(shape, complex), np.zeros(shape), np.full(shape, status, "U16"), method)
 
+    def reordered(self, order: NDArray[np.int64]) -> Enclosure:
+        """The roots of every point in another order."""
+        omega, radius, status = (
+            np.take_along_axis(a, order, axis=1) for a in (self.omega, self.radius, self.status)
+        )
+        return Enclosure(omega, radius, status, self.method)
+
 
 def enclose(family: Family, grid: Grid, *, points: int) -> Enclosure:
     """All roots of one family, `family.degree` at every point, unsorted."""
@@ -97,7 +104,12 @@ def _upward(x: Fraction) -> float:
 
 
 def merge(
-    parts: Sequence[Enclosure], multiplicities: Sequence[int], *, points: int, zeros: int, degree: int
+    parts: Sequence[Enclosure],
+    multiplicities: Sequence[int],
+    *,
+    points: int,
+    zeros: int,
+    degree: int,
 ) -> Enclosure:
     """The roots of all factors with their multiplicities and exact zeros, sorted by (Re, Im).
 
@@ -111,9 +123,9 @@ def merge(
         far.omega[:], far.radius[:] = complex(np.inf, 0.0), np.inf
         columns.append(far)
     omega, radius, status = (
-        np.concatenate([getattr(c, name) for c in columns], axis=1) for name in ("omega", "radius", "status")
+        np.concatenate([getattr(c, name) for c in columns], axis=1)
+        for name in ("omega", "radius", "status")
     )
-    order = np.lexsort((omega.imag, omega.real), axis=1)
-    taken = (np.take_along_axis(a, order, axis=1) for a in (omega, radius, status))
     methods = dict.fromkeys(p.method for p in parts)
-    return Enclosure(*taken, "; ".join(methods))
+    whole = Enclosure(omega, radius, status, "; ".join(methods))
+    return whole.reordered(np.lexsort((omega.imag, omega.real), axis=1))

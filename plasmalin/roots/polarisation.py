@@ -16,7 +16,11 @@ SWEEPS = 20
 
 def null_vectors(wave: WaveMatrix, numbers: Numbers, omega: NDArray[Any]) -> NDArray[np.complex128]:
     """Null vectors at every root, shape (branch, n, amplitudes); rows and columns are equilibrated by powers of two."""
-    matrix = np.stack([_matrix(wave, numbers, w) for w in omega]) if len(omega) else np.zeros((0, 0, 0, 0))
+    matrix = (
+        np.stack([_matrix(wave, numbers, w) for w in omega])
+        if len(omega)
+        else np.zeros((0, 0, 0, 0))
+    )
     bad = ~np.isfinite(matrix).all(axis=(-2, -1))
     matrix[bad] = 0.0
     rows, columns = _equilibrated(np.abs(matrix))
@@ -53,4 +57,6 @@ def _equilibrated(size: NDArray[np.float64]) -> tuple[NDArray[np.float64], NDArr
 
 
 def _inverse_size(largest: NDArray[np.float64]) -> NDArray[np.float64]:
-    return np.where(largest > 0, np.ldexp(1.0, -np.frexp(np.where(largest > 0, largest, 1.0))[1]), 1.0)
+    return np.where(
+        largest > 0, np.ldexp(1.0, -np.frexp(np.where(largest > 0, largest, 1.0))[1]), 1.0
+    )

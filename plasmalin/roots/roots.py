@@ -34,7 +34,11 @@ class Roots(NDArrayOperatorsMixin):
     """
 
     def __init__(
-        self, omega: NDArray[np.complex128], radius: NDArray[np.float64], status: NDArray[Any], method: str
+        self,
+        omega: NDArray[np.complex128],
+        radius: NDArray[np.float64],
+        status: NDArray[Any],
+        method: str,
     ) -> None:
         self.omega, self.radius, self.status, self.method = omega, radius, status, method
 

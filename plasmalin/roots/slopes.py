@@ -46,7 +46,7 @@ class ScaledFamily:
                 p_s += rate[:, None] * z ** row[0]
             slope = -p_s / p_omega
         slope[~np.isfinite(slope)] = 0.0
-        return np.ldexp(1.0, self.scales[0]) * slope
+        return np.asarray(np.ldexp(1.0, self.scales[0]) * slope)
 
 
 def _monomial(

@@ -60,7 +60,9 @@ def pose(wave: WaveMatrix, numbers: Numbers) -> Problem:
     UndeterminedError
         When the determinant vanishes identically, in general or for these numbers.
     """
-    entries = {ij: c.subs(numbers.solved) if numbers.solved else c for ij, c in wave.entries.items()}
+    entries = {
+        ij: c.subs(numbers.solved) if numbers.solved else c for ij, c in wave.entries.items()
+    }
     degree, zero_modes = general_degree(wave)
     whole = determinant(entries, len(wave.rows), wave.omega, values=dict(numbers.fixed))
     if whole.degree < 0:
@@ -70,9 +72,7 @@ def pose(wave: WaveMatrix, numbers: Numbers) -> Problem:
         )
     whole = whole.primitive()[1]
     swept = tuple(g for g in whole.generators if g.free_symbols)
-    factors = tuple(
-        (_family(p, swept), m) for p, m in whole.factor()[1] if p.lowest == 0
-    )
+    factors = tuple((_family(p, swept), m) for p, m in whole.factor()[1] if p.lowest == 0)
     zeros = whole.lowest - zero_modes
     return Problem(factors, swept, zeros, degree, zero_modes)
 
@@ -111,11 +111,11 @@ def general_degree(wave: WaveMatrix) -> tuple[int, int]:
 
 def _family(polynomial: ExactPolynomial, swept: tuple[Expr, ...]) -> Family:
     """Numbers such as pi or sqrt(2) are folded into the coefficients; the swept stay."""
-    places = [polynomial.generators.index(g) + 1 if g in polynomial.generators else None for g in swept]
+    places = [
+        polynomial.generators.index(g) + 1 if g in polynomial.generators else None for g in swept
+    ]
     constants = {
-        i: _rational(g)
-        for i, g in enumerate(polynomial.generators, 1)
-        if not g.free_symbols
+        i: _rational(g) for i, g in enumerate(polynomial.generators, 1) if not g.free_symbols
     }
     gathered: dict[tuple[int, ...], list[Fraction]] = {}
     for exponents, re, im in polynomial.terms():
@@ -151,10 +151,14 @@ def _evaluated(generator: Expr, numbers: Numbers, size: int) -> tuple[NDArray[An
 
     symbols = sorted(generator.free_symbols, key=str)
     loose = [Dummy(s.name) for s in symbols]
-    function = lambdify(loose, _analytic(generator.subs(list(zip(symbols, loose, strict=True)))), "mpmath")
+    function = lambdify(
+        loose, _analytic(generator.subs(list(zip(symbols, loose, strict=True)))), "mpmath"
+    )
     with mpmath.workdps(DIGITS):
         columns = [_column(mpmath, s, numbers, size) for s in symbols]
-        values = [function(*(_mp(mpmath, x) for x in point)) for point in zip(*columns, strict=True)]
+        values = [
+            function(*(_mp(mpmath, x) for x in point)) for point in zip(*columns, strict=True)
+        ]
         dtype = np.complex128 if any(getattr(v, "imag", 0) != 0 for v in values) else np.float64
         hi = np.array([_double(v, dtype) for v in values], dtype=dtype)
         low = [_double(v - _mp(mpmath, h), dtype) for v, h in zip(values, hi.tolist(), strict=True)]

@@ -42,7 +42,10 @@ class Event:
 
 
 def track(
-    solve: Solve, s: NDArray[np.float64], omega: NDArray[np.complex128], slope: NDArray[np.complex128]
+    solve: Solve,
+    s: NDArray[np.float64],
+    omega: NDArray[np.complex128],
+    slope: NDArray[np.complex128],
 ) -> tuple[NDArray[np.int64], list[Event]]:
     """Branches through increasing s.
 
@@ -78,7 +81,10 @@ def _distinct(events: list[Event]) -> list[Event]:
     """Meetings that differ by rounding only, once; a coalescence counts before a crossing."""
     kept: list[Event] = []
     for event in sorted(events, key=lambda e: e.kind, reverse=True):
-        if not any(np.isclose(event.at, k.at, 1e-9) and np.isclose(event.omega, k.omega, 1e-6) for k in kept):
+        if not any(
+            np.isclose(event.at, k.at, 1e-9) and np.isclose(event.omega, k.omega, 1e-6)
+            for k in kept
+        ):
             kept.append(event)
     return sorted(kept, key=lambda e: e.at)
 
@@ -118,10 +124,12 @@ def _ranks_change(omega: NDArray[np.complex128], step: NDArray[np.int64]) -> NDA
     real = (omega[:-1].imag == 0) & (after.imag == 0)
     before_rank = np.argsort(np.argsort(np.where(real, omega[:-1].real, np.inf), axis=1), axis=1)
     after_rank = np.argsort(np.argsort(np.where(real, after.real, np.inf), axis=1), axis=1)
-    return (real & (before_rank != after_rank)).any(axis=1)
+    return np.asarray((real & (before_rank != after_rank)).any(axis=1))
 
 
-def _refined(solve: Solve, left: _End, right: _End, depth: int, events: list[Event]) -> NDArray[np.int64]:
+def _refined(
+    solve: Solve, left: _End, right: _End, depth: int, events: list[Event]
+) -> NDArray[np.int64]:
     """The permutation across an ambiguous interval, by halving."""
     middle_s = 0.5 * (left.s + right.s)
     if depth == DEEPEST or not left.s < middle_s < right.s:
@@ -143,7 +151,9 @@ def _met(left: _End, right: _End, events: list[Event]) -> NDArray[np.int64]:
     from scipy.optimize import linear_sum_assignment
 
     step, clear = _links(
-        np.array([left.s, right.s]), np.stack([left.omega, right.omega]), np.zeros((2, len(left.omega)), complex)
+        np.array([left.s, right.s]),
+        np.stack([left.omega, right.omega]),
+        np.zeros((2, len(left.omega)), complex),
     )
     del clear
     distance = np.abs(left.omega[:, None] - right.omega[None, :])
@@ -158,6 +168,8 @@ def _met(left: _End, right: _End, events: list[Event]) -> NDArray[np.int64]:
         turned = ((after[1] - after[0]) * np.conj(before[1] - before[0])) ** 2
         kind = "onset" if turned.real < 0 else "crossing"
         events.append(Event(kind, float(0.5 * (left.s + right.s)), complex(before.mean())))
-    return np.asarray(found, np.int64) if changed or len(set(step[0].tolist())) < len(found) else step[0]
-
-
+    return (
+        np.asarray(found, np.int64)
+        if changed or len(set(step[0].tolist())) < len(found)
+        else step[0]
+    )

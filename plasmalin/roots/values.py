@@ -6,7 +6,7 @@ import difflib
 from collections.abc import Mapping
 from dataclasses import dataclass
 from fractions import Fraction
-from typing import TYPE_CHECKING, Any, cast
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -71,9 +71,13 @@ def gather(wave: WaveMatrix, values: Mapping[Any, Any], waves: Mapping[str, Any]
     return numbers
 
 
-def _given(symbols: dict[str, Symbol], values: Mapping[Any, Any], waves: Mapping[str, Any]) -> dict[str, Any]:
+def _given(
+    symbols: dict[str, Symbol], values: Mapping[Any, Any], waves: Mapping[str, Any]
+) -> dict[str, Any]:
     if not isinstance(values, Mapping):
-        raise ValuesError(f"values must be a mapping from names to numbers, not {type(values).__name__}")
+        raise ValuesError(
+            f"values must be a mapping from names to numbers, not {type(values).__name__}"
+        )
     named = {key.name if isinstance(key, Symbol) else str(key): v for key, v in values.items()}
     twice = sorted(set(named) & set(waves))
     if twice:
@@ -82,7 +86,9 @@ def _given(symbols: dict[str, Symbol], values: Mapping[Any, Any], waves: Mapping
     for name in given:
         if name not in symbols:
             near = difflib.get_close_matches(name, symbols, 3)
-            hint = f"did you mean {' or '.join(near)}?" if near else f"known are {', '.join(symbols)}"
+            hint = (
+                f"did you mean {' or '.join(near)}?" if near else f"known are {', '.join(symbols)}"
+            )
             raise ValuesError(f"'{name}' is not a parameter or wave number of this model; {hint}")
     return given
 
@@ -100,7 +106,7 @@ def _array(name: str, value: Any, is_wave: bool) -> NDArray[Any]:
             raise ValuesError(f"'{name}' is a real parameter but its value is complex")
     if array.ndim == 0 and not np.isfinite(array):
         raise ValuesError(f"'{name}' = {value!r} is not finite; give a finite number")
-    return cast("NDArray[Any]", array)
+    return array
 
 
 def _broadcast(arrays: Mapping[Symbol, NDArray[Any]]) -> tuple[int, ...]:
@@ -178,9 +184,7 @@ def _check_residual(law: str, residual: Expr, numbers: Numbers) -> None:
 
     terms = Add.make_args(expand(residual))
     symbols = sorted(residual.free_symbols, key=str)
-    numeric = [
-        numbers.swept[s] if s in numbers.swept else float(numbers.fixed[s]) for s in symbols
-    ]
+    numeric = [numbers.swept[s] if s in numbers.swept else float(numbers.fixed[s]) for s in symbols]
     with np.errstate(all="ignore"):
         parts = [np.abs(np.asarray(lambdify(symbols, t, "numpy")(*numeric))) for t in terms]
         total = np.abs(np.asarray(lambdify(symbols, Add(*terms), "numpy")(*numeric)))

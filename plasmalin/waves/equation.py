@@ -78,7 +78,11 @@ def _pairs(variables: tuple[Symbol, ...], orders: Orders) -> list[tuple[Symbol, 
 
 
 def _partial_text(variable: str, order: int) -> str:
-    return "" if not order else f"∂_{variable}" + (str(order).translate(SUPERSCRIPT) if order > 1 else "")
+    return (
+        ""
+        if not order
+        else f"∂_{variable}" + (str(order).translate(SUPERSCRIPT) if order > 1 else "")
+    )
 
 
 def _partial_latex(variable: str, order: int) -> str:
@@ -90,7 +94,13 @@ def _joined(parts: list[tuple[str, Expr]], show: Any) -> str:
     for text, c in parts:
         negative = c.could_extract_minus_sign()
         size = -c if negative else c
-        body = text if size == 1 else f"({show(size)}) {text}" if size.is_Add else f"{show(size)} {text}"
+        body = (
+            text
+            if size == 1
+            else f"({show(size)}) {text}"
+            if size.is_Add
+            else f"{show(size)} {text}"
+        )
         out += (" − " if negative else " + ") + body if out else ("−" if negative else "") + body
     return out
 
@@ -142,7 +152,9 @@ def moving_part(wave: WaveMatrix, column: int) -> ExactPolynomial:
     return whole.exact_div(shared.primitive()[1]).primitive()[1]
 
 
-def _without(entries: Mapping[tuple[int, int], Expr], row: int, column: int) -> dict[tuple[int, int], Expr]:
+def _without(
+    entries: Mapping[tuple[int, int], Expr], row: int, column: int
+) -> dict[tuple[int, int], Expr]:
     return {
         (i - (i > row), j - (j > column)): c
         for (i, j), c in entries.items()

@@ -9,7 +9,7 @@ from __future__ import annotations
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 from itertools import product
-from typing import Any
+from typing import Any, TypeAlias
 
 from sympy import Abs, Add, Expr, I, Integer, Mul, Pow, S, Symbol, sqrt
 
@@ -39,7 +39,7 @@ from ..declare.operators import (
 )
 
 Index = tuple[int, ...]
-Key = Symbol | None
+Key: TypeAlias = Symbol | None
 Form = dict[Index, dict[Key, Expr]]
 
 CYCLIC = ((0, 1, 2), (1, 2, 0), (2, 0, 1))
@@ -83,9 +83,7 @@ def lower(expr: Expr, wave: Wave) -> Form:
         return _product_of(expr.args, wave)
     if isinstance(expr, Perturbation):
         field = expr.field
-        return {
-            i: {wave.amplitude(field, i): S.One} for i in indices(field.rank, wave.size)
-        }
+        return {i: {wave.amplitude(field, i): S.One} for i in indices(field.rank, wave.size)}
     if isinstance(expr, Components):
         found = {i: lower(expr.entry(i), wave).get((), {}) for i in indices(expr.rank, wave.size)}
         return {i: row for i, row in found.items() if row}
@@ -146,11 +144,7 @@ def _product_of(args: tuple[Any, ...], wave: Wave) -> Form:
     for a in args:
         if a not in plain:
             other = lower(a, wave)
-            form = {
-                i + j: _row_product(x, y)
-                for i, x in form.items()
-                for j, y in other.items()
-            }
+            form = {i + j: _row_product(x, y) for i, x in form.items() for j, y in other.items()}
     return form
 
 

@@ -204,7 +204,9 @@ class WaveMatrix:
 
         return find_roots(self, values or {}, waves)
 
-    def branches(self, name: str, along: Any, values: Mapping[Any, Any] | None = None, **waves: Any) -> Branches:
+    def branches(
+        self, name: str, along: Any, values: Mapping[Any, Any] | None = None, **waves: Any
+    ) -> Branches:
         """All branches omega along a wave number or a parameter, tracked through crossings.
 
         Parameters
@@ -308,7 +310,9 @@ def wave_vector(linear: LinearizedModel, direction: Any, angle: str | None) -> t
     """The wave vector's components along the model's axes."""
     axes = linear.axes
     if (direction is None) == (angle is None):
-        raise DeclarationError('give either a direction ("x" or one entry per axis) or angle="theta"')
+        raise DeclarationError(
+            'give either a direction ("x" or one entry per axis) or angle="theta"'
+        )
     if angle is not None:
         if not {"x", "z"} <= set(axes):
             raise DeclarationError(f"angle= needs the axes x and z; the model has '{axes}'")
@@ -317,7 +321,9 @@ def wave_vector(linear: LinearizedModel, direction: Any, angle: str | None) -> t
         return tuple(along[a] for a in axes)
     if isinstance(direction, str):
         if direction not in tuple(axes):
-            raise DeclarationError(f"direction {direction!r} is not an axis of the model ('{axes}')")
+            raise DeclarationError(
+                f"direction {direction!r} is not an axis of the model ('{axes}')"
+            )
         k = _wave_symbol(linear, "k")
         return tuple(k if a == direction else 0 * k for a in axes)
     if not isinstance(direction, tuple | list) or len(direction) != len(axes):

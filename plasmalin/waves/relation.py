@@ -117,9 +117,14 @@ class Relation:
     def _symbol(self, key: Any) -> Any:
         if not isinstance(key, str):
             return key
-        known = {**{s.name: s for g in self.exact.generators for s in g.free_symbols}, **self._symbols}
+        known = {
+            **{s.name: s for g in self.exact.generators for s in g.free_symbols},
+            **self._symbols,
+        }
         if key not in known:
-            raise DeclarationError(f"'{key}' is not in the relation; it holds {', '.join(sorted(known))}")
+            raise DeclarationError(
+                f"'{key}' is not in the relation; it holds {', '.join(sorted(known))}"
+            )
         return known[key]
 
     def solve_for(self, name: str) -> list[Expr]:
@@ -155,9 +160,7 @@ class Relation:
         return "\n".join(lines)
 
     def __repr__(self) -> str:
-        return (
-            f"<Relation: degree {self.degree}, zero modes {self.zero_modes}, {len(self.exact)} terms>"
-        )
+        return f"<Relation: degree {self.degree}, zero modes {self.zero_modes}, {len(self.exact)} terms>"
 
     def latex(self) -> str:
         """The relation as a product of its factors, set equal to zero."""
@@ -165,7 +168,9 @@ class Relation:
         for f in self.factors:
             power = f"^{{{f.multiplicity}}}" if f.multiplicity > 1 else ""
             body = latex(collected(f.polynomial))
-            parts.append(f"{body}{power}" if f.polynomial.lowest else rf"\left({body}\right){power}")
+            parts.append(
+                f"{body}{power}" if f.polynomial.lowest else rf"\left({body}\right){power}"
+            )
         return " ".join(parts) + " = 0"
 
     def _repr_latex_(self) -> str | None:
@@ -180,7 +185,11 @@ def _by_powers(polynomial: ExactPolynomial) -> str:
     out = ""
     for power, c in normalized_coefficients(polynomial).items():
         term = paper(c * polynomial.main**power) if not isinstance(c, Add) else _bracketed(c, power)
-        joint = (" − " if term.startswith("−") else " + ") if out else ("−" if term.startswith("−") else "")
+        joint = (
+            (" − " if term.startswith("−") else " + ")
+            if out
+            else ("−" if term.startswith("−") else "")
+        )
         out += joint + term.removeprefix("−")
     return out
 

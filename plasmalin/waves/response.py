@@ -70,8 +70,12 @@ def _rows_that_stay(wave: WaveMatrix, columns: list[int]) -> list[int]:
     taken = _matched(evolving, set(), wave)
     taken |= _matched(set(pairs), taken, wave)
     if len(taken) < len(others):
-        names = ", ".join(wave.columns[j].symbol.name for j in others if j not in dict(taken).values())
-        raise UndeterminedError(f"{names} cannot be eliminated: no law is left that determines them")
+        names = ", ".join(
+            wave.columns[j].symbol.name for j in others if j not in dict(taken).values()
+        )
+        raise UndeterminedError(
+            f"{names} cannot be eliminated: no law is left that determines them"
+        )
     used = {i for i, _ in taken}
     return [i for i in range(len(wave.rows)) if i not in used]
 

@@ -6,7 +6,7 @@ from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
-from sympy import Expr, S, Symbol, expand
+from sympy import Expr, Float, Rational, S, Symbol, expand
 
 from ..errors import DeclarationError, RankError
 from .constants import codata
@@ -444,8 +444,8 @@ class FluidModel:
         return Law(law.name, self._canonical(law.lhs), self._canonical(law.rhs), law.rank)
 
     def _canonical(self, expr: Expr) -> Expr:
-        """The expression in the model's own symbols and fields, found by name."""
-        replaced: dict[Any, Any] = {}
+        """The expression in the model's own symbols and fields; a decimal is that decimal, exactly."""
+        replaced: dict[Any, Any] = {x: Rational(repr(float(x))) for x in expr.atoms(Float)}
         for atom in expr.atoms(Symbol, Field):
             own = self._own(atom)
             if own is not atom:

@@ -217,7 +217,7 @@ class PaperLatex(LatexPrinter):  # type: ignore[misc]
 
 
 class LawPrinter(StrPrinter):  # type: ignore[misc]
-    """Text that the law reader takes back, time derivatives first, doubles to the last digit."""
+    """Text that the law reader takes back, time derivatives first."""
 
     def _as_ordered_terms(self, expr: Any, order: Any = None) -> list[Any]:
         return sorted(Add.make_args(expr), key=term_order)
@@ -227,9 +227,6 @@ class LawPrinter(StrPrinter):  # type: ignore[misc]
 
     def _print_ImaginaryUnit(self, expr: Any) -> str:
         return "i"
-
-    def _print_Float(self, expr: Any) -> str:
-        return repr(float(expr))
 
 
 def law_text(expr: Expr) -> str:

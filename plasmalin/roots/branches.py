@@ -13,7 +13,7 @@ from sympy import Symbol
 
 from ..errors import DeclarationError, ValuesError
 from .enclose import ZERO, Enclosure, enclose
-from .polarisation import null_vectors
+from .polarization import null_vectors
 from .slopes import ScaledFamily
 from .solve import Problem, grid_of, pose, rates_of
 from .tracking import Event, track
@@ -77,10 +77,7 @@ class Branches:
 
         square = Add(*(c**2 for c in self.wave.k))
         symbols = sorted(square.free_symbols, key=str)
-        columns = [
-            self.numbers.swept[s] if s in self.numbers.swept else float(self.numbers.fixed[s])
-            for s in symbols
-        ]
+        columns = (self.numbers.doubles(s) for s in symbols)
         value = lambdify(symbols, sqrt(square), "numpy")(*columns)
         return np.broadcast_to(np.asarray(value), self.along.shape)
 

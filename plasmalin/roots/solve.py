@@ -6,11 +6,13 @@ Each irreducible factor is a `Family`: one polynomial in omega for every grid po
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass
 from fractions import Fraction
 from random import Random
 from typing import TYPE_CHECKING, Any
 
+import mpmath
 import numpy as np
 from numpy.typing import NDArray
 from sympy import Abs, Dummy, Expr, Symbol, lambdify, sqrt
@@ -19,6 +21,7 @@ from ..errors import UndeterminedError
 from ..exact.determinant import determinant
 from ..exact.polynomial import ExactPolynomial
 from .family import Family, Grid
+from .values import high_precision
 
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
@@ -147,42 +150,22 @@ def _grid(generator: Expr, numbers: Numbers) -> tuple[NDArray[Any], NDArray[Any]
 
 
 def _evaluated(generator: Expr, numbers: Numbers, size: int) -> tuple[NDArray[Any], NDArray[Any]]:
-    import mpmath
-
     symbols = sorted(generator.free_symbols, key=str)
     loose = [Dummy(s.name) for s in symbols]
-    function = lambdify(
-        loose, _analytic(generator.subs(list(zip(symbols, loose, strict=True)))), "mpmath"
-    )
+    renamed = generator.subs(list(zip(symbols, loose, strict=True)))
+    function = lambdify(loose, _analytic(renamed), "mpmath")
     with mpmath.workdps(DIGITS):
-        columns = [_column(mpmath, s, numbers, size) for s in symbols]
-        values = [
-            function(*(_mp(mpmath, x) for x in point)) for point in zip(*columns, strict=True)
-        ]
-        dtype = np.complex128 if any(getattr(v, "imag", 0) != 0 for v in values) else np.float64
-        hi = np.array([_double(v, dtype) for v in values], dtype=dtype)
-        low = [_double(v - _mp(mpmath, h), dtype) for v, h in zip(values, hi.tolist(), strict=True)]
-    return hi, np.array(low, dtype=dtype)
-
-
-def _column(mpmath: Any, symbol: Any, numbers: Numbers, size: int) -> list[Any]:
-    if symbol in numbers.swept:
-        return list(numbers.swept[symbol].reshape(size).tolist())
-    value = numbers.fixed[symbol]
-    return [mpmath.mpf(value.numerator) / value.denominator] * size
+        values = [function(*(numbers.at(s, i) for s in symbols)) for i in range(size)]
+        whole = any(getattr(v, "imag", 0) != 0 for v in values)
+        rounded: Callable[[Any], Any] = complex if whole else lambda v: float(v.real)
+        hi = [rounded(v) for v in values]
+        low = [rounded(v - high_precision(h)) for v, h in zip(values, hi, strict=True)]
+    return np.array(hi), np.array(low)
 
 
 def _analytic(generator: Expr) -> Expr:
     """|k| as sqrt(k^2), which continues it to complex k with positive real part."""
     return generator.replace(Abs, lambda a: sqrt(a**2))
-
-
-def _mp(mpmath: Any, value: Any) -> Any:
-    return mpmath.mpmathify(complex(value) if isinstance(value, complex) else value)
-
-
-def _double(value: Any, dtype: Any) -> Any:
-    return complex(value) if dtype is np.complex128 else float(value.real)
 
 
 def rates_of(problem: Problem, numbers: Numbers, symbol: Symbol) -> list[NDArray[Any]]:
@@ -192,12 +175,8 @@ def rates_of(problem: Problem, numbers: Numbers, symbol: Symbol) -> list[NDArray
     for generator in problem.generators:
         slope = _loose_slope(generator, symbol)
         symbols = sorted(slope.free_symbols, key=str)
-        columns = [
-            numbers.swept[s].reshape(size) if s in numbers.swept else float(numbers.fixed[s])
-            for s in symbols
-        ]
-        value = lambdify(symbols, slope, "numpy")(*columns)
-        rates.append(np.broadcast_to(np.asarray(value), (size,)))
+        value = lambdify(symbols, slope, "numpy")(*(numbers.doubles(s) for s in symbols))
+        rates.append(np.broadcast_to(np.asarray(value), numbers.shape).reshape(size))
     return rates
 
 

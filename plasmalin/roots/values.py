@@ -8,6 +8,7 @@ from dataclasses import dataclass
 from fractions import Fraction
 from typing import TYPE_CHECKING, Any
 
+import mpmath
 import numpy as np
 from numpy.typing import NDArray
 from sympy import Expr, Symbol
@@ -43,6 +44,22 @@ class Numbers:
     solved: dict[Symbol, Expr]
     shape: tuple[int, ...]
 
+    def doubles(self, symbol: Symbol) -> Any:
+        """A symbol's array or its one number, in double precision."""
+        return self.swept[symbol] if symbol in self.swept else float(self.fixed[symbol])
+
+    def at(self, symbol: Symbol, point: int) -> Any:
+        """A symbol's number at one point of the flattened grid, for mpmath at its working precision."""
+        if symbol in self.swept:
+            return high_precision(self.swept[symbol].flat[point])
+        value = self.fixed[symbol]
+        return mpmath.mpf(value.numerator) / value.denominator
+
+
+def high_precision(value: Any) -> Any:
+    """A double or complex double as mpmath's exact equal."""
+    return mpmath.mpmathify(complex(value) if np.iscomplexobj(value) else float(value))
+
 
 def gather(wave: WaveMatrix, values: Mapping[Any, Any], waves: Mapping[str, Any]) -> Numbers:
     """Numbers for every symbol that the wave matrix holds.
@@ -74,10 +91,6 @@ def gather(wave: WaveMatrix, values: Mapping[Any, Any], waves: Mapping[str, Any]
 def _given(
     symbols: dict[str, Symbol], values: Mapping[Any, Any], waves: Mapping[str, Any]
 ) -> dict[str, Any]:
-    if not isinstance(values, Mapping):
-        raise ValuesError(
-            f"values must be a mapping from names to numbers, not {type(values).__name__}"
-        )
     named = {key.name if isinstance(key, Symbol) else str(key): v for key, v in values.items()}
     twice = sorted(set(named) & set(waves))
     if twice:
@@ -118,7 +131,17 @@ def _broadcast(arrays: Mapping[Symbol, NDArray[Any]]) -> tuple[int, ...]:
 
 
 def with_defaults(wave: WaveMatrix, values: Mapping[Any, Any]) -> dict[Any, Any]:
-    """The values with the model's own defaults for what is not given."""
+    """The values with the model's own defaults for what is not given.
+
+    Raises
+    ------
+    ValuesError
+        When `values` is not a mapping.
+    """
+    if not isinstance(values, Mapping):
+        raise ValuesError(
+            f"values must be a mapping from names to numbers, not {type(values).__name__}"
+        )
     named = {key.name if isinstance(key, Symbol) else key for key in values}
     defaults = {n: v for n, v in wave.linear.defaults.items() if n not in named}
     return {**defaults, **values}

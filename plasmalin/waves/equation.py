@@ -6,7 +6,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
-from sympy import Add, Derivative, Expr, Function, I, Symbol, cancel, latex
+from sympy import Add, Derivative, Expr, Function, I, Poly, Symbol, cancel, latex
 
 from ..declare.fields import decorated
 from ..declare.notation import SUPERSCRIPT, paper
@@ -164,11 +164,14 @@ def _without(
 
 def _derivatives(polynomial: ExactPolynomial, symbols: list[Any]) -> dict[Orders, Expr]:
     """omega -> i d_t and k -> −i d_x, divided by the coefficient of the leading time derivative."""
-    from sympy import Poly
-
+    for g in polynomial.generators:
+        if not g.is_Symbol and g.free_symbols & set(symbols):
+            raise NonPolynomialError(
+                f"the wave number enters through {g}, not as a polynomial, so there is no differential equation"
+            )
     terms: dict[Orders, Expr] = {}
     for power, coefficient in polynomial.coefficients().items():
-        for exponents, c in _in_wave_numbers(Poly, coefficient, symbols):
+        for exponents, c in _in_wave_numbers(coefficient, symbols):
             unit = I**power * (-I) ** sum(exponents)
             terms[(power, *exponents)] = unit * c
     ranked = sorted(terms, key=lambda o: (-o[0], sum(o[1:]), o))
@@ -176,12 +179,5 @@ def _derivatives(polynomial: ExactPolynomial, symbols: list[Any]) -> dict[Orders
     return {orders: cancel(terms[orders] / lead) for orders in ranked}
 
 
-def _in_wave_numbers(poly: Any, coefficient: Expr, symbols: list[Any]) -> Any:
-    if not symbols:
-        return [((), coefficient)]
-    made = poly(coefficient, *symbols)
-    if any(c.has(*symbols) for c in made.coeffs()):
-        raise NonPolynomialError(
-            "the wave numbers do not enter as a polynomial (a multiplier in |k|?), so there is no differential equation"
-        )
-    return made.terms()
+def _in_wave_numbers(coefficient: Expr, symbols: list[Any]) -> list[tuple[Orders, Expr]]:
+    return list(Poly(coefficient, *symbols).terms()) if symbols else [((), coefficient)]

@@ -73,7 +73,7 @@ def _as_free_as_it_may(raw: ExactPolynomial) -> ExactPolynomial:
     Only where they change the powers of main that occur are they used at once.
     """
     reduced = raw.reduced()
-    same = (raw.degree, raw.lowest) == (reduced.degree, reduced.lowest)
+    same = reduced is raw or (raw.degree, raw.lowest) == (reduced.degree, reduced.lowest)
     return raw if same else reduced
 
 

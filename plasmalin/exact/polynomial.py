@@ -51,7 +51,8 @@ class ExactPolynomial:
     @cached_property
     def lowest(self) -> int:
         """The lowest power of `main`; −1 for zero."""
-        return min((e[0] for e, _, _ in self.terms()), default=-1)
+        parts = (p for p in (self._value.re, self._value.im) if p)
+        return min((int(p.term_content().degrees()[0]) for p in parts), default=-1)
 
     def __len__(self) -> int:
         if self.is_real:
@@ -173,7 +174,8 @@ class ExactPolynomial:
 
     def reduced(self) -> ExactPolynomial:
         """With the known relations between generators used: cos^2 = 1 − sin^2, |k|^2 = k^2."""
-        return self._with(Reader(self._ring).reduced(self._value))
+        reader = Reader(self._ring)
+        return self._with(reader.reduced(self._value)) if reader.relations else self
 
     def real_if_possible(self) -> ExactPolynomial:
         """Times the power of i that makes it real, where there is one."""

@@ -254,3 +254,30 @@ def test_printing():
     parallel = cold_magnetized().plane_wave("z").relation
     assert parallel.zero_modes > 0
     assert "zero modes" in str(parallel)
+
+
+def test_leading_balances_of_two_fluids():
+    """m_e, k small: ion-acoustic waves at omega ~ k and the plasma oscillation of the electrons (Krall and Trivelpiece
+    1973, ch. 4, from memory)."""
+    model = plin.FluidModel("two fluids", axes="x")
+    e, eps0, me, mi, te, n0 = model.parameters("e eps0 m_e m_i T_e n_0", positive=True)
+    phi = model.scalar("phi")
+    densities = {}
+    for s, mass, charge, t in (("e", me, -e, te), ("i", mi, e, 0)):
+        n = densities[s] = model.scalar(f"n_{s}", background=n0)
+        v = model.vector(f"v_{s}")
+        model.law(f"{s} continuity", partial_t(n) + div(n * v))
+        model.law(f"{s} momentum", mass * n * partial_t(v), -charge * n * grad(phi) - t * grad(n))
+    model.law("Poisson", eps0 * laplacian(phi), e * (densities["e"] - densities["i"]))
+    wave = model.linearize().plane_wave("x")
+    slow, fast = wave.relation.leading({"m_e": 2, "k": 1})
+    (k,) = wave.wave_symbols
+    w = wave.omega
+    assert (slow.scaling, slow.roots, fast.scaling, fast.roots) == (1, 2, -1, 2)
+    assert sympy.simplify(sympy.solve(slow.expr, w**2)[0] - k**2 * te / mi) == 0
+    assert sympy.simplify(sympy.solve(fast.expr, w**2)[0] - n0 * e**2 / (eps0 * me)) == 0
+    (fixed,) = wave.relation.leading({"m_e": 2, "k": 1, "omega": -1})
+    assert fixed.expr == fast.expr
+    assert "ω ~ ε^(-1)" in str(fixed)
+    with pytest.raises(plin.DeclarationError, match="'T_x' is not in the relation"):
+        wave.relation.leading({"T_x": 1})

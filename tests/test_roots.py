@@ -13,6 +13,7 @@ from published import CASES, read
 
 import plasmalin as plin
 from plasmalin import advect, cross, curl, div, grad, laplacian, partial_t
+from plasmalin.exact.determinant import determinant
 
 E, ME, MP = plin.constants.e, plin.constants.m_e, plin.constants.m_p
 
@@ -275,6 +276,39 @@ def test_order_and_scale_of_laws_do_not_matter(order, factor):
     assert np.array_equal(*(w.roots(SI, k=1e3).omega for w in waves))
 
 
+def test_names_do_not_matter(beam):
+    """Field and parameter names that sort otherwise give the same bits."""
+    names = {
+        "e": "zeta",
+        "epsilon_0": "a",
+        "m_e": "N",
+        "m_p": "S",
+        "T_e": "beta",
+        "n_e0": "q",
+        "T_i": "I",
+        "u": "E",
+        "w": "gamma",
+        "n_i0": "c",
+    }
+    text = {
+        str(s): sympy.Symbol(names[str(s)], positive=s.is_positive, real=True)
+        for s in beam.linear.symbols.values()
+    }
+    entries = {
+        ij: c.subs({s: text[s.name] for s in beam.linear.symbols.values()}, simultaneous=True)
+        for ij, c in beam.entries.items()
+    }
+    values = {**beam.linear.defaults, **SI, "n_i0": SI["n_e0"]}
+    exact = {text[n]: Fraction(v) for n, v in values.items()} | {
+        beam.wave_symbols[0]: Fraction(1000)
+    }
+    renamed = determinant(entries, len(beam.rows), beam.omega, values=exact)
+    found = [
+        complex(float(re), float(im)) for re, im, _, m in renamed.complex_roots() for _ in range(m)
+    ]
+    assert_same(found, list(beam.roots(SI, k=1e3).omega), 1e-15)
+
+
 def test_units_do_not_matter(beam):
     """Lengths in millimeters, times in microseconds, masses in grams: roots scale by 1e-6."""
     length, time, mass = 1e3, 1e6, 1e3
@@ -307,10 +341,19 @@ GALILEAN = electrostatic().linearize().plane_wave("x")
 
 
 def test_galilean_shift_exactly():
-    """omega -> omega + k w in the relation itself, for electrostatic and magnetohydrodynamic sets."""
+    """omega -> omega + k w in the relation itself, for electrostatic, quasi-neutral and magnetohydrodynamic sets."""
     wave = GALILEAN
     w, k = wave.linear.symbols["w"], wave.wave_symbols[0]
     moved = wave.relation.as_expr().subs(wave.omega, wave.omega + k * w)
+    assert sympy.expand(moved - wave.relation.as_expr().subs(w, 0)) == 0
+
+    model = plin.FluidModel("moving quasi-neutral pair", axes="x")
+    phi, w = model.scalar("phi"), model.parameter("w")
+    ne, _ = species_laws(model, "e", 1, -1, (w,), lambda v: -grad(phi))
+    ni, _ = species_laws(model, "i", 1836, 1, (w,), lambda v: -grad(phi))
+    model.law("neutrality", ne - ni)
+    wave = model.linearize().plane_wave("x")
+    moved = wave.relation.as_expr().subs(wave.omega, wave.omega + wave.wave_symbols[0] * w)
     assert sympy.expand(moved - wave.relation.as_expr().subs(w, 0)) == 0
 
     model = plin.FluidModel("moving ideal fluid")

@@ -139,6 +139,11 @@ class FieldAtom(AtomicExpr):  # type: ignore[misc]
     def __getnewargs__(self) -> tuple[Any, ...]:
         raise NotImplementedError
 
+    @classmethod
+    def class_key(cls) -> tuple[int, int, str]:
+        """Behind symbols, so that products print parameters first."""
+        return 2, 1, cls.__name__
+
     def sort_key(self, order: Any = None) -> Any:
         return self.class_key(), (1, (self.label,)), S.One.sort_key(), S.One
 

@@ -177,6 +177,11 @@ class ExactPolynomial:
         reader = Reader(self._ring)
         return self._with(reader.reduced(self._value)) if reader.relations else self
 
+    def shorter(self) -> ExactPolynomial:
+        """As it is, or with the known relations used where that takes fewer terms: for reading."""
+        reduced = self.reduced()
+        return reduced if len(reduced) < len(self) else self
+
     def real_if_possible(self) -> ExactPolynomial:
         """Times the power of i that makes it real, where there is one."""
         return (
@@ -240,11 +245,11 @@ class ExactPolynomial:
         product = self._ring.constant(1)
         for p, m in parts:
             product = product * p**m
-        rest = self._with(self._value.over(product)).reduced().as_expr()
-        return sp.Mul(rest, *(self._with(p).reduced().as_expr() ** m for p, m in parts))
+        rest = self._with(self._value.over(product)).shorter().as_expr()
+        return sp.Mul(rest, *(self._with(p).shorter().as_expr() ** m for p, m in parts))
 
     def _normal(self) -> ExactPolynomial:
-        return self._with(self.reduced()._value.normalized()).real_if_possible()
+        return self._with(self.shorter()._value.normalized()).real_if_possible()
 
     def substitute(self, values: Mapping[Any, Any]) -> ExactPolynomial:
         """With symbols replaced by exact numbers or expressions; floats are their binary rationals.

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass
+from fractions import Fraction
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
@@ -13,6 +14,8 @@ from ..declare.notation import paper
 from ..errors import DeclarationError, UndeterminedError
 from ..exact.determinant import determinant, underdetermined_block
 from ..exact.polynomial import ExactPolynomial
+from ..exact.rational import exact_rational
+from .ordering import LeadingBalance, leading_balances
 
 if TYPE_CHECKING:
     from .matrix import WaveMatrix
@@ -152,6 +155,46 @@ class Relation:
                 continue
             found += closed_forms(factor, target) * factor.multiplicity
         return found
+
+    def leading(self, orders: Mapping[Any, Any]) -> list[LeadingBalance]:
+        """The leading balances when parameters scale with powers of a small number epsilon.
+
+        Parameters
+        ----------
+        orders : mapping of symbol or name to number
+            The power of epsilon of each parameter or wave number, ``{"m_e": 1, "k": 1}``; those not named are of
+            order one. Give "omega" to fix its scaling.
+
+        Returns
+        -------
+        list of LeadingBalance
+            One per scaling of omega, the fastest roots last.
+
+        Raises
+        ------
+        DeclarationError
+            When a name is not in the relation.
+
+        Examples
+        --------
+        >>> import plasmalin as plin
+        >>> model = plin.FluidModel("damped oscillator", axes="x")
+        >>> x = model.scalar("x")
+        >>> nu, w = model.parameters("nu w_0", positive=True)
+        >>> _ = model.law("x", plin.partial_t(plin.partial_t(x)) + nu * plin.partial_t(x) + w**2 * x)
+        >>> for balance in model.linearize().plane_wave("x").relation.leading({"w_0": 1}):
+        ...     print(balance)
+        ω ~ ε^(2): i ν ω − w_0² = 0
+        ω ~ ε^(0): i ν + ω = 0
+        """
+        fixed = None
+        weights: dict[Expr, Fraction] = {}
+        for key, order in orders.items():
+            if key in ("omega", self.exact.main):
+                fixed = exact_rational(order)
+            else:
+                weights[self._symbol(key)] = exact_rational(order)
+        return leading_balances(self.exact, weights, fixed)
 
     def __str__(self) -> str:
         lines = [str(f) for f in self.factors if f.polynomial.lowest == 0]

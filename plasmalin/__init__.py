@@ -5,6 +5,7 @@ so that growth is Im omega > 0; right-handed axes x, y, z; wave numbers in rad/m
 """
 
 from . import constants as constants
+from .declare import laws as laws
 from .declare.fields import components as components
 from .declare.files import load as load
 from .declare.files import load_example as load_example
@@ -67,6 +68,7 @@ __all__ = [
     "k_z",
     "k_abs",
     "constants",
+    "laws",
     "PlasmalinError",
     "DeclarationError",
     "RankError",

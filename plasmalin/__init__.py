@@ -9,6 +9,8 @@ from .declare import laws as laws
 from .declare.fields import components as components
 from .declare.files import load as load
 from .declare.files import load_example as load_example
+from .declare.mixture import Species as Species
+from .declare.mixture import mixture as mixture
 from .declare.model import FluidModel as FluidModel
 from .declare.operators import advect as advect
 from .declare.operators import cross as cross
@@ -44,6 +46,8 @@ __version__ = "0.1.0"
 
 __all__ = [
     "FluidModel",
+    "Species",
+    "mixture",
     "load",
     "load_example",
     "partial_t",

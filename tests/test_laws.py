@@ -3,7 +3,7 @@
 import numpy as np
 import pytest
 import sympy
-from published import CASES, read
+from published import CASES
 
 import plasmalin as plin
 from plasmalin import laws
@@ -263,8 +263,3 @@ def test_bohm_dispersion():
 def test_magnetic_force_needs_a_velocity():
     with pytest.raises(plin.DeclarationError, match="needs both magnetic= and v="):
         laws.lorentz_force(sympy.Symbol("n"), 1, magnetic=plin.components(0, 0, 1))
-
-
-def test_cases_read_their_parameters():
-    assert set(TWICE) <= set(CASES)
-    assert all(read(name)["relation"] for name in TWICE)

@@ -163,6 +163,8 @@ class Field(FieldAtom):
         0, 1 or 2.
     background : Expr
         The zeroth-order value: an expression in parameters, 0, or a `Components`.
+    gradient : Expr
+        Its uniform local gradient, 0 or a `Components`: of a scalar d_i n_0, of a vector d_i v_j.
     perturbation : Perturbation
         The first-order field, printed with a tilde.
     symmetric : bool

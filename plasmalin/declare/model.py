@@ -18,7 +18,7 @@ from .reader import read_expression, read_law
 if TYPE_CHECKING:
     from ..linearize.linearized import LinearizedModel
 
-RESERVED = {s.name for s in WAVE_SYMBOLS} | {"i", "t", "identity", "components", "sqrt", "exp"}
+RESERVED = {s.name for s in WAVE_SYMBOLS} | {"i", "identity", "components", "sqrt", "exp"}
 
 
 @dataclass(frozen=True)
@@ -119,7 +119,9 @@ class FluidModel:
 
     # Fields ------------------------------------------------------------------------------------
 
-    def scalar(self, name: str, background: Any = 0, *, latex: str | None = None) -> Field:
+    def scalar(
+        self, name: str, background: Any = 0, *, gradient: Any = 0, latex: str | None = None
+    ) -> Field:
         """Declare a scalar field.
 
         Parameters
@@ -127,7 +129,10 @@ class FluidModel:
         name : str
             Any identifier; E, N, S, I, beta, gamma, lambda are ordinary names.
         background : 0, str or expression, default 0
-            The uniform zeroth-order value. A name that is not yet a parameter becomes one.
+            The zeroth-order value. A name that is not yet a parameter becomes one.
+        gradient : 0 or tuple, default 0
+            The uniform gradient of the background in the local approximation, one entry per axis. What such terms
+            give depends on the chosen variables at order 1/kL: with log n as the field an exponential profile is exact.
         latex : str, optional
             How to print the name in LaTeX.
 
@@ -141,11 +146,13 @@ class FluidModel:
         DeclarationError
             When the name is taken, or the background holds a field.
         """
-        return self._declare(
-            Field(self._new_name(name), 0, self._value(background), latex_name=latex)
-        )
+        name = self._new_name(name)
+        value, slope = self._value(background), self._vector(name, gradient)
+        return self._declare(Field(name, 0, value, slope, latex_name=latex))
 
-    def vector(self, name: str, background: Any = 0, *, latex: str | None = None) -> Field:
+    def vector(
+        self, name: str, background: Any = 0, *, gradient: Any = 0, latex: str | None = None
+    ) -> Field:
         """Declare a vector field.
 
         Parameters
@@ -153,6 +160,9 @@ class FluidModel:
         name : str
         background : 0 or tuple, default 0
             One entry per axis of the model, each 0, a name or an expression in parameters.
+        gradient : 0 or tuple of tuples, default 0
+            The uniform gradient d_i v_j of the background: one row per direction i of change. A wave for which the
+            flow along k changes does not exist; `plane_wave` refuses it.
         latex : str, optional
             How to print the name in LaTeX (it is set bold).
 
@@ -166,7 +176,8 @@ class FluidModel:
             When the name is taken, or the background does not fit the axes.
         """
         name = self._new_name(name)
-        return self._declare(Field(name, 1, self._vector(name, background), latex_name=latex))
+        value, slope = self._vector(name, background), self._tensor(name, gradient)
+        return self._declare(Field(name, 1, value, slope, latex_name=latex))
 
     def tensor(
         self, name: str, background: Any = 0, *, symmetric: bool = True, latex: str | None = None
@@ -467,11 +478,11 @@ class FluidModel:
 
     def _refreshed(self, field: Field) -> Field:
         """The field with its background in symbols that were declared after it."""
-        background = self._canonical(field.background) if field.background.free_symbols else None
-        if background is None or background == field.background:
+        background, gradient = (self._canonical(x) for x in (field.background, field.gradient))
+        if (background, gradient) == (field.background, field.gradient):
             return field
         args = list(field.__getnewargs__())
-        args[2] = background
+        args[2:4] = background, gradient
         self._fields[field.name] = Field(*args)
         return self._fields[field.name]
 

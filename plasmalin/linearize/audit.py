@@ -19,6 +19,7 @@ from sympy import Add, Expr, Mul, Pow, lambdify
 
 from ..declare.fields import Components, Field
 from ..declare.operators import Identity, Multiplier, Operator, k_abs, k_x, k_y, k_z, omega
+from ..errors import BackgroundError
 
 if TYPE_CHECKING:
     from .linearized import LinearizedModel
@@ -114,6 +115,12 @@ class Setting:
 
 def audit(linear: LinearizedModel, *, seed: int = 0) -> Audit:
     """Compare the nonlinear laws with the wave matrix; see `LinearizedModel.audit`."""
+    sloped = [f.name for f in linear.fields.values() if f.gradient != 0]
+    if sloped:
+        raise BackgroundError(
+            f"the audit takes periodic backgrounds; that of {', '.join(sloped)} has a gradient: "
+            "audit the model without gradient="
+        )
     wave = linear.plane_wave(tuple(f"k_{axis}" for axis in linear.axes))
     random = np.random.default_rng(seed)
     for _ in range(DRAWS):

@@ -10,7 +10,7 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from typing import Any, overload
 
-from sympy import Expr
+from sympy import Expr, S, expand
 
 from ..declare.fields import Background
 from ..declare.model import Law
@@ -160,21 +160,34 @@ def entries(law: Law, assumed: bool) -> Iterator[Piece]:
     for side, expr in (("left", law.lhs), ("right", law.rhs)):
         for term in sorted(terms(expr), key=term_order):
             for order, raw in split(term):
-                yield _judged(law.name, side, term, raw, order, assumed)
+                yield from _judged(law.name, side, term, raw, order, assumed)
 
 
-def _judged(law: str, side: str, term: Expr, raw: Expr, order: int, assumed: bool) -> Piece:
+def _judged(
+    law: str, side: str, term: Expr, raw: Expr, order: int, assumed: bool
+) -> Iterator[Piece]:
+    """The piece, and beside it what the gradient of a background adds."""
     if order > 1:
         reason = "product of perturbations"
-        return Piece(law, side, term, raw, raw, order, DROPPED, reason)
+        yield Piece(law, side, term, raw, raw, order, DROPPED, reason)
+        return
     value = settle(raw)
-    if value == 0:
-        return Piece(law, side, term, raw, value, order, VANISHES, _why_nothing(raw))
-    if order == 0:
-        reason = "by an assumed external source" if assumed else ""
-        return Piece(law, side, term, raw, value, order, BALANCE, reason)
-    _assert_linear(law, term, value)
-    return Piece(law, side, term, raw, value, order, KEPT, "")
+    added = _from_gradients(raw, value)
+    if value == 0 and added == 0:
+        yield Piece(law, side, term, raw, value, order, VANISHES, _why_nothing(raw))
+    source = "by an assumed external source" if assumed else ""
+    for part, why in ((value, ""), (added, "background gradient, O(1/kL)")):
+        if part != 0 and order == 0:
+            yield Piece(law, side, term, raw, part, order, BALANCE, source)
+        elif part != 0:
+            _assert_linear(law, term, part)
+            yield Piece(law, side, term, raw, part, order, KEPT, why)
+
+
+def _from_gradients(raw: Expr, value: Expr) -> Expr:
+    if all(b.field.gradient == 0 for b in raw.atoms(Background)):
+        return S.Zero
+    return expand(settle(raw, sloped=True)) - expand(value)
 
 
 def _why_nothing(raw: Expr) -> str:

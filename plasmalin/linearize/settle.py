@@ -1,7 +1,10 @@
 """What a piece is worth on the background: values put in, derivatives of uniform backgrounds gone.
 
-The result is a sum of terms, each a uniform coefficient times an operator on one perturbation,
-written as an author would: div(n0 v~) becomes n0 div v~, div(u0 n~) becomes (u0 . grad) n~.
+The result is a sum of terms, each a coefficient of the background times an operator on one perturbation, written as
+an author would: div(n0 v~) becomes n0 div v~, div(u0 n~) becomes (u0 . grad) n~.
+
+A background with a gradient is affine in position while the operators are worked out (product rule), and position is
+then set to zero: the local approximation.
 """
 
 from __future__ import annotations
@@ -9,9 +12,16 @@ from __future__ import annotations
 from collections.abc import Callable
 from typing import Any, cast
 
-from sympy import Add, Expr, Mul, S, sqrt
+from sympy import Add, Dummy, Expr, Mul, S, sqrt
 
-from ..declare.fields import Background, Components, Perturbation, components
+from ..declare.fields import (
+    Background,
+    Components,
+    Field,
+    Perturbation,
+    axis_names,
+    components,
+)
 from ..declare.operators import (
     WAVE_SYMBOLS,
     Advect,
@@ -37,24 +47,78 @@ from ..errors import BackgroundError
 
 
 def is_uniform(expr: Expr) -> bool:
-    """Whether an expression with values put in is the same everywhere and at all times."""
+    """Whether an expression with values put in is of the background, no perturbation in it."""
     return not expr.atoms(Perturbation)
 
 
-def settle(expr: Expr) -> Expr:
-    """A raw piece (of order 0 or 1) with the background's values put in, as a sum of plain terms."""
+def settle(expr: Expr, *, sloped: bool = False) -> Expr:
+    """A raw piece (of order 0 or 1) with the background's values put in, as a sum of plain terms.
+
+    Without `sloped` every background counts as uniform.
+    """
+    value = _settled(expr, sloped)
+    places = value.free_symbols & ALL_POSITIONS
+    here: dict[Any, Any] = dict.fromkeys(places, S.Zero)
+    return _settled(value.xreplace(here), False) if places else value
+
+
+def _settled(expr: Expr, sloped: bool) -> Expr:
     if isinstance(expr, Background):
-        return expr.value
+        return _affine(expr.field) if sloped and expr.field.gradient != 0 else expr.value
     if not expr.args or not expr.atoms(Background, Operator):
         return expr
-    args = [settle(a) for a in expr.args]
+    args = [_settled(a, sloped) for a in expr.args]
     if isinstance(expr, Mul):
         return _product(args)
     if isinstance(expr, Components):
-        return components(*args) if expr.rank == 1 else components(*(r.args for r in args))
+        made = components(*args) if expr.rank == 1 else components(*(r.args for r in args))
+        return _by_unit_vectors(made)
     if isinstance(expr, Operator):
         return S.Zero if any(a == 0 for a in args) else _distributed(type(expr), args)
     return expr.func(*args)
+
+
+POSITIONS = {size: tuple(Dummy(axis) for axis in axis_names(size)) for size in (1, 2, 3)}
+"""Position along the axes of a model with so many axes."""
+ALL_POSITIONS = {x for places in POSITIONS.values() for x in places}
+
+
+def _affine(field: Field) -> Expr:
+    """A background with its gradient: value + x.gradient, a vector by unit vectors."""
+    slope = field.gradient
+    places = POSITIONS[slope.size]
+    if field.rank == 0:
+        return field.background + Add(*(x * g for x, g in zip(places, slope.args, strict=True)))
+    size = range(slope.size)
+    base = field.background if field.background != 0 else None
+    entries = [
+        (base.entry((j,)) if base is not None else S.Zero)
+        + Add(*(places[i] * slope.entry((i, j)) for i in size))
+        for j in size
+    ]
+    return _by_unit_vectors(components(*entries))
+
+
+def _by_unit_vectors(vector: Expr) -> Expr:
+    """A vector that changes with position as scalars times unit vectors, so that the product rule sees them."""
+    if not vector.free_symbols & ALL_POSITIONS:
+        return vector
+    size = range(vector.size)
+    units = (components(*(int(i == j) for j in size)) for i in size)
+    return Add(*(entry * unit for entry, unit in zip(vector.args, units, strict=True)))
+
+
+def _slope(coefficient: Expr) -> Expr:
+    """The gradient of a scalar of the background; 0 where it is uniform."""
+    places = coefficient.free_symbols & ALL_POSITIONS
+    if not places:
+        return S.Zero
+    axes = next(p for p in POSITIONS.values() if places & set(p))
+    return _by_unit_vectors(components(*(coefficient.diff(x) for x in axes)))
+
+
+def _dotted(a: Expr, b: Expr) -> Expr:
+    return S.Zero if a == 0 or b == 0 else _distributed(Dot, [a, b])
 
 
 def _product(args: list[Expr]) -> Expr:
@@ -97,66 +161,81 @@ def _vector_times_scalar(rest: Expr) -> tuple[Expr, Expr] | None:
     return fixed[0], Mul(*(a for a in args if a is not fixed[0]))
 
 
-def _through(kind: type[Operator]) -> Callable[[Expr], Expr]:
-    """Rule for partial_t and laplacian: uniform factors of any rank come out."""
+def _partial_t(x: Expr) -> Expr:
+    if is_uniform(x):
+        return S.Zero
+    coefficient, rest = _factored(x)
+    pair = _vector_times_scalar(rest)
+    if pair:
+        return coefficient * pair[0] * PartialT(pair[1])
+    return coefficient * PartialT(rest)
 
-    def rule(x: Expr) -> Expr:
-        if is_uniform(x):
-            return S.Zero
-        coefficient, rest = _factored(x)
-        pair = _vector_times_scalar(rest)
-        if pair:
-            return coefficient * pair[0] * kind(pair[1])
-        return coefficient * kind(rest)
 
-    return rule
+def _laplacian(x: Expr) -> Expr:
+    coefficient, rest = _factored(x)
+    slope = _slope(coefficient)
+    curved = _distributed(Div, [slope]) * rest if slope != 0 else S.Zero
+    if is_uniform(x):
+        return curved
+    pair = _vector_times_scalar(rest)
+    plain = pair[0] * Laplacian(pair[1]) if pair else Laplacian(rest)
+    along = 2 * _distributed(Advect, [slope, rest]) if slope != 0 else S.Zero
+    return coefficient * plain + along + curved
 
 
 def _grad(x: Expr) -> Expr:
-    if is_uniform(x):
-        return S.Zero
     coefficient, rest = _factored(x)
+    slope = _slope(coefficient)
+    extra = S.Zero
+    if slope != 0:
+        extra = _distributed(Outer, [slope, rest]) if rank_of(rest) else _product([slope, rest])
+    if is_uniform(x):
+        return extra
     pair = _vector_times_scalar(rest)
     if pair and isinstance(pair[0], Components):
-        return coefficient * Outer(Grad(pair[1]), pair[0])
-    return coefficient * Grad(rest)
+        return coefficient * Outer(Grad(pair[1]), pair[0]) + extra
+    return coefficient * Grad(rest) + extra
 
 
 def _div(x: Expr) -> Expr:
-    if is_uniform(x):
-        return S.Zero
     coefficient, rest = _factored(x)
+    extra = _dotted(_slope(coefficient), rest)
+    return extra if is_uniform(x) else coefficient * _plain_div(rest) + extra
+
+
+def _plain_div(rest: Expr) -> Expr:
     pair = _vector_times_scalar(rest)
     if pair and isinstance(pair[0], Identity):
-        return coefficient * Grad(pair[1])
+        return Grad(pair[1])
     if pair and pair[0].rank == 1:
-        return coefficient * Advect(pair[0], pair[1])
+        return Advect(pair[0], pair[1])
     if pair:
-        return coefficient * Dot(Grad(pair[1]), pair[0])
+        return Dot(Grad(pair[1]), pair[0])
     if isinstance(rest, Outer):
         a, b = rest.args
-        return coefficient * (Advect(a, b) if is_uniform(a) else b * Div(a))
-    return coefficient * Div(rest)
+        return Advect(a, b) if is_uniform(a) else b * Div(a)
+    return Div(rest)
 
 
 def _curl(x: Expr) -> Expr:
-    if is_uniform(x):
-        return S.Zero
     coefficient, rest = _factored(x)
+    slope = _slope(coefficient)
+    extra = _distributed(Cross, [slope, rest]) if slope != 0 else S.Zero
+    if is_uniform(x):
+        return extra
     pair = _vector_times_scalar(rest)
-    if pair:
-        return coefficient * Cross(Grad(pair[1]), pair[0])
-    return coefficient * Curl(rest)
+    plain = Cross(Grad(pair[1]), pair[0]) if pair else Curl(rest)
+    return coefficient * plain + extra
 
 
 def _advect(a: Expr, x: Expr) -> Expr:
-    if is_uniform(x):
-        return S.Zero
     (ca, ra), (cx, rx) = _factored(a), _factored(x)
+    extra = _product([_dotted(ra, _slope(cx)), ca * rx])
+    if is_uniform(x):
+        return extra
     pair = _vector_times_scalar(rx)
-    if pair:
-        return ca * cx * pair[0] * Advect(ra, pair[1])
-    return ca * cx * Advect(ra, rx)
+    plain = pair[0] * Advect(ra, pair[1]) if pair else Advect(ra, rx)
+    return ca * cx * plain + extra
 
 
 def _bilinear(kind: type[Operator]) -> Callable[..., Expr]:
@@ -242,6 +321,11 @@ def _multiplier(x: Expr, g: Expr) -> Expr:
     if not is_uniform(x):
         coefficient, rest = _factored(x)
         return coefficient * Multiplier(rest, g)
+    if x.free_symbols & ALL_POSITIONS:
+        raise BackgroundError(
+            f"multiplier({x}, {g}) acts on a background with a gradient, which is not a sum of waves; "
+            "let it act on a perturbation only"
+        )
     at_rest = g.subs({s: 0 for s in WAVE_SYMBOLS if s is not k_abs}).subs(k_abs, 0)
     if at_rest.is_finite is False or at_rest.has(S.NaN, S.ComplexInfinity):
         raise BackgroundError(
@@ -252,8 +336,8 @@ def _multiplier(x: Expr, g: Expr) -> Expr:
 
 
 RULES: dict[Any, Callable[..., Expr]] = {
-    PartialT: _through(PartialT),
-    Laplacian: _through(Laplacian),
+    PartialT: _partial_t,
+    Laplacian: _laplacian,
     Grad: _grad,
     Div: _div,
     Curl: _curl,

@@ -7,13 +7,13 @@ from dataclasses import dataclass
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
-from sympy import Expr, ImmutableDenseMatrix, Symbol, cos, sin
+from sympy import Expr, ImmutableDenseMatrix, Symbol, cos, expand, sin
 
 from ..declare.fields import Field, decorated
 from ..declare.notation import paper
-from ..declare.operators import WAVE_SYMBOLS, omega
+from ..declare.operators import WAVE_SYMBOLS, Advect, Div, omega
 from ..declare.reader import read_expression
-from ..errors import DeclarationError, UndeterminedError
+from ..errors import BackgroundError, DeclarationError, UndeterminedError
 from ..linearize.ledger import KEPT
 from ..linearize.linearized import LinearizedModel, symmetric_law
 from .equation import WaveEquation, wave_equation
@@ -257,6 +257,7 @@ class WaveMatrix:
 def plane_wave(linear: LinearizedModel, direction: Any, angle: str | None) -> WaveMatrix:
     """Lower a linearized model for a wave vector; see `LinearizedModel.plane_wave`."""
     k = wave_vector(linear, direction, angle)
+    _refuse_sheared_flow(linear, k)
     columns = _amplitudes(linear)
     symbols = {(c.field.name, _index(c, linear.axes)): c.symbol for c in columns}
 
@@ -273,6 +274,25 @@ def plane_wave(linear: LinearizedModel, direction: Any, angle: str | None) -> Wa
     if len(rows) != len(columns):
         raise UndeterminedError(f"{len(rows)} component equations for {len(columns)} unknowns")
     return WaveMatrix(linear, k, tuple(rows), columns, entries)
+
+
+def _refuse_sheared_flow(linear: LinearizedModel, k: tuple[Expr, ...]) -> None:
+    """A flow whose part along k changes with position turns the wave vector: no plane wave is a solution."""
+    for name, field in linear.fields.items():
+        if field.rank != 1 or field.gradient == 0 or not _advects(linear, name):
+            continue
+        size = range(len(k))
+        changes = (sum(field.gradient.entry((i, j)) * k[j] for j in size) for i in size)
+        if any(expand(c) != 0 for c in changes):
+            raise BackgroundError(
+                f"the flow '{name}' along k changes with position, so that a plane wave does not exist; "
+                "choose a wave vector across the sheared component, or leave the gradient out"
+            )
+
+
+def _advects(linear: LinearizedModel, name: str) -> bool:
+    nodes = (n for law in linear.laws.values() for n in law.residual.atoms(Advect, Div))
+    return any(f.name == name for n in nodes for f in n.args[0].atoms(Field))
 
 
 def _index(column: Amplitude, axes: str) -> Index:

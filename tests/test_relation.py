@@ -281,3 +281,33 @@ def test_leading_balances_of_two_fluids():
     assert "ω ~ ε^(-1)" in str(fixed)
     with pytest.raises(plin.DeclarationError, match="'T_x' is not in the relation"):
         wave.relation.leading({"T_x": 1})
+
+
+def test_susceptibilities_sum_to_the_tensor():
+    """vacuum + chi_e + chi_i = the dispersion tensor; chi_s xx is −wp²/(w² − W²) (T. H. Stix 1992, from memory)."""
+    wave = cold_magnetized().plane_wave(("k_x", 0, "k_z"))
+    tensor = wave.reduce("E").matrix
+    parts = [wave.susceptibility(s).matrix for s in "ei"]
+    s, w = wave.linear.symbols, wave.omega
+    vacuum = tensor - parts[0] - parts[1]
+    assert not vacuum.applyfunc(sympy.simplify).free_symbols & {s["m_e"], s["m_i"], s["B_0"]}
+    for name, part in zip("ei", parts, strict=True):
+        wp2 = s[f"n_{name}"] * s["e"] ** 2 / (s["epsilon_0"] * s[f"m_{name}"])
+        gyro = s["e"] * s["B_0"] / s[f"m_{name}"]
+        chi = part[0, 0] / (-sympy.I * w)
+        assert sympy.simplify(chi + wp2 / (w**2 - gyro**2)) == 0
+    with pytest.raises(
+        plin.DeclarationError, match=r"no fields named '\.\.\._x'; the species are e, i"
+    ):
+        wave.susceptibility("x")
+
+
+def test_electrostatic_susceptibility():
+    """epsilon_0 k² (1 + chi_e) phi = 0 with chi_e = −wp²/(w² − gamma k² T/m)."""
+    wave = langmuir().plane_wave("x")
+    s, w, (k,) = wave.linear.symbols, wave.omega, wave.wave_symbols
+    chi = wave.susceptibility("e").matrix[0, 0]
+    wp2 = s["n_0"] * s["e"] ** 2 / (s["epsilon_0"] * s["m_e"])
+    warm = s["gamma_e"] * k**2 * s["T_e"] / s["m_e"]
+    vacuum = -s["epsilon_0"] * k**2
+    assert sympy.simplify(chi / vacuum + wp2 / (w**2 - warm)) == 0

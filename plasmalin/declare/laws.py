@@ -14,7 +14,7 @@ Examples
 partial_t(n) + div(n*v) = 0
 >>> _ = plin.laws.momentum(model, n, v, mass=m, force=plin.laws.lorentz_force(n, -e, potential=phi), pressure=n * T)
 >>> print(plin.laws.poisson(model, phi, e * (n_0 - n), epsilon_0=eps0))
--epsilon_0*laplacian(phi) = e*(n_0 - n)
+-epsilon_0*laplacian(phi) = e*(-n + n_0)
 """
 
 from __future__ import annotations

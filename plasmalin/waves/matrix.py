@@ -20,6 +20,7 @@ from .equation import WaveEquation, wave_equation
 from .lowering import Index, Wave, indices, lower
 from .relation import Relation, derive_relation
 from .response import Reduced, reduced
+from .susceptibility import susceptibility
 
 if TYPE_CHECKING:
     from ..roots.branches import Branches
@@ -144,6 +145,35 @@ class WaveMatrix:
             When the other unknowns are not determined by the other laws.
         """
         return reduced(self, fields)
+
+    def susceptibility(self, species: str, *fields: str) -> Reduced:
+        """One species' part of the dispersion tensor, per unit field.
+
+        Parameters
+        ----------
+        species : str
+            The ending of its field names: "e" for n_e, v_e.
+        *fields : str, optional
+            The fields of the tensor; "E" or else "phi" by default.
+
+        Returns
+        -------
+        Reduced
+            Without coupling between species, the tensor ``reduce("E")`` is that of empty space plus the sum of these.
+
+        Raises
+        ------
+        DeclarationError
+            When no field ends in ``_species``.
+
+        Examples
+        --------
+        >>> import plasmalin as plin
+        >>> wave = plin.load_example("electronegative-dusty-edge").linearize().plane_wave("x")
+        >>> wave.susceptibility("e", "phi").matrix[0, 0]
+        e**2*n_e0/T_e
+        """
+        return susceptibility(self, species, fields or _default_fields(self))
 
     def wave_equation(self, field: str) -> WaveEquation:
         """The one constant-coefficient partial differential equation that a field obeys.
@@ -274,6 +304,15 @@ def plane_wave(linear: LinearizedModel, direction: Any, angle: str | None) -> Wa
     if len(rows) != len(columns):
         raise UndeterminedError(f"{len(rows)} component equations for {len(columns)} unknowns")
     return WaveMatrix(linear, k, tuple(rows), columns, entries)
+
+
+def _default_fields(wave: WaveMatrix) -> tuple[str, ...]:
+    """E, or phi, or whatever single field belongs to no species."""
+    names = {c.field.name for c in wave.columns}
+    for usual in ("E", "phi"):
+        if usual in names:
+            return (usual,)
+    raise DeclarationError("name the fields of the tensor: there is neither 'E' nor 'phi'")
 
 
 def _refuse_sheared_flow(linear: LinearizedModel, k: tuple[Expr, ...]) -> None:

@@ -55,14 +55,21 @@ class Reduced:
 def reduced(wave: WaveMatrix, fields: tuple[str, ...]) -> Reduced:
     """The Schur complement on the named fields; see `WaveMatrix.reduce`."""
     columns = list(dict.fromkeys(j for name in fields for j in wave.column(name)))
-    rows = _rows_that_stay(wave, columns)
-    entries = eliminate(wave.entries, wave.omega, len(wave.rows), rows, columns)
+    rows = rows_that_stay(wave, columns)
+    entries = eliminate_for(wave, wave.entries, rows, columns)
     return Reduced(
         tuple(wave.amplitudes[j] for j in columns), tuple(str(wave.rows[i]) for i in rows), entries
     )
 
 
-def _rows_that_stay(wave: WaveMatrix, columns: list[int]) -> list[int]:
+def eliminate_for(
+    wave: WaveMatrix, entries: Mapping[tuple[int, int], Expr], rows: list[int], columns: list[int]
+) -> dict[tuple[int, int], Expr]:
+    """The Schur complement of (changed) entries of a wave matrix."""
+    return eliminate(entries, wave.omega, len(wave.rows), rows, columns)
+
+
+def rows_that_stay(wave: WaveMatrix, columns: list[int]) -> list[int]:
     """Rows left over when every other unknown takes an equation, evolution equations first."""
     others = [j for j in range(len(wave.rows)) if j not in columns]
     pairs = [(i, j) for (i, j) in wave.entries if j in others]

@@ -1,0 +1,57 @@
+"""One species' part of the dispersion tensor."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from sympy import together
+
+from ..errors import DeclarationError
+from .response import Reduced, eliminate_for, rows_that_stay
+
+if TYPE_CHECKING:
+    from .matrix import WaveMatrix
+
+
+def susceptibility(wave: WaveMatrix, species: str, fields: tuple[str, ...]) -> Reduced:
+    """What one species adds to the tensor of the fields; see `WaveMatrix.susceptibility`.
+
+    The other species are cut out of the equations that stay and of the field laws; the tensor without any species is
+    subtracted.
+    """
+    columns = list(dict.fromkeys(j for name in fields for j in wave.column(name)))
+    own, others = species_columns(wave, species)
+    rows = rows_that_stay(wave, columns)
+    field_rows = [i for i in range(len(wave.rows)) if not _belongs(wave, i, own | others)]
+    parts = []
+    for cut in (others, own | others):
+        entries = {
+            (i, j): c for (i, j), c in wave.entries.items() if not (i in field_rows and j in cut)
+        }
+        parts.append(eliminate_for(wave, entries, rows, columns))
+    with_it, without = parts
+    found = {ij: together(with_it.get(ij, 0) - without.get(ij, 0)) for ij in {*with_it, *without}}
+    return Reduced(
+        tuple(wave.amplitudes[j] for j in columns),
+        tuple(str(wave.rows[i]) for i in rows),
+        {ij: c for ij, c in found.items() if c != 0},
+    )
+
+
+def species_columns(wave: WaveMatrix, species: str) -> tuple[set[int], set[int]]:
+    """The columns of one species, fields named ``..._species``, and those of all other species."""
+    tags = {
+        c.field.name: c.field.name.rpartition("_")[2] for c in wave.columns if "_" in c.field.name
+    }
+    own = {j for j, c in enumerate(wave.columns) if tags.get(c.field.name) == species}
+    if not own:
+        known = ", ".join(dict.fromkeys(tags.values()))
+        raise DeclarationError(
+            f"no fields named '..._{species}'; the species are {known or 'not told apart by name'}"
+        )
+    return own, {j for j, c in enumerate(wave.columns) if c.field.name in tags} - own
+
+
+def _belongs(wave: WaveMatrix, row: int, columns: set[int]) -> bool:
+    """Whether an equation evolves an unknown of a species: omega multiplies one of its columns."""
+    return any((row, j) in wave.entries and wave.entries[row, j].has(wave.omega) for j in columns)

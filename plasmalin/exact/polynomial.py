@@ -15,6 +15,7 @@ from .ratio import Ratio
 from .reader import Reader, ring_of
 from .ring import Ring, transplanted
 from .univariate import Root, complex_roots
+from .yun import squarefree_parts
 
 
 class ExactPolynomial:
@@ -41,6 +42,11 @@ class ExactPolynomial:
     @property
     def is_real(self) -> bool:
         return not self._value.im
+
+    @property
+    def has_real_form(self) -> bool:
+        """Whether it is real in main, or in s with main = i s (damping without drift)."""
+        return self.is_real or self._turned_main(1).phase is not None
 
     @cached_property
     def degree(self) -> int:
@@ -238,6 +244,15 @@ class ExactPolynomial:
             if last is not None:
                 found.append((last, multiplicity))
         return found
+
+    def squarefree(self) -> tuple[ExactPolynomial, tuple[tuple[ExactPolynomial, int], ...]]:
+        """The content and square-free parts with their multiplicities (Yun 1976, SYMSAC).
+
+        For Gaussian coefficients with many digits this takes a small part of the time of `factor`.
+        """
+        content, primitive = self.primitive()
+        parts = squarefree_parts(primitive._value) if primitive.degree > 0 else []
+        return content, tuple((self._with(p)._normal(), m) for p, m in parts)
 
     def factored_expr(self) -> sp.Expr:
         """The same polynomial as an expression, written as a product of its factors."""

@@ -10,7 +10,14 @@ from functools import lru_cache
 from math import gcd
 from typing import TypeAlias
 
-from flint import fmpz_mod_mpoly, fmpz_mod_mpoly_ctx, fmpz_mpoly
+from flint import (
+    fmpz,
+    fmpz_mod_ctx,
+    fmpz_mod_mpoly,
+    fmpz_mod_mpoly_ctx,
+    fmpz_mod_poly_ctx,
+    fmpz_mpoly,
+)
 
 # 3 * 2**n + 1 is prime for these n; `_field` proves it again by Proth's theorem (from memory).
 PROTH_EXPONENTS = (189, 534, 2208, 3912, 20909)
@@ -28,13 +35,33 @@ def gaussian_gcd(p: Pair, q: Pair) -> Iterator[Pair]:
         yield _lifted(image, _leading(p, root), prime, pi, p[0])
 
 
+def proven_squarefree(p: Pair) -> bool:
+    """Whether an image of p with numbers for all variables but the first has distinct roots: then so has p.
+
+    False proves nothing.
+    """
+    prime, root, _ = _field(PROTH_EXPONENTS[0])
+    coefficients: dict[int, int] = {}
+    points = [pow(5, 3 + i, prime) for i in range(p[0].context().nvars())]
+    for part, unit in zip(p, (1, root), strict=True):
+        for exponents, c in part.terms():
+            value = int(c) * unit
+            for x, n in zip(points[1:], exponents[1:], strict=True):
+                value = value * pow(x, int(n), prime) % prime
+            degree = int(exponents[0])
+            coefficients[degree] = (coefficients.get(degree, 0) + value) % prime
+    ring = fmpz_mod_poly_ctx(fmpz_mod_ctx(prime))
+    highest = max(coefficients)
+    image = ring([coefficients.get(n, 0) for n in range(highest + 1)])
+    return int(image.degree()) == highest and int(image.gcd(image.derivative()).degree()) == 0
+
+
 @lru_cache
 def _field(n: int) -> tuple[int, int, tuple[int, int]]:
     """A prime 3 * 2**n + 1, a square root of -1 modulo it, and a Gaussian prime above it."""
     prime = 3 * 2**n + 1
-    root = next(
-        r for r in (pow(a, prime // 4, prime) for a in range(2, 60)) if r * r % prime == prime - 1
-    )
+    powers = (int(pow(fmpz(a), prime // 4, fmpz(prime))) for a in range(2, 60))
+    root = next(r for r in powers if r * r % prime == prime - 1)
     u, v = prime, root
     while u * u > prime:
         u, v = v, u % v

@@ -8,7 +8,8 @@ from typing import Any, TypeAlias
 
 import flint
 
-from .gaussian_field import squarefree_parts
+from .gaussian import Gaussian
+from .yun import squarefree_parts
 
 Root: TypeAlias = tuple[Fraction, Fraction, Fraction, int]
 """Real and imaginary part of the centre, radius, multiplicity."""
@@ -79,9 +80,26 @@ def _complex_coefficients(coefficients: list[tuple[Fraction, Fraction]], digits:
         return [(-im, re, radius, m) for re, im, radius, m in _real_coefficients(turned, digits)]
     return [
         (*centre, m)
-        for part, m in squarefree_parts(coefficients)
+        for part, m in _squarefree(coefficients)
         for centre in _simple_roots(part, digits)
     ]
+
+
+def _squarefree(
+    coefficients: list[tuple[Fraction, Fraction]],
+) -> list[tuple[list[tuple[Fraction, Fraction]], int]]:
+    ring = flint.fmpz_mpoly_ctx.get(("x", 1), flint.Ordering.lex)
+    scale = lcm(*(x.denominator for c in coefficients for x in c))
+    parts = (
+        ring.from_dict({(n,): int(c[i] * scale) for n, c in enumerate(coefficients) if c[i]})
+        for i in (0, 1)
+    )
+    return [(_listed(p), m) for p, m in squarefree_parts(Gaussian(*parts))]
+
+
+def _listed(p: Gaussian) -> list[tuple[Fraction, Fraction]]:
+    degree = max(int(part.degrees()[0]) for part in (p.re, p.im) if part)
+    return [(Fraction(int(p.re[(n,)])), Fraction(int(p.im[(n,)]))) for n in range(degree + 1)]
 
 
 def _real_when_turned(coefficients: list[tuple[Fraction, Fraction]]) -> list[Fraction] | None:

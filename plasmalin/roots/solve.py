@@ -6,7 +6,7 @@ Each irreducible factor is a `Family`: one polynomial in omega for every grid po
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from fractions import Fraction
 from random import Random
@@ -15,7 +15,7 @@ from typing import TYPE_CHECKING, Any
 import mpmath
 import numpy as np
 from numpy.typing import NDArray
-from sympy import Abs, Dummy, Expr, Symbol, lambdify, sqrt
+from sympy import Abs, Dummy, Expr, Rational, Symbol, cos, lambdify, sin, sqrt
 
 from ..errors import UndeterminedError
 from ..exact.determinant import determinant
@@ -67,7 +67,8 @@ def pose(wave: WaveMatrix, numbers: Numbers) -> Problem:
         ij: c.subs(numbers.solved) if numbers.solved else c for ij, c in wave.entries.items()
     }
     degree, zero_modes = general_degree(wave)
-    whole = determinant(entries, len(wave.rows), wave.omega, values=dict(numbers.fixed))
+    filled = _filled(entries, numbers.fixed)
+    whole = determinant(filled, len(wave.rows), wave.omega)
     if whole.degree < 0:
         raise UndeterminedError(
             "for these values the determinant vanishes identically; a value such as a zero wave number, "
@@ -75,9 +76,30 @@ def pose(wave: WaveMatrix, numbers: Numbers) -> Problem:
         )
     whole = whole.primitive()[1]
     swept = tuple(g for g in whole.generators if g.free_symbols)
-    factors = tuple((_family(p, swept), m) for p, m in whole.factor()[1] if p.lowest == 0)
+    parts = whole.factor()[1] if whole.has_real_form else whole.squarefree()[1]
+    factors = tuple((_family(p, swept), m) for p, m in parts if p.lowest == 0)
     zeros = whole.lowest - zero_modes
     return Problem(factors, swept, zeros, degree, zero_modes)
+
+
+def _filled(
+    entries: Mapping[tuple[int, int], Expr], fixed: Mapping[Symbol, Fraction]
+) -> dict[tuple[int, int], Expr]:
+    """Entries with the fixed numbers put in, sines and cosines of numbers as rationals on the unit circle."""
+    known = {s: Rational(v.numerator, v.denominator) for s, v in fixed.items()}
+    filled = {ij: c.xreplace(known) for ij, c in entries.items()}
+    angles = {a for c in filled.values() for a in c.atoms(sin, cos) if not a.free_symbols}
+    circle = {a: _on_circle(a) for a in angles}
+    return {ij: c.xreplace(circle) for ij, c in filled.items()} if circle else filled
+
+
+def _on_circle(function: Expr) -> Rational:
+    """sin a or cos a from a rational tan(a/2), so that sin^2 + cos^2 = 1 stays exact."""
+    half = _rational((function.args[0] / 2).evalf(DIGITS + 5))
+    with mpmath.workdps(DIGITS + 5):
+        t = _fraction(mpmath.tan(mpmath.mpf(half.numerator) / half.denominator))
+    value = 2 * t / (1 + t * t) if isinstance(function, sin) else (1 - t * t) / (1 + t * t)
+    return Rational(value.numerator, value.denominator)
 
 
 def grid_of(problem: Problem, numbers: Numbers) -> Grid:
@@ -135,7 +157,11 @@ def _family(polynomial: ExactPolynomial, swept: tuple[Expr, ...]) -> Family:
 
 
 def _rational(number: Expr) -> Fraction:
-    value = number.evalf(DIGITS)
+    return _fraction(number.evalf(DIGITS))
+
+
+def _fraction(value: Any) -> Fraction:
+    """An mpmath or SymPy float as the binary rational that it is."""
     sign, mantissa, exponent, _ = value._mpf_
     return Fraction(-int(mantissa) if sign else int(mantissa)) * Fraction(2) ** int(exponent)
 

@@ -250,3 +250,13 @@ def test_zero_polynomial_has_no_roots():
 def test_exact_rational_refuses(bad):
     with pytest.raises(plin.ValuesError):
         exact_rational(bad)
+
+
+def test_powers_with_doubles_as_exponents():
+    """n**1.4 and n**0.4 share one generator and differ by n; a double is no root of degree 2**52."""
+    power = sympy.Rational(exact_rational(1.4))
+    p = numerator(w * a**power - w**2 * a ** (power - 1) * b, w)
+    assert same_up_to_unit(p.as_expr(), w * a - w**2 * b)
+    assert len(p.generators) <= 3
+    q = polynomial(w * sympy.exp(sympy.Rational(exact_rational(0.3))) - a, w)
+    assert q.degree == 1

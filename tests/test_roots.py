@@ -423,3 +423,31 @@ def test_roots_are_eigenvalues(seed):
     found = eigvals(matrix, -slope)
     finite = found[np.isfinite(found) & (np.abs(found) < 1e8)]
     assert_same(finite, list(roots.omega), 1e-6)
+
+
+def test_functions_of_numbers():
+    """exp, sqrt, pi and powers with doubles as exponents, fixed and swept, against plain arithmetic."""
+    model = plin.FluidModel("functions", axes="x")
+    f = model.scalar("f", background="f_0")
+    g = model.scalar("g")
+    a, b, gamma = model.parameters("a b gamma", positive=True)
+    model.law("f", partial_t(f), g)
+    model.law(
+        "g",
+        partial_t(g),
+        sympy.sqrt(b) * sympy.pi * laplacian(f)
+        - sympy.exp(-a) * laplacian(laplacian(f**gamma))
+        + sympy.cos(a) * laplacian(f),
+    )
+    wave = model.linearize().plane_wave("x")
+    b_values = np.array([1.0, 2.0, 3.5])
+    f_0, expo, k, alpha = 2.0, 1.4, 0.7, 0.3
+    square = k**2 * (np.sqrt(b_values) * np.pi + np.cos(alpha)) + k**4 * np.exp(
+        -alpha
+    ) * expo * f_0 ** (expo - 1)
+    roots = wave.roots({"a": alpha, "b": b_values, "gamma": expo, "f_0": f_0}, k=k)
+    assert np.allclose(roots.omega[:, 1], np.sqrt(square), rtol=1e-14)
+    swept = wave.roots({"a": alpha, "b": 2.0, "gamma": [1.4, 1.5], "f_0": f_0}, k=k)
+    assert np.allclose(swept.omega[0], roots.omega[1], rtol=1e-14)
+    both = wave.roots({"a": alpha, "b": 2.0, "gamma": 1.4, "f_0": [2.0, 3.0]}, k=k)
+    assert np.allclose(both.omega[0], roots.omega[1], rtol=1e-14)

@@ -45,13 +45,15 @@ class Components(Expr):  # type: ignore[misc]
                 " & ".join(printer._print(x) for x in row.args) for row in self.args
             )
             return rf"\begin{{pmatrix}} {rows} \end{{pmatrix}}"
+        axes = getattr(printer, "axes", "")
+        names = axes if len(axes) == self.size else axis_names(self.size)
         terms = [
             (
                 rf"\hat{{\mathbf {axis}}}"
                 if a == 1
                 else rf"{printer.parenthesize(a, 50)}\,\hat{{\mathbf {axis}}}"
             )
-            for a, axis in zip(self.args, axis_names(self.size), strict=True)
+            for a, axis in zip(self.args, names, strict=True)
             if a != 0
         ]
         return terms[0] if len(terms) == 1 else rf"\left({' + '.join(terms)}\right)"

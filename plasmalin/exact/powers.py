@@ -19,6 +19,9 @@ Family: TypeAlias = tuple[sp.Expr, sp.Expr]
 # Only prime factors below this are split off the base of a root.
 SMALL_PRIMES = 2**15
 
+# Roots beyond this are generators of their own, not powers of a root.
+LARGEST_ROOT = 64
+
 
 @lru_cache(maxsize=4096)
 def split_power(expr: sp.Expr) -> tuple[tuple[Family, Fraction], ...]:
@@ -47,9 +50,21 @@ def _units(exponent: sp.Expr) -> Iterator[tuple[sp.Expr, Fraction]]:
     for term in sp.Add.make_args(sp.expand(exponent)):
         power, unit = term.as_coeff_Mul()
         if power.is_Rational or power.is_Float:
-            yield unit, exact_rational(power)
+            yield from _rational_units(unit, exact_rational(power))
         else:
             yield term, Fraction(1)
+
+
+def _rational_units(unit: sp.Expr, power: Fraction) -> Iterator[tuple[sp.Expr, Fraction]]:
+    """A power with a large denominator (a double such as 1.4) is its whole part and a unit of its own."""
+    if power.denominator <= LARGEST_ROOT:
+        yield unit, power
+        return
+    whole = power.numerator // power.denominator
+    if whole:
+        yield unit, Fraction(whole)
+    rest = power - whole
+    yield unit * sp.Rational(rest.numerator, rest.denominator), Fraction(1)
 
 
 def _primes(base: sp.Expr) -> Iterator[tuple[sp.Expr, int]]:

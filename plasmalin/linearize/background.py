@@ -10,7 +10,7 @@ from sympy import Add, Eq, Expr, S, expand, factor_terms
 
 from ..declare.fields import Components, Field, components
 from ..declare.model import Law
-from ..declare.notation import paper
+from ..declare.notation import name_text, paper
 from ..declare.operators import identity
 from ..errors import BackgroundError
 from .ledger import BALANCE, Ledger
@@ -70,7 +70,8 @@ class Equilibrium:
         self.fields = {n: f.background for n, f in fields.items() if f.background != 0}
 
     def __str__(self) -> str:
-        named = (f"{name} = {paper(value, self._axes)}" for name, value in self.fields.items())
+        shown = ((name_text(n), paper(value, self._axes)) for n, value in self.fields.items())
+        named = (f"{name} = {value}" for name, value in shown)
         lines = ["Background: " + (", ".join(named) or "everything is zero")]
         lines += [f"  {b.text(self._axes)}" for b in self.balances]
         lines += self.warnings

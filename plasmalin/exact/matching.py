@@ -5,7 +5,12 @@ from __future__ import annotations
 from collections.abc import Iterable, Mapping
 
 
-def maximum_matching(pairs: Iterable[tuple[int, int]], rows: int, columns: int) -> dict[int, int]:
+def maximum_matching(
+    pairs: Iterable[tuple[int, int]],
+    rows: int,
+    columns: int,
+    start: Mapping[int, int] | None = None,
+) -> dict[int, int]:
     """A largest set of (row, column) pairs without a row or column in common, by augmenting paths.
 
     Parameters
@@ -13,6 +18,8 @@ def maximum_matching(pairs: Iterable[tuple[int, int]], rows: int, columns: int) 
     pairs : iterable of (int, int)
         Where entries are.
     rows, columns : int
+    start : mapping of int to int, optional
+        A matching to begin with; its rows stay matched.
 
     Returns
     -------
@@ -22,9 +29,9 @@ def maximum_matching(pairs: Iterable[tuple[int, int]], rows: int, columns: int) 
     near: dict[int, list[int]] = {i: [] for i in range(rows)}
     for i, j in sorted(pairs):
         near[i].append(j)
-    owner: dict[int, int] = {}
+    owner = {j: i for i, j in (start or {}).items()}
     for i in range(rows):
-        if len(owner) < columns:
+        if len(owner) < columns and i not in (start or {}):
             _augment(i, near, owner, set())
     return {i: j for j, i in owner.items()}
 

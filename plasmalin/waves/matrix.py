@@ -171,7 +171,7 @@ class WaveMatrix:
         >>> import plasmalin as plin
         >>> wave = plin.load_example("electronegative-dusty-edge").linearize().plane_wave("x")
         >>> wave.susceptibility("e", "phi").matrix[0, 0]
-        e**2*n_e0/T_e
+        -e**2*n_e0/T_e
         """
         return susceptibility(self, species, fields or _default_fields(self))
 

@@ -70,27 +70,29 @@ def eliminate_for(
 
 
 def rows_that_stay(wave: WaveMatrix, columns: list[int]) -> list[int]:
-    """Rows left over when every other unknown takes an equation, evolution equations first."""
-    others = [j for j in range(len(wave.rows)) if j not in columns]
-    pairs = [(i, j) for (i, j) in wave.entries if j in others]
-    evolving = {(i, j) for i, j in pairs if wave.entries[i, j].has(wave.omega)}
-    taken = _matched(evolving, set(), wave)
-    taken |= _matched(set(pairs), taken, wave)
-    if len(taken) < len(others):
-        names = ", ".join(
-            wave.columns[j].symbol.name for j in others if j not in dict(taken).values()
-        )
-        raise UndeterminedError(
-            f"{names} cannot be eliminated: no law is left that determines them"
-        )
-    used = {i for i, _ in taken}
+    """Rows left over when every other unknown takes an equation."""
+    used = set(rows_taken(wave, columns).values())
     return [i for i in range(len(wave.rows)) if i not in used]
 
 
-def _matched(
-    pairs: set[tuple[int, int]], taken: set[tuple[int, int]], wave: WaveMatrix
-) -> set[tuple[int, int]]:
-    """A matching on what is still free."""
-    rows, columns = {i for i, _ in taken}, {j for _, j in taken}
-    free = [(i, j) for i, j in pairs if i not in rows and j not in columns]
-    return set(maximum_matching(free, len(wave.rows), len(wave.rows)).items())
+def rows_taken(wave: WaveMatrix, columns: list[int]) -> dict[int, int]:
+    """The equation that every other unknown takes, by column.
+
+    An unknown takes the law that evolves it where it can; laws that hold many unknowns, such as Poisson's and Ampere's,
+    are taken last, so that they stay.
+    """
+    others = [j for j in range(len(wave.rows)) if j not in columns]
+    pairs = [(i, j) for (i, j) in wave.entries if j in others]
+    count = {i: sum(row == i for row, _ in pairs) for i in range(len(wave.rows))}
+    ranked = sorted(count, key=lambda i: (count[i], i))
+    place = {i: r for r, i in enumerate(ranked)}
+    evolving = [(j, place[i]) for i, j in pairs if wave.entries[i, j].has(wave.omega)]
+    size = len(wave.rows)
+    taken = maximum_matching(evolving, size, size)
+    taken = maximum_matching([(j, place[i]) for i, j in pairs], size, size, start=taken)
+    if len(taken) < len(others):
+        names = ", ".join(wave.columns[j].symbol.name for j in others if j not in taken)
+        raise UndeterminedError(
+            f"{names} cannot be eliminated: no law is left that determines them"
+        )
+    return {j: ranked[r] for j, r in taken.items()}

@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 from sympy import together
 
 from ..errors import DeclarationError
-from .response import Reduced, eliminate_for, rows_that_stay
+from .response import Reduced, eliminate_for, rows_taken, rows_that_stay
 
 if TYPE_CHECKING:
     from .matrix import WaveMatrix
@@ -22,7 +22,8 @@ def susceptibility(wave: WaveMatrix, species: str, fields: tuple[str, ...]) -> R
     columns = list(dict.fromkeys(j for name in fields for j in wave.column(name)))
     own, others = species_columns(wave, species)
     rows = rows_that_stay(wave, columns)
-    field_rows = [i for i in range(len(wave.rows)) if not _belongs(wave, i, own | others)]
+    taken = rows_taken(wave, columns)
+    field_rows = {*rows, *(i for j, i in taken.items() if j not in own | others)}
     parts = []
     for cut in (others, own | others):
         entries = {
@@ -50,8 +51,3 @@ def species_columns(wave: WaveMatrix, species: str) -> tuple[set[int], set[int]]
             f"no fields named '..._{species}'; the species are {known or 'not told apart by name'}"
         )
     return own, {j for j, c in enumerate(wave.columns) if c.field.name in tags} - own
-
-
-def _belongs(wave: WaveMatrix, row: int, columns: set[int]) -> bool:
-    """Whether an equation evolves an unknown of a species: omega multiplies one of its columns."""
-    return any((row, j) in wave.entries and wave.entries[row, j].has(wave.omega) for j in columns)

@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from ..declare.notation import latex, paper
+from ..roots.solve import general_degree
 
 if TYPE_CHECKING:
     from ..roots.branches import Branches
@@ -17,10 +18,18 @@ CAUTION = (
     "have them checked against local codes and by licensed practice."
 )
 LONG_RELATION = 120
+LARGEST = 18
+"""Unknowns beyond which a report leaves the relation in symbols out."""
 
 
 def relation_text(wave: WaveMatrix) -> str:
     """The relation factor by factor; a long one by its size."""
+    if len(wave.rows) > LARGEST:
+        degree, zeros = general_degree(wave)
+        return (
+            f"{degree} roots and {zeros} zero modes; with {len(wave.rows)} unknowns the relation in symbols is too long "
+            "to be read. The roots come from the same exact determinant with the numbers put in."
+        )
     relation = wave.relation
     if len(relation.exact) <= LONG_RELATION:
         return str(relation)
@@ -87,9 +96,10 @@ def derivation(wave: WaveMatrix, branches: Branches | None) -> str:
         f"Wave vector ({vector}) along {', '.join(linear.axes)}.",
         "",
     ]
-    formula = wave.relation._repr_latex_()
+    formula = wave.relation._repr_latex_() if len(wave.rows) <= LARGEST else None
     parts += [f"${formula.strip('$')}$" if formula else f"```text\n{relation_text(wave)}\n```", ""]
-    parts += [f"{wave.relation.degree} roots and {wave.relation.zero_modes} zero modes.", ""]
+    degree, zeros = general_degree(wave)
+    parts += [f"{degree} roots and {zeros} zero modes.", ""]
     if branches is not None:
         parts += [
             "## Branches",

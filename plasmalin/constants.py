@@ -2,8 +2,8 @@
 
 The names are those that `FluidModel.constants` takes.
 
-Examples
---------
+For example:
+
 >>> import plasmalin as plin
 >>> plin.constants.c
 299792458.0

@@ -3,8 +3,8 @@
 A function that takes a model adds a law to it and returns the law; the others return terms (expressions) for the
 user's own laws. Everything is coordinate-free and in SI units, temperatures as energies (J), densities in 1/m^3.
 
-Examples
---------
+For example:
+
 >>> import plasmalin as plin
 >>> model = plin.FluidModel("electrons", axes="x")
 >>> n, v, phi = model.scalar("n", background="n_0"), model.vector("v"), model.scalar("phi")
@@ -177,13 +177,13 @@ def neutral_friction(n: Expr, v: Expr, mass: Any, rate: Any, neutral_velocity: A
 def friction(n_s: Expr, v_s: Expr, n_t: Expr, v_t: Expr, alpha: Any) -> Expr:
     """Friction of species s on t: −alpha n_s n_t (v_s − v_t); the force on t is the same with s and t exchanged.
 
-    `alpha` (N s m) may depend on temperatures and on |v_s − v_t|; it must be the same in both.
+    `alpha` (N s m) may depend on temperatures and on ``|v_s − v_t|``; it must be the same in both.
     """
     return -alpha * n_s * n_t * (v_s - v_t)
 
 
 def frictional_heat(n_s: Expr, v_s: Expr, n_t: Expr, v_t: Expr, alpha: Any) -> Expr:
-    """Heat from `friction` of a pair in all, alpha n_s n_t |v_s − v_t|^2, W/m^3; share it between the energy laws."""
+    """Heat from `friction` of a pair in all, alpha n_s n_t ``|v_s − v_t|^2``, W/m^3; share it between the energy laws."""
     return alpha * n_s * n_t * dot(v_s - v_t, v_s - v_t)
 
 
@@ -249,7 +249,7 @@ def energy(
 
 
 def landau_heat_loss(temperature: Expr, n_0: Any, thermal_speed: Any) -> Expr:
-    """div q of the three-moment closure: sqrt(8/pi) n_0 v_t |k| T in Fourier space, v_t = sqrt(T_0/m).
+    """div q of the three-moment closure: sqrt(8/pi) n_0 v_t ``|k|`` T in Fourier space, v_t = sqrt(T_0/m).
 
     Hammett and Perkins (1990), Phys. Rev. Lett. 64, 3019 (from memory).
     """

@@ -1,26 +1,30 @@
 """Every root of a family at every point, with a proven radius.
 
-The certified path that is right for every model: the exact coefficients at a point, exact square-free factors, and
-proven discs that FLINT separates in ball arithmetic. Where a coefficient vanishes only at a point, the root stays in
-its place with the status "zero" or "at infinity".
+The grid is cut into fixed blocks, each solved on its own, so that the result does not depend on how many workers
+share them. In a block, roots are found from nothing at a few nodes, carried along the path, and proven at every
+point by the discs of `discs.py`. Points that these do not prove (multiple roots, a leading or lowest coefficient that
+vanishes) are solved exactly, one by one.
 """
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-from dataclasses import dataclass
-from fractions import Fraction
-from typing import Any
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
 
-from ..exact.univariate import complex_roots
-from .family import Exact, Family, Grid
+from .block import solve_block
+from .family import Family, Grid
+from .parallel import Workers, mapped
+from .pointwise import solved_exactly
+from .scaling import Table, columns_of, table_of
+from .solved import Arrays, Solved, Status, each, joined
 
-CERTIFIED, ZERO, INFINITE, MASKED = "certified", "zero", "at infinity", "masked"
-STATUS = (CERTIFIED, ZERO, INFINITE, MASKED)
-DIGITS = 25
+ZERO = Status.ZERO
+BLOCK = 32768
+FEW = 8
+"""So few points are solved exactly as quickly."""
 
 
 @dataclass(frozen=True)
@@ -32,75 +36,110 @@ class Enclosure:
     omega : ndarray of complex128, shape (points, roots), rad/s
     radius : ndarray of float64, shape (points, roots), rad/s
         The true root is not farther away.
-    status : ndarray of str, shape (points, roots)
+    growth_radius : ndarray of float64, shape (points, roots), rad/s
+        The same for the imaginary part alone: a growth rate larger than this has its sign proven.
+    state : ndarray of int8, shape (points, roots)
+        Codes of `Status`.
     method : str
+        What was done, and at how many points.
     """
 
     omega: NDArray[np.complex128]
     radius: NDArray[np.float64]
-    status: NDArray[Any]
+    growth_radius: NDArray[np.float64]
+    state: NDArray[np.int8]
     method: str
 
     @classmethod
-    def empty(cls, points: int, roots: int, status: str = CERTIFIED, method: str = "") -> Enclosure:
+    def empty(
+        cls, points: int, roots: int, status: Status = Status.CERTIFIED, method: str = ""
+    ) -> Enclosure:
+        """Zeros, exact."""
         shape = (points, roots)
-        return cls(np.zeros(shape, complex), np.zeros(shape), np.full(shape, status, "U16"), method)
+        omega, state = np.zeros(shape, np.complex128), np.full(shape, status, np.int8)
+        return cls(omega, np.zeros(shape), np.zeros(shape), state, method)
+
+    @property
+    def status(self) -> NDArray[np.str_]:
+        """The state of every root in words."""
+        return Status.words()[self.state]
+
+    def arrays(self) -> Arrays:
+        return self.omega, self.radius, self.growth_radius, self.state
 
     def reordered(self, order: NDArray[np.int64]) -> Enclosure:
         """The roots of every point in another order."""
-        omega, radius, status = (
-            np.take_along_axis(a, order, axis=1) for a in (self.omega, self.radius, self.status)
-        )
-        return Enclosure(omega, radius, status, self.method)
+        taken = each(lambda a: np.take_along_axis(a, order, axis=1), self.arrays())
+        return Enclosure(*taken, self.method)
+
+    def sorted(self) -> Enclosure:
+        """By real part, then imaginary part."""
+        return self.reordered(np.argsort(self.omega, axis=1, kind="stable"))
 
 
-def enclose(family: Family, grid: Grid, *, points: int) -> Enclosure:
-    """All roots of one family, `family.degree` at every point, unsorted."""
-    method = "exact coefficients and proven discs at every point (FLINT ball arithmetic)"
-    made = Enclosure.empty(points, family.degree, method=method)
-    usable = np.ones(points, bool)
-    for hi, _ in grid:
-        usable &= np.isfinite(hi)
-    made.omega[~usable], made.radius[~usable], made.status[~usable] = np.nan, np.inf, MASKED
-    last: tuple[Any, ...] = ()
-    for point in np.flatnonzero(usable):
-        key = tuple(part[point] for pair in grid for part in pair)
-        if point and key == last:
-            for array in (made.omega, made.radius, made.status):
-                array[point] = array[point - 1]
-        else:
-            _fill(made, int(point), family.at(grid, int(point)))
-        last = key
-    return made
+def enclose(family: Family, grid: Grid, *, points: int, workers: Workers = 1) -> Enclosure:
+    """All roots of one family, `family.degree` at every point, sorted by (Re, Im).
+
+    Parameters
+    ----------
+    family : Family
+        Square-free: a factor that is repeated belongs into `merge`.
+    grid : sequence of (high, low)
+        The swept quantities, each part of shape (points,), real or complex.
+    points : int
+        How many points there are (a family without swept quantities has no grid to tell).
+    workers : int or callable
+        Processes, or a callable like `map`; the result is the same, bit by bit.
+
+    Returns
+    -------
+    Enclosure
+    """
+    if not grid:
+        one = _whole([solved_exactly(family, [], np.zeros(1, np.int64))])
+        repeated = each(lambda a: np.repeat(a, points, axis=0), one.arrays())
+        return Enclosure(*repeated, one.method)
+    blocks = list(enclosed_blocks(family, grid, workers=workers))
+    return _whole(blocks or [Solved.empty(0, family.degree)])
 
 
-def _fill(made: Enclosure, point: int, coefficients: list[Exact]) -> None:
-    """The roots at one point; leading zeros are roots at infinity, trailing zeros roots at zero."""
-    size = len(coefficients) - 1
-    present = [n for n, c in enumerate(coefficients) if c[0] or c[1]]
-    if not present:
-        made.omega[point], made.radius[point], made.status[point] = np.nan, np.inf, MASKED
-        return
-    low, high = present[0], present[-1]
-    made.status[point, :low] = ZERO
-    place = low
-    for re, im, radius, multiplicity in _roots(coefficients[low : high + 1]):
-        omega = complex(float(re), float(im))
-        rounding = abs(Fraction(omega.real) - re) + abs(Fraction(omega.imag) - im)
-        made.omega[point, place : place + multiplicity] = omega
-        made.radius[point, place : place + multiplicity] = _upward(rounding + radius)
-        place += multiplicity
-    made.omega[point, place:size] = complex(np.inf, 0.0)
-    made.radius[point, place:size] = np.inf
-    made.status[point, place:size] = INFINITE
+def enclosed_blocks(family: Family, grid: Grid, *, workers: Workers = 1) -> Iterator[Solved]:
+    """The same, block by block in the order of the points, for grids whose roots would not fit in memory."""
+    table = table_of(family, grid)
+    points = len(grid[0][0])
+    tasks = (
+        (family, table, [(hi[b : b + BLOCK], lo[b : b + BLOCK]) for hi, lo in grid])
+        for b in range(0, points, BLOCK)
+    )
+    return mapped(_block, tasks, workers if points > BLOCK else 1)
 
 
-def _roots(coefficients: list[Exact]) -> list[tuple[Fraction, Fraction, Fraction, int]]:
-    return complex_roots(coefficients, DIGITS) if len(coefficients) > 1 else []
+def _block(task: tuple[Family, Table, Grid]) -> Solved:
+    """One block: masked points left out, the rest solved; those without a proof exactly."""
+    family, table, grid = task
+    size = len(grid[0][0])
+    made = Solved.empty(size, family.degree)
+    usable = np.ones(size, bool)
+    for hi, lo in grid:
+        usable &= np.isfinite(hi) & np.isfinite(lo)
+    made.mask(np.flatnonzero(~usable))
+    points = np.flatnonzero(usable)
+    if len(points) >= FEW:
+        columns = columns_of([(hi[points], lo[points]) for hi, lo in grid])
+        solve_block(table, columns, points, made)
+        points = points[(made.state[points] == Status.NOT_CERTIFIED).any(axis=1)]
+    if len(points):
+        made.put(points, solved_exactly(family, grid, points))
+    return replace(made, exact=len(points))
 
 
-def _upward(x: Fraction) -> float:
-    return float(np.nextafter(float(x), np.inf)) if x else 0.0
+def _whole(blocks: list[Solved]) -> Enclosure:
+    exact, total = sum(b.exact for b in blocks), sum(len(b.omega) for b in blocks)
+    method = (
+        f"certified discs in twice the working precision at {total - exact} of {total} points, "
+        f"exact ball arithmetic at {exact}"
+    )
+    return Enclosure(*joined([b.arrays() for b in blocks], 0), method)
 
 
 def merge(
@@ -116,16 +155,13 @@ def merge(
     Fewer than `degree` roots in all means that the missing ones are at infinity for these numbers.
     """
     columns = [p for p, m in zip(parts, multiplicities, strict=True) for _ in range(m)]
-    columns.append(Enclosure.empty(points, zeros, ZERO))
-    missing = degree - sum(c.omega.shape[1] for c in columns)
+    missing = degree - zeros - sum(c.omega.shape[1] for c in columns)
+    if len(columns) == 1 and not zeros and missing <= 0:
+        return columns[0]
+    columns.append(Enclosure.empty(points, zeros, Status.ZERO))
     if missing > 0:
-        far = Enclosure.empty(points, missing, INFINITE)
-        far.omega[:], far.radius[:] = complex(np.inf, 0.0), np.inf
+        far = Enclosure.empty(points, missing, Status.INFINITE)
+        far.omega[:], far.radius[:], far.growth_radius[:] = complex(np.inf, 0.0), np.inf, np.inf
         columns.append(far)
-    omega, radius, status = (
-        np.concatenate([getattr(c, name) for c in columns], axis=1)
-        for name in ("omega", "radius", "status")
-    )
     methods = dict.fromkeys(p.method for p in parts)
-    whole = Enclosure(omega, radius, status, "; ".join(methods))
-    return whole.reordered(np.lexsort((omega.imag, omega.real), axis=1))
+    return Enclosure(*joined([c.arrays() for c in columns], 1), "; ".join(methods)).sorted()

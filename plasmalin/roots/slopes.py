@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from fractions import Fraction
+from math import gcd
 from typing import Any
 
 import numpy as np
@@ -19,7 +20,7 @@ class ScaledFamily:
         self.scales = [_power_of_two(omega), *(_power_of_two(g) for g in grid)]
         self.coefficients = self._coefficients(family)
 
-    def _coefficients(self, family: Family) -> NDArray[np.complex128]:
+    def _coefficients(self, family: Family) -> NDArray[Any]:
         factors = [Fraction(2) ** s for s in self.scales]
         scaled = []
         for row, (re, im) in zip(family.exponents.tolist(), family.coefficients, strict=True):
@@ -28,25 +29,49 @@ class ScaledFamily:
                 size *= factor**n
             scaled.append((re * size, im * size))
         largest = max(abs(x) for pair in scaled for x in pair)
-        return np.array([complex(float(a / largest), float(b / largest)) for a, b in scaled])
+        made = np.array([complex(float(a / largest), float(b / largest)) for a, b in scaled])
+        return made if made.imag.any() else made.real
 
     def slope(
         self, omega: NDArray[np.complex128], grid: list[NDArray[Any]], rates: list[NDArray[Any]]
     ) -> NDArray[np.complex128]:
         """d omega / d s, shape (points, roots); `rates` are d g_i / d s, shape (points,)."""
-        z = np.ldexp(1.0, -self.scales[0]) * omega
         g = [np.ldexp(1.0, -s) * x for s, x in zip(self.scales[1:], grid, strict=True)]
         ds = [np.ldexp(1.0, -s) * x for s, x in zip(self.scales[1:], rates, strict=True)]
-        p_omega, p_s = np.zeros_like(z), np.zeros_like(z)
+        z = np.ldexp(1.0, -self.scales[0]) * omega.T
+        if not z.imag.any():
+            z = z.real.copy()
         with np.errstate(all="ignore"):
-            for row, c in zip(self.exponents.tolist(), self.coefficients, strict=True):
-                term, rate = _monomial(c, row[1:], g, ds)
-                if row[0]:
-                    p_omega += (row[0] * term)[:, None] * z ** (row[0] - 1)
-                p_s += rate[:, None] * z ** row[0]
-            slope = -p_s / p_omega
-        slope[~np.isfinite(slope)] = 0.0
-        return np.asarray(np.ldexp(1.0, self.scales[0]) * slope)
+            slope = np.ldexp(1.0, self.scales[0]) * self._scaled_slope(z, g, ds).T
+        return np.asarray(np.where(np.isfinite(slope), slope, 0.0), np.complex128)
+
+    def _scaled_slope(
+        self, z: NDArray[Any], g: list[NDArray[Any]], ds: list[NDArray[Any]]
+    ) -> NDArray[Any]:
+        """By Horner schemes in the power of z in which the polynomial is one; shape (roots, points)."""
+        terms, rates = self._by_power_of_omega(g, ds)
+        step = gcd(*terms) or 1
+        x, top = z**step, max(terms)
+        p_s, p_x = rates[top] + 0 * x, top // step * terms[top] + 0 * x
+        for n in range(top - step, -1, -step):
+            p_s *= x
+            p_s += rates.get(n, 0.0)
+            if n:
+                p_x *= x
+                p_x += n // step * terms.get(n, 0.0)
+        return np.asarray(-p_s / (p_x * (step * z ** (step - 1))))
+
+    def _by_power_of_omega(
+        self, g: list[NDArray[Any]], ds: list[NDArray[Any]]
+    ) -> tuple[dict[int, NDArray[Any]], dict[int, NDArray[Any]]]:
+        """Every coefficient over the points, and its derivative along the sweep."""
+        terms: dict[int, NDArray[Any]] = {}
+        rates: dict[int, NDArray[Any]] = {}
+        for row, c in zip(self.exponents.tolist(), self.coefficients, strict=True):
+            term, rate = _monomial(c, row[1:], g, ds)
+            terms[row[0]] = terms.get(row[0], 0.0) + term
+            rates[row[0]] = rates.get(row[0], 0.0) + rate
+        return terms, rates
 
 
 def _monomial(
@@ -54,7 +79,7 @@ def _monomial(
 ) -> tuple[NDArray[Any], NDArray[Any]]:
     """A coefficient over the points and its derivative along the sweep."""
     size = len(g[0]) if g else 1
-    term, rate = np.full(size, c), np.zeros(size, complex)
+    term, rate = np.full(size, c), np.zeros(size)
     for n, x, dx in zip(powers, g, ds, strict=True):
         if n:
             rate = rate * x**n + term * n * x ** (n - 1) * dx

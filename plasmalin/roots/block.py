@@ -1,0 +1,82 @@
+"""One block of points: nodes solved first, their roots carried to the points between, every root proven."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+import numpy as np
+from numpy.typing import NDArray
+
+from .carry import Carrier
+from .coefficients import coefficients
+from .omega import in_omega
+from .path import Columns, Path, path_of
+from .scaling import Scaled, Table, scaled
+from .sheets import UNKNOWN, Sheet, from_nothing, proven
+from .solved import Solved, Status
+
+NEAR, FAR = 0.2, 0.8
+"""Logarithmic distance between nodes: where one step should do, and where several may be needed."""
+ALONE = 48
+"""So few points are solved from nothing."""
+WORK = 12288
+"""Numbers in one work array, so that a batch stays in cache."""
+COLD = 256
+"""Points solved from nothing at a time."""
+
+
+@np.errstate(all="ignore")
+def solve_block(table: Table, columns: Columns, points: NDArray[np.int64], made: Solved) -> None:
+    """All roots at all points of the columns, put where `points` says; NOT_CERTIFIED where nothing is proven.
+
+    Points that span too much for one scale are halved. Numbers that overflow on the way prove nothing, so
+    floating-point warnings are off.
+    """
+    near = scaled(table, columns)
+    if near is not None:
+        for chosen, sheet in _sheets(near, table.degree, NEAR):
+            made.put(points[chosen], in_omega(sheet, table.structure, near.unknown))
+    elif len(points) == 1:
+        made.state[points] = Status.NOT_CERTIFIED
+    else:
+        order, middle = path_of(columns).order, len(points) // 2
+        for part in (order[:middle], order[middle:]):
+            half = [(hi[part], lo[part]) for hi, lo in columns]
+            solve_block(table, half, points[part], made)
+
+
+def _sheets(near: Scaled, degree: int, reach: float) -> Iterator[tuple[NDArray[np.int64], Sheet]]:
+    """Batch by batch the points and their roots; what cannot be carried comes again at the end, from nothing.
+
+    The nodes of the path are solved the same way, along a path of their own: on a grid of two quantities that one
+    runs across.
+    """
+    points = len(near.columns[0][0])
+    path = path_of(near.columns)
+    ordered = near.along(path)
+    stride = path.stride(reach) if points > ALONE else 1
+    rest = [np.arange(points)]
+    if stride > 1:
+        carrier = _carrier(ordered, path, path.nodes(stride), degree)
+        rest.clear()
+        for chosen in _batches(np.arange(points), max(64, WORK // degree)):
+            sheet = proven(coefficients(ordered, degree, chosen), carrier.starts(chosen))
+            known = sheet.real != UNKNOWN
+            rest.append(chosen[~known])
+            if known.all():
+                yield path.order[chosen], sheet
+            else:
+                yield path.order[chosen[known]], sheet.at(known)
+    for chosen in _batches(np.concatenate(rest), COLD):
+        yield path.order[chosen], from_nothing(coefficients(ordered, degree, chosen))
+
+
+def _batches(points: NDArray[np.int64], size: int) -> Iterator[NDArray[np.int64]]:
+    return (points[first : first + size] for first in range(0, len(points), size))
+
+
+def _carrier(ordered: Scaled, path: Path, nodes: NDArray[np.int64], degree: int) -> Carrier:
+    sheet = Sheet.unknown(degree, len(nodes))
+    for chosen, part in _sheets(ordered.at(nodes), degree, FAR):
+        sheet.copy_from(part, chosen)
+    return Carrier.of(ordered, path, nodes, coefficients(ordered, degree, nodes), sheet)

@@ -1,0 +1,142 @@
+"""All roots at many points in canonical order, proven point by point."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+from numpy.typing import NDArray
+
+from .coefficients import Coefficients
+from .discs import Discs, Guess, discs, rough_step
+from .doubledouble import Array
+from .starts import cold_starts
+
+ATTEMPTS = 24
+PATIENCE = 3
+"""After so many attempts discs that are fair but not sharp are taken."""
+NEARLY_REAL = 2.0**-30
+"""Relative imaginary part below which a cold start is first taken as real."""
+UNKNOWN = -1
+
+
+@dataclass(frozen=True)
+class Sheet:
+    """Roots of the unknown over points.
+
+    With real coefficients the rows hold the real roots, ascending, then those in the upper half plane, then their
+    conjugates; with complex coefficients all roots, and `real` is 0.
+
+    Attributes
+    ----------
+    re, im, radius : ndarray, shape (degree, points)
+    real : ndarray of int, shape (points,)
+        How many roots are real; UNKNOWN where there are no roots yet.
+    """
+
+    re: Array
+    im: Array
+    radius: Array
+    real: NDArray[np.int64]
+
+    @classmethod
+    def unknown(cls, degree: int, points: int) -> Sheet:
+        re, im, radius = (np.zeros((degree, points)) for _ in range(3))
+        return cls(re, im, radius, np.full(points, UNKNOWN))
+
+    def guess(self, real: int, mirrored: bool, points: NDArray[np.int64] | slice) -> Guess:
+        """The points with that many real roots, as numbers near the roots."""
+        rest = len(self.re) - real
+        others = slice(real, real + rest // 2 if mirrored else None)
+        z = np.empty(self.re[others, points].shape, np.complex128)
+        z.real, z.imag = self.re[others, points], self.im[others, points]
+        return Guess(self.re[:real, points], z, mirrored)
+
+    def put(self, points: NDArray[np.int64], guess: Guess, found: Discs) -> None:
+        """Store corrected roots with their radii."""
+        x, z, real = guess.x - found.x_step, guess.z - found.z_step, len(guess.x)
+        self.re[:real, points], self.im[:real, points] = x.real, 0.0
+        self.radius[:real, points] = found.x_radius
+        upper = slice(real, real + len(z))
+        for rows, sign in ((upper, 1.0), (slice(real + len(z), None), -1.0)):
+            if rows is upper or guess.mirrored:
+                self.re[rows, points], self.im[rows, points] = z.real, sign * z.imag
+                self.radius[rows, points] = found.z_radius
+        self.real[points] = real
+
+    def at(self, points: NDArray[np.bool_]) -> Sheet:
+        return Sheet(
+            self.re[:, points], self.im[:, points], self.radius[:, points], self.real[points]
+        )
+
+    def copy_from(self, other: Sheet, points: NDArray[Any]) -> None:
+        for mine, theirs in zip(
+            (self.re, self.im, self.radius), (other.re, other.im, other.radius), strict=True
+        ):
+            mine[:, points] = theirs
+        self.real[points] = other.real
+
+
+def proven(c: Coefficients, start: Sheet) -> Sheet:
+    """The roots near the starts, with their discs; UNKNOWN where nothing is proven."""
+    made = Sheet.unknown(c.degree, c.points)
+    _prove(c, start, c.high_imag is None, made)
+    return made
+
+
+def from_nothing(c: Coefficients) -> Sheet:
+    """The same without starts."""
+    z = cold_starts(c)
+    free = Sheet(z.real.copy(), z.imag.copy(), NEARLY_REAL * np.abs(z), np.zeros(c.points, int))
+    if c.high_imag is not None:
+        return proven(c, free)
+    made = proven(c, _canonical(free))
+    left = made.real == UNKNOWN
+    if left.any():
+        made.copy_from(_without_symmetry(c.at(left), free.at(left)), left)
+    return made
+
+
+def _without_symmetry(c: Coefficients, free: Sheet) -> Sheet:
+    """Proven as if the coefficients were complex first, which tells close real roots from a pair."""
+    apart = Sheet.unknown(c.degree, c.points)
+    _prove(c, free, False, apart)
+    return proven(c, _canonical(apart))
+
+
+def _prove(c: Coefficients, start: Sheet, mirrored: bool, made: Sheet) -> None:
+    """Points with the same number of real roots go together."""
+    for real in np.unique(start.real[start.real != UNKNOWN]).tolist():
+        points = np.flatnonzero(start.real == real)
+        everything = len(points) == c.points
+        guess = start.guess(real, mirrored, slice(None) if everything else points)
+        _polish(c if everything else c.at(points), guess, points, made)
+
+
+def _polish(c: Coefficients, guess: Guess, points: NDArray[np.int64], made: Sheet) -> None:
+    """Steps until every disc is sharp; points that are done drop out."""
+    guess = rough_step(c, guess)
+    for attempt in range(ATTEMPTS):
+        found = discs(c, guess)
+        done = found.sharp if attempt < PATIENCE else found.fair
+        if done.all():
+            made.put(points, guess, found)
+            return
+        made.put(points[done], guess.at(done), found.at(done))
+        guess = Guess(guess.x - found.x_step, guess.z - found.z_step, guess.mirrored)
+        alive = ~done & np.isfinite(guess.x).all(axis=0) & np.isfinite(guess.z).all(axis=0)
+        c, guess, points = c.at(alive), guess.at(alive), points[alive]
+        if not len(points):
+            return
+
+
+def _canonical(found: Sheet) -> Sheet:
+    """A disc that meets the real axis holds a real root: its mirror image would be a second root in it."""
+    im = np.where(np.abs(found.im) <= found.radius, 0.0, found.im)
+    half = np.sign(im) % 3
+    order = np.lexsort((found.re, half), axis=0)
+    re, im, radius = (np.take_along_axis(a, order, axis=0) for a in (found.re, im, found.radius))
+    real = (half == 0).sum(axis=0)
+    matched = (half == 1).sum(axis=0) == (half == 2).sum(axis=0)
+    return Sheet(re, im, radius, np.where(matched & (found.real != UNKNOWN), real, UNKNOWN))

@@ -451,3 +451,35 @@ def test_functions_of_numbers():
     assert np.allclose(swept.omega[0], roots.omega[1], rtol=1e-14)
     both = wave.roots({"a": alpha, "b": 2.0, "gamma": 1.4, "f_0": [2.0, 3.0]}, k=k)
     assert np.allclose(both.omega[0], roots.omega[1], rtol=1e-14)
+
+
+def test_workers_give_the_same_bits(beam):
+    """Chunking and processes do not change a single bit; a map-like callable serves too."""
+    k = np.geomspace(1.0, 1e5, 40_000)
+    one = beam.roots(SI, k=k)
+    assert set(np.unique(one.status)) == {"certified"}
+    for workers in (2, map):
+        other = beam.roots(SI, k=k, workers=workers)
+        assert np.array_equal(one.omega, other.omega)
+        assert np.array_equal(one.radius, other.radius)
+    assert np.array_equal(one.omega[::1000], beam.roots(SI, k=k[::1000]).omega)
+    with pytest.raises(plin.ValuesError, match="workers=0"):
+        beam.roots(SI, k=k, workers=0)
+
+
+@pytest.mark.parametrize("drift", [0.0, 2e5])
+def test_fast_and_exact_paths_agree_within_the_radii(beam, drift):
+    from plasmalin.roots.pointwise import solved_exactly
+    from plasmalin.roots.solve import grid_of, pose
+    from plasmalin.roots.values import gather, with_defaults
+
+    k = np.geomspace(1.0, 1e6, 600)
+    values = {**SI, "u": drift}
+    roots = beam.roots(values, k=k)
+    numbers = gather(beam, with_defaults(beam, values), {"k": k})
+    problem = pose(beam, numbers)
+    ((family, _),) = problem.factors
+    exact = solved_exactly(family, grid_of(problem, numbers), np.arange(0, 600, 7))
+    gap = np.abs(roots.omega[::7] - exact.omega)
+    assert (gap <= roots.radius[::7] + exact.radius).all()
+    assert (roots.radius <= 1e-15 * np.abs(roots.omega)).all()

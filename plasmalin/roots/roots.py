@@ -11,6 +11,7 @@ from numpy.typing import NDArray
 
 from ..errors import ValuesError
 from .enclose import Enclosure, enclose, merge
+from .parallel import Workers
 from .solve import Problem, grid_of, pose
 from .values import Numbers, gather, with_defaults
 
@@ -27,20 +28,23 @@ class Roots(NDArrayOperatorsMixin):
         Sorted by real part, then imaginary part.
     radius : ndarray of float64, shape (..., degree), rad/s
         A proven bound on the error of each root.
-    status : ndarray of str, shape (..., degree)
-        "certified", "cluster of m", "zero" or "at infinity" (only at this point), "not certified", "masked".
+    growth_radius : ndarray of float64, shape (..., degree), rad/s
+        The same for the imaginary part alone: a growth rate larger than this has its sign proven.
     method : str
-        What was chosen, and why.
+        What was done, and at how many points.
     """
 
-    def __init__(
-        self,
-        omega: NDArray[np.complex128],
-        radius: NDArray[np.float64],
-        status: NDArray[Any],
-        method: str,
-    ) -> None:
-        self.omega, self.radius, self.status, self.method = omega, radius, status, method
+    def __init__(self, found: Enclosure, shape: tuple[int, ...]) -> None:
+        self.omega = found.omega.reshape(shape)
+        self.radius = found.radius.reshape(shape)
+        self.growth_radius = found.growth_radius.reshape(shape)
+        self._found, self.method = found, found.method
+
+    @property
+    def status(self) -> NDArray[np.str_]:
+        """In words, shape (..., degree): "certified"; "zero" or "at infinity" (only at this point); "not certified";
+        "masked" (an input is not finite)."""
+        return self._found.status.reshape(self.shape)
 
     def __array__(self, dtype: Any = None, copy: bool | None = None) -> NDArray[Any]:
         made = self.omega if dtype is None else self.omega.astype(dtype)
@@ -93,10 +97,11 @@ class Roots(NDArrayOperatorsMixin):
         ValuesError
             Naming the first point and root that is not certified.
         """
-        good = np.isin(self.status, ("certified", "zero", "at infinity"))
+        status = self.status
+        good = np.isin(status, ("certified", "zero", "at infinity"))
         if not good.all():
             where = tuple(int(i) for i in np.argwhere(~good)[0])
-            raise ValuesError(f"the root at index {where} is '{self.status[where]}', not certified")
+            raise ValuesError(f"the root at index {where} is '{status[where]}', not certified")
         return self
 
     def __repr__(self) -> str:
@@ -105,24 +110,20 @@ class Roots(NDArrayOperatorsMixin):
 
 def find_roots(wave: WaveMatrix, values: Mapping[Any, Any], waves: dict[str, Any]) -> Roots:
     """All roots; see `WaveMatrix.roots`."""
-    zero_modes = bool(waves.pop("zero_modes", False))
+    zero_modes, workers = bool(waves.pop("zero_modes", False)), waves.pop("workers", 1)
     numbers = gather(wave, with_defaults(wave, values), waves)
     problem = pose(wave, numbers)
-    found = solve(problem, numbers, zero_modes)
-    shape = (*numbers.shape, found.omega.shape[1])
-    return Roots(
-        found.omega.reshape(shape),
-        found.radius.reshape(shape),
-        found.status.reshape(shape),
-        found.method,
-    )
+    found = solve(problem, numbers, zero_modes, workers)
+    return Roots(found, (*numbers.shape, found.omega.shape[1]))
 
 
-def solve(problem: Problem, numbers: Numbers, zero_modes: bool) -> Enclosure:
+def solve(
+    problem: Problem, numbers: Numbers, zero_modes: bool = False, workers: Workers = 1
+) -> Enclosure:
     """Every factor enclosed and merged, with the exact zeros in their place."""
     points = int(np.prod(numbers.shape, dtype=np.int64))
     grid = grid_of(problem, numbers)
-    parts = [enclose(family, grid, points=points) for family, _ in problem.factors]
+    parts = [enclose(family, grid, points=points, workers=workers) for family, _ in problem.factors]
     extra = problem.zero_modes if zero_modes else 0
     return merge(
         parts,

@@ -18,6 +18,10 @@ from .univariate import Root, complex_roots
 from .yun import squarefree_parts
 
 
+LONGEST_NORM = 250
+"""Terms of a Gaussian polynomial whose norm is still factored."""
+
+
 class ExactPolynomial:
     """A polynomial in `main` whose coefficients are polynomials in `generators`.
 
@@ -210,7 +214,8 @@ class ExactPolynomial:
         """The content and the factors that hold `main`, irreducible over the rationals, with multiplicity.
 
         A polynomial that is real in i times `main` (damping without drift) is factored there; one with
-        Gaussian coefficients through the factors of its norm.
+        Gaussian coefficients through the factors of its norm; beyond `LONGEST_NORM` terms, whose norm would be too
+        large, its square-free parts.
         """
         content, primitive = self.primitive()
         found = [(self._with(p)._normal(), m) for p, m in primitive._split()]
@@ -226,6 +231,8 @@ class ExactPolynomial:
         if turned.phase is not None:
             found = [(_real(p), m) for p, m in irreducible_factors(turned.part) if _holds_main(p)]
             return [(self._with(p)._turned_main(3), m) for p, m in found]
+        if len(self) > LONGEST_NORM:
+            return squarefree_parts(self._value)
         return self._gaussian_factors()
 
     def _gaussian_factors(self) -> list[tuple[Gaussian, int]]:

@@ -4,15 +4,17 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass
+from fractions import Fraction
+from random import Random
 from typing import TYPE_CHECKING, Any
 
-from sympy import Add, Derivative, Expr, Function, I, Poly, Symbol, cancel, latex
+from sympy import Add, Derivative, Expr, Function, I, Integer, Poly, Symbol, cancel, expand, latex
 
 from ..declare.fields import decorated
 from ..declare.notation import SUPERSCRIPT, paper
 from ..errors import DeclarationError, NonPolynomialError, UndeterminedError
 from ..exact.determinant import determinant
-from ..exact.polynomial import ExactPolynomial
+from ..exact.polynomial import ExactPolynomial, polynomial
 
 if TYPE_CHECKING:
     from .matrix import WaveMatrix
@@ -133,8 +135,9 @@ def _general(wave: WaveMatrix) -> tuple[WaveMatrix, str]:
 def moving_part(wave: WaveMatrix, column: int) -> ExactPolynomial:
     """The factors of the determinant that move one unknown.
 
-    The response of unknown j to a source in law i is cofactor_ij / det; what all of them share with the
-    determinant does not move j.
+    The response of unknown j to a source in law i is cofactor_ij / det; a factor that all cofactors share does not
+    move j. Whether they share it is read off at a random exact point, where a false answer has negligible probability
+    (Schwartz 1980, J. ACM 27, 701).
     """
     size = len(wave.rows)
     whole = determinant(wave.entries, size, wave.omega)
@@ -142,14 +145,42 @@ def moving_part(wave: WaveMatrix, column: int) -> ExactPolynomial:
         from .relation import undetermined_message
 
         raise UndeterminedError(undetermined_message(wave))
-    whole = whole.primitive()[1]
-    shared = whole
-    for row in range(size):
-        if shared.degree > 0:
-            minor = determinant(_without(wave.entries, row, column), size - 1, wave.omega)
-            if minor.degree >= 0:
-                shared = shared.gcd(minor)
-    return whole.exact_div(shared.primitive()[1]).primitive()[1]
+    point = _random_point(wave)
+    minors = [
+        determinant(_without(wave.entries, row, column), size - 1, wave.omega, values=point)
+        for row in range(size)
+    ]
+    responding = [m for m in minors if m.degree >= 0]
+    moving = polynomial(Integer(1), wave.omega)
+    for factor, multiplicity in whole.factor()[1]:
+        image = factor.substitute(point)
+        shared = min(
+            (_times_dividing(m, image, multiplicity) for m in responding), default=multiplicity
+        )
+        for _ in range(multiplicity - shared):
+            moving = moving * factor
+    if moving.degree < 1:
+        raise UndeterminedError(
+            f"no wave moves '{wave.columns[column].symbol.name}': it has no equation"
+        )
+    return moving.primitive()[1]
+
+
+def _random_point(wave: WaveMatrix) -> dict[Any, Fraction]:
+    symbols = {s for c in wave.entries.values() for s in c.free_symbols} - {wave.omega}
+    random = Random(11)
+    return {
+        s: Fraction(random.randint(10**4, 10**5), random.randint(10**3, 10**4))
+        for s in sorted(symbols, key=str)
+    }
+
+
+def _times_dividing(p: ExactPolynomial, divisor: ExactPolynomial, most: int) -> int:
+    """How often a univariate polynomial divides another, counted up to `most`."""
+    count = 0
+    while count < most and p.gcd(divisor).degree == divisor.degree:
+        p, count = p.exact_div(divisor), count + 1
+    return count
 
 
 def _without(
@@ -162,21 +193,28 @@ def _without(
     }
 
 
-def _derivatives(polynomial: ExactPolynomial, symbols: list[Any]) -> dict[Orders, Expr]:
+def _derivatives(moving: ExactPolynomial, symbols: list[Any]) -> dict[Orders, Expr]:
     """omega -> i d_t and k -> −i d_x, divided by the coefficient of the leading time derivative."""
-    for g in polynomial.generators:
+    for g in moving.generators:
         if not g.is_Symbol and g.free_symbols & set(symbols):
             raise NonPolynomialError(
                 f"the wave number enters through {g}, not as a polynomial, so there is no differential equation"
             )
     terms: dict[Orders, Expr] = {}
-    for power, coefficient in polynomial.coefficients().items():
+    for power, coefficient in moving.coefficients().items():
         for exponents, c in _in_wave_numbers(coefficient, symbols):
             unit = I**power * (-I) ** sum(exponents)
-            terms[(power, *exponents)] = unit * c
+            terms[(power, *exponents)] = expand(unit * c)
     ranked = sorted(terms, key=lambda o: (-o[0], sum(o[1:]), o))
     lead = terms[ranked[0]]
-    return {orders: cancel(terms[orders] / lead) for orders in ranked}
+    return {orders: _divided(terms[orders], lead) for orders in ranked}
+
+
+def _divided(coefficient: Expr, lead: Expr) -> Expr:
+    """A coefficient over the leading one: term by term over a single product, else in lowest terms."""
+    if isinstance(lead, Add):
+        return cancel(coefficient / lead)
+    return Add(*(t / lead for t in Add.make_args(coefficient)))
 
 
 def _in_wave_numbers(coefficient: Expr, symbols: list[Any]) -> list[tuple[Orders, Expr]]:

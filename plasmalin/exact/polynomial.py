@@ -17,7 +17,6 @@ from .ring import Ring, transplanted
 from .univariate import Root, complex_roots
 from .yun import squarefree_parts
 
-
 LONGEST_NORM = 250
 """Terms of a Gaussian polynomial whose norm is still factored."""
 

@@ -9,7 +9,8 @@ vanishes) are solved exactly, one by one.
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -19,7 +20,7 @@ from .family import Family, Grid
 from .parallel import Workers, mapped
 from .pointwise import solved_exactly
 from .scaling import Table, columns_of, table_of
-from .solved import Arrays, Solved, Status, each, joined
+from .solved import Arrays, Solved, Status, each, joined, listed
 
 ZERO = Status.ZERO
 BLOCK = 32768
@@ -96,11 +97,14 @@ def enclose(family: Family, grid: Grid, *, points: int, workers: Workers = 1) ->
     Enclosure
     """
     if not grid:
-        one = _whole([solved_exactly(family, [], np.zeros(1, np.int64))])
+        one = solved_exactly(family, [], np.zeros(1, np.int64))
         repeated = each(lambda a: np.repeat(a, points, axis=0), one.arrays())
-        return Enclosure(*repeated, one.method)
-    blocks = list(enclosed_blocks(family, grid, workers=workers))
-    return _whole(blocks or [Solved.empty(0, family.degree)])
+        return Enclosure(*repeated, _method(points, points))
+    made, first, exact = Solved.empty(points, family.degree), 0, 0
+    for block in enclosed_blocks(family, grid, workers=workers):
+        made.put(np.arange(first, first + len(block.omega)), block)
+        first, exact = first + len(block.omega), exact + block.exact
+    return Enclosure(*made.arrays(), _method(exact, points))
 
 
 def enclosed_blocks(family: Family, grid: Grid, *, workers: Workers = 1) -> Iterator[Solved]:
@@ -111,11 +115,13 @@ def enclosed_blocks(family: Family, grid: Grid, *, workers: Workers = 1) -> Iter
         (family, table, [(hi[b : b + BLOCK], lo[b : b + BLOCK]) for hi, lo in grid])
         for b in range(0, points, BLOCK)
     )
-    return mapped(_block, tasks, workers if points > BLOCK else 1)
+    for *arrays, exact in mapped(_block, tasks, workers if points > BLOCK else 1):
+        omega, radius, growth_radius, state = arrays
+        yield Solved(omega, radius, growth_radius, state, int(exact))
 
 
-def _block(task: tuple[Family, Table, Grid]) -> Solved:
-    """One block: masked points left out, the rest solved; those without a proof exactly."""
+def _block(task: tuple[Family, Table, Grid]) -> list[NDArray[Any]]:
+    """One block: masked points left out, the rest solved; those without a proof exactly, and how many they are."""
     family, table, grid = task
     size = len(grid[0][0])
     made = Solved.empty(size, family.degree)
@@ -130,16 +136,14 @@ def _block(task: tuple[Family, Table, Grid]) -> Solved:
         points = points[(made.state[points] == Status.NOT_CERTIFIED).any(axis=1)]
     if len(points):
         made.put(points, solved_exactly(family, grid, points))
-    return replace(made, exact=len(points))
+    return [*listed(made.arrays()), np.array(len(points))]
 
 
-def _whole(blocks: list[Solved]) -> Enclosure:
-    exact, total = sum(b.exact for b in blocks), sum(len(b.omega) for b in blocks)
-    method = (
-        f"certified discs in twice the working precision at {total - exact} of {total} points, "
+def _method(exact: int, points: int) -> str:
+    return (
+        f"certified discs in twice the working precision at {points - exact} of {points} points, "
         f"exact ball arithmetic at {exact}"
     )
-    return Enclosure(*joined([b.arrays() for b in blocks], 0), method)
 
 
 def merge(

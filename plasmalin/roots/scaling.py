@@ -19,6 +19,8 @@ from .path import Columns, Path
 
 SMALLEST, LARGEST = -900, 600
 """Exponents of two between which scaled coefficients must lie."""
+WIDEST, FARTHEST = 300, 900
+"""The largest ones of a monomial of scaled quantities, and of the scale of the unknown."""
 
 
 @dataclass(frozen=True)
@@ -189,11 +191,8 @@ def scaled(table: Table, columns: Columns) -> Scaled | None:
     unknown = even * round((sizes[0] - sizes[-1]) / (even * table.degree))
     powers = np.tile(np.arange(table.degree + 1), table.high.shape[1] // (table.degree + 1))
     binary = np.where(table.high != 0, binary + unknown * powers - sizes[0], 0)
-    if (
-        binary.min() < SMALLEST
-        or binary.max() > LARGEST
-        or _span(table.exponents, near) > -SMALLEST / 3
-    ):
+    fits = binary.min() >= SMALLEST and binary.max() <= LARGEST and abs(unknown) <= FARTHEST
+    if not fits or _span(table.exponents, near) > WIDEST:
         return None
     high, low = np.ldexp(table.high, binary), np.ldexp(table.low, binary)
     return Scaled(table.exponents, high, low, near, unknown)
@@ -211,7 +210,6 @@ def _span(exponents: NDArray[np.int64], columns: Columns) -> float:
     for i, (hi, _) in enumerate(columns):
         sizes = np.abs(hi[hi != 0])
         if sizes.size:
-            total += float(
-                exponents[:, i].max() * np.abs(np.log2([sizes.min(), sizes.max()])).max()
-            )
+            ends = np.log2([sizes.min(), sizes.max()])
+            total += float(exponents[:, i].max() * np.abs(ends).max())
     return total

@@ -52,7 +52,9 @@ class ScaledFamily:
         terms, rates = self._by_power_of_omega(g, ds)
         step = gcd(*terms) or 1
         x, top = z**step, max(terms)
-        p_s, p_x = rates[top] + 0 * x, top // step * terms[top] + 0 * x
+        p_s, p_x = np.zeros((2, *x.shape), np.result_type(x, *terms.values(), *rates.values()))
+        p_s += rates[top]
+        p_x += top // step * terms[top]
         for n in range(top - step, -1, -step):
             p_s *= x
             p_s += rates.get(n, 0.0)

@@ -19,8 +19,10 @@ CLEAR = 0.1
 """A match is clear when it is this much nearer than the next one."""
 DEEPEST = 44
 """Halvings of an interval before two branches count as meeting."""
-MEETING = 1e-6
-"""Distance, relative to the largest root, below which roots at both ends of such an interval are one meeting."""
+UNEVEN = 0.4871
+"""Where an interval is halved: off its middle, since meetings like to sit on round numbers."""
+COINCIDE = 2.0**-44
+"""Relative distance of two roots below which rounding decides which is which."""
 BATCH = 512
 
 Solve = Callable[[NDArray[np.float64]], tuple[NDArray[np.complex128], NDArray[np.complex128]]]
@@ -81,6 +83,7 @@ def track(
     s : ndarray, shape (n,)
         Increasing.
     omega, slope : ndarray, shape (n, d)
+        Roots sorted by (Re, Im) at every point.
 
     Returns
     -------
@@ -90,9 +93,22 @@ def track(
     """
     n, d = omega.shape
     order = np.empty((n, d), np.int64)
-    if n:
-        order[0] = np.lexsort((omega[0].imag, omega[0].real))
-    points = Ends(s, omega, slope)
+    points, meeting = Ends(s, omega, slope), _coincide(omega)
+    kept = np.flatnonzero(~meeting) if not meeting.all() else np.arange(n)
+    order[kept], events = _through(solve, points.at(kept))
+    for i in np.setdiff1d(np.arange(n), kept):
+        # Where roots coincide they are not told apart; the point takes its order from a neighbor.
+        near = kept[max(int(np.searchsorted(kept, i)) - 1, 0)]
+        ahead = omega[near] + (s[i] - s[near]) * slope[near]
+        order[i] = _assigned(np.abs(ahead[:, None] - omega[i][None, :]))[order[near]]
+    return order, _distinct(events)
+
+
+def _through(solve: Solve, points: Ends) -> tuple[NDArray[np.int64], list[Event]]:
+    """Branches through points at which all roots differ."""
+    order = np.empty(points.omega.shape, np.int64)
+    if len(order):
+        order[0] = np.lexsort((points.omega[0].imag, points.omega[0].real))
     moved = np.flatnonzero(~_unmoved(points))
     steps, events = _followed(solve, points.at(moved), points.at(moved + 1))
     before = 0
@@ -101,7 +117,14 @@ def track(
         order[i + 1] = step[order[i]]
         before = i + 1
     order[before + 1 :] = order[before : before + 1]
-    return order, _distinct(events)
+    return order, events
+
+
+def _coincide(omega: NDArray[np.complex128]) -> NDArray[np.bool_]:
+    """Whether two roots of a point are the same within rounding; they come sorted."""
+    with np.errstate(invalid="ignore"):
+        square = _square(omega[:, 1:] - omega[:, :-1])
+        return np.asarray((square <= COINCIDE**2 * _square(omega[:, 1:])).any(axis=1))
 
 
 def _unmoved(points: Ends) -> NDArray[np.bool_]:
@@ -129,6 +152,7 @@ def _pairwise_clear(left: Ends, right: Ends) -> NDArray[np.bool_]:
                 np.minimum(nearest[1, b], square, out=nearest[1, b])
         own = _square(ahead - back)
         clear = (own <= CLEAR**2 * nearest[0]) & (own < nearest[1])
+        clear &= nearest[0] > COINCIDE**2 * _square(ahead)
     return np.asarray(clear.all(axis=0) & ~_ranks_change(left, right))
 
 
@@ -161,15 +185,19 @@ def _followed(solve: Solve, left: Ends, right: Ends) -> tuple[list[NDArray[np.in
     owner = np.arange(len(left.s))
     for depth in range(DEEPEST + 1):
         step, clear = _matched(left, right)
-        middle = 0.5 * (left.s + right.s)
-        short = (middle <= left.s) | (middle >= right.s) | (depth == DEEPEST)
-        for i in np.flatnonzero(clear | short):
-            met = step[i] if clear[i] else _met(left.at(i), right.at(i), events)
-            pieces[owner[i]].append((float(left.s[i]), met))
-        go_on = np.flatnonzero(~(clear | short))
+        doubtful = np.flatnonzero(~clear)
+        s = left.s[doubtful] + UNEVEN * (right.s - left.s)[doubtful]
+        between = Ends(s, *solve(s))
+        inside = (left.s[doubtful] < s) & (s < right.s[doubtful]) & (depth < DEEPEST)
+        inside &= ~_coincide(between.omega)
+        for i in doubtful[~inside]:
+            step[i] = _met(left.at(i), right.at(i), events)
+        go_on = doubtful[inside]
+        for i in np.setdiff1d(np.arange(len(owner)), go_on):
+            pieces[owner[i]].append((float(left.s[i]), step[i]))
         if not len(go_on):
             break
-        between = Ends(middle[go_on], *solve(middle[go_on]))
+        between = between.at(inside)
         left, right = left.at(go_on).and_then(between), between.and_then(right.at(go_on))
         owner = np.tile(owner[go_on], 2)
     return [_composed(p) for p in pieces], events
@@ -192,31 +220,54 @@ def _matched(left: Ends, right: Ends) -> tuple[NDArray[np.int64], NDArray[np.boo
     mutual = np.take_along_axis(from_right, step, axis=1) == np.arange(gap.shape[1])
     best = np.take_along_axis(gap, step[:, :, None], axis=2)[:, :, 0]
     np.put_along_axis(gap, step[:, :, None], np.inf, axis=2)
-    clear = mutual & (best <= CLEAR * gap.min(axis=2, initial=np.inf))
+    rest = gap.min(axis=2, initial=np.inf)
+    clear = mutual & (best <= CLEAR * rest) & ~(rest <= COINCIDE * np.abs(left.omega))
     return step, clear.all(axis=1) & ~_ranks_change(left, right, step)
 
 
 def _met(left: Ends, right: Ends, events: list[Event]) -> NDArray[np.int64]:
-    """The permutation across an interval in which roots meet within rounding; each meeting is an event.
+    """The permutation across a short interval in which roots meet; each meeting is an event.
 
-    Roots that cross go straight on. At a coalescence labels are a convention: the root that grows more goes on as
-    the one that grows more, and among real ones as the one with the larger real part.
+    Roots that cross come out on the other side of their mean. At a coalescence labels are a convention: the root
+    that grows more goes on as the one that grows more, and among real ones as the one with the larger real part.
     """
-    step = _assigned(np.abs(left.omega[:, None] - right.omega[None, :]))
-    for group in _meetings(left.omega):
+    half = 0.5 * (right.s - left.s)
+    ahead, back = left.omega + half * left.slope, right.omega - half * right.slope
+    step = _assigned(np.abs(ahead[:, None] - back[None, :]))
+    for group in _meetings(left, float(right.s - left.s)):
         partners = step[group]
-        before, after = left.omega[group], right.omega[partners]
-        turned = ((after[1] - after[0]) * np.conj(before[1] - before[0])) ** 2
-        onset = bool(turned.real < 0)
+        before, after = (w - w.mean() for w in (left.omega[group], right.omega[partners]))
+        onset = bool((((after[1] - after[0]) * np.conj(before[1] - before[0])) ** 2).real < 0)
         if onset:
             ranked = (np.lexsort((w.real, w.imag)) for w in (before, after))
             step[group[next(ranked)]] = partners[next(ranked)]
         else:
-            turn = np.abs(left.slope[group][:, None] - right.slope[partners][None, :])
-            step[group] = partners[_assigned(turn)]
-        at = float(0.5 * (left.s + right.s))
-        events.append(Event("onset" if onset else "crossing", at, complex(before.mean())))
+            sizes = (np.abs(w).max() or 1.0 for w in (before, after))
+            opposite = before[:, None] / next(sizes) + after[None, :] / next(sizes)
+            step[group] = partners[_assigned(np.abs(opposite))]
+        at, omega = 0.5 * (left.s + right.s), left.omega[group].mean()
+        events.append(Event("onset" if onset else "crossing", float(at), complex(omega)))
     return step
+
+
+def _meetings(left: Ends, length: float) -> list[NDArray[np.int64]]:
+    """Groups of roots that their relative slopes bring together within the interval.
+
+    Two that cross are as far apart as their slopes take them until then; two that coalesce, like a square root,
+    are twice as far.
+    """
+    apart = np.abs(left.omega[:, None] - left.omega[None, :])
+    near = apart <= 3 * length * np.abs(left.slope[:, None] - left.slope[None, :])
+    rest, groups = set(np.flatnonzero(np.isfinite(left.omega)).tolist()), []
+    while rest:
+        group, new = set[int](), {rest.pop()}
+        while new:
+            group |= new
+            new = {j for i in new for j in rest if near[i, j]}
+            rest -= new
+        if len(group) > 1:
+            groups.append(np.array(sorted(group)))
+    return groups
 
 
 def _assigned(cost: NDArray[np.float64]) -> NDArray[np.int64]:
@@ -227,19 +278,6 @@ def _assigned(cost: NDArray[np.float64]) -> NDArray[np.int64]:
     largest = float(cost[finite].max(initial=0.0)) or 1.0
     scaled = np.where(finite, cost / largest, 2.0 * len(cost))
     return np.asarray(linear_sum_assignment(scaled)[1], np.int64)
-
-
-def _meetings(omega: NDArray[np.complex128]) -> list[NDArray[np.int64]]:
-    """Groups of two or more roots that are the same within rounding."""
-    finite = np.isfinite(omega)
-    near = MEETING * float(np.abs(omega[finite]).max(initial=0.0))
-    left, groups = np.flatnonzero(finite).tolist(), []
-    while left:
-        group = [i for i in left if abs(omega[i] - omega[left[0]]) <= near]
-        left = [i for i in left if i not in group]
-        if len(group) > 1:
-            groups.append(np.array(group))
-    return groups
 
 
 def _distinct(events: list[Event]) -> list[Event]:

@@ -9,7 +9,6 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
-from itertools import combinations
 from typing import Any
 
 import numpy as np
@@ -145,11 +144,11 @@ def _pairwise_clear(left: Ends, right: Ends) -> NDArray[np.bool_]:
         ahead, back = ahead.real.copy(), back.real.copy()
     with np.errstate(invalid="ignore", over="ignore"):
         nearest = np.full((2, *ahead.shape), np.inf)
-        for i, j in combinations(range(len(ahead)), 2):
-            for a, b in ((i, j), (j, i)):
-                square = _square(ahead[a] - back[b])
-                np.minimum(nearest[0, a], square, out=nearest[0, a])
-                np.minimum(nearest[1, b], square, out=nearest[1, b])
+        for i in range(len(ahead)):
+            square = _square(ahead[i] - back)
+            square[i] = np.inf
+            square.min(axis=0, out=nearest[0, i])
+            np.minimum(nearest[1], square, out=nearest[1])
         own = _square(ahead - back)
         clear = (own <= CLEAR**2 * nearest[0]) & (own < nearest[1])
         clear &= nearest[0] > COINCIDE**2 * _square(ahead)

@@ -24,9 +24,9 @@ FAIR, SHARP = 2.0**-53, 2.0**-56
 """Radii relative to a root that are good enough, and that leave it right to the last digit."""
 SMALLEST_PART = 2.0**-24
 """Real and imaginary part are made right one by one down to this share of the root."""
-SAFE = 2.0**-100
-"""Smallest leading coefficient and smallest c_n prod(z_i - z_j) for which no underflow can hide an error."""
-HUGE = 2.0**600
+LEADING = 2.0**-150, 2.0**200
+LOWEST, BOTTOM, LARGEST = 2.0**-400, 2.0**-100, 2.0**500
+"""Bounds on c_n, size_0, c_n prod(z_i - z_j) and sum_j size_j |z|^j within which no underflow hides an error."""
 
 
 @dataclass(frozen=True)
@@ -169,8 +169,8 @@ def discs(c: Coefficients, guess: Guess) -> Discs:
     t *= 1 + 2.0**-40
     proven = (t <= 1 / (2 * n + 4)) & x_fits & z_fits & _in_range(c)
     proven &= _smallest(apart.x_gap) > 0
-    proven &= _smallest(np.abs(x_bottom)) >= SAFE
-    proven &= _smallest(np.abs(z_bottom)) >= SAFE
+    proven &= _smallest(np.abs(x_bottom)) >= BOTTOM
+    proven &= _smallest(np.abs(z_bottom)) >= BOTTOM
     second = 2 * (n - 1) * t * (1 + 2.0**-40)
     x_radius, z_radius = second * x_large + x_doubt, second * z_large + z_doubt
     x, z = guess.x - x_step, guess.z - z_step
@@ -213,7 +213,7 @@ def _error(c: Coefficients, magnitude: Array, noise: int) -> tuple[Array, NDArra
     for size in c.size[-2::-1]:
         total *= magnitude
         total += size
-    fits = _largest(total) <= HUGE
+    fits = _largest(total) <= LARGEST
     total *= (c.noise + noise) * (UNIT**2 * (1 + 2.0**-40))
     return total, fits
 
@@ -228,7 +228,8 @@ def _in_range(c: Coefficients) -> NDArray[np.bool_]:
     """Whether the ends of the polynomial are neither lost in rounding nor near underflow."""
     lead = np.abs(c.plain[-1])
     known = c.noise * UNIT * c.size[-1] <= lead
-    return np.asarray((lead >= SAFE) & (c.size[0] >= SAFE**4) & known)
+    fits = (lead >= LEADING[0]) & (lead <= LEADING[1]) & (c.size[0] >= LOWEST)
+    return np.asarray(fits & known)
 
 
 def _within(radius: Array, limit: Array) -> NDArray[np.bool_]:

@@ -30,7 +30,7 @@ def real_noise(steps: int) -> int:
 
 
 def pair_noise(steps: int) -> int:
-    """The same for x in high and low part, itself known to 8 UNIT^2."""
+    """The same for x in high and low part."""
     return 18 * steps**2 + 36 * steps + 8
 
 
@@ -61,13 +61,13 @@ def two_product(a: Array, b: Array) -> tuple[Array, Array]:
 
 
 def times(x: Pair, y: Pair) -> tuple[Array, Array]:
-    """A product to a relative 4 UNIT^2."""
+    """A product to a relative 8 UNIT^2."""
     product, error = two_product(x[0], y[0])
     return two_sum(product, error + (x[0] * y[1] + x[1] * y[0]))
 
 
 def power(x: Pair, n: int) -> tuple[Array, Array]:
-    """x^n for n >= 1, to a relative 4 (n - 1) UNIT^2 and terms of higher order."""
+    """x^n for n >= 1, to a relative 8 (n - 1) UNIT^2."""
     result = x
     for _ in range(n - 1):
         result = times(result, x)

@@ -25,8 +25,8 @@ FAIR, SHARP = 2.0**-53, 2.0**-56
 SMALLEST_PART = 2.0**-24
 """Real and imaginary part are made right one by one down to this share of the root."""
 LEADING = 2.0**-150, 2.0**200
-LOWEST, BOTTOM, LARGEST = 2.0**-400, 2.0**-100, 2.0**500
-"""Bounds on c_n, size_0, c_n prod(z_i - z_j) and sum_j size_j |z|^j within which no underflow hides an error."""
+LOWEST, BOTTOM, LARGEST, DEGREE = 2.0**-400, 2.0**-100, 2.0**500, 70
+"""Bounds on c_n, size_0, c_n prod(z_i - z_j) and sum_j size_j |z|^j and n within which no underflow hides an error."""
 
 
 @dataclass(frozen=True)
@@ -229,7 +229,7 @@ def _in_range(c: Coefficients) -> NDArray[np.bool_]:
     lead = np.abs(c.plain[-1])
     known = c.noise * UNIT * c.size[-1] <= lead
     fits = (lead >= LEADING[0]) & (lead <= LEADING[1]) & (c.size[0] >= LOWEST)
-    return np.asarray(fits & known)
+    return np.asarray(fits & known & (c.degree <= DEGREE))
 
 
 def _within(radius: Array, limit: Array) -> NDArray[np.bool_]:

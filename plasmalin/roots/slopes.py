@@ -11,6 +11,9 @@ from numpy.typing import NDArray
 
 from .family import Family
 
+BATCH = 1024
+"""Points at a time, so that the work stays in cache."""
+
 
 class ScaledFamily:
     """A family in doubles, omega and the swept quantities scaled by powers of two."""
@@ -38,12 +41,17 @@ class ScaledFamily:
         """d omega / d s, shape (points, roots); `rates` are d g_i / d s, shape (points,)."""
         g = [np.ldexp(1.0, -s) * x for s, x in zip(self.scales[1:], grid, strict=True)]
         ds = [np.ldexp(1.0, -s) * x for s, x in zip(self.scales[1:], rates, strict=True)]
-        z = np.ldexp(1.0, -self.scales[0]) * omega.T
-        if not z.imag.any():
-            z = z.real.copy()
-        with np.errstate(all="ignore"):
-            slope = np.ldexp(1.0, self.scales[0]) * self._scaled_slope(z, g, ds).T
-        return np.asarray(np.where(np.isfinite(slope), slope, 0.0), np.complex128)
+        slopes = np.empty_like(omega)
+        for first in range(0, len(omega), BATCH):
+            part = slice(first, first + BATCH)
+            z = np.ldexp(1.0, -self.scales[0]) * omega[part].T
+            if not z.imag.any():
+                z = z.real.copy()
+            with np.errstate(all="ignore"):
+                slope = self._scaled_slope(z, [x[part] for x in g], [x[part] for x in ds])
+            slopes[part] = np.where(np.isfinite(slope), slope, 0.0).T
+        slopes *= np.ldexp(1.0, self.scales[0])
+        return slopes
 
     def _scaled_slope(
         self, z: NDArray[Any], g: list[NDArray[Any]], ds: list[NDArray[Any]]

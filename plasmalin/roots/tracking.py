@@ -93,9 +93,10 @@ def track(
     n, d = omega.shape
     order = np.empty((n, d), np.int64)
     points, meeting = Ends(s, omega, slope), _coincide(omega)
-    kept = np.flatnonzero(~meeting) if not meeting.all() else np.arange(n)
+    meeting &= not meeting.all()
+    kept = np.flatnonzero(~meeting)
     order[kept], events = _through(solve, points.at(kept))
-    for i in np.setdiff1d(np.arange(n), kept):
+    for i in np.flatnonzero(meeting):
         # Where roots coincide they are not told apart; the point takes its order from a neighbor.
         near = kept[max(int(np.searchsorted(kept, i)) - 1, 0)]
         ahead = omega[near] + (s[i] - s[near]) * slope[near]

@@ -260,3 +260,10 @@ def test_powers_with_doubles_as_exponents():
     assert len(p.generators) <= 3
     q = polynomial(w * sympy.exp(sympy.Rational(exact_rational(0.3))) - a, w)
     assert q.degree == 1
+
+
+def test_discriminant_with_complex_coefficients():
+    """b² − 4ac holds over the Gaussian integers too; the imaginary part is not left out."""
+    found = polynomial(w**2 + sympy.I * b * w + (a + sympy.I * k), w).discriminant().as_expr()
+    expected = (sympy.I * b) ** 2 - 4 * (a + sympy.I * k)
+    assert sympy.expand(found - expected) == 0

@@ -11,12 +11,12 @@ from dataclasses import dataclass
 from fractions import Fraction
 from functools import reduce
 from itertools import product
-from random import Random
 from typing import Any, TypeAlias
 
 import sympy as sp
 
 from ..errors import UndeterminedError
+from .dependence import field_image, null_support
 from .gaussian import Gaussian, gcd
 from .matching import diagonal_blocks, maximum_matching
 from .minors import minors_determinant
@@ -254,34 +254,15 @@ def eliminate(
 def underdetermined_block(
     entries: Entries, size: int, main: sp.Symbol
 ) -> tuple[tuple[int, ...], tuple[int, ...]]:
-    """Rows that are dependent and columns that stay free in a singular matrix, found at a random exact point.
+    """Rows that are dependent and columns that stay free in a singular matrix, found at a random point.
 
     Returns
     -------
     (rows, columns) : tuple of tuple of int
-        The supports of the sparsest null vectors found on the left and on the right.
+        The supports of the shortest null vectors found on the left and on the right; empty when regular.
     """
-    symbols: set[Any] = {main}
-    for c in entries.values():
-        symbols |= c.free_symbols
-    random = Random(7)
-    point = {
-        s: sp.Rational(random.randint(100, 999), random.randint(10, 99))
-        for s in sorted(symbols, key=str)
-    }
-    numbers = {
-        ij: sp.nsimplify(c.xreplace(point).evalf(60), rational=True)
-        if c.xreplace(point).atoms(sp.Function)
-        else sp.expand(c.xreplace(point))
-        for ij, c in entries.items()
-    }
-    matrix = sp.Matrix(size, size, lambda i, j: numbers.get((int(i), int(j)), sp.S.Zero))
-    return _sparsest(matrix.T), _sparsest(matrix)
-
-
-def _sparsest(matrix: sp.Matrix) -> tuple[int, ...]:
-    from sympy.polys.matrices import DomainMatrix
-
-    null = DomainMatrix.from_Matrix(matrix, extension=True).to_field().nullspace().to_Matrix()
-    supports = [tuple(j for j in range(null.cols) if null[i, j] != 0) for i in range(null.rows)]
-    return min(supports, key=len, default=())
+    ring = ring_of(entries.values(), main)
+    reader = Reader(ring)
+    table, _ = _without_denominators({ij: reader.ratio(c) for ij, c in entries.items()}, ring)
+    matrix = field_image(table, size, reader.relations)
+    return null_support(matrix.transpose()), null_support(matrix)

@@ -6,7 +6,7 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 from functools import reduce
 
-from flint import fmpz_mpoly
+from flint import Ordering, fmpz_mpoly, fmpz_mpoly_ctx
 
 from .residues import gaussian_gcd
 
@@ -131,6 +131,20 @@ def gcd_of(polynomials: Iterable[Gaussian], start: Gaussian) -> Gaussian:
             break
         result = gcd(result, p)
     return result
+
+
+def discriminant(p: Gaussian) -> Gaussian:
+    """With respect to the first variable; the unit is a variable more until its powers are lowered."""
+    ring = p.re.context()
+    count = ring.nvars()
+    wide = fmpz_mpoly_ctx.get(("x", count + 1), Ordering.lex)
+    *gens, unit = wide.gens()
+    whole = p.re.compose(*gens, ctx=wide) + unit * p.im.compose(*gens, ctx=wide)
+    parts: tuple[dict[tuple[int, ...], int], dict[tuple[int, ...], int]] = ({}, {})
+    for exponents, c in whole.discriminant(0).terms():
+        turn, rest = int(exponents[count]) % 4, exponents[:count]
+        parts[turn % 2][rest] = parts[turn % 2].get(rest, 0) + int(-c if turn > 1 else c)
+    return Gaussian(*map(ring.from_dict, parts))
 
 
 def _real(p: fmpz_mpoly) -> Gaussian:

@@ -10,7 +10,7 @@ from typing import Any
 import sympy as sp
 
 from .factoring import irreducible_factors
-from .gaussian import Gaussian, gcd, gcd_of
+from .gaussian import Gaussian, discriminant, gcd, gcd_of
 from .ratio import Ratio
 from .reader import Reader, ring_of
 from .ring import Ring, transplanted
@@ -278,7 +278,7 @@ class ExactPolynomial:
         Denominators are cleared, so the result is right up to a factor free of `main`.
         """
         known = {s: _exact_number(v) for s, v in values.items()}
-        images = [self.main, *(g.xreplace(known) for g in self.generators)]
+        images = [x.xreplace(known) for x in (self.main, *self.generators)]
         ring = ring_of(images, self.main)
         reader = Reader(ring)
         ratios = [reader.ratio(x) for x in images]
@@ -299,9 +299,8 @@ class ExactPolynomial:
         return top
 
     def discriminant(self) -> ExactPolynomial:
-        """The discriminant with respect to `main` (real polynomials)."""
-        found = self._value.re.discriminant(0)
-        return self._with(Gaussian(found, self._ring.context.constant(0)))
+        """The discriminant with respect to `main`."""
+        return self._with(discriminant(self._value))
 
     def complex_roots(self, digits: int = 30) -> list[Root]:
         """All roots with proven radii, when no generators are left.

@@ -11,7 +11,7 @@ from math import lcm
 import sympy as sp
 from flint import Ordering, fmpz_mpoly, fmpz_mpoly_ctx
 
-from ..errors import NonPolynomialError
+from ..errors import NonPolynomialError, ValuesError
 from .gaussian import Gaussian
 from .powers import Family, generator, is_plain, split_power
 
@@ -85,6 +85,8 @@ class Census:
         return list(self._opaque(expr))
 
     def _opaque(self, expr: sp.Expr) -> Iterator[sp.Expr]:
+        if expr is sp.zoo:
+            raise ValuesError("a denominator is zero at these values; change the values.")
         for (base, unit), power in split_power(expr):
             if unit == 1 and not is_plain(base):
                 yield base

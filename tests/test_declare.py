@@ -82,6 +82,15 @@ def test_undeclared_symbol(model, n):
         model.law("L", partial_t(n), sympy.Symbol("T") * n)
 
 
+@pytest.mark.parametrize("symbol", [plin.k_x, plin.k_abs, plin.omega])
+def test_wave_symbols_belong_into_multipliers(model, n, symbol):
+    model.law("inside", partial_t(n), plin.multiplier(n, symbol**2) * n)
+    with pytest.raises(plin.DeclarationError, match=f"law 'L': {symbol} stands outside multiplier"):
+        model.law("L", partial_t(n), symbol * n + plin.multiplier(n, symbol))
+    with pytest.raises(plin.DeclarationError, match="stands outside multiplier"):
+        model.law("L", f"partial_t(n) = {symbol}*n")
+
+
 def test_field_of_another_model(model, n):
     other = plin.FluidModel("other")
     with pytest.raises(plin.DeclarationError, match="belongs to another model"):

@@ -6,13 +6,13 @@ from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
-from sympy import Expr, Float, Rational, S, Symbol, expand
+from sympy import Add, Expr, Float, Rational, S, Symbol, expand
 
 from ..errors import DeclarationError, RankError
 from .constants import codata
 from .fields import AXES, Components, Field, FieldAtom, components, exact
 from .notation import law_text
-from .operators import OPERATORS, WAVE_SYMBOLS, WORDS, Cross, Curl, identity, rank_of
+from .operators import OPERATORS, WAVE_SYMBOLS, WORDS, Cross, Curl, Multiplier, identity, rank_of
 from .reader import read_expression, read_law
 
 if TYPE_CHECKING:
@@ -428,6 +428,12 @@ class FluidModel:
             expr = self._canonical(expr)
         except DeclarationError as error:
             raise DeclarationError(f"law '{name}': {error}") from None
+        loose = _outside_multipliers(expr).free_symbols & set(WAVE_SYMBOLS)
+        if loose:
+            raise DeclarationError(
+                f"law '{name}': {', '.join(sorted(s.name for s in loose))} stands outside multiplier(f, g); a law is "
+                "written in space and time, and the wave enters only as the second argument of multiplier"
+            )
         if len(self.axes) < 3:
             for node in expr.atoms(Cross, Curl):
                 raise DeclarationError(
@@ -537,6 +543,15 @@ class FluidModel:
         from .files import save_model
 
         save_model(self, path)
+
+
+def _outside_multipliers(expr: Expr) -> Expr:
+    """The expression with every multiplier's function of the wave taken away."""
+    if not expr.atoms(Multiplier):
+        return expr
+    if isinstance(expr, Multiplier):
+        return _outside_multipliers(expr.args[0])
+    return Add(*(_outside_multipliers(a) for a in expr.args if isinstance(a, Expr)))
 
 
 def _sequence(given: Any) -> bool:

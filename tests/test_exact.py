@@ -100,6 +100,18 @@ def test_memory_denominators_are_cleared_once():
     assert same_up_to_unit(found.as_expr(), plain)
 
 
+def test_real_denominators_leave_no_spurious_roots():
+    entries = {(0, 0): a, (1, 0): 1 / (w - k), (1, 1): k}
+    assert determinant(entries, 2, w).degree == 0
+    with pytest.raises(plin.NonPolynomialError):
+        polynomial(1 / w, w)
+
+
+def test_zero_denominators_are_named():
+    with pytest.raises(plin.ValuesError, match="denominator is zero"):
+        determinant({(0, 0): w - 1 / a}, 1, w, {a: Fraction(0)})
+
+
 @pytest.mark.parametrize(
     "expr", [sympy.exp(w * a), sympy.sqrt(w**2 - k**2), w**gamma, sympy.sin(w)]
 )
@@ -145,6 +157,7 @@ def test_substitute_is_exact():
     assert q.generators == (k,)
     assert same_up_to_unit(q.as_expr(), w**2 * sympy.Rational(exact_rational(0.1)) - 6 * k**2)
     assert p.substitute({a: b}).degree == 2
+    assert same_up_to_unit(p.substitute({w: 3 * w}).as_expr(), p.as_expr().subs(w, 3 * w))
 
 
 def test_equality_and_pickling():
@@ -160,6 +173,19 @@ def test_gcd_and_division():
     assert p.exact_div(common).as_expr() == w - k
     with pytest.raises(ArithmeticError):
         p.exact_div(polynomial(w + a, w))
+
+
+def test_gaussian_numbers_belong_to_the_content():
+    p = polynomial(sympy.expand((2 + 4 * sympy.I) * (a + sympy.I * b) * (w**2 + sympy.I * a)), w)
+    assert p.primitive()[1].as_expr() == w**2 + sympy.I * a
+
+
+def test_gaussian_divisor_of_a_polynomial_with_gaussian_content():
+    """Coprime though every coefficient of the first is a multiple of 2 − i."""
+    p = polynomial(sympy.expand((2 - sympy.I) * (w**3 + sympy.I * a * w - 2 * a * b)), w)
+    q = polynomial(sympy.expand((w - k) ** 2 * (w + sympy.I * a * k)), w)
+    assert p.gcd(q).degree == 0
+    assert (p * q).gcd(q * q).as_expr() == q.as_expr()
 
 
 def test_discriminant():
@@ -185,6 +211,22 @@ def test_underdetermined_block_names_the_culprits():
     rows, columns = underdetermined_block(entries, 3, w)
     assert rows == (0, 1)
     assert set(columns) == {0, 1, 2}
+
+
+@pytest.mark.parametrize(
+    "dependent",
+    [
+        {(0, 0): w * a**gamma, (0, 1): k, (1, 0): a ** (gamma + 1) * w, (1, 1): k * a},
+        {(0, 0): w * sympy.sqrt(a + b), (0, 1): k, (1, 0): w * (a + b), (1, 1): k * sympy.sqrt(a + b)},
+        {(0, 0): sympy.sqrt(5) * w, (0, 1): sympy.I * k, (1, 0): 5 * w, (1, 1): sympy.I * sympy.sqrt(5) * k},
+        {(0, 0): sympy.sin(theta), (0, 1): -sympy.cos(theta), (1, 0): sympy.cos(theta),
+         (1, 1): sympy.sin(theta) - 1 / sympy.sin(theta)},
+    ],
+)  # fmt: skip
+def test_underdetermined_block_where_generators_are_related(dependent):
+    entries = {**dependent, (2, 2): w - a}
+    assert determinant(entries, 3, w).degree == -1
+    assert underdetermined_block(entries, 3, w) == ((0, 1), (0, 1))
 
 
 @settings(deadline=None)

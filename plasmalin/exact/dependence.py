@@ -66,7 +66,11 @@ def _point(
     point += [random.randrange(1, prime) for _ in range(variables)]
     waiting = {i: (n, top, bottom) for i, n, top, bottom in relations}
     while waiting:
-        i = next(i for i, (_, *parts) in waiting.items() if not _holds(parts, waiting))
+        i = next(
+            i
+            for i, (_, *parts) in waiting.items()
+            if not any(p.holds(j) for p in parts for j in waiting)
+        )
         n, top, bottom = waiting.pop(i)
         divisor = _value(bottom, point, prime)
         root = (
@@ -78,10 +82,6 @@ def _point(
             return None
         point[i + 1] = root
     return point
-
-
-def _holds(parts: Sequence[Gaussian], variables: Mapping[int, object]) -> bool:
-    return any(part.degrees()[i] > 0 for p in parts for part in (p.re, p.im) for i in variables)
 
 
 def _value(p: Gaussian, point: Sequence[int], prime: int) -> int:

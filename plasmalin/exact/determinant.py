@@ -62,7 +62,7 @@ def determinant(
     ring = ring_of(filled.values(), main)
     ratio = exact_determinant(filled, range(size), range(size), ring)
     top = ratio.top
-    if top and ratio.bottom.re.degrees()[0] + ratio.bottom.im.degrees()[0] > 0:
+    if top and ratio.bottom.holds(0):
         top = top.over(gcd(top, ratio.bottom))
     return _as_free_as_it_may(ExactPolynomial(ring, top).real_if_possible())
 

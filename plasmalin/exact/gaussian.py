@@ -8,7 +8,7 @@ from functools import reduce
 
 from flint import Ordering, fmpz_mpoly, fmpz_mpoly_ctx
 
-from .residues import gaussian_gcd
+from .residues import gaussian_gcd, integer_gcd
 
 
 @dataclass(frozen=True, slots=True)
@@ -52,6 +52,10 @@ class Gaussian:
     @property
     def is_constant(self) -> bool:
         return self.re.is_constant() and self.im.is_constant()
+
+    def holds(self, variable: int) -> bool:
+        """Whether a variable occurs."""
+        return any(int(part.degrees()[variable]) > 0 for part in (self.re, self.im))
 
     @property
     def phase(self) -> int | None:
@@ -131,6 +135,16 @@ def gcd_of(polynomials: Iterable[Gaussian], start: Gaussian) -> Gaussian:
             break
         result = gcd(result, p)
     return result
+
+
+def integer_content(p: Gaussian) -> Gaussian:
+    """The Gaussian integer that divides every coefficient; not for zero."""
+    parts = [{e: int(c) for e, c in part.terms()} for part in (p.re, p.im)]
+    a, b = reduce(
+        integer_gcd, ((parts[0].get(e, 0), parts[1].get(e, 0)) for e in set().union(*parts))
+    )
+    ring = p.re.context()
+    return Gaussian(ring.constant(a), ring.constant(b))
 
 
 def discriminant(p: Gaussian) -> Gaussian:

@@ -10,7 +10,7 @@ from typing import Any
 import sympy as sp
 
 from .factoring import irreducible_factors
-from .gaussian import Gaussian, discriminant, gcd, gcd_of
+from .gaussian import Gaussian, discriminant, gcd, gcd_of, integer_content
 from .ratio import Ratio
 from .reader import Reader, ring_of
 from .ring import Ring, transplanted
@@ -168,9 +168,11 @@ class ExactPolynomial:
         content = gcd_of(parts, self._ring.constant(0))
         if not content:
             return self._with(self._ring.constant(1)), self
-        return self._with(content), self._with(
-            self._value.over(content).normalized()
-        ).real_if_possible()
+        part = self._value.over(content)
+        if not self.is_real:
+            number = integer_content(part)
+            content, part = content * number, part.over(number)
+        return self._with(content), self._with(part.normalized()).real_if_possible()
 
     def _slices(self) -> dict[int, Gaussian]:
         """The coefficient of every power of `main`, in the same ring."""
@@ -240,7 +242,7 @@ class ExactPolynomial:
             multiplicity, last = 0, None
             while _holds_main(factor):
                 common = gcd(rest, _real(factor))
-                if not (_holds_main(common.re) or _holds_main(common.im)):
+                if not common.holds(0):
                     break
                 rest = rest.over(common)
                 if last is not None and common != last:
@@ -395,7 +397,7 @@ def polynomial(expr: sp.Expr, main: sp.Symbol) -> ExactPolynomial:
 
     ring = ring_of([expr], main)
     ratio = Reader(ring).ratio(expr).lowest()
-    if ratio.bottom.re.degrees()[0] + ratio.bottom.im.degrees()[0] > 0:
+    if ratio.bottom.holds(0):
         raise NonPolynomialError(f"{expr} is a ratio in {main}; use its numerator")
     return ExactPolynomial(ring, ratio.top)
 

@@ -6,8 +6,7 @@ The caller checks the candidate by division and asks for the next one, from a la
 """
 
 from collections.abc import Iterator
-from functools import lru_cache
-from math import gcd
+from functools import lru_cache, reduce
 from typing import TypeAlias
 
 from flint import (
@@ -82,14 +81,24 @@ def _lifted(
     image: fmpz_mod_mpoly, scale: int, prime: int, pi: tuple[int, int], like: fmpz_mpoly
 ) -> Pair:
     """The primitive Gaussian polynomial of least size that is ``scale * image`` modulo pi."""
-    re: dict[tuple[int, ...], int] = {}
-    im: dict[tuple[int, ...], int] = {}
-    for exponents, c in image.to_dict().items():
-        re[exponents], im[exponents] = _least(int(c) * scale % prime, prime, pi)
+    found = {e: _least(int(c) * scale % prime, prime, pi) for e, c in image.to_dict().items()}
+    a, b = reduce(integer_gcd, found.values())
+    norm = a * a + b * b
     ring = like.context()
-    a, b = ring.from_dict(re), ring.from_dict(im)
-    content = gcd(*(int(c) for part in (a, b) for c in part.coeffs())) or 1
-    return a / content, b / content
+    re = ring.from_dict({e: (x * a + y * b) // norm for e, (x, y) in found.items()})
+    im = ring.from_dict({e: (y * a - x * b) // norm for e, (x, y) in found.items()})
+    return re, im
+
+
+def integer_gcd(x: tuple[int, int], y: tuple[int, int]) -> tuple[int, int]:
+    """A greatest common divisor of two Gaussian integers, by Euclid's algorithm."""
+    (a, b), (c, d) = x, y
+    while c or d:
+        norm = c * c + d * d
+        u = (2 * (a * c + b * d) + norm) // (2 * norm)
+        v = (2 * (b * c - a * d) + norm) // (2 * norm)
+        a, b, c, d = c, d, a - u * c + v * d, b - u * d - v * c
+    return a, b
 
 
 def _least(c: int, prime: int, pi: tuple[int, int]) -> tuple[int, int]:

@@ -12,7 +12,7 @@ def squarefree_parts(p: Gaussian) -> list[tuple[Gaussian, int]]:
     """Square-free polynomials whose powers multiply to p, up to a factor free of the first variable."""
     p, lowest = _without_power(p)
     found = [(_variable(p), lowest)] if lowest else []
-    if not holds_first(p):
+    if not p.holds(0):
         return found
     if proven_squarefree((p.re, p.im)):
         return [*found, (p, 1)]
@@ -20,19 +20,14 @@ def squarefree_parts(p: Gaussian) -> list[tuple[Gaussian, int]]:
     common = gcd(p, slope)
     w, y = p.over(common), slope.over(common)
     multiplicity = 1
-    while holds_first(w):
+    while w.holds(0):
         z = y - _slope(w)
         part = gcd(w, z) if z else w
-        if holds_first(part):
+        if part.holds(0):
             found.append((part, multiplicity))
         w, y = w.over(part), z.over(part) if z else z
         multiplicity += 1
     return found
-
-
-def holds_first(p: Gaussian) -> bool:
-    """Whether the first variable occurs."""
-    return any(part and int(part.degrees()[0]) > 0 for part in (p.re, p.im))
 
 
 def _slope(p: Gaussian) -> Gaussian:

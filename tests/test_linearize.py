@@ -267,3 +267,31 @@ def test_report_holds_everything():
     report = warm_electrons().linearize().report()
     assert "warm electrons over fixed ions" in report
     assert "order 2+" in report
+
+
+def test_text_cannot_be_misread():
+    """The magnetic force and the induction term print differently, and no operator seems to act on what follows it."""
+    model = plin.FluidModel("brackets")
+    b, v = model.vector("B", background=(0, 0, "B_0")), model.vector("v")
+    s = model.scalar("s", background="s_0")
+    model.law("force", partial_t(v), cross(curl(b), b))
+    model.law("induction", partial_t(b), curl(cross(v, b)))
+    model.law("s", partial_t(s), dot(b, div(v) * b))
+    model_text = str(model.linearize().equations)
+    assert "(∇×B̃)×(B_0 ẑ)" in model_text
+    assert "∇×(ṽ×(B_0 ẑ))" in model_text
+    assert "B̃·((∇·ṽ) B̃)" in str(model.linearize().ledger)
+
+
+def test_parallel_vectors_are_not_called_a_derivative_of_a_background():
+    model = plin.FluidModel("parallel")
+    b, s = model.vector("B", background=(0, 0, "B_0")), model.scalar("s")
+    model.law("b", partial_t(b), curl(cross(b, s * b)))
+    model.law("s", partial_t(s), div(b))
+    reasons = {
+        p.reason
+        for p in model.linearize().ledger.of("b").with_fate("vanishes")
+        if p.raw.atoms(Perturbation)
+    }
+    assert "the background gives zero" in reasons
+    assert "derivative of a uniform background" not in reasons

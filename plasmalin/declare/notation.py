@@ -118,13 +118,21 @@ class TextPrinter:
         size = abs(number)
         top = ([] if size.p == 1 else [str(size.p)]) if size.is_Rational else [str(size)]
         bottom = [str(size.q)] if size.is_Rational and size.q != 1 else []
-        top += [self.show(f, 2 if isinstance(f, Add) else 1) for f in above]
+        top += self._factors(above)
         bottom += [self.show(f, 1 if isinstance(f, Pow | Symbol) else 2) for f in below]
-        last = [self.show(f, 1) for f in above if _place(f) > 1]
+        last = self._factors([f for f in above if _place(f) > 1])
         if bottom and last:
             head, binding = self._product_text(sign, top[: len(top) - len(last)] or ["1"], bottom)
             return " ".join([head, *last]), binding
         return self._product_text(sign, top or ["1"], bottom)
+
+    def _factors(self, factors: list[Any]) -> list[str]:
+        """Factors side by side; an operator that others follow is bracketed, lest it seem to act on them."""
+        shown = []
+        for f in factors:
+            followed = isinstance(f, Operator) and f is not factors[-1]
+            shown.append(self.show(f, 3 if followed else 2 if isinstance(f, Add) else 1))
+        return shown
 
     def _product_text(self, sign: str, top: list[str], bottom: list[str]) -> tuple[str, int]:
         text = sign + " ".join(top)
@@ -169,7 +177,7 @@ class TextPrinter:
         sign = SIGNS[expr.word]
         if len(expr.args) == 1:
             return sign + self.show(expr.args[0], 2), 2
-        return sign.join(self.show(a, 2) for a in expr.args), 1
+        return sign.join(self.show(a, 3) for a in expr.args), 1
 
     def _stream(self, v: Any) -> str:
         """v.grad inside parentheses; along known components as d_x, d_y, d_z."""

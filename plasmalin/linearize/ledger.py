@@ -12,7 +12,7 @@ from typing import Any, overload
 
 from sympy import Expr, S, expand
 
-from ..declare.fields import Background
+from ..declare.fields import Background, Perturbation
 from ..declare.model import Law
 from ..declare.notation import latex, paper, term_order
 from ..declare.operators import Norm, Operator
@@ -194,7 +194,8 @@ def _why_nothing(raw: Expr) -> str:
     absent: dict[Any, Any] = {b: b.value for b in raw.atoms(Background) if b.value == 0}
     if absent and raw.xreplace(absent) == 0:
         return "the background is zero"
-    if any(node.derivative for node in raw.atoms(Operator)):
+    derivatives = (node for node in raw.atoms(Operator) if node.derivative)
+    if any(not node.args[-1].atoms(Perturbation) for node in derivatives):
         return "derivative of a uniform background"
     return "the background gives zero"
 

@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING, Any
 
 from sympy import Add, Expr, Poly, S, Symbol, latex, sympify
 
-from ..declare.notation import paper
+from ..declare.notation import SUPERSCRIPT, paper
 from ..errors import DeclarationError, UndeterminedError
 from ..exact.determinant import determinant, underdetermined_block
 from ..exact.polynomial import ExactPolynomial
@@ -199,7 +199,11 @@ class Relation:
     def __str__(self) -> str:
         lines = [str(f) for f in self.factors if f.polynomial.lowest == 0]
         if self.zero_modes:
-            lines.append(f"ω^{self.zero_modes} = 0: {self.zero_modes} zero modes")
+            power = (
+                "ω" if self.zero_modes == 1 else f"ω{str(self.zero_modes).translate(SUPERSCRIPT)}"
+            )
+            plural = "" if self.zero_modes == 1 else "s"
+            lines.append(f"{power} = 0: {self.zero_modes} zero mode{plural}")
         return "\n".join(lines)
 
     def __repr__(self) -> str:

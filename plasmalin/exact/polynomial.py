@@ -183,6 +183,20 @@ class ExactPolynomial:
         make = self._ring.context.from_dict
         return {power: Gaussian(make(a), make(b)) for power, (a, b) in found.items()}
 
+    def without_main(self) -> ExactPolynomial:
+        """Divided by the powers of `main` that it holds."""
+        gen = self._ring.context.gens()[0]
+        power = self._with(_real(gen**self.lowest))
+        return self.exact_div(power)
+
+    def turned_sign(self, symbol: sp.Expr) -> ExactPolynomial:
+        """With `main` or a generator replaced by its negative."""
+        i = 0 if symbol == self.main else 1 + self.generators.index(symbol)
+        gens = list(self._ring.context.gens())
+        gens[i] = -gens[i]
+        parts = (p.compose(*gens, ctx=self._ring.context) for p in (self._value.re, self._value.im))
+        return self._with(Gaussian(*parts))
+
     def reduced(self) -> ExactPolynomial:
         """With the known relations between generators used: cos^2 = 1 − sin^2, |k|^2 = k^2."""
         reader = Reader(self._ring)

@@ -1,0 +1,1 @@
+"""A hand derivation judged: a claim is read, compared exactly, its slips located, its ordering found."""

@@ -1,0 +1,160 @@
+"""The derived relation made ready for comparison: conditions of the background used, angles made rational."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass
+from functools import cached_property
+from typing import TYPE_CHECKING, Any
+
+from sympy import Abs, Eq, Expr, Mul, Poly, PolynomialError, Symbol, cancel, cos, expand_trig, sin
+from sympy import tan as tangent
+
+from ..declare.operators import omega
+from ..exact.polynomial import ExactPolynomial
+from ..exact.radicals import rational_numerator
+
+if TYPE_CHECKING:
+    from ..waves.matrix import WaveMatrix
+
+
+@dataclass(frozen=True)
+class Condition:
+    """A condition of the background, and the symbol that it was solved for."""
+
+    equation: Eq
+    symbol: Symbol
+    value: Expr
+
+
+@dataclass(frozen=True, eq=False)
+class Derived:
+    """What a claim is held against.
+
+    Attributes
+    ----------
+    polynomial : ExactPolynomial
+        The relation without its zero modes.
+    conditions : tuple of Condition
+        Used in it, and to be used in every claim.
+    """
+
+    polynomial: ExactPolynomial
+    conditions: tuple[Condition, ...]
+    angles: tuple[Expr, ...]
+
+    @cached_property
+    def factors(self) -> tuple[tuple[ExactPolynomial, int], ...]:
+        """The irreducible factors with their multiplicities."""
+        return self.polynomial.factor()[1]
+
+    @property
+    def symbols(self) -> set[Symbol]:
+        return {s for g in self.polynomial.generators for s in g.free_symbols}
+
+    def rational(self, expr: Expr) -> Expr:
+        """An expression with the conditions used, angles by their half tangents, |k| for k > 0."""
+        for c in self.conditions:
+            expr = expr.xreplace({c.symbol: c.value})
+        return without_angles(expr)
+
+    def numerator(self, expr: Expr) -> tuple[ExactPolynomial, int]:
+        """The zeros of an expression as a polynomial without powers of ω or content, and its sheets."""
+        found, sheets = rational_numerator(self.rational(expr), omega)
+        return bare(found), sheets
+
+    def substituted(self, values: dict[Any, Any]) -> Derived:
+        """With parameters replaced by numbers or expressions."""
+        made = self.polynomial.substitute({s: self.rational(v) for s, v in values.items()})
+        return Derived(bare(made), self.conditions, self.angles)
+
+
+def derive(wave: WaveMatrix, symbols: Iterable[Symbol], constants: Iterable[Symbol]) -> Derived:
+    """The relation of a wave for a claim in certain symbols.
+
+    Parameters
+    ----------
+    wave : WaveMatrix
+    symbols : iterable of Symbol
+        Those of the claim: conditions of the background are solved for others where possible.
+    constants : iterable of Symbol
+        The claim's and the model's symbols for c, epsilon_0 and mu_0, related by c² ε_0 μ_0 = 1.
+    """
+    raw = wave.relation.exact
+    angles = tuple(a for a in raw.generators if isinstance(a, sin | cos))
+    equations = [*wave.linear.conditions, *_light(constants)]
+    used = _solved(equations, set(symbols), set(raw.generators))
+    made = raw.substitute({**{a: without_angles(a) for a in raw.generators if a != without_angles(a)}})
+    for c in used:
+        made = made.substitute({c.symbol: c.value})
+    return Derived(bare(made), tuple(used), angles)
+
+
+def bare(polynomial: ExactPolynomial) -> ExactPolynomial:
+    """Without content and without powers of ω."""
+    part = polynomial.primitive()[1]
+    return part.without_main() if part.lowest > 0 else part
+
+
+def without_angles(expr: Expr) -> Expr:
+    """sin and cos by the tangent of the half angle, which makes them rational; |k| as k, which is positive."""
+    if expr.atoms(tangent):
+        expr = expr.replace(tangent, lambda a: sin(a) / cos(a))
+    replaced: dict[Any, Any] = {}
+    for f in expr.atoms(sin, cos):
+        plain = expand_trig(f) if not f.args[0].is_Symbol else f
+        replaced[f] = plain.xreplace({g: _by_half(g) for g in plain.atoms(sin, cos)})
+    for a in expr.atoms(Abs):
+        replaced[a] = a.args[0] if a.args[0].is_Symbol else a
+    return expr.xreplace(replaced) if replaced else expr
+
+
+def half_tangent(angle: Expr) -> Symbol:
+    """The symbol that stands for tan(angle/2)."""
+    return Symbol(f"tan_half_{angle}", real=True)
+
+
+def _by_half(f: Expr) -> Expr:
+    t = half_tangent(f.args[0])
+    return (2 * t if isinstance(f, sin) else 1 - t**2) / (1 + t**2)
+
+
+def _light(constants: Iterable[Symbol]) -> list[Eq]:
+    found = {s.name: s for s in constants}
+    if {"c", "epsilon_0", "mu_0"} <= set(found):
+        return [Eq(found["c"] ** 2 * found["epsilon_0"] * found["mu_0"], 1, evaluate=False)]
+    return []
+
+
+def _solved(equations: list[Eq], claimed: set[Symbol], needed: set[Any]) -> list[Condition]:
+    """Each condition solved for one symbol that enters it linearly, rather one that the claim does not use."""
+    used: list[Condition] = []
+    for equation in equations:
+        residual = equation.lhs - equation.rhs
+        for c in used:
+            residual = residual.xreplace({c.symbol: c.value})
+        order = sorted(
+            residual.free_symbols, key=lambda s: (s in claimed, s.name == "c", s.name != "mu_0", s.name)
+        )
+        for symbol in order:
+            value = _linear_solution(residual, symbol)
+            if value is not None:
+                used.append(Condition(equation, symbol, value))
+                break
+    return [c for i, c in enumerate(used) if _matters(c, used[i + 1 :], claimed | needed)]
+
+
+def _matters(condition: Condition, later: list[Condition], seen: set[Any]) -> bool:
+    return condition.symbol in seen or any(condition.symbol in c.value.free_symbols for c in later)
+
+
+def _linear_solution(residual: Expr, symbol: Symbol) -> Expr | None:
+    top = cancel(residual).as_numer_denom()[0]
+    try:
+        poly = Poly(top, symbol)
+    except PolynomialError:
+        return None
+    if poly.degree() != 1:
+        return None
+    slope, rest = poly.all_coeffs()
+    return Mul(-1, rest, 1 / slope)

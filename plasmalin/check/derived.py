@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
-from sympy import Abs, Eq, Expr, Mul, Poly, PolynomialError, Symbol, cancel, cos, expand_trig, sin
+from sympy import Abs, Add, Eq, Expr, Mul, Poly, PolynomialError, Symbol, cancel, cos, expand_trig, sin
 from sympy import tan as tangent
 
 from ..declare.operators import omega
@@ -37,11 +37,13 @@ class Derived:
         The relation without its zero modes.
     conditions : tuple of Condition
         Used in it, and to be used in every claim.
+    square : Expr
+        k·k.
     """
 
     polynomial: ExactPolynomial
     conditions: tuple[Condition, ...]
-    angles: tuple[Expr, ...]
+    square: Expr
 
     @cached_property
     def factors(self) -> tuple[tuple[ExactPolynomial, int], ...]:
@@ -66,7 +68,7 @@ class Derived:
     def substituted(self, values: dict[Any, Any]) -> Derived:
         """With parameters replaced by numbers or expressions."""
         made = self.polynomial.substitute({s: self.rational(v) for s, v in values.items()})
-        return Derived(bare(made), self.conditions, self.angles)
+        return Derived(bare(made), self.conditions, self.square)
 
 
 def derive(wave: WaveMatrix, symbols: Iterable[Symbol], constants: Iterable[Symbol]) -> Derived:
@@ -81,13 +83,12 @@ def derive(wave: WaveMatrix, symbols: Iterable[Symbol], constants: Iterable[Symb
         The claim's and the model's symbols for c, epsilon_0 and mu_0, related by c² ε_0 μ_0 = 1.
     """
     raw = wave.relation.exact
-    angles = tuple(a for a in raw.generators if isinstance(a, sin | cos))
     equations = [*wave.linear.conditions, *_light(constants)]
     used = _solved(equations, set(symbols), set(raw.generators))
     made = raw.substitute({**{a: without_angles(a) for a in raw.generators if a != without_angles(a)}})
     for c in used:
         made = made.substitute({c.symbol: c.value})
-    return Derived(bare(made), tuple(used), angles)
+    return Derived(bare(made), tuple(used), Add(*(c**2 for c in wave.k)))
 
 
 def bare(polynomial: ExactPolynomial) -> ExactPolynomial:

@@ -28,10 +28,10 @@ class Radical:
     base: sp.Expr
 
 
-def isolated(expr: sp.Expr, main: sp.Symbol) -> tuple[sp.Expr, list[Radical]]:
-    """The expression with compound radicals, radicals that hold `main`, and absolute values as symbols.
+def isolated(expr: sp.Expr, *mains: sp.Symbol) -> tuple[sp.Expr, list[Radical]]:
+    """The expression with compound radicals, roots of `mains`, and absolute values as symbols.
 
-    Roots of plain symbols and numbers stay: they are generators of a ring as they are.
+    Roots of other symbols and of numbers stay: they are generators of a ring as they are.
     """
     found: dict[tuple[sp.Expr, int], Radical] = {}
     seen: dict[sp.Expr, sp.Expr] = {}
@@ -53,7 +53,7 @@ def isolated(expr: sp.Expr, main: sp.Symbol) -> tuple[sp.Expr, list[Radical]]:
         if isinstance(node, sp.Abs):
             return symbol(visit(node.args[0]) ** 2, 2)
         if isinstance(node, sp.Pow) and node.exp.is_Rational and not node.exp.is_Integer:
-            if node.base == main or not (node.base.is_Symbol or node.base.is_number):
+            if node.base in mains or not (node.base.is_Symbol or node.base.is_number):
                 power, index = int(node.exp.p), int(node.exp.q)
                 base, whole = visit(node.base), int(power / index)
                 return base**whole * symbol(base, index) ** (power - whole * index)

@@ -41,6 +41,30 @@ class ReadError(DeclarationError):
         return f"{self.message}\n  {shown}\n  {' ' * (self.position - start)}^"
 
 
+class AmbiguousText(ReadError):
+    """Typed mathematics that can be read in two ways, such as ``a/b c``.
+
+    Parameters
+    ----------
+    message : str
+        What is ambiguous.
+    text : str
+        The whole text.
+    position : int
+        Index of the character at fault.
+    readings : tuple of str
+        The two readings, each written so that it can be read one way only.
+    """
+
+    def __init__(
+        self, message: str, text: str = "", position: int = 0, readings: tuple[str, ...] = ()
+    ) -> None:
+        advice = f"{message}; write {' or '.join(readings)}" if readings else message
+        super().__init__(advice, text, position)
+        self.args = (message, text, position, readings)
+        self.readings = readings
+
+
 class ModelFileError(PlasmalinError, ValueError):
     """A model file cannot be read or does not describe a model."""
 

@@ -180,15 +180,18 @@ class Reader:
         base = self.operand()
         if self.peek().text in ("^", "**"):
             token = self.take()
-            exponent = self.unary()
-            if exponent.is_number and not abs(exponent) <= LARGEST_POWER:
-                self.fail(f"a power beyond ±{LARGEST_POWER} is not read", token.position)
-            if base == 0 and exponent.is_number and exponent <= 0:
-                self.fail("zero to a power that is not positive", token.position)
-            if base.is_number and exponent.is_number and len(str(base)) > LARGEST_EXPONENT:
-                self.fail("a number this large is not read", token.position)
-            return cast(Expr, base**exponent)
+            return self.raised(base, self.unary(), token)
         return base
+
+    def raised(self, base: Expr, exponent: Expr, token: Token) -> Expr:
+        """base**exponent, within the bounds on numbers; the token is where errors point."""
+        if exponent.is_number and not abs(exponent) <= LARGEST_POWER:
+            self.fail(f"a power beyond ±{LARGEST_POWER} is not read", token.position)
+        if base == 0 and exponent.is_number and exponent <= 0:
+            self.fail("zero to a power that is not positive", token.position)
+        if base.is_number and exponent.is_number and len(str(base)) > LARGEST_EXPONENT:
+            self.fail("a number this large is not read", token.position)
+        return cast(Expr, base**exponent)
 
     def operand(self) -> Expr:
         token = self.take()

@@ -20,7 +20,7 @@ from dataclasses import dataclass
 from typing import Any, NoReturn, cast
 
 import sympy
-from sympy import Expr, Integer, Rational, S
+from sympy import Add, Expr, Integer, Mul, Rational, S, exp, log
 
 from ..errors import RankError, ReadError
 from .operators import OPERATORS
@@ -29,6 +29,7 @@ LONGEST = 20_000
 DEEPEST = 60
 LARGEST_POWER = 64
 LARGEST_EXPONENT = 400
+LARGEST_BITS = 100_000
 
 FUNCTIONS: dict[str, Callable[[Any], Any]] = {
     name: getattr(sympy, name)
@@ -87,6 +88,12 @@ def read_expression(
     return found
 
 
+def bits(value: Expr) -> int:
+    """The length of the number that an expression is multiplied by."""
+    number = value.as_coeff_Mul()[0]
+    return max(number.p.bit_length(), number.q.bit_length()) if number.is_Rational else 1
+
+
 class Reader:
     """One pass over the tokens of a text, by recursive descent."""
 
@@ -135,42 +142,48 @@ class Reader:
         if token.kind != "end":
             self.fail(f"'{token.text}' is not expected here")
 
-    def sum(self) -> Expr:
+    def deeper(self) -> None:
         self.depth += 1
         if self.depth > DEEPEST:
             self.fail(f"more than {DEEPEST} levels of nesting")
-        total = self.product()
+
+    def sum(self) -> Expr:
+        self.deeper()
+        terms = [self.product()]
         while self.peek().text in ("+", "-"):
-            sign = self.take().text
+            negative = self.take().text == "-"
             term = self.product()
-            total = total + term if sign == "+" else total - term
+            terms.append(-term if negative else term)
         self.depth -= 1
-        return total
+        return cast(Expr, Add(*terms)) if len(terms) > 1 else terms[0]
 
     def product(self) -> Expr:
-        value = self.unary()
+        factors = [self.unary()]
         while self.peek().text in ("*", "/"):
             token = self.take()
             factor = self.unary()
-            if token.text == "*":
-                value = value * factor
-            elif factor == 0:
-                self.fail("division by zero", token.position)
-            else:
-                value = self._quotient(value, factor, token)
-        return value
+            factors.append(self.below(factor, token) if token.text == "/" else factor)
+        return self.multiplied(factors)
 
-    def _quotient(self, value: Expr, factor: Expr, token: Token) -> Expr:
+    def multiplied(self, factors: list[Expr]) -> Expr:
+        if len(factors) == 1:
+            return factors[0]
+        if sum(bits(factor) for factor in factors) > LARGEST_BITS:
+            self.fail("a number this large is not read")
+        return cast(Expr, Mul(*factors))
+
+    def below(self, factor: Expr, token: Token) -> Expr:
+        """One over a factor; the token is the sign of division."""
         from .operators import rank_of
 
+        if factor == 0:
+            self.fail("division by zero", token.position)
         if rank_of(factor) > 0:
             self.fail(f"division by the vector '{factor}'", token.position)
-        return cast(Expr, value / factor)
+        return cast(Expr, 1 / factor)
 
     def unary(self) -> Expr:
-        self.depth += 1
-        if self.depth > DEEPEST:
-            self.fail(f"more than {DEEPEST} levels of nesting")
+        self.deeper()
         sign = self.take().text if self.peek().text in ("+", "-") else ""
         value = self.unary() if sign else self.power()
         self.depth -= 1
@@ -185,13 +198,27 @@ class Reader:
 
     def raised(self, base: Expr, exponent: Expr, token: Token) -> Expr:
         """base**exponent, within the bounds on numbers; the token is where errors point."""
-        if exponent.is_number and not abs(exponent) <= LARGEST_POWER:
-            self.fail(f"a power beyond ±{LARGEST_POWER} is not read", token.position)
-        if base == 0 and exponent.is_number and exponent <= 0:
+        self.small_exponent(exponent, token)
+        if base == 0 and exponent.is_number and not (exponent.is_Rational and exponent > 0):
             self.fail("zero to a power that is not positive", token.position)
-        if base.is_number and exponent.is_number and len(str(base)) > LARGEST_EXPONENT:
+        size = abs(exponent) if exponent.is_Rational else 1
+        if bits(base) * size > LARGEST_BITS:
             self.fail("a number this large is not read", token.position)
-        return cast(Expr, base**exponent)
+        return self.finite(base**exponent, token)
+
+    def small_exponent(self, exponent: Expr, token: Token) -> None:
+        """SymPy works out 9^n, and exp(n log 9) too; n is bounded before."""
+        for term in Add.make_args(exponent):
+            number, rest = term.as_coeff_Mul()
+            if (rest.is_number or rest.has(log)) and not abs(number) <= LARGEST_POWER:
+                self.fail(f"a power beyond ±{LARGEST_POWER} is not read", token.position)
+
+    def finite(self, value: Expr, token: Token) -> Expr:
+        if value in (S.ComplexInfinity, S.NaN, S.Infinity, S.NegativeInfinity):
+            self.fail("this has no finite value", token.position)
+        if bits(value) > LARGEST_BITS:
+            self.fail("a number this large is not read", token.position)
+        return value
 
     def operand(self) -> Expr:
         token = self.take()
@@ -243,8 +270,10 @@ class Reader:
                 token.position,
             )
         arguments = self._arguments()
+        if function is exp:
+            self.small_exponent(arguments[0], token)
         try:
-            return cast(Expr, function(*arguments))
+            return self.finite(function(*arguments), token)
         except RankError:
             raise
         except TypeError:

@@ -15,7 +15,7 @@ from dataclasses import dataclass, replace
 from typing import Any, Literal, NoReturn, cast
 
 import sympy
-from sympy import Add, Expr, Integer, Mul, S, Symbol
+from sympy import Expr, Integer, S, Symbol
 
 from ..errors import AmbiguousText, ReadError
 from .fields import FieldAtom, latex_word
@@ -260,21 +260,6 @@ class TypedReader(Reader):
         kinds: dict[str, Literal["equal", "limit"]] = {"=": "equal", "->": "limit"}
         return Condition(kinds.get(sign.text, "small"), left, right)
 
-    def sum(self) -> Expr:
-        self.deeper()
-        terms = [self.product()]
-        while self.peek().text in ("+", "-"):
-            negative = self.take().text == "-"
-            term = self.product()
-            terms.append(-term if negative else term)
-        self.depth -= 1
-        return cast(Expr, Add(*terms)) if len(terms) > 1 else terms[0]
-
-    def deeper(self) -> None:
-        self.depth += 1
-        if self.depth > 60:
-            self.fail("more than 60 levels of nesting")
-
     def product(self) -> Expr:
         factors = [self.unary()]
         while self.peek().text in ("*", "/") or self.follows():
@@ -291,7 +276,7 @@ class TypedReader(Reader):
             if token.text == "/":
                 factor = self._below(factor, token, first)
             factors.append(factor)
-        return cast(Expr, Mul(*factors)) if len(factors) > 1 else factors[0]
+        return self.multiplied(factors)
 
     def _number_after_factor(self, token: Mark) -> NoReturn:
         last = self.tokens[self.place - 1]
@@ -306,8 +291,6 @@ class TypedReader(Reader):
 
     def _below(self, factor: Expr, token: Mark, first: Mark) -> Expr:
         """One over a factor; what stands beside it would be above or below the line."""
-        if factor == 0:
-            self.fail("division by zero", token.position)
         below_end = self.end
         if self.follows():
             while self.follows():
@@ -317,7 +300,7 @@ class TypedReader(Reader):
             gap = "" if more.startswith(("(", "[", "{")) else " "
             readings = (f"{above}/({below}{gap}{more})", f"({above}/{below}){gap}{more}")
             self.ambiguous("what follows a division", below_end, *readings)
-        return self._quotient(S.One, factor, token)
+        return self.below(factor, token)
 
     def _numerator(self, slash: Mark) -> str:
         """What stands above the line: back from the slash to where its term begins."""
@@ -516,8 +499,10 @@ class TypedReader(Reader):
         return value
 
     def _call(self, token: Mark, function: Callable[..., Any], arguments: list[Expr]) -> Expr:
+        if function is sympy.exp:
+            self.small_exponent(arguments[0], token)
         try:
-            return cast(Expr, function(*arguments))
+            return self.finite(function(*arguments), token)
         except (TypeError, ValueError) as error:
             if isinstance(error, ReadError) or type(error).__module__.startswith("plasmalin"):
                 raise

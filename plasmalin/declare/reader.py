@@ -20,7 +20,7 @@ from dataclasses import dataclass
 from typing import Any, NoReturn, cast
 
 import sympy
-from sympy import Add, Expr, Integer, Mul, Rational, S, exp, log
+from sympy import Add, Expr, Integer, Mul, Rational, S, cosh, exp, log, sinh, sqrt
 
 from ..errors import RankError, ReadError
 from .operators import OPERATORS
@@ -30,6 +30,7 @@ DEEPEST = 60
 LARGEST_POWER = 64
 LARGEST_EXPONENT = 400
 LARGEST_BITS = 100_000
+LARGEST_ROOT = 1_400  # bits of a number under a root
 
 FUNCTIONS: dict[str, Callable[[Any], Any]] = {
     name: getattr(sympy, name)
@@ -198,20 +199,29 @@ class Reader:
 
     def raised(self, base: Expr, exponent: Expr, token: Token) -> Expr:
         """base**exponent, within the bounds on numbers; the token is where errors point."""
-        self.small_exponent(exponent, token)
+        self.small_exponent(exponent, LARGEST_POWER, token)
         if base == 0 and exponent.is_number and not (exponent.is_Rational and exponent > 0):
             self.fail("zero to a power that is not positive", token.position)
-        size = abs(exponent) if exponent.is_Rational else 1
-        if bits(base) * size > LARGEST_BITS:
+        whole = exponent.is_Integer or not exponent.is_number
+        size = bits(base) * (abs(exponent) if exponent.is_Integer else 1)
+        if size > (LARGEST_BITS if whole else LARGEST_ROOT):
             self.fail("a number this large is not read", token.position)
         return self.finite(base**exponent, token)
 
-    def small_exponent(self, exponent: Expr, token: Token) -> None:
-        """SymPy works out 9^n, and exp(n log 9) too; n is bounded before."""
+    def bounded(self, function: Any, arguments: list[Expr], token: Token) -> None:
+        """The bounds of `raised`, for the functions that are powers."""
+        if function in (exp, sinh, cosh):
+            self.small_exponent(arguments[0], LARGEST_EXPONENT, token)
+        elif function is sqrt and bits(arguments[0]) > LARGEST_ROOT:
+            self.fail("a number this large is not read", token.position)
+
+    def small_exponent(self, exponent: Expr, limit: int, token: Token) -> None:
+        """SymPy works out 9^n, and exp(n log 9) too; towers of numbers are bounded at each level."""
         for term in Add.make_args(exponent):
             number, rest = term.as_coeff_Mul()
-            if (rest.is_number or rest.has(log)) and not abs(number) <= LARGEST_POWER:
-                self.fail(f"a power beyond ±{LARGEST_POWER} is not read", token.position)
+            size = term.evalf(5) if term.is_number else number if rest.has(log) else S.Zero
+            if not bool(abs(size) <= limit):
+                self.fail(f"a power beyond ±{limit} is not read", token.position)
 
     def finite(self, value: Expr, token: Token) -> Expr:
         if value in (S.ComplexInfinity, S.NaN, S.Infinity, S.NegativeInfinity):
@@ -270,8 +280,7 @@ class Reader:
                 token.position,
             )
         arguments = self._arguments()
-        if function is exp:
-            self.small_exponent(arguments[0], token)
+        self.bounded(function, arguments, token)
         try:
             return self.finite(function(*arguments), token)
         except RankError:

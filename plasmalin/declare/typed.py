@@ -499,8 +499,7 @@ class TypedReader(Reader):
         return value
 
     def _call(self, token: Mark, function: Callable[..., Any], arguments: list[Expr]) -> Expr:
-        if function is sympy.exp:
-            self.small_exponent(arguments[0], token)
+        self.bounded(function, arguments, token)
         try:
             return self.finite(function(*arguments), token)
         except (TypeError, ValueError) as error:

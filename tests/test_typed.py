@@ -207,6 +207,7 @@ def test_an_ambiguity_survives_pickling():
         ("a < b", "belongs in `under`"),
         ("a = b = c", "a second '='"),
         ("2 3", "two numbers side by side"),
+        ("a/3 3", "two numbers side by side"),
         ("(a) 3", "a number after a factor"),
         ("a²^3", "a power of a power"),
         ("|a", r"this \| has no partner"),
@@ -257,6 +258,11 @@ def test_a_product_of_vectors_is_refused():
     with pytest.raises(plin.RankError, match=r"dot\(a, b\)"):
         read_typed("v_e × ∇n", names)
     assert read_typed("dot(v_e, v_e)", names) == dot(v_e, v_e)
+
+
+def test_a_derivative_of_a_number_as_an_exponent():
+    names, _, _, _ = fluid()
+    assert read_typed("exp(partial_t(3))", names) == exp(partial_t(3))
 
 
 def test_only_derivatives_let_constants_pass():

@@ -46,9 +46,9 @@ class TypedReader(WordReader):
             token = self.peek()
             if token.text in ("*", "/"):
                 self.take()
+            else:
+                self._no_number()
             first = self.peek()
-            if token.kind == "number":
-                self._number_after_factor(token)
             factor = self.unary()
             if before is not None:
                 self._after_bare(before, first, factor)
@@ -57,22 +57,25 @@ class TypedReader(WordReader):
             factors.append(factor)
         return self.multiplied(factors)
 
-    def _number_after_factor(self, token: Mark) -> NoReturn:
-        last = self.tokens[self.place - 1]
+    def _no_number(self) -> None:
+        """Refuse a number beside the factor before it: v 2 is a lost ^ as likely as a product."""
+        last, token = self.tokens[self.place - 1], self.peek()
+        if token.kind != "number":
+            return
         if last.kind == "number":
-            self.fail("two numbers side by side; write * for a product", token.position)
-        base = self.typed(last.position, last.end)
-        number = self.typed(token.position, token.end)
-        if last.kind == "name":
-            readings = (f"{base}^{number}", f"{base}*{number}")
-            self.ambiguous("a number after a factor", token.position, *readings)
-        self.fail("a number after a factor; write * for a product or ^ for a power", token.position)
+            self.fail("two numbers side by side; write * for a product")
+        if last.kind != "name":
+            self.fail("a number after a factor; write * for a product or ^ for a power")
+        base, number = (self.typed(t.position, t.end) for t in (last, token))
+        readings = (f"{base}^{number}", f"{base}*{number}")
+        self.ambiguous("a number after a factor", token.position, *readings)
 
     def _below(self, factor: Expr, token: Mark, first: Mark) -> Expr:
         """One over a factor; what stands beside it would be above or below the line."""
         below_end = self.end
         if self.follows():
             while self.follows():
+                self._no_number()
                 self.unary()
             above = self._numerator(token)
             below, more = self.typed(first.position, below_end), self.typed(below_end, self.end)

@@ -23,7 +23,7 @@ import sympy
 from sympy import Add, Expr, Integer, Mul, Rational, S, cosh, exp, log, sinh, sqrt
 
 from ..errors import RankError, ReadError
-from .operators import OPERATORS
+from .operators import OPERATORS, Operator, rank_of
 
 LONGEST = 20_000
 DEEPEST = 60
@@ -175,8 +175,6 @@ class Reader:
 
     def below(self, factor: Expr, token: Token) -> Expr:
         """One over a factor; the token is the sign of division."""
-        from .operators import rank_of
-
         if factor == 0:
             self.fail("division by zero", token.position)
         if rank_of(factor) > 0:
@@ -219,7 +217,8 @@ class Reader:
         """SymPy works out 9^n, and exp(n log 9) too; towers of numbers are bounded at each level."""
         for term in Add.make_args(exponent):
             number, rest = term.as_coeff_Mul()
-            size = term.evalf(5) if term.is_number else number if rest.has(log) else S.Zero
+            numeric = term.is_number and not term.has(Operator)
+            size = term.evalf(5) if numeric else number if rest.has(log) else S.Zero
             if not bool(abs(size) <= limit):
                 self.fail(f"a power beyond ±{limit} is not read", token.position)
 

@@ -32,6 +32,7 @@ from .declare.operators import outer as outer
 from .declare.operators import partial_t as partial_t
 from .declare.operators import trace as trace
 from .declare.operators import transpose as transpose
+from .errors import AmbiguousText as AmbiguousText
 from .errors import BackgroundError as BackgroundError
 from .errors import DeclarationError as DeclarationError
 from .errors import ModelFileError as ModelFileError
@@ -77,6 +78,7 @@ __all__ = [
     "DeclarationError",
     "RankError",
     "ReadError",
+    "AmbiguousText",
     "ModelFileError",
     "BackgroundError",
     "UndeterminedError",

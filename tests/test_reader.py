@@ -86,6 +86,13 @@ def test_refused_with_the_place(model, text, message):
         "9" * 5000 + "*n_e",
         "n_e + " * 10000 + "n_e",
         "n_e^99999999999",
+        "exp(9^60*log(9))*n_e",
+        "2^exp(exp(exp(60)))*n_e",
+        "(((2*n_e)^64)^64)^64",
+        "sqrt(((9^64)^64)^7 + 1)*n_e",
+        "*".join(["9^64"] * 3000) + "*n_e",
+        "0^i*n_e",
+        "log(0)*n_e",
         "exp(" * 100 + "n_e" + ")" * 100,
     ],
 )

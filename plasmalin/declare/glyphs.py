@@ -1,4 +1,4 @@
-"""The marks of ordinary typed mathematics: tokens, the pairing of |, and how names are spelled."""
+"""The marks of ordinary typed mathematics: tokens, and the pairing of |."""
 
 from __future__ import annotations
 
@@ -9,12 +9,8 @@ from dataclasses import dataclass, replace
 from functools import cache
 
 from ..errors import AmbiguousText, ReadError
-from .notation import GREEK_LETTER
 from .reader import Token
 
-GREEK_NAME = {glyph: name for name, glyph in GREEK_LETTER.items()}
-GREEK_NAME |= {"ϵ": "epsilon", "ϕ": "phi", "ϑ": "theta", "ϱ": "rho", "ϰ": "kappa", "ς": "sigma"}
-GREEK_NAME |= {"µ": "mu", "\u2126": "Omega", "ℏ": "hbar", "∥": "parallel", "⊥": "perp"}
 SUBSCRIPTS = "".join(
     chr(c)
     for c in (*range(0x1D62, 0x1D6B), *range(0x2080, 0x209D), 0x2C7C)
@@ -22,16 +18,15 @@ SUBSCRIPTS = "".join(
 )
 TILDE = "\u0303"
 SUPERSCRIPT_DIGITS = "⁰¹²³⁴⁵⁶⁷⁸⁹"
-PRIMES = {"′": "'", "″": "''", "‴": "'''", "’": "'"}
 
 LETTER = rf"[^\W\d_{SUPERSCRIPT_DIGITS}{SUBSCRIPTS}½⅓⅔¼¾]"
-TAIL = rf"(?:[^\W{SUPERSCRIPT_DIGITS}½⅓⅔¼¾]|[{SUBSCRIPTS}{TILDE}]|(?<=_)[∥⊥]|_\{{[\w,∥⊥]+\}})"
+TAIL = rf"(?:_\{{[\w,∥⊥]+\}}|[^\W{SUPERSCRIPT_DIGITS}½⅓⅔¼¾]|[{SUBSCRIPTS}{TILDE}]|(?<=_)[∥⊥])"
 PRIME = "['′″‴’]"
 NAME = rf"{LETTER}{TAIL}*(?:{PRIME}+(?:_{TAIL}+|[{SUBSCRIPTS}]+)?)?"
 ORDER = "(?:\\^[1-9]|[²³⁴])?"
 TOKEN = re.compile(
     r"(?P<space>\s+)"
-    r"|(?P<number>[½⅓⅔¼¾]|(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d+)?)"
+    r"|(?P<number>[½⅓⅔¼¾]|(?:[0-9]+\.?[0-9]*|\.[0-9]+)(?:[eE][+-]?[0-9]+)?)"
     rf"|(?P<raised>[⁺⁻]?[{SUPERSCRIPT_DIGITS}]+)"
     rf"|(?P<partial>∂(?:_\{{?[a-z]+\}}?|[{SUBSCRIPTS}]+))"
     r"|(?P<nabla>∇(?:²|\^2|\s?[·⋅.×])?)"
@@ -129,7 +124,9 @@ def paired(tokens: list[Mark], text: str) -> list[Mark]:
             raise ReadError("this | has no partner", text, tokens[group[0]].position)
         if len(ways) > 1:
             readings = (_grouped(text, tokens, group, w) for w in ways)
-            raise AmbiguousText("the bars | pair in two ways", text, tokens[group[0]].position, tuple(readings))
+            raise AmbiguousText(
+                "the bars | pair in two ways", text, tokens[group[0]].position, tuple(readings)
+            )
         for i, opens in zip(group, ways[0], strict=True):
             out[i] = replace(tokens[i], kind="bar", text="|(" if opens else ")|")
     return out
@@ -194,28 +191,3 @@ def _grouped(text: str, tokens: list[Mark], group: list[int], way: tuple[bool, .
         pieces += [text[last : tokens[i].position], " abs(" if opens else ") "]
         last = tokens[i].end
     return " ".join("".join([*pieces, text[last:]]).split())
-
-
-def spellings(name: str) -> list[str]:
-    """The plain spellings that a typed name may stand for, the likeliest first.
-
-    Greek letters are written out, Unicode subscripts follow an underscore (or none), primes are
-    apostrophes, braces and the tilde of a perturbation fall away.
-    """
-    whole = unicodedata.normalize("NFC", name)
-    bare = unicodedata.normalize("NFC", unicodedata.normalize("NFD", whole).replace(TILDE, ""))
-    found = [name, whole]
-    for given in (whole, bare):
-        text = re.sub(r"_\{([^}]*)\}", lambda m: "_" + m[1].replace(",", ""), given)
-        text = "".join(PRIMES.get(c, GREEK_NAME.get(c, c)) for c in text)
-        for joint in ("_", ""):
-            low = re.sub(f"([{SUBSCRIPTS}]+)", lambda m, j=joint: j + m[1], text)
-            found.append("".join(_lowered(c) for c in low))
-    return list(dict.fromkeys(found))
-
-
-def _lowered(character: str) -> str:
-    if character not in SUBSCRIPTS:
-        return character
-    plain = unicodedata.normalize("NFKC", character)
-    return GREEK_NAME.get(plain, plain)

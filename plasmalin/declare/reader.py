@@ -20,15 +20,17 @@ from dataclasses import dataclass
 from typing import Any, NoReturn, cast
 
 import sympy
-from sympy import Expr, Integer, Rational, S
+from sympy import Add, Expr, Integer, Mul, Rational, S, cosh, exp, log, sinh, sqrt
 
 from ..errors import RankError, ReadError
-from .operators import OPERATORS
+from .operators import OPERATORS, Operator, rank_of
 
 LONGEST = 20_000
 DEEPEST = 60
 LARGEST_POWER = 64
 LARGEST_EXPONENT = 400
+LARGEST_BITS = 100_000
+LARGEST_ROOT = 1_400  # bits of a number under a root
 
 FUNCTIONS: dict[str, Callable[[Any], Any]] = {
     name: getattr(sympy, name)
@@ -87,6 +89,12 @@ def read_expression(
     return found
 
 
+def bits(value: Expr) -> int:
+    """The length of the number that an expression is multiplied by."""
+    number = value.as_coeff_Mul()[0]
+    return max(number.p.bit_length(), number.q.bit_length()) if number.is_Rational else 1
+
+
 class Reader:
     """One pass over the tokens of a text, by recursive descent."""
 
@@ -135,42 +143,46 @@ class Reader:
         if token.kind != "end":
             self.fail(f"'{token.text}' is not expected here")
 
-    def sum(self) -> Expr:
+    def deeper(self) -> None:
         self.depth += 1
         if self.depth > DEEPEST:
             self.fail(f"more than {DEEPEST} levels of nesting")
-        total = self.product()
+
+    def sum(self) -> Expr:
+        self.deeper()
+        terms = [self.product()]
         while self.peek().text in ("+", "-"):
-            sign = self.take().text
+            negative = self.take().text == "-"
             term = self.product()
-            total = total + term if sign == "+" else total - term
+            terms.append(-term if negative else term)
         self.depth -= 1
-        return total
+        return cast(Expr, Add(*terms)) if len(terms) > 1 else terms[0]
 
     def product(self) -> Expr:
-        value = self.unary()
+        factors = [self.unary()]
         while self.peek().text in ("*", "/"):
             token = self.take()
             factor = self.unary()
-            if token.text == "*":
-                value = value * factor
-            elif factor == 0:
-                self.fail("division by zero", token.position)
-            else:
-                value = self._quotient(value, factor, token)
-        return value
+            factors.append(self.below(factor, token) if token.text == "/" else factor)
+        return self.multiplied(factors)
 
-    def _quotient(self, value: Expr, factor: Expr, token: Token) -> Expr:
-        from .operators import rank_of
+    def multiplied(self, factors: list[Expr]) -> Expr:
+        if len(factors) == 1:
+            return factors[0]
+        if sum(bits(factor) for factor in factors) > LARGEST_BITS:
+            self.fail("a number this large is not read")
+        return cast(Expr, Mul(*factors))
 
+    def below(self, factor: Expr, token: Token) -> Expr:
+        """One over a factor; the token is the sign of division."""
+        if factor == 0:
+            self.fail("division by zero", token.position)
         if rank_of(factor) > 0:
             self.fail(f"division by the vector '{factor}'", token.position)
-        return cast(Expr, value / factor)
+        return cast(Expr, 1 / factor)
 
     def unary(self) -> Expr:
-        self.depth += 1
-        if self.depth > DEEPEST:
-            self.fail(f"more than {DEEPEST} levels of nesting")
+        self.deeper()
         sign = self.take().text if self.peek().text in ("+", "-") else ""
         value = self.unary() if sign else self.power()
         self.depth -= 1
@@ -185,13 +197,37 @@ class Reader:
 
     def raised(self, base: Expr, exponent: Expr, token: Token) -> Expr:
         """base**exponent, within the bounds on numbers; the token is where errors point."""
-        if exponent.is_number and not abs(exponent) <= LARGEST_POWER:
-            self.fail(f"a power beyond ±{LARGEST_POWER} is not read", token.position)
-        if base == 0 and exponent.is_number and exponent <= 0:
+        self.small_exponent(exponent, LARGEST_POWER, token)
+        if base == 0 and exponent.is_number and not (exponent.is_Rational and exponent > 0):
             self.fail("zero to a power that is not positive", token.position)
-        if base.is_number and exponent.is_number and len(str(base)) > LARGEST_EXPONENT:
+        whole = exponent.is_Integer or not exponent.is_number
+        size = bits(base) * (abs(exponent) if exponent.is_Integer else 1)
+        if size > (LARGEST_BITS if whole else LARGEST_ROOT):
             self.fail("a number this large is not read", token.position)
-        return cast(Expr, base**exponent)
+        return self.finite(base**exponent, token)
+
+    def bounded(self, function: Any, arguments: list[Expr], token: Token) -> None:
+        """The bounds of `raised`, for the functions that are powers."""
+        if function in (exp, sinh, cosh):
+            self.small_exponent(arguments[0], LARGEST_EXPONENT, token)
+        elif function is sqrt and bits(arguments[0]) > LARGEST_ROOT:
+            self.fail("a number this large is not read", token.position)
+
+    def small_exponent(self, exponent: Expr, limit: int, token: Token) -> None:
+        """SymPy works out 9^n, and exp(n log 9) too; towers of numbers are bounded at each level."""
+        for term in Add.make_args(exponent):
+            number, rest = term.as_coeff_Mul()
+            numeric = term.is_number and not term.has(Operator)
+            size = term.evalf(5) if numeric else number if rest.has(log) else S.Zero
+            if not bool(abs(size) <= limit):
+                self.fail(f"a power beyond ±{limit} is not read", token.position)
+
+    def finite(self, value: Expr, token: Token) -> Expr:
+        if value in (S.ComplexInfinity, S.NaN, S.Infinity, S.NegativeInfinity):
+            self.fail("this has no finite value", token.position)
+        if bits(value) > LARGEST_BITS:
+            self.fail("a number this large is not read", token.position)
+        return value
 
     def operand(self) -> Expr:
         token = self.take()
@@ -243,8 +279,9 @@ class Reader:
                 token.position,
             )
         arguments = self._arguments()
+        self.bounded(function, arguments, token)
         try:
-            return cast(Expr, function(*arguments))
+            return self.finite(function(*arguments), token)
         except RankError:
             raise
         except TypeError:

@@ -8,13 +8,25 @@ from __future__ import annotations
 import unicodedata
 from typing import Any, cast
 
-from sympy import Add, Expr, Integer, Mul, Pow, Rational, Symbol
+from sympy import Add, Expr, Integer, Mul, Pow, Rational, Symbol, cancel, gcd_list
 from sympy.core.function import Function
 from sympy.printing.latex import LatexPrinter
 from sympy.printing.str import StrPrinter
 
-from .fields import GREEK, Background, Components, Field, FieldAtom, Perturbation
-from .operators import Advect, Identity, Multiplier, Operator, PartialT
+from .fields import GREEK, Background, Components, Field, FieldAtom, Perturbation, components
+from .operators import (
+    Advect,
+    Ddot,
+    Div,
+    Dot,
+    Grad,
+    Identity,
+    Laplacian,
+    Multiplier,
+    Operator,
+    Outer,
+    PartialT,
+)
 
 SUPERSCRIPT = str.maketrans("0123456789-", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻")
 HATS = {"x": "x̂", "y": "ŷ", "z": "ẑ"}
@@ -40,12 +52,44 @@ SIGNS = {
 
 def paper(expr: Any, axes: str = "") -> str:
     """An expression on one line as a paper would print it, e.g. ``n_0 ∇·ṽ_e``."""
-    return TextPrinter(axes).show(expr)
+    return TextPrinter(axes).show(by_dyads(expr))
 
 
 def latex(expr: Any, axes: str = "") -> str:
     """An expression in LaTeX, time derivatives first."""
-    return cast(str, PaperLatex(axes).doprint(expr))
+    return cast(str, PaperLatex(axes).doprint(by_dyads(expr)))
+
+
+def by_dyads(expr: Any) -> Any:
+    """Tensors known by their components as dyads a b where they are such, their scalar out of inner products."""
+    if not isinstance(expr, Expr) or not any(c.rank == 2 for c in expr.atoms(Components)):
+        return expr
+    if isinstance(expr, Components):
+        return _dyad(expr)
+    args = [by_dyads(a) for a in expr.args]
+    if not isinstance(expr, Dot | Ddot):
+        return expr.func(*args)
+    parts = [a.as_independent(Operator, Components, FieldAtom, as_Add=False) for a in args]
+    return Mul(*(scalar for scalar, _ in parts), expr.func(*(rest for _, rest in parts)))
+
+
+def _dyad(tensor: Components) -> Expr:
+    """The tensor as scalar times outer(a, b), itself where its rows are not all multiples of one."""
+    size = range(tensor.size)
+    i, j = next((i, j) for i in size for j in size if tensor.entry((i, j)) != 0)
+    column = [tensor.entry((m, j)) for m in size]
+    row = [tensor.entry((i, m)) for m in size]
+    pivot = tensor.entry((i, j))
+    if any(cancel(column[p] * row[q] - pivot * tensor.entry((p, q))) for p in size for q in size):
+        return tensor
+    (first, a), (second, b) = (_primitive(column), _primitive(row))
+    return cancel(first * second / pivot) * Outer(components(*a), components(*b))
+
+
+def _primitive(entries: list[Any]) -> tuple[Any, list[Any]]:
+    """The common factor of a vector's components and what it leaves."""
+    common = gcd_list(entries)
+    return common, [cancel(x / common) for x in entries]
 
 
 def name_text(name: str) -> str:
@@ -162,7 +206,9 @@ class TextPrinter:
             for a, name in zip(expr.args, names, strict=True)
             if a != 0
         ]
-        return " + ".join(parts), 1 if len(parts) == 1 else 0
+        if len(parts) == 1:
+            return parts[0], 3 if parts[0] in HATS.values() else 1
+        return " + ".join(parts), 0
 
     def _operator(self, expr: Operator) -> tuple[str, int]:
         if isinstance(expr, Advect):
@@ -174,6 +220,8 @@ class TextPrinter:
         if expr.word in ("transpose", "trace"):
             inner = self.show(expr.args[0], 3)
             return (f"{inner}ᵀ", 3) if expr.word == "transpose" else (f"tr {inner}", 2)
+        if isinstance(expr, Div) and isinstance(expr.args[0], Grad):
+            return self._operator(Laplacian(*expr.args[0].args))
         sign = SIGNS[expr.word]
         if len(expr.args) == 1:
             return sign + self.show(expr.args[0], 2), 2
@@ -200,7 +248,7 @@ def _fraction(expr: Any) -> tuple[list[Any], list[Any]]:
             below.append(Pow(f.base, -f.exp))
         else:
             above.append(f)
-    above.sort(key=lambda f: (_place(f), str(f)))
+    above.sort(key=lambda f: (_place(f), isinstance(f, Add), str(f)))
     return [f for f in above if f != 1], sorted(below, key=str)
 
 
@@ -210,6 +258,8 @@ def _place(factor: Any) -> int:
         return 3
     if isinstance(factor, Operator) or (isinstance(factor, FieldAtom) and factor.rank > 0):
         return 2
+    if isinstance(factor, Add) and factor.atoms(FieldAtom):
+        return 1
     return 1 if isinstance(factor, FieldAtom) else 0
 
 

@@ -148,6 +148,12 @@ class Div(Operator):
     def latex(self, *args: str) -> str:
         return rf"\nabla\cdot {args[0]}"
 
+    def _latex(self, printer: LatexPrinter, exp: str | None = None) -> str:
+        (inner,) = self.args
+        if isinstance(inner, Grad):
+            return cast(str, Laplacian(*inner.args)._latex(printer, exp))
+        return super()._latex(printer, exp)
+
 
 class Curl(Operator):
     word, takes, derivative = "curl", ((1,),), True

@@ -285,6 +285,17 @@ class ExactPolynomial:
         rest = self._with(self._value.over(product)).shorter().as_expr()
         return sp.Mul(rest, *(self._with(p).shorter().as_expr() ** m for p, m in parts))
 
+    def product_expr(self) -> sp.Expr:
+        """As a product of all its factors, those without `main` too, where it is real up to a power of i."""
+        if self._value.phase is None:
+            return self.as_expr()
+        parts = [(_real(p), m) for p, m in irreducible_factors(self._value.part)]
+        product = self._ring.constant(1)
+        for p, m in parts:
+            product = product * p**m
+        rest = self._with(self._value.over(product)).as_expr()
+        return sp.Mul(rest, *(self._with(p).shorter().as_expr() ** m for p, m in parts))
+
     def _normal(self) -> ExactPolynomial:
         return self._with(self.shorter()._value.normalized()).real_if_possible()
 

@@ -24,6 +24,7 @@ KEPT = "kept"
 DROPPED = "dropped"
 VANISHES = "vanishes"
 BALANCE = "balance"
+ZERO_BACKGROUND = "the background is zero"
 
 
 @dataclass(frozen=True)
@@ -168,8 +169,12 @@ def _judged(
 ) -> Iterator[Piece]:
     """The piece, and beside it what the gradient of a background adds."""
     if order > 1:
-        reason = "product of perturbations"
-        yield Piece(law, side, term, raw, raw, order, DROPPED, reason)
+        fate, reason = (
+            (VANISHES, ZERO_BACKGROUND)
+            if _holds_zero_background(raw)
+            else (DROPPED, "product of perturbations")
+        )
+        yield Piece(law, side, term, raw, raw, order, fate, reason)
         return
     value = settle(raw)
     added = _from_gradients(raw, value)
@@ -190,10 +195,15 @@ def _from_gradients(raw: Expr, value: Expr) -> Expr:
     return expand(settle(raw, sloped=True)) - expand(value)
 
 
-def _why_nothing(raw: Expr) -> str:
+def _holds_zero_background(raw: Expr) -> bool:
+    """Whether a piece is nothing because a background in it is zero."""
     absent: dict[Any, Any] = {b: b.value for b in raw.atoms(Background) if b.value == 0}
-    if absent and raw.xreplace(absent) == 0:
-        return "the background is zero"
+    return bool(absent and raw.xreplace(absent) == 0)
+
+
+def _why_nothing(raw: Expr) -> str:
+    if _holds_zero_background(raw):
+        return ZERO_BACKGROUND
     derivatives = (node for node in raw.atoms(Operator) if node.derivative)
     if any(not node.args[-1].atoms(Perturbation) for node in derivatives):
         return "derivative of a uniform background"

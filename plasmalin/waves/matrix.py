@@ -25,6 +25,7 @@ from .susceptibility import susceptibility
 if TYPE_CHECKING:
     from ..roots.branches import Branches
     from ..roots.roots import Roots
+    from ..study.remark import Advice
 
 
 @dataclass(frozen=True)
@@ -260,6 +261,43 @@ class WaveMatrix:
         from ..roots.branches import find_branches
 
         return find_branches(self, name, along, values or {}, waves)
+
+    def advice(self, values: Mapping[Any, Any] | None = None, **waves: Any) -> Advice:
+        """Where the fluid description is outside its range at these numbers, in words.
+
+        What a species is (mass, charge, temperature, drift, gyration) is read from its laws and the background, not
+        from names; what cannot be identified is said.
+
+        Parameters
+        ----------
+        values : mapping of str to number or array, optional
+            As for `roots`; over arrays the worst point counts.
+        **waves : array_like
+            The wave numbers by name, rad/m. What needs one that is not given is left out and said.
+
+        Returns
+        -------
+        Advice
+            A sequence of remarks, each with the number and the rule it rests on; prints as text.
+
+        Raises
+        ------
+        ValuesError
+            As `roots`, but for missing wave numbers.
+        BackgroundError
+            When the values break a condition of the background.
+
+        Examples
+        --------
+        >>> import plasmalin as plin
+        >>> wave = plin.load_example("xenon-iodine-plume").linearize().plane_wave("x")
+        >>> for remark in wave.advice(k=3e3).about("λ_D"):
+        ...     print(f"{remark.subject} = {remark.number:.3f}")
+        k λ_D, species e = 0.526
+        """
+        from ..study.advice import advise
+
+        return advise(self, values or {}, waves)
 
     def __str__(self) -> str:
         lines = [f"{self.linear.title}: plane waves, k = ({', '.join(paper(c) for c in self.k)})"]

@@ -8,13 +8,14 @@ from fractions import Fraction
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
-from sympy import Add, Expr, Poly, S, Symbol, latex, sympify
+from sympy import Add, Expr, Poly, Symbol, latex, sympify
 
-from ..declare.notation import SUPERSCRIPT, paper
+from ..declare.notation import SUPERSCRIPT
 from ..errors import DeclarationError, UndeterminedError
 from ..exact.determinant import determinant, underdetermined_block
 from ..exact.polynomial import ExactPolynomial
 from ..exact.rational import exact_rational
+from .coefficients import by_powers, normalized_coefficients, printed_coefficients
 from .ordering import LeadingBalance, leading_balances
 
 if TYPE_CHECKING:
@@ -49,7 +50,7 @@ class Factor:
 
     def __str__(self) -> str:
         power = f"  (multiplicity {self.multiplicity})" if self.multiplicity > 1 else ""
-        return f"{_by_powers(self.polynomial)} = 0{power}"
+        return f"{by_powers(self.polynomial)} = 0{power}"
 
 
 class Relation:
@@ -214,7 +215,7 @@ class Relation:
         parts = []
         for f in self.factors:
             power = f"^{{{f.multiplicity}}}" if f.multiplicity > 1 else ""
-            body = latex(collected(f.polynomial))
+            body = latex(_by_printed_powers(f.polynomial))
             parts.append(
                 f"{body}{power}" if f.polynomial.lowest else rf"\left({body}\right){power}"
             )
@@ -227,35 +228,12 @@ class Relation:
         return f"$\\displaystyle {text}$" if len(text) < LONGEST_LATEX else None
 
 
-def _by_powers(polynomial: ExactPolynomial) -> str:
-    """Text with the highest power of omega first."""
-    out = ""
-    for power, c in normalized_coefficients(polynomial).items():
-        term = paper(c * polynomial.main**power) if not isinstance(c, Add) else _bracketed(c, power)
-        joint = (
-            (" − " if term.startswith("−") else " + ")
-            if out
-            else ("−" if term.startswith("−") else "")
-        )
-        out += joint + term.removeprefix("−")
-    return out
-
-
-def _bracketed(coefficient: Expr, power: int) -> str:
-    unit = paper(Symbol("omega") ** power)
-    return paper(coefficient) if power == 0 else f"({paper(coefficient)}) {unit}"
-
-
-def normalized_coefficients(polynomial: ExactPolynomial) -> dict[int, Expr]:
-    """Coefficients by power, highest first, divided by a leading one that is a single product."""
-    powers = polynomial.coefficients()
-    lead = powers[max(powers)]
-    scale = lead if not isinstance(lead, Add) else S.One
-    return {p: Add(*(t / scale for t in Add.make_args(c))) for p, c in powers.items()}
+def _by_printed_powers(polynomial: ExactPolynomial) -> Expr:
+    return Add(*(c * polynomial.main**p for p, c in printed_coefficients(polynomial).items()))
 
 
 def collected(polynomial: ExactPolynomial) -> Expr:
-    """A polynomial as it is printed: by powers of omega, divided by what the leading term allows."""
+    """A polynomial by powers of omega, divided by what the leading term allows."""
     coefficients = normalized_coefficients(polynomial)
     return Add(*(c * polynomial.main**p for p, c in coefficients.items()))
 

@@ -1,0 +1,1 @@
+"""What the numbers of one model say beyond its roots."""

@@ -4,12 +4,13 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from sympy import Add, Mul
+from sympy import Add, Expr, Mul, Pow
 
+from ..declare.notation import paper
 from ..declare.operators import omega
 from ..exact.polynomial import ExactPolynomial
 from .claim import Claim
-from .derived import Derived
+from .derived import Derived, bare
 
 
 @dataclass(frozen=True)
@@ -30,9 +31,53 @@ class Match:
 
 def compare(claim: Claim, derived: Derived) -> Match | None:
     """How a claim agrees with the derived relation, or None where it does not."""
-    polynomial, sheets = derived.numerator(claim.residual)
-    found = match(polynomial, sheets, derived, claim.solved)
-    return None if found and found.kind != "identical" and loses_a_mode(claim) else found
+    found, sheets = derived.numerator(claim.residual)
+    polynomial, extraneous = without_poles(found, claim, derived)
+    made = match(bare(polynomial), sheets, derived, claim.solved)
+    if made is None or (made.kind != "identical" and _loses(claim, polynomial, derived)):
+        return None
+    if extraneous is None:
+        return made
+    note = f"; {paper(extraneous.as_expr())} = 0 is where the claim as arranged is infinite on both sides, no wave"
+    return Match(made.kind, made.proof + note)
+
+
+def without_poles(
+    polynomial: ExactPolynomial, claim: Claim, derived: Derived
+) -> tuple[ExactPolynomial, ExactPolynomial | None]:
+    """The claim without roots that are poles of parts of it, and these roots.
+
+    1/A = 1/B holds where A and B are both infinite: such roots come with the arrangement.
+    """
+    taken: ExactPolynomial | None = None
+    if polynomial.degree < 1 or covered(polynomial, derived.polynomial):
+        return polynomial, None
+    poles = {p.base for e in _expressions(claim) for p in e.atoms(Pow) if p.exp.is_negative}
+    for base in poles:
+        if not base.has(omega) or base == omega:
+            continue
+        pole, _ = derived.numerator(base)
+        while pole.degree > 0:
+            common = polynomial.gcd(pole)
+            if common.degree < 1 or not derived.polynomial.gcd(common).degree < 1:
+                break
+            polynomial = polynomial.exact_div(common)
+            taken = common if taken is None else taken * common
+    return polynomial, taken
+
+
+def _expressions(claim: Claim) -> list[Expr]:
+    return [claim.written_out(e) for e in (claim.left, claim.right)]
+
+
+def _loses(claim: Claim, polynomial: ExactPolynomial, derived: Derived) -> bool:
+    """Whether the claim has no wave, or zero frequency, where the laws have a wave."""
+    if loses_a_mode(claim):
+        return True
+    zeros = polynomial.lowest
+    return zeros > 0 and any(
+        f.degree == zeros and not covered(f, polynomial) for f, _ in derived.factors
+    )
 
 
 def loses_a_mode(claim: Claim) -> bool:

@@ -8,6 +8,7 @@ from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
 from sympy import Abs, Add, Eq, Expr, Mul, Poly, PolynomialError, Symbol, cancel, cos, expand_trig, sin
+from sympy import sympify
 from sympy import tan as tangent
 
 from ..declare.operators import omega
@@ -61,17 +62,23 @@ class Derived:
         return without_angles(expr)
 
     def numerator(self, expr: Expr) -> tuple[ExactPolynomial, int]:
-        """The zeros of an expression as a polynomial without powers of ω or content, and its sheets."""
+        """The zeros of an expression as a polynomial without content, and its sheets."""
         found, sheets = rational_numerator(self.rational(expr), omega)
-        return bare(found), sheets
+        return found.primitive()[1], sheets
 
     def substituted(self, values: dict[Any, Any]) -> Derived:
         """With parameters replaced by numbers or expressions."""
-        made = self.polynomial.substitute({s: self.rational(v) for s, v in values.items()})
+        made = self.polynomial.substitute({s: self.rational(sympify(v)) for s, v in values.items()})
         return Derived(bare(made), self.conditions, self.square)
 
 
-def derive(wave: WaveMatrix, symbols: Iterable[Symbol], constants: Iterable[Symbol]) -> Derived:
+def derive(
+    wave: WaveMatrix,
+    symbols: Iterable[Symbol],
+    constants: Iterable[Symbol],
+    *,
+    conditions: bool = True,
+) -> Derived:
     """The relation of a wave for a claim in certain symbols.
 
     Parameters
@@ -81,9 +88,11 @@ def derive(wave: WaveMatrix, symbols: Iterable[Symbol], constants: Iterable[Symb
         Those of the claim: conditions of the background are solved for others where possible.
     constants : iterable of Symbol
         The claim's and the model's symbols for c, epsilon_0 and mu_0, related by c² ε_0 μ_0 = 1.
+    conditions : bool, default True
+        Whether to use the conditions of the background.
     """
     raw = wave.relation.exact
-    equations = [*wave.linear.conditions, *_light(constants)]
+    equations = [*wave.linear.conditions, *_light(constants)] if conditions else []
     used = _solved(equations, set(symbols), set(raw.generators))
     made = raw.substitute({**{a: without_angles(a) for a in raw.generators if a != without_angles(a)}})
     for c in used:
@@ -138,7 +147,7 @@ def _solved(equations: list[Eq], claimed: set[Symbol], needed: set[Any]) -> list
             residual.free_symbols, key=lambda s: (s in claimed, s.name == "c", s.name != "mu_0", s.name)
         )
         for symbol in order:
-            value = _linear_solution(residual, symbol)
+            value = linear_solution(residual, symbol)
             if value is not None:
                 used.append(Condition(equation, symbol, value))
                 break
@@ -149,7 +158,8 @@ def _matters(condition: Condition, later: list[Condition], seen: set[Any]) -> bo
     return condition.symbol in seen or any(condition.symbol in c.value.free_symbols for c in later)
 
 
-def _linear_solution(residual: Expr, symbol: Symbol) -> Expr | None:
+def linear_solution(residual: Expr, symbol: Symbol) -> Expr | None:
+    """What makes an expression vanish, where a symbol enters it linearly."""
     top = cancel(residual).as_numer_denom()[0]
     try:
         poly = Poly(top, symbol)

@@ -25,6 +25,7 @@ from .verdict import Slip
 
 MOST = 6
 """Repairs that are listed."""
+DIVISIONS = ("over", "over twice", "more")
 WORSE = 3.0
 """How much less simple than the simplest a listed repair may be."""
 
@@ -76,7 +77,7 @@ def _whole(claim: Claim, derived: Derived, deadline: float) -> list[Repair]:
     """The questions, cheapest first, for each factor that the claim lacks."""
     polynomial, _ = derived.numerator(claim.residual)
     targets = _targets(polynomial, derived)
-    for question in (_single, _scaled, _wholesale, _other_species, _alike, _double):
+    for question in (_single, _divided, _wholesale, _alike, _other_species, _scaled, _double):
         for target in targets:
             found = list(question(Search(claim, derived, target, deadline)))
             if found:
@@ -118,9 +119,15 @@ def _targets(polynomial: ExactPolynomial, derived: Derived) -> list[ExactPolynom
 def _single(search: Search) -> Iterator[Repair]:
     """One factor or one term, a number times powers of symbols."""
     for edit in edits(search.claim):
-        if search.late:
-            return
-        yield from _repaired(search, edit, S.One)
+        if edit.kind not in DIVISIONS and not search.late:
+            yield from _repaired(search, edit, S.One)
+
+
+def _divided(search: Search) -> Iterator[Repair]:
+    """One term divided or multiplied by one plus a number times powers of symbols."""
+    for edit in edits(search.claim):
+        if edit.kind in DIVISIONS and not search.late:
+            yield from _repaired(search, edit, S.One)
 
 
 def _scaled(search: Search) -> Iterator[Repair]:

@@ -40,6 +40,7 @@ from .errors import PlasmalinError as PlasmalinError
 from .errors import RankError as RankError
 from .errors import ReadError as ReadError
 from .errors import UndeterminedError as UndeterminedError
+from .errors import UnitError as UnitError
 from .errors import ValuesError as ValuesError
 
 __version__ = "0.1.0"
@@ -82,4 +83,5 @@ __all__ = [
     "UndeterminedError",
     "NonPolynomialError",
     "ValuesError",
+    "UnitError",
 ]

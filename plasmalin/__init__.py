@@ -1,6 +1,6 @@
 """plasmalin: from your own nonlinear fluid laws to the exact dispersion relation and all its roots.
 
-Conventions, everywhere: SI units, temperatures in the equations as energies; plane waves exp[i(k.x − omega t)],
+Conventions, everywhere: SI units (plain numbers in the unit that a parameter declares), temperatures in the equations as energies; plane waves exp[i(k.x − omega t)],
 so that growth is Im omega > 0; right-handed axes x, y, z; wave numbers in rad/m, frequencies in rad/s.
 """
 

@@ -489,9 +489,11 @@ class FluidModel:
         return made[0] if len(made) == 1 else made
 
     def _constant(self, name: str) -> Symbol:
-        symbol = self.parameter(name, positive=True, value=codata(name))
-        if name not in self._units:
-            self._set_unit(name, read_unit(UNITS[name]), check=False)
+        number, unit = Fraction(codata(name)), read_unit(UNITS[name])
+        self._refuse_other(name, unit)
+        own = self._units.get(name, unit)
+        symbol = self.parameter(name, positive=True, value=float(number / own.scale))
+        self._set_unit(name, own, check=False)
         return symbol
 
     def vector_parameter(self, name: str, entries: Any, *, unit: str | None = None) -> Expr:

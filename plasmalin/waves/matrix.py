@@ -98,14 +98,23 @@ class WaveMatrix:
     @cached_property
     def dimensions(self) -> Dimensions:
         """The dimensions of the parameters, and of the wave's own symbols: components of k are in 1/m."""
-        found, mine = self.linear.dimensions, set(self.wave_symbols)
-        if not found.active:
-            found = Dimensions(found.declared, active=True)
+        found = self.linear.dimensions
+        return self._with_wave(found if found.active else Dimensions(found.declared, active=True))
+
+    @property
+    def all_dimensions(self) -> Dimensions:
+        """`dimensions` with the laws' requirements, also where no unit is declared and they are not checked yet."""
+        found = self.linear.dimensions
+        return self.dimensions if found.active else self._with_wave(found)
+
+    def _with_wave(self, found: Dimensions) -> Dimensions:
         per_meter = of_dimension(dimension(-1))
+        for s in set(self.wave_symbols) & set(WAVE_SYMBOLS):
+            found = found.declare(s.name, dimension(-1), check=False)
         for c in self.k:
             with suppress(UnitError):  # a component with a number in it, "k + 1", tells nothing
                 needed = has_dimension("the wave vector", c, per_meter, "k")
-                found = found.require(needed if c.free_symbols & mine else ())
+                found = found.require(needed if c.free_symbols & set(self.wave_symbols) else ())
         return found
 
     @cached_property

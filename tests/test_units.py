@@ -7,7 +7,7 @@ import numpy as np
 import pytest
 import scipy.constants
 import sympy
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 import plasmalin as plin
@@ -91,6 +91,7 @@ def test_a_unit_that_is_not_text():
         plin.FluidModel("x").parameter("a", unit=1.0)
 
 
+@settings(deadline=None)
 @given(
     st.lists(
         st.tuples(
@@ -173,6 +174,7 @@ def test_right_laws_pass_and_open_units_follow(wave):
         ("partial_t(n_e) = n_0*n_e^gamma_e", r"m\^\(-3\*gamma_e - 3\)"),
         ("partial_t(n_e) = -multiplier(n_e, k_abs)", r"'-multiplier\(n_e, k_abs\)' is in m\^-4"),
         ("partial_t(n_e) = n_e + 1", "dimensionless"),
+        ("m_e*partial_t(v_e) = e*grad(phi - 3)", "a number that carries a unit needs a name"),
         ("partial_t(n_e) = n_e*dot(v_e, grad(n_e))", r"m\^-6 s\^-1"),
     ],
 )
@@ -213,6 +215,56 @@ def test_every_operator():
     for extra in (v, 2 * rho * v, rho * curl(v), grad(dot(b, b))):
         with pytest.raises(plin.UnitError, match="law 'wrong'"):
             model.law("wrong", sympy.Add(*terms) + extra)
+
+
+def test_ready_laws_have_the_units_that_their_docstrings_say():
+    model, laws = plin.FluidModel("every ready law"), plin.laws
+    n, rho, p, p_perp, temperature, phi, psi, q = (
+        model.scalar(name, unit=unit, background=f"{name}_0")
+        for name, unit in {
+            "n": "m^-3", "rho": "kg/m^3", "p": "Pa", "p_perp": "Pa", "T": "eV", "phi": "V", "psi": "m^2/s^2", "q": "C",
+        }.items()
+    )  # fmt: skip
+    v, w, electric, magnetic = (
+        model.vector(name, unit=unit)
+        for name, unit in {"v": "m/s", "w": "m/s", "E": "V/m", "B": "T"}.items()
+    )
+    mass, nu, eta, mu, kappa, gamma, alpha, v_t, current, source = (
+        model.parameter(name, positive=True, unit=unit)
+        for name, unit in {
+            "mass": "kg", "nu": "1/s", "eta": "ohm m", "mu": "Pa s", "kappa": "1/(m s)", "gamma": "1",
+            "alpha": "N s m^2", "v_t": "m/s", "I_e": "A", "S": "m^-3 s^-1",
+        }.items()
+    )  # fmt: skip
+    e, eps_0, mu_0, c, hbar, big_g = model.constants("e epsilon_0 mu_0 c hbar G")
+    n_0, t_0 = model.symbols["n_0"], model.symbols["T_0"]
+    spin = model.vector_parameter("spin", (0, 0, "Omega"), unit="rad/s")
+    lorentz = laws.lorentz_force(n, e, electric=electric, potential=phi, magnetic=magnetic, v=v)
+    drag = laws.neutral_friction(n, v, mass, nu) + laws.friction(n, v, n, w, alpha)
+    other = (
+        laws.source_momentum(mass, source, v)
+        + laws.viscous_force(v, mu)
+        + laws.bohm_force(n, mass, hbar)
+    )
+    pressure = laws.polytropic_pressure(n, n_0, t_0, gamma)
+    laws.continuity(model, n, v, source)
+    laws.momentum(model, n, v, mass=mass, force=lorentz + drag + other, pressure=pressure)
+    laws.relativistic_momentum(model, n, w, mass=mass, c=c, force=e * n * electric)
+    body = laws.gravity_force(rho, potential=psi) + laws.rotation_force(rho, v, spin)
+    model.law("MHD", rho * partial_t(v), laws.magnetic_force(magnetic, mu_0) + body)
+    model.law("viscous", rho * partial_t(v), div(mu * laws.strain_rate(v)))
+    laws.adiabatic_pressure(model, p, v, gamma, heating=laws.frictional_heat(n, v, n, w, alpha))
+    loss = laws.landau_heat_loss(temperature, n_0, v_t)
+    laws.energy(model, temperature, n, v, gamma, conductivity=kappa, heating=-loss)
+    laws.double_adiabatic(model, n, v, magnetic, p, p_perp)
+    laws.poisson(model, phi, e * (n - laws.boltzmann_density(n_0, e, t_0, phi)), epsilon_0=eps_0)
+    laws.maxwell(model, electric, magnetic, e * n * v, mu_0=mu_0, epsilon_0=eps_0)
+    laws.self_gravity(model, psi, rho, big_g=big_g)
+    hall = (laws.magnetic_force(magnetic, mu_0) - grad(p)) / (e * n)
+    laws.induction(model, magnetic, v, resistivity=eta, mu_0=mu_0, hall=hall)
+    laws.grain_charge(model, q, v, current, 2 * current)
+    with pytest.raises(plin.UnitError, match="law 'wrong'"):
+        laws.continuity(model, n, w, nu, name="wrong")
 
 
 def test_no_units_no_check():
@@ -457,3 +509,48 @@ def test_a_foreign_unit_that_is_not_understood(wave):
             wave.roots({"T_e": strange}, k=1.0)
     finally:
         SHORT.update(SHORT_BEFORE)
+
+
+# Any part of the right units -----------------------------------------------------------------------
+
+RIGHT = {
+    "n_e": "m^-3", "v_e": "m/s", "phi": "V", "q": "C", "eps": "F/m", "M": "kg", "T_e": "keV", "gamma_e": "1",
+    "n_0": "cm^-3", "nu": "1/s",
+}  # fmt: skip
+TEXTS = (
+    "partial_t(n_e) + div(n_e*v_e) = nu*n_e",
+    "M*n_e*(partial_t(v_e) + advect(v_e, v_e)) = q*n_e*grad(phi) - grad(n_0*T_e*(n_e/n_0)^gamma_e)",
+    "eps*laplacian(phi) = q*n_0*(exp(phi*q/T_e) - 1) + q*(n_e - n_0)",
+)
+
+
+def declared(units, order):
+    model = plin.FluidModel("part of the units", axes="x")
+    model.scalar("n_e", unit=units.get("n_e"))
+    model.vector("v_e", unit=units.get("v_e"))
+    model.scalar("phi", unit=units.get("phi"))
+    names = [n for n in RIGHT if n not in ("n_e", "v_e", "phi")]
+    early, late = names[: len(names) // 2], names[len(names) // 2 :]
+    for name in names:
+        model.parameter(name, positive=True, unit=units.get(name) if name in early else None)
+    for i in order:
+        model.law(f"law {i}", TEXTS[i])
+    for name in late:
+        model.parameter(name, positive=True, unit=units.get(name))
+    return model
+
+
+@settings(max_examples=30, deadline=None)
+@given(st.sets(st.sampled_from(sorted(RIGHT))), st.permutations(range(3)))
+def test_no_part_of_the_right_units_is_an_alarm(names, order):
+    model = declared({n: RIGHT[n] for n in names}, order)
+    for name, unit in RIGHT.items():
+        found = model.dimensions.of(name)
+        assert found in (None, read_unit(unit).dimension)
+
+
+@settings(max_examples=20, deadline=None)
+@given(st.sampled_from(sorted(RIGHT)), st.sampled_from(["m", "K", "s/kg", "A^2"]), st.permutations(range(3)))  # fmt: skip
+def test_one_wrong_unit_is_always_found(name, wrong, order):
+    with pytest.raises(plin.UnitError, match="law 'law"):
+        declared({**RIGHT, name: wrong}, order)

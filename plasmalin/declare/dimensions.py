@@ -6,6 +6,7 @@ units match when the equations of all laws together have a solution.
 
 from __future__ import annotations
 
+import re
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, replace
 from fractions import Fraction
@@ -15,6 +16,7 @@ from ..errors import UnitError
 from .forms import Form, Requirement, combined, known, of_dimension
 from .units import BASE, NONE, Dimension, dimension, dimension_text, product
 
+NUMBER = re.compile(r"-?\d+(/\d+)?")
 KELVIN_PER_JOULE = product(dimension(0, 0, 0, 0, 1), dimension(2, 1, -2), -1)
 
 
@@ -129,7 +131,7 @@ class Dimensions:
                 f"{one.where}: '{one.left}' is in {form_text(left)}, but '{one.right}' is in {form_text(right)}; "
                 "correct one of them, or the unit that one of their names declares"
             )
-        return text + self._inferred(one, solved) + kelvin_hint(rest)
+        return text + self._inferred(one, solved) + kelvin_hint(rest) + _number_hint(one)
 
     def _inferred(self, one: Requirement, solved: Mapping[str, Form]) -> str:
         names = {*one.left_form, *one.right_form}
@@ -141,6 +143,12 @@ class Dimensions:
             if shown
             else ""
         )
+
+
+def _number_hint(one: Requirement) -> str:
+    if not any(NUMBER.fullmatch(text or "") for text in (one.left, one.right)):
+        return ""
+    return "; a number that carries a unit needs a name, model.parameter(..., unit=...)"
 
 
 def _replaced(form: Form, key: str, image: Form) -> Form:

@@ -13,7 +13,7 @@ from fractions import Fraction
 from typing import Any
 
 from ..errors import UnitError
-from .forms import Form, Requirement, combined, known, of_dimension
+from .forms import Form, Requirement, combined, known, of_dimension, term_text
 from .units import BASE, NONE, Dimension, dimension, dimension_text, product
 
 NUMBER = re.compile(r"-?\d+(/\d+)?")
@@ -121,14 +121,16 @@ class Dimensions:
     def _message(self, one: Requirement, solved: Mapping[str, Form]) -> str:
         left, right = (self._reduced(f, solved) for f in (one.left_form, one.right_form))
         rest = combined(left, right, Fraction(-1))
+        first, second = term_text(one.left), term_text(one.right)
         if one.right is None:
+            reason = " ".join(map(term_text, one.reason))
             text = (
-                f"{one.where}: '{one.left}' must be dimensionless, as {one.reason}, "
+                f"{one.where}: '{first}' must be dimensionless, as {reason}, "
                 f"but it is in {form_text(left)}; divide it by a quantity of that unit"
             )
         else:
             text = (
-                f"{one.where}: '{one.left}' is in {form_text(left)}, but '{one.right}' is in {form_text(right)}; "
+                f"{one.where}: '{first}' is in {form_text(left)}, but '{second}' is in {form_text(right)}; "
                 "correct one of them, or the unit that one of their names declares"
             )
         return text + self._inferred(one, solved) + kelvin_hint(rest) + _number_hint(one)
@@ -146,7 +148,7 @@ class Dimensions:
 
 
 def _number_hint(one: Requirement) -> str:
-    if not any(NUMBER.fullmatch(text or "") for text in (one.left, one.right)):
+    if not any(NUMBER.fullmatch(term_text(x)) for x in (one.left, one.right)):
         return ""
     return "; a number that carries a unit needs a name, model.parameter(..., unit=...)"
 

@@ -11,7 +11,7 @@ from dataclasses import dataclass
 from fractions import Fraction
 from typing import Any
 
-from sympy import Abs, Add, Expr, Max, Min, Mul, Pow, Symbol, Tuple, cancel, sign
+from sympy import Abs, Add, Expr, Max, Min, Mul, Pow, Symbol, Tuple, cancel, expand, sign
 from sympy.core.function import Function
 
 from .fields import Components, Field
@@ -50,18 +50,18 @@ class Requirement:
     ----------
     where : str
         "law 'Poisson'", or another thing that a message can name.
-    left, right : str
-        The terms as text.
-    reason : str
-        Why `left` must be dimensionless.
+    left, right : Expr or str
+        The terms.
+    reason : tuple
+        Why `left` must be dimensionless: words and an expression.
     difference : Form
         Of the two dimensions.
     """
 
     where: str
-    left: str
-    right: str | None
-    reason: str
+    left: Any
+    right: Any
+    reason: tuple[Any, ...]
     left_form: Form
     right_form: Form
 
@@ -84,7 +84,10 @@ def _plain(power: Any) -> Any:
     """A power as a Fraction where it is a number."""
     if isinstance(power, Fraction):
         return power
-    made = cancel(power)
+    made = power
+    if isinstance(made, Add | Mul):
+        fractions = any(p.exp.is_negative for p in made.atoms(Pow))
+        made = cancel(made) if fractions else expand(made)
     return Fraction(int(made.p), int(made.q)) if made.is_Rational else made
 
 
@@ -140,15 +143,15 @@ class Terms:
         forms = [(term, self.form(term)) for term in terms if term != 0]
         for (a, first), (b, other) in zip(forms[:1] * len(forms), forms[1:], strict=False):
             if first != other:
-                self._require(_text(a), _text(b), "", first, other)
+                self._require(a, b, (), first, other)
         return forms[0][1] if forms else {}
 
-    def dimensionless(self, expr: Any, reason: str) -> None:
+    def dimensionless(self, expr: Any, reason: tuple[Any, ...]) -> None:
         form = self.form(expr)
         if form:
-            self._require(_text(expr), None, reason, form, {})
+            self._require(expr, None, reason, form, {})
 
-    def _require(self, left: str, right: str | None, reason: str, a: Form, b: Form) -> None:
+    def _require(self, left: Any, right: Any, reason: tuple[Any, ...], a: Form, b: Form) -> None:
         self.required.append(Requirement(self.where, left, right, reason, a, b))
 
     def _atom(self, atom: Any) -> Form:
@@ -165,12 +168,12 @@ class Terms:
     def _power(self, base: Any, exponent: Any) -> Form:
         below = self.form(base)
         if not exponent.is_Rational:
-            self.dimensionless(exponent, f"it is the exponent of {_text(base)}")
+            self.dimensionless(exponent, ("it is the exponent of", base))
         return combined({}, below, _plain(exponent)) if below else {}
 
     def _function(self, expr: Any) -> Form:
         for a in expr.args:
-            self.dimensionless(a, f"it is the argument of {expr.func.__name__}(...)")
+            self.dimensionless(a, ("it is the argument of", f"{expr.func.__name__}(...)"))
         return {}
 
 
@@ -178,7 +181,8 @@ def _zero(entry: Any) -> bool:
     return not isinstance(entry, Tuple) and bool(entry == 0)
 
 
-def _text(expr: Any) -> str:
+def term_text(expr: Any) -> str:
+    """A term as a law would have it."""
     return law_text(expr) if isinstance(expr, Expr) else str(expr)
 
 
@@ -200,5 +204,5 @@ def has_dimension(where: str, expr: Any, powers: Form, named: str) -> tuple[Requ
         return ()
     walk = Terms(where)
     form = walk.equal(Add.make_args(expr))
-    same = () if form == powers else (Requirement(where, _text(expr), named, "", form, powers),)
+    same = () if form == powers else (Requirement(where, expr, named, (), form, powers),)
     return (*walk.required, *same)

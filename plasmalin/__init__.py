@@ -1,6 +1,6 @@
 """plasmalin: from your own nonlinear fluid laws to the exact dispersion relation and all its roots.
 
-Conventions, everywhere: SI units, temperatures in the equations as energies; plane waves exp[i(k.x − omega t)],
+Conventions, everywhere: SI units (plain numbers in the unit that a parameter declares), temperatures in the equations as energies; plane waves exp[i(k.x − omega t)],
 so that growth is Im omega > 0; right-handed axes x, y, z; wave numbers in rad/m, frequencies in rad/s.
 """
 
@@ -41,6 +41,7 @@ from .errors import PlasmalinError as PlasmalinError
 from .errors import RankError as RankError
 from .errors import ReadError as ReadError
 from .errors import UndeterminedError as UndeterminedError
+from .errors import UnitError as UnitError
 from .errors import ValuesError as ValuesError
 
 __version__ = "0.1.0"
@@ -84,4 +85,5 @@ __all__ = [
     "UndeterminedError",
     "NonPolynomialError",
     "ValuesError",
+    "UnitError",
 ]

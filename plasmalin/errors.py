@@ -83,3 +83,7 @@ class NonPolynomialError(PlasmalinError, ValueError):
 
 class ValuesError(PlasmalinError, ValueError):
     """Numbers that are missing, unknown, not finite, or of the wrong shape."""
+
+
+class UnitError(PlasmalinError, ValueError):
+    """Units that do not match, or a unit that cannot be read."""

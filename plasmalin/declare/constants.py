@@ -26,6 +26,26 @@ CODATA = {
 }
 """Name here -> CODATA name."""
 
+UNITS = {
+    "e": "C",
+    "epsilon_0": "F/m",
+    "mu_0": "H/m",
+    "c": "m/s",
+    "m_e": "kg",
+    "m_p": "kg",
+    "m_n": "kg",
+    "u": "kg",
+    "k_B": "J/K",
+    "h": "J s",
+    "hbar": "J s",
+    "G": "m^3 kg^-1 s^-2",
+    "N_A": "1/mol",
+    "R": "J/(mol K)",
+    "sigma_SB": "W m^-2 K^-4",
+    "alpha_fs": "1",
+}
+"""Name here -> SI unit of the number."""
+
 
 def codata(name: str) -> float:
     """The CODATA number of a constant, SI.

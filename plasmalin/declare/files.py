@@ -13,24 +13,23 @@ from importlib import resources
 from pathlib import Path
 from typing import Any
 
-from sympy import Tuple
+from sympy import Rational, Tuple
 
-from ..errors import DeclarationError, ModelFileError, PlasmalinError
+from ..errors import DeclarationError, ModelFileError, PlasmalinError, UnitError
 from .constants import CODATA, codata
 from .fields import Components, Field
 from .model import FluidModel
+from .units import Unit, read_unit
 
 LARGEST = 1_000_000
-JOULE_PER = {"eV": 1.0, "keV": 1e3, "MeV": 1e6}
-"""Energies are given in these units times the elementary charge."""
 
 KEYS: dict[str, set[str]] = {
     "file": {"model", "scalar", "vector", "tensor", "parameters", "vector_parameter", "law", "wave", "sweep", "claim"},
     "[model]": {"title", "axes", "constants", "assume"},
-    "[[scalar]]": {"name", "background", "latex"},
-    "[[vector]]": {"name", "background", "latex"},
-    "[[tensor]]": {"name", "background", "latex", "symmetric"},
-    "[[vector_parameter]]": {"name", "entries"},
+    "[[scalar]]": {"name", "background", "unit", "latex"},
+    "[[vector]]": {"name", "background", "unit", "latex"},
+    "[[tensor]]": {"name", "background", "unit", "latex", "symmetric"},
+    "[[vector_parameter]]": {"name", "entries", "unit"},
     "[[law]]": {"name", "text"},
     "[wave]": {"direction", "angle"},
     "[parameters] entry": {"value", "unit", "positive"},
@@ -166,8 +165,8 @@ def _built(data: dict[str, Any]) -> ModelFile:
             _field(model, kind, entry)
     for entry in _list(data, "vector_parameter"):
         _known(entry, "[[vector_parameter]]")
-        entries = _plain(entry.get("entries"))
-        model.vector_parameter(_text(entry, "name", "[[vector_parameter]]"), entries)
+        entries, name = _plain(entry.get("entries")), _text(entry, "name", "[[vector_parameter]]")
+        model.vector_parameter(name, entries, unit=_unit(entry, f"[[vector_parameter]] {name}"))
     for entry in _list(data, "law"):
         _known(entry, "[[law]]")
         model.law(_text(entry, "name", "[[law]]"), _text(entry, "text", "[[law]]"))
@@ -236,25 +235,22 @@ def _parameters(model: FluidModel, head: Mapping[str, Any], table: Mapping[str, 
         entry = given if isinstance(given, dict) else {"value": given}
         _known(entry, "[parameters] entry")
         where = f"[parameters] {name}"
-        value = (
-            _number(entry["value"], where) * _factor(entry.get("unit"), where)
-            if "value" in entry
-            else None
-        )
+        value = _number(entry["value"], where) if "value" in entry else None
         positive = entry.get("positive", name in constants or (value is not None and value > 0))
         if not isinstance(positive, bool):
             raise ModelFileError(f"{where}: 'positive' must be true or false")
-        model.parameter(name, positive=positive, value=value)
+        model.parameter(name, positive=positive, unit=_unit(entry, where), value=value)
 
 
-def _factor(unit: Any, where: str) -> float:
-    if unit is None:
-        return 1.0
-    if unit not in JOULE_PER:
-        raise ModelFileError(
-            f"{where}: unit {unit!r} is not understood; give SI, or one of {', '.join(JOULE_PER)}"
-        )
-    return JOULE_PER[unit] * codata("e")
+def _unit(entry: Mapping[str, Any], where: str) -> str | None:
+    """The unit of an entry as text, known to be readable."""
+    given = entry.get("unit")
+    if given is None:
+        return None
+    try:
+        return read_unit(given).text
+    except UnitError as error:
+        raise ModelFileError(f"{where}: {error}") from None
 
 
 def _field(model: FluidModel, kind: str, entry: Mapping[str, Any]) -> None:
@@ -262,6 +258,7 @@ def _field(model: FluidModel, kind: str, entry: Mapping[str, Any]) -> None:
     _known(entry, section)
     name = _text(entry, "name", section)
     options = {key: entry[key] for key in ("latex", "symmetric") if key in entry}
+    options["unit"] = _unit(entry, f"{section} {name}")
     declare: Callable[..., Field] = getattr(model, kind)
     background = _plain(entry.get("background", 0))
     for x in _flat(background):
@@ -315,6 +312,7 @@ def save_model(model: FluidModel, path: str | os.PathLike[str]) -> None:
 def model_text(model: FluidModel) -> str:
     """A model as the text of a TOML file."""
     constants = [n for n, value in model.values.items() if n in CODATA and value == codata(n)]
+    units = {name: unit.text for name, unit in model.units.items()}
     lines = ["[model]", f"title = {_quoted(model.title)}", f"axes = {_quoted(model.axes)}"]
     if constants:
         lines.append(f"constants = [{', '.join(map(_quoted, constants))}]")
@@ -322,17 +320,18 @@ def model_text(model: FluidModel) -> str:
     for name, symbol in model.symbols.items():
         if name not in constants:
             value = f"value = {model.values[name]!r}, " if name in model.values else ""
-            lines.append(
-                f"{name} = {{ {value}positive = {str(bool(symbol.is_positive)).lower()} }}"
-            )
+            unit = f"unit = {_quoted(units[name])}, " if name in units else ""
+            positive = str(bool(symbol.is_positive)).lower()
+            lines.append(f"{name} = {{ {value}{unit}positive = {positive} }}")
     for kind, fields in _by_kind(model).items():
         for field in fields:
             lines += [
                 "",
                 f"[[{kind}]]",
                 f"name = {_quoted(field.name)}",
-                f"background = {_value(field.background)}",
+                f"background = {_value(field.background, model.units.get(field.name))}",
             ]
+            lines += [f"unit = {_quoted(units[field.name])}"] if field.name in units else []
             lines += [f"latex = {_quoted(field.latex_name)}"] if field.latex_name else []
             lines += ["symmetric = false"] if field.rank == 2 and not field.symmetric else []
     for name, vector in model.vector_parameters.items():
@@ -352,9 +351,12 @@ def _by_kind(model: FluidModel) -> dict[str, list[Field]]:
     return {kind: [f for f in model.fields.values() if f.rank == r] for kind, r in kinds.items()}
 
 
-def _value(value: Any) -> str:
+def _value(value: Any, unit: Unit | None = None) -> str:
+    """A background or vector; a bare number is written in the field's unit, in which it is read back."""
     if isinstance(value, Components | Tuple):
-        return f"[{', '.join(_value(a) for a in value.args)}]"
+        return f"[{', '.join(_value(a, unit) for a in value.args)}]"
+    if value.is_number and unit is not None:
+        value = value * Rational(unit.scale.denominator, unit.scale.numerator)
     return "0" if value == 0 else _quoted(str(value))
 
 

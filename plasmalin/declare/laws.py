@@ -177,7 +177,7 @@ def neutral_friction(n: Expr, v: Expr, mass: Any, rate: Any, neutral_velocity: A
 def friction(n_s: Expr, v_s: Expr, n_t: Expr, v_t: Expr, alpha: Any) -> Expr:
     """Friction of species s on t: −alpha n_s n_t (v_s − v_t); the force on t is the same with s and t exchanged.
 
-    `alpha` (N s m) may depend on temperatures and on ``|v_s − v_t|``; it must be the same in both.
+    `alpha` (N s m^2) may depend on temperatures and on ``|v_s − v_t|``; it must be the same in both.
     """
     return -alpha * n_s * n_t * (v_s - v_t)
 

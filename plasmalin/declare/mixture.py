@@ -106,7 +106,7 @@ def mixture(
     Returns
     -------
     FluidModel
-        ``.values`` are the numbers by parameter name; every law can be printed, removed or replaced.
+        ``.values`` are the numbers by parameter name, SI (temperatures in J); every law can be printed, removed or replaced.
 
     Raises
     ------
@@ -260,14 +260,14 @@ class _Setting:
         return model
 
     def _force_fields(self, model: FluidModel) -> dict[str, Any]:
-        electric = self._parameters(model, "E", self.electric, "0")
-        magnetic = self._parameters(model, "B", self.magnetic, "0")
+        electric = self._parameters(model, "E", self.electric, "0", unit="V/m")
+        magnetic = self._parameters(model, "B", self.magnetic, "0", unit="T")
         if self.field == "electromagnetic":
             return {
-                "electric": model.vector("E", background=electric),
-                "magnetic": model.vector("B", background=magnetic),
+                "electric": model.vector("E", background=electric, unit="V/m"),
+                "magnetic": model.vector("B", background=magnetic, unit="T"),
             }
-        made: dict[str, Any] = {"potential": model.scalar("phi")}
+        made: dict[str, Any] = {"potential": model.scalar("phi", unit="V")}
         if any(self.electric):
             made["electric"] = components(*electric)
         if any(self.magnetic):
@@ -275,11 +275,13 @@ class _Setting:
         return made
 
     def _parameters(
-        self, model: FluidModel, stem: str, given: Sequence[float], mark: str
+        self, model: FluidModel, stem: str, given: Sequence[float], mark: str, *, unit: str
     ) -> tuple[Any, ...]:
         """One parameter per component that is not zero."""
         return tuple(
-            model.parameter(f"{stem}_{mark}{axis}" if mark else f"{stem}_{axis}", value=x)
+            model.parameter(
+                f"{stem}_{mark}{axis}" if mark else f"{stem}_{axis}", unit=unit, value=x
+            )
             if x
             else 0
             for axis, x in zip(self.axes, self.vector(given), strict=True)
@@ -288,21 +290,24 @@ class _Setting:
     def _charge(self, model: FluidModel, s: Species, e: Symbol) -> Expr:
         if abs(s.charge_number) in (0, 1):
             return int(s.charge_number) * e
-        return model.parameter(f"Z_{s.name}", value=float(s.charge_number)) * e
+        return model.parameter(f"Z_{s.name}", unit="1", value=float(s.charge_number)) * e
 
     def _one(
         self, model: FluidModel, s: Species, q: Expr, fields: dict[str, Any]
     ) -> tuple[Field, Field]:
-        m = model.parameter(f"m_{s.name}", positive=True, value=float(s.mass))
-        n_0 = model.parameter(f"n_{s.name}0", positive=True, value=float(s.density))
-        drift = self._parameters(model, f"u_{s.name}", self.drift(s), "")
-        n = model.scalar(f"n_{s.name}", background=n_0)
-        v = model.vector(f"v_{s.name}", background=drift if any(drift) else 0)
+        def positive(name: str, unit: str, value: float) -> Symbol:
+            return model.parameter(name, positive=True, unit=unit, value=float(value))
+
+        m = positive(f"m_{s.name}", "kg", s.mass)
+        n_0 = positive(f"n_{s.name}0", "m**-3", s.density)
+        drift = self._parameters(model, f"u_{s.name}", self.drift(s), "", unit="m/s")
+        n = model.scalar(f"n_{s.name}", background=n_0, unit="m**-3")
+        v = model.vector(f"v_{s.name}", background=drift if any(drift) else 0, unit="m/s")
         force = self._force(model, s, q, n, v, m, fields)
         pressure: Expr = S.Zero
         if s.temperature_eV > 0:
-            t = model.parameter(f"T_{s.name}", positive=True, value=s.temperature_eV * codata("e"))
-            gamma = model.parameter(f"gamma_{s.name}", positive=True, value=float(s.gamma))
+            t = positive(f"T_{s.name}", "J", s.temperature_eV * codata("e"))
+            gamma = positive(f"gamma_{s.name}", "1", s.gamma)
             pressure = laws.polytropic_pressure(n, n_0, t, gamma)
         laws.continuity(model, n, v, name=f"{s.name} continuity")
         laws.momentum(
@@ -325,7 +330,9 @@ class _Setting:
             known |= {"magnetic": fields["magnetic"], "v": v}
         force = laws.lorentz_force(n, q, **known) if q != 0 else S.Zero
         if s.collision_frequency:
-            nu = model.parameter(f"nu_{s.name}", positive=True, value=float(s.collision_frequency))
+            nu = model.parameter(
+                f"nu_{s.name}", positive=True, unit="1/s", value=float(s.collision_frequency)
+            )
             wind = self._wind(model)
             force = force + laws.neutral_friction(n, v, m, nu, wind)
         return force
@@ -333,7 +340,7 @@ class _Setting:
     def _wind(self, model: FluidModel) -> Any:
         if not any(self.neutral):
             return 0
-        return components(*self._parameters(model, "u_n", self.neutral, ""))
+        return components(*self._parameters(model, "u_n", self.neutral, "", unit="m/s"))
 
 
 def _finite(x: Any) -> bool:

@@ -2,18 +2,24 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable, Iterator, Mapping
+from contextlib import contextmanager
 from dataclasses import dataclass
+from fractions import Fraction
 from typing import TYPE_CHECKING, Any
 
-from sympy import Add, Expr, Float, Rational, S, Symbol, expand
+from sympy import Add, Expr, Float, Rational, S, Symbol, Tuple, expand
 
-from ..errors import DeclarationError, RankError
-from .constants import codata
+from ..errors import DeclarationError, RankError, UnitError
+from .constants import UNITS, codata
+from .dimensions import Dimensions
 from .fields import AXES, Components, Field, FieldAtom, components, exact
+from .forms import has_dimension, of_dimension, per_length, requirements
 from .notation import law_text
 from .operators import OPERATORS, WAVE_SYMBOLS, WORDS, Cross, Curl, Multiplier, identity, rank_of
+from .quantities import plain_number
 from .reader import read_expression, read_law
+from .units import NONE, Unit, read_unit
 
 if TYPE_CHECKING:
     from ..linearize.linearized import LinearizedModel
@@ -40,7 +46,7 @@ class Law:
 
 @dataclass(frozen=True)
 class Parameter:
-    """A declared parameter: its symbol, its default number and whether it was only implied."""
+    """A declared parameter: its symbol, its default number (in its unit) and whether it was only implied."""
 
     symbol: Symbol
     value: float | None = None
@@ -83,6 +89,8 @@ class FluidModel:
         self._parameters: dict[str, Parameter] = {}
         self._vectors: dict[str, Expr] = {}
         self._laws: dict[str, Law] = {}
+        self._units: dict[str, Unit] = {}
+        self._dimensions = Dimensions({})
 
     def __repr__(self) -> str:
         return (
@@ -109,8 +117,22 @@ class FluidModel:
 
     @property
     def values(self) -> dict[str, float]:
-        """The default numbers by parameter name, constants of nature among them."""
+        """The default numbers by parameter name, constants of nature among them.
+
+        Each is in the unit that its parameter declares (SI where none is declared), just as the numbers that
+        `roots` and `branches` take.
+        """
         return {n: p.value for n, p in self._parameters.items() if p.value is not None}
+
+    @property
+    def units(self) -> dict[str, Unit]:
+        """The declared units of fields and parameters by name, those of constants of nature among them."""
+        return dict(self._units)
+
+    @property
+    def dimensions(self) -> Dimensions:
+        """The dimensions that are declared, and those that the laws require."""
+        return self._dimensions
 
     @property
     def vector_parameters(self) -> dict[str, Expr]:
@@ -120,7 +142,13 @@ class FluidModel:
     # Fields ------------------------------------------------------------------------------------
 
     def scalar(
-        self, name: str, background: Any = 0, *, gradient: Any = 0, latex: str | None = None
+        self,
+        name: str,
+        background: Any = 0,
+        *,
+        gradient: Any = 0,
+        unit: str | None = None,
+        latex: str | None = None,
     ) -> Field:
         """Declare a scalar field.
 
@@ -133,6 +161,9 @@ class FluidModel:
         gradient : 0 or tuple, default 0
             The uniform gradient of the background in the local approximation, one entry per axis. What such terms
             give depends on the chosen variables at order 1/kL: with log n as the field an exponential profile is exact.
+        unit : str, optional
+            Such as "m**-3", "kg m/s**2", "eV", "1". With it laws are checked term by term; a background that is a
+            number, or a name that declares no unit, is in this unit.
         latex : str, optional
             How to print the name in LaTeX.
 
@@ -145,13 +176,21 @@ class FluidModel:
         ------
         DeclarationError
             When the name is taken, or the background holds a field.
+        UnitError
+            When the unit cannot be read, or the background has another.
         """
         name = self._new_name(name)
         value, slope = self._value(background), self._vector(name, gradient)
-        return self._declare(Field(name, 0, value, slope, latex_name=latex))
+        return self._declare(Field(name, 0, value, slope, latex_name=latex), unit)
 
     def vector(
-        self, name: str, background: Any = 0, *, gradient: Any = 0, latex: str | None = None
+        self,
+        name: str,
+        background: Any = 0,
+        *,
+        gradient: Any = 0,
+        unit: str | None = None,
+        latex: str | None = None,
     ) -> Field:
         """Declare a vector field.
 
@@ -163,6 +202,8 @@ class FluidModel:
         gradient : 0 or tuple of tuples, default 0
             The uniform gradient d_i v_j of the background: one row per direction i of change. A wave for which the
             flow along k changes does not exist; `plane_wave` refuses it.
+        unit : str, optional
+            As in `scalar`.
         latex : str, optional
             How to print the name in LaTeX (it is set bold).
 
@@ -174,13 +215,21 @@ class FluidModel:
         ------
         DeclarationError
             When the name is taken, or the background does not fit the axes.
+        UnitError
+            As in `scalar`.
         """
         name = self._new_name(name)
         value, slope = self._vector(name, background), self._tensor(name, gradient)
-        return self._declare(Field(name, 1, value, slope, latex_name=latex))
+        return self._declare(Field(name, 1, value, slope, latex_name=latex), unit)
 
     def tensor(
-        self, name: str, background: Any = 0, *, symmetric: bool = True, latex: str | None = None
+        self,
+        name: str,
+        background: Any = 0,
+        *,
+        symmetric: bool = True,
+        unit: str | None = None,
+        latex: str | None = None,
     ) -> Field:
         """Declare a rank-2 tensor field.
 
@@ -191,6 +240,8 @@ class FluidModel:
             One row per axis; entries as in `scalar`.
         symmetric : bool, default True
             Whether the tensor equals its transpose: six unknowns in three axes instead of nine.
+        unit : str, optional
+            As in `scalar`.
         latex : str, optional
 
         Returns
@@ -201,6 +252,8 @@ class FluidModel:
         ------
         DeclarationError
             When the name is taken, or the background does not fit the axes or the symmetry.
+        UnitError
+            As in `scalar`.
         """
         name = self._new_name(name)
         value = self._tensor(name, background)
@@ -208,11 +261,65 @@ class FluidModel:
             size = range(len(self.axes))
             if any(value.entry((i, j)) != value.entry((j, i)) for i in size for j in size):
                 raise DeclarationError(f"tensor '{name}': the background is not symmetric")
-        return self._declare(Field(name, 2, value, symmetric=symmetric, latex_name=latex))
+        return self._declare(Field(name, 2, value, symmetric=symmetric, latex_name=latex), unit)
 
-    def _declare(self, field: Field) -> Field:
+    def _declare(self, field: Field, unit: str | None) -> Field:
+        with self._units_as_before():
+            if unit is not None:
+                field = self._in_unit(field, read_unit(unit))
+            mine = {field.name: Fraction(1)}
+            where, named = f"field '{field.name}'", f"the field {field.name}"
+            slope = has_dimension(
+                where, field.gradient, per_length(mine), f"the gradient of {named}"
+            )
+            self._dimensions = self._dimensions.require(
+                (*has_dimension(where, field.background, mine, named), *slope)
+            )
         self._fields[field.name] = field
         return field
+
+    # Units -------------------------------------------------------------------------------------
+
+    @contextmanager
+    def _units_as_before(self) -> Iterator[None]:
+        """Takes back the units of a declaration that fails."""
+        before = self._dimensions, dict(self._units)
+        try:
+            yield
+        except UnitError:
+            self._dimensions, self._units = before
+            raise
+
+    def _in_unit(self, field: Field, unit: Unit) -> Field:
+        """A field whose numbers are in its unit, and so are the names that declare no unit of their own."""
+        args = list(field.__getnewargs__())
+        for place, own in ((2, unit), (3, read_unit(f"({unit})/m"))):
+            args[place] = self._numbers_in(own, field.name, args[place])
+        self._set_unit(field.name, unit)
+        return Field(*args)
+
+    def _numbers_in(self, unit: Unit, owner: str, value: Expr) -> Expr:
+        if isinstance(value, Components | Tuple):
+            return value.func(*(self._numbers_in(unit, owner, a) for a in value.args))
+        factor, rest = value.as_coeff_Mul()
+        if rest == 1:
+            return factor * Rational(unit.scale.numerator, unit.scale.denominator)
+        if isinstance(rest, Symbol) and rest.name not in self._units:
+            self._name_in(unit, owner, rest.name)
+        return value
+
+    def _name_in(self, unit: Unit, owner: str, name: str) -> None:
+        if self._parameters[name].implied:
+            self._set_unit(name, unit)
+        elif unit.scale != 1:
+            raise UnitError(
+                f"'{owner}' is in {unit}, but '{name}', of its background, declares no unit and so counts in SI; "
+                f"declare it first: model.parameter({name!r}, unit={unit.text!r})"
+            )
+
+    def _set_unit(self, name: str, unit: Unit, *, check: bool = True) -> None:
+        self._dimensions = self._dimensions.declare(name, unit.dimension, check=check)
+        self._units[name] = unit
 
     def _new_name(self, name: str) -> str:
         if not str(name).isidentifier() or name.startswith("_"):
@@ -265,7 +372,14 @@ class FluidModel:
 
     # Parameters --------------------------------------------------------------------------------
 
-    def parameter(self, name: str, *, positive: bool = False, value: float | None = None) -> Symbol:
+    def parameter(
+        self,
+        name: str,
+        *,
+        positive: bool = False,
+        unit: str | None = None,
+        value: Any = None,
+    ) -> Symbol:
         """Declare a real parameter.
 
         Parameters
@@ -273,8 +387,11 @@ class FluidModel:
         name : str
         positive : bool, default False
             Whether it is known to be positive; a number that is not is then refused.
-        value : float, optional
-            A default number in SI units, used where `values` gives none.
+        unit : str, optional
+            Such as "eV", "cm**-3", "GHz". Plain numbers for this parameter are in this unit, here and in `values`;
+            without it they are SI. Temperatures in the equations are energies.
+        value : float or quantity, optional
+            A default number in this unit, used where `values` gives none.
 
         Returns
         -------
@@ -284,18 +401,48 @@ class FluidModel:
         ------
         DeclarationError
             When the name is taken by a field or by a parameter declared otherwise.
+        UnitError
+            When the unit cannot be read, or contradicts another unit or a law.
+
+        Examples
+        --------
+        >>> import plasmalin as plin
+        >>> model = plin.FluidModel("warm", axes="x")
+        >>> T = model.parameter("T_e", positive=True, unit="eV", value=2.0)
+        >>> model.values
+        {'T_e': 2.0}
         """
+        made = None if unit is None else read_unit(unit)
         known = self._parameters.get(name)
         if known is None:
             self._new_name(name)
         elif not known.implied and bool(known.symbol.is_positive) != positive:
             raise DeclarationError(f"the parameter '{name}' is declared already, otherwise")
         symbol = Symbol(name, positive=True) if positive else Symbol(name, real=True)
-        number = value if value is not None else (known.value if known else None)
+        own = made or self._units.get(name)
+        number = None if value is None else plain_number(name, value, own)
+        if value is None and known:
+            number = self._moved(name, known.value, made)
+        if made is not None:
+            self._refuse_other(name, made)
+            self._set_unit(name, made)
         self._parameters[name] = Parameter(symbol, number)
         return symbol
 
-    def parameters(self, names: str | Iterable[str], *, positive: bool = False) -> Any:
+    def _moved(self, name: str, number: float | None, unit: Unit | None) -> float | None:
+        """A number that was given before, in the unit that is declared now."""
+        before = self._units.get(name)
+        scale = (before.scale if before else 1) / unit.scale if unit else Fraction(1)
+        return number if number is None or scale == 1 else float(Fraction(number) * scale)
+
+    def _refuse_other(self, name: str, unit: Unit) -> None:
+        before = self._units.get(name)
+        if before is not None and before.dimension != unit.dimension:
+            raise UnitError(f"'{name}' is in {before} already, and {unit} is another dimension")
+
+    def parameters(
+        self, names: str | Iterable[str], *, positive: bool = False, unit: str | None = None
+    ) -> Any:
         """Declare several parameters: ``n0, T = model.parameters("n_0 T_e", positive=True)``.
 
         Parameters
@@ -303,6 +450,8 @@ class FluidModel:
         names : str or iterable of str
             Names separated by spaces or commas.
         positive : bool, default False
+        unit : str, optional
+            The one unit of them all.
 
         Returns
         -------
@@ -315,11 +464,11 @@ class FluidModel:
             As `parameter`.
         """
         listed = names.replace(",", " ").split() if isinstance(names, str) else list(names)
-        made = tuple(self.parameter(name, positive=positive) for name in listed)
+        made = tuple(self.parameter(name, positive=positive, unit=unit) for name in listed)
         return made[0] if len(made) == 1 else made
 
     def constants(self, names: str | Iterable[str]) -> Any:
-        """Declare constants of nature; their CODATA numbers come with them.
+        """Declare constants of nature; their CODATA numbers and SI units come with them.
 
         Parameters
         ----------
@@ -336,10 +485,18 @@ class FluidModel:
             When a name is not a known constant.
         """
         listed = names.replace(",", " ").split() if isinstance(names, str) else list(names)
-        made = tuple(self.parameter(n, positive=True, value=codata(n)) for n in listed)
+        made = tuple(self._constant(name) for name in listed)
         return made[0] if len(made) == 1 else made
 
-    def vector_parameter(self, name: str, entries: Any) -> Expr:
+    def _constant(self, name: str) -> Symbol:
+        number, unit = Fraction(codata(name)), read_unit(UNITS[name])
+        self._refuse_other(name, unit)
+        own = self._units.get(name, unit)
+        symbol = self.parameter(name, positive=True, value=float(number / own.scale))
+        self._set_unit(name, own, check=False)
+        return symbol
+
+    def vector_parameter(self, name: str, entries: Any, *, unit: str | None = None) -> Expr:
         """Declare a constant vector: ``g = model.vector_parameter("g", (0, 0, "-g_0"))``.
 
         Parameters
@@ -348,6 +505,8 @@ class FluidModel:
             The name by which laws in text refer to it.
         entries : tuple
             One entry per axis: a number, a name or an expression in parameters.
+        unit : str, optional
+            Of every entry; names that declare no unit are in this unit.
 
         Returns
         -------
@@ -358,10 +517,21 @@ class FluidModel:
         ------
         DeclarationError
             When the name is taken or the entries do not fit the axes.
+        UnitError
+            When the unit cannot be read, or an entry has another.
         """
         name = self._new_name(name)
-        self._vectors[name] = self._vector(name, entries)
-        return self._vectors[name]
+        vector = self._vector(name, entries)
+        if unit is not None:
+            made = read_unit(unit)
+            form = of_dimension(made.dimension)
+            with self._units_as_before():
+                self._numbers_in(made, name, vector)
+                _refuse_numbers(name, vector, made)
+                required = has_dimension(f"vector '{name}'", vector, form, f"the vector {name}")
+                self._dimensions = self._dimensions.require(required)
+        self._vectors[name] = vector
+        return vector
 
     def _imply(self, name: str) -> Expr:
         """A background names a parameter that is not declared yet."""
@@ -396,6 +566,8 @@ class FluidModel:
         DeclarationError
             When the name or the law is there already, a symbol is not declared, no field is in the law,
             or a cross product or curl leaves the model's axes.
+        UnitError
+            When units are declared and two terms have different ones; what declares none is left open.
         """
         if name in self._laws:
             raise DeclarationError(f"a law '{name}' is declared already; choose another name")
@@ -403,6 +575,8 @@ class FluidModel:
             law = self._made_law(name, lhs, rhs)
         except RankError as error:
             raise RankError(f"law '{name}': {error}") from None
+        needed = requirements(f"law '{name}'", law.lhs, law.rhs)
+        self._dimensions = self._dimensions.require(needed)
         self._laws[name] = law
         return law
 
@@ -456,6 +630,7 @@ class FluidModel:
         if name not in self._laws:
             raise DeclarationError(f"no law '{name}'; there are: {', '.join(self._laws)}")
         del self._laws[name]
+        self._dimensions = self._dimensions.forget(f"law '{name}'")
 
     def _current_law(self, law: Law) -> Law:
         return Law(law.name, self._canonical(law.lhs), self._canonical(law.rhs), law.rank)
@@ -552,6 +727,16 @@ def _outside_multipliers(expr: Expr) -> Expr:
     if isinstance(expr, Multiplier):
         return _outside_multipliers(expr.args[0])
     return Add(*(_outside_multipliers(a) for a in expr.args if isinstance(a, Expr)))
+
+
+def _refuse_numbers(name: str, vector: Expr, unit: Unit) -> None:
+    """A vector is written out in the laws, where a number no longer shows its unit."""
+    bare = [a for a in vector.args if a.is_number and a != 0]
+    if bare and unit.dimension != NONE:
+        raise UnitError(
+            f"the vector '{name}' in {unit} has the entry {bare[0]}; name it with a parameter of that unit, "
+            f"as in model.vector_parameter({name!r}, (0, 0, '-{name}_0'), unit={unit.text!r})"
+        )
 
 
 def _sequence(given: Any) -> bool:

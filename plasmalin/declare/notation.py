@@ -93,8 +93,15 @@ def _primitive(entries: list[Any]) -> tuple[Any, list[Any]]:
 
 
 def name_text(name: str) -> str:
-    """A name with its Greek letters: omega_pe becomes ω_pe."""
-    return "_".join(GREEK_LETTER.get(part, part) for part in name.split("_"))
+    """A name with its Greek letters: omega_pe becomes ω_pe, and khat becomes k̂."""
+    return "_".join(_letter(part) for part in name.split("_"))
+
+
+def _letter(part: str) -> str:
+    stem = part.removesuffix("hat")
+    mark = "\u0302" if stem and stem != part else ""
+    plain = stem if mark else part
+    return unicodedata.normalize("NFC", GREEK_LETTER.get(plain, plain) + mark)
 
 
 def term_order(term: Expr) -> tuple[int, str]:

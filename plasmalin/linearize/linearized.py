@@ -10,9 +10,11 @@ from typing import TYPE_CHECKING, Any, cast
 
 from sympy import Add, Eq, Expr, Symbol
 
+from ..declare.dimensions import Dimensions
 from ..declare.fields import Field, Perturbation
 from ..declare.model import FluidModel, Law
 from ..declare.notation import latex, paper
+from ..declare.units import Unit
 from ..errors import DeclarationError, UndeterminedError
 from ..exact.matching import maximum_matching
 from .background import Equilibrium, balance, conditions
@@ -63,7 +65,11 @@ class LinearizedModel:
     symbols : mapping of str to Symbol
         The parameters by name.
     defaults : mapping of str to float
-        Default numbers, SI.
+        Default numbers, each in the unit that its parameter declares (SI without one).
+    units : mapping of str to Unit
+        The declared units of parameters and fields.
+    dimensions : Dimensions
+        What is declared, and what the laws require of the rest.
     ledger : Ledger
         Every piece of every term: order, fate, reason.
     background : Equilibrium
@@ -76,6 +82,8 @@ class LinearizedModel:
     laws: Mapping[str, Law]
     symbols: Mapping[str, Symbol]
     defaults: Mapping[str, float]
+    units: Mapping[str, Unit]
+    dimensions: Dimensions
     ledger: Ledger
     background: Equilibrium
 
@@ -201,6 +209,8 @@ def linearize(model: FluidModel, assume: tuple[str, ...] = ()) -> LinearizedMode
         laws,
         model.symbols,
         model.values,
+        model.units,
+        model.dimensions,
         whole,
         background,
     )

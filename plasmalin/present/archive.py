@@ -36,16 +36,18 @@ def header(branches: Branches) -> dict[str, object]:
     from .. import __version__
 
     linear, numbers = branches.wave.linear, branches.numbers
+    scales = {name: unit.scale for name, unit in linear.units.items()}
     return {
         "plasmalin": __version__,
         "title": linear.title,
         "convention": CONVENTION,
-        "units": "SI, omega in rad/s",
+        "units": "SI, or as in parameter_units; omega in rad/s",
         "laws": {name: str(law) for name, law in linear.laws.items()},
         "backgrounds": {n: str(f.background) for n, f in linear.fields.items()},
         "wave_vector": [str(c) for c in branches.wave.k],
         "varies": branches.name,
-        "values": {s.name: float(v) for s, v in numbers.fixed.items()},
+        "values": {s.name: float(v / scales.get(s.name, 1)) for s, v in numbers.fixed.items()},
+        "parameter_units": {n: u.text for n, u in linear.units.items() if n in linear.symbols},
         "solved": {s.name: str(e) for s, e in numbers.solved.items()},
         "method": branches.method,
     }

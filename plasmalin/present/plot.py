@@ -48,9 +48,12 @@ def _axes() -> Any:
 
 def _dress(branches: Branches, upper: Any, lower: Any, scale: float) -> None:
     s = branches.along[np.isfinite(branches.along)]
+    declared = branches.wave.linear.units.get(branches.name)
     unit = (
         " (rad/m)"
         if branches.name in {k.name for k in branches.wave.wave_symbols if "k" in k.name}
+        else f" ({declared})"
+        if declared
         else ""
     )
     if len(s) and s.min() > 0 and s.max() > WIDE * s.min():

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
+from fractions import Fraction
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
@@ -17,7 +18,7 @@ from .polarization import null_vectors
 from .slopes import ScaledFamily
 from .solve import Problem, grid_of, pose, rates_of
 from .tracking import Event, track
-from .values import Numbers, gather, with_defaults
+from .values import Numbers, gather, scaled, to_si, with_defaults
 
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
@@ -32,7 +33,7 @@ class Branches:
     name : str
         What varies.
     along : ndarray of float64, shape (n,)
-        Its values; rad/m for a wave number.
+        Its values; rad/m for a wave number, for a parameter in the unit that it declares.
     omega : ndarray of complex128, shape (branch, n), rad/s
     radius : ndarray of float64, shape (branch, n), rad/s
         Proven error bounds.
@@ -203,17 +204,32 @@ def find_branches(
     given = {key.name if isinstance(key, Symbol) else key for key in values} | set(waves)
     if name in given:
         raise ValuesError(f"'{name}' is what varies; leave it out of the other values")
-    points = np.asarray(along, dtype=float)
+    number, factor = to_si(wave, name, along)
+    points = scaled(np.asarray(number, dtype=float), factor)
     if points.ndim != 1 or not len(points):
         raise ValuesError(
             f"the values of '{name}' have shape {points.shape}; give one dimension, not empty"
         )
-    numbers = gather(wave, with_defaults(wave, {**values, name: points}), waves)
+    numbers = gather(wave, with_defaults(wave, {**values, name: along}), waves)
     if numbers.shape != points.shape or len(numbers.swept) > 1 + _complex_scalars(numbers, name):
         raise ValuesError(
             "only one quantity varies along branches; give single numbers for the others"
         )
-    return _Sweep(wave, pose(wave, numbers), numbers, name).branches(points, zero_modes)
+    found = _Sweep(wave, pose(wave, numbers), numbers, name).branches(points, zero_modes)
+    unit = wave.linear.units.get(name)
+    if unit is None or unit.scale == 1:
+        return found
+    return _in_unit(found, scaled(np.asarray(number, float), factor / unit.scale), unit.scale)
+
+
+def _in_unit(branches: Branches, along: NDArray[np.float64], scale: Fraction) -> Branches:
+    """What varies, and the slopes along it, in a unit that is `scale` SI units."""
+    return replace(
+        branches,
+        along=along,
+        slope=branches.slope * float(scale),
+        events=tuple(replace(e, at=e.at / float(scale)) for e in branches.events),
+    )
 
 
 def _complex_scalars(numbers: Numbers, name: str) -> int:

@@ -14,6 +14,7 @@ from numpy.typing import NDArray
 from sympy import Expr, Symbol
 
 from ..declare.operators import WAVE_SYMBOLS
+from ..declare.quantities import in_si
 from ..errors import BackgroundError, ValuesError
 from ..exact.rational import exact_rational
 
@@ -74,18 +75,47 @@ def gather(wave: WaveMatrix, values: Mapping[Any, Any], waves: Mapping[str, Any]
     """
     symbols = {**wave.linear.symbols, **{s.name: s for s in wave.wave_symbols}}
     given = _given(symbols, values, waves)
-    arrays = {symbols[n]: _array(n, v, symbols[n] in wave.wave_symbols) for n, v in given.items()}
+    plain = {n: to_si(wave, n, v) for n, v in given.items()}
+    arrays = {
+        symbols[n]: _array(n, v, symbols[n] in wave.wave_symbols) for n, (v, _) in plain.items()
+    }
     shape = _broadcast(arrays)
     fixed, swept = {}, {}
     for symbol, array in arrays.items():
+        scale = plain[symbol.name][1]
         if array.ndim == 0 and not np.iscomplexobj(array):
-            fixed[symbol] = exact_rational(float(array))
+            fixed[symbol] = exact_rational(float(array)) * scale
         else:
-            swept[symbol] = np.broadcast_to(array, shape)
+            swept[symbol] = np.broadcast_to(scaled(array, scale), shape)
     solved = _solve_missing(wave, set(arrays))
     numbers = Numbers(fixed, swept, solved, shape)
     _check_conditions(wave, numbers)
     return numbers
+
+
+def to_si(wave: WaveMatrix, name: str, value: Any) -> tuple[Any, Fraction]:
+    """A value as a plain number or array, and the exact factor that takes it to SI.
+
+    A plain number is in the unit that the parameter declares, SI where it declares none; a quantity with a unit
+    is in its own.
+
+    Raises
+    ------
+    UnitError
+        When a quantity does not have the dimension that the parameter has.
+    """
+    unit = wave.linear.units.get(name)
+    needed = None
+    if unit is None and not isinstance(value, int | float):
+        needed = wave.dimensions.of(name)
+    return in_si(name, value, unit, needed)
+
+
+def scaled(array: NDArray[Any], scale: Fraction) -> NDArray[Any]:
+    """An array times an exact factor, with one rounding where the factor or its inverse is a whole number."""
+    if scale == 1:
+        return array
+    return array / float(1 / scale) if scale.numerator == 1 else array * float(scale)
 
 
 def _given(

@@ -50,7 +50,7 @@ def by_powers(polynomial: ExactPolynomial) -> str:
     """Text with the highest power of omega first."""
     out = ""
     for power, c in printed_coefficients(polynomial).items():
-        term = _term_text(c, power)
+        term = _term_text(c, polynomial.main, power)
         joint = (
             (" − " if term.startswith("−") else " + ")
             if out
@@ -60,13 +60,13 @@ def by_powers(polynomial: ExactPolynomial) -> str:
     return out
 
 
-def _term_text(coefficient: Expr, power: int) -> str:
-    unit, text = paper(Symbol("omega") ** power), paper(coefficient)
+def _term_text(coefficient: Expr, main: Symbol, power: int) -> str:
+    unit, text = paper(main**power), paper(coefficient)
     if power == 0:
         return text
     if isinstance(coefficient, Add):
         return f"({text}) {unit}"
     if not coefficient.has(Add):
-        return paper(coefficient * Symbol("omega") ** power)
+        return paper(coefficient * main**power)
     sign, size = ("−", text[1:]) if text.startswith("−") else ("", text)
     return f"{sign}({size}) {unit}" if "/" in size else f"{sign}{size} {unit}"

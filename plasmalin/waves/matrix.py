@@ -3,17 +3,21 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
+from contextlib import suppress
 from dataclasses import dataclass
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
 from sympy import Expr, ImmutableDenseMatrix, Symbol, cos, expand, sin
 
+from ..declare.dimensions import Dimensions
 from ..declare.fields import Field, decorated
+from ..declare.forms import has_dimension, of_dimension
 from ..declare.notation import paper
 from ..declare.operators import WAVE_SYMBOLS, Advect, Div, omega
 from ..declare.reader import read_expression
-from ..errors import BackgroundError, DeclarationError, UndeterminedError
+from ..declare.units import dimension
+from ..errors import BackgroundError, DeclarationError, UndeterminedError, UnitError
 from ..linearize.ledger import KEPT
 from ..linearize.linearized import LinearizedModel, symmetric_law
 from .equation import WaveEquation, wave_equation
@@ -91,6 +95,28 @@ class WaveMatrix:
         """The symbols of the wave vector (k, or k_x, k_z, theta ...), sorted by name."""
         found = {s for c in self.k for s in c.free_symbols} - set(self.linear.symbols.values())
         return tuple(sorted(found, key=lambda s: s.name))
+
+    @cached_property
+    def dimensions(self) -> Dimensions:
+        """The dimensions of the parameters, and of the wave's own symbols: components of k are in 1/m."""
+        found = self.linear.dimensions
+        return self._with_wave(found if found.active else Dimensions(found.declared, active=True))
+
+    @property
+    def all_dimensions(self) -> Dimensions:
+        """`dimensions` with the laws' requirements, also where no unit is declared and they are not checked yet."""
+        found = self.linear.dimensions
+        return self.dimensions if found.active else self._with_wave(found)
+
+    def _with_wave(self, found: Dimensions) -> Dimensions:
+        per_meter = of_dimension(dimension(-1))
+        for s in set(self.wave_symbols) & set(WAVE_SYMBOLS):
+            found = found.declare(s.name, dimension(-1), check=False)
+        for c in self.k:
+            with suppress(UnitError):  # a component with a number in it, "k + 1", tells nothing
+                needed = has_dimension("the wave vector", c, per_meter, "k")
+                found = found.require(needed if c.free_symbols & set(self.wave_symbols) else ())
+        return found
 
     @cached_property
     def matrix(self) -> ImmutableDenseMatrix:
@@ -204,7 +230,8 @@ class WaveMatrix:
         Parameters
         ----------
         values : mapping of str to number or array, optional
-            Parameter values, SI; defaults and constants need not be repeated.
+            Parameter values, plain numbers in the unit that the parameter declares (SI without one), or quantity
+            objects with a unit; defaults and constants need not be repeated.
         zero_modes : bool, default False
             Keyword. Whether to keep the identically zero modes.
         workers : int or map-like callable, default 1
@@ -221,6 +248,8 @@ class WaveMatrix:
         ------
         ValuesError
             For an unknown or missing name, a number that is not finite, shapes that do not broadcast.
+        UnitError
+            When a quantity object has another dimension than its parameter.
         BackgroundError
             When the values break a condition of the background.
 
@@ -245,6 +274,7 @@ class WaveMatrix:
         name : str
             What varies: a wave number or any parameter.
         along : array_like, shape (n,)
+            Rad/m for a wave number; for a parameter in the unit that it declares, SI without one.
         values : mapping of str to number, optional
         **waves : number
             The other wave numbers, by name.

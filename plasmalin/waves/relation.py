@@ -10,7 +10,8 @@ from typing import TYPE_CHECKING, Any
 
 from sympy import Add, Expr, Poly, Symbol, latex, sympify
 
-from ..declare.notation import SUPERSCRIPT
+from ..declare.dimensions import Dimensions
+from ..declare.notation import SUPERSCRIPT, paper
 from ..errors import DeclarationError, UndeterminedError
 from ..exact.determinant import determinant, underdetermined_block
 from ..exact.polynomial import ExactPolynomial
@@ -20,6 +21,7 @@ from .ordering import LeadingBalance, leading_balances
 
 if TYPE_CHECKING:
     from .matrix import WaveMatrix
+    from .scales import NormalizedRelation
 
 LONGEST_LATEX = 4000
 
@@ -64,9 +66,15 @@ class Relation:
         Primitive in omega, integer (or Gaussian integer) coefficients in the parameters.
     """
 
-    def __init__(self, exact: ExactPolynomial, symbols: Mapping[str, Symbol]) -> None:
+    def __init__(
+        self,
+        exact: ExactPolynomial,
+        symbols: Mapping[str, Symbol],
+        dimensions: Dimensions | None = None,
+    ) -> None:
         self.exact = exact
         self._symbols = dict(symbols)
+        self._dimensions = dimensions or Dimensions({})
 
     @property
     def zero_modes(self) -> int:
@@ -116,7 +124,7 @@ class Relation:
         replaced = self.exact.substitute(made)
         if replaced.degree < 0:
             raise UndeterminedError("with these values the relation vanishes identically")
-        return Relation(replaced.primitive()[1], self._symbols)
+        return Relation(replaced.primitive()[1], self._symbols, self._dimensions)
 
     def _symbol(self, key: Any) -> Any:
         if not isinstance(key, str):
@@ -197,12 +205,50 @@ class Relation:
                 weights[self._symbol(key)] = exact_rational(order)
         return leading_balances(self.exact, weights, fixed)
 
+    def normalise(
+        self, *, time: str, length: str, where: Mapping[str, str] | None = None
+    ) -> NormalizedRelation:
+        """The relation in chosen scales, its parameters collected into dimensionless groups; exact.
+
+        Parameters
+        ----------
+        time, length : str
+            The scales in the model's names and those of `where`: "1/omega_pe", "lambda_De". A new bare name as
+            `length` is a reference length, for laws that have none of their own.
+        where : mapping of str to str, optional
+            Definitions, each in the model's names and those before it.
+
+        Returns
+        -------
+        NormalizedRelation
+            ``.expr``, ``.polynomial``, ``.groups`` (symbol -> expression in the parameters), ``.waves``.
+
+        Raises
+        ------
+        UnitError
+            When a scale does not have the dimension of a time or a length, or a symbol of the relation has no unit.
+        ReadError
+            When a text cannot be read, or holds a name that is not known.
+
+        Examples
+        --------
+        >>> import plasmalin as plin
+        >>> m_e, m_p = plin.constants.m_e, plin.constants.m_p
+        >>> plasma = plin.mixture(
+        ...     [plin.Species("e", -1, m_e, 1e16, temperature_eV=2.0), plin.Species("i", 1, m_p, 1e16)], axes="x")
+        >>> relation = plasma.linearize().plane_wave("x").relation.substitute({"n_i0": plasma.symbols["n_e0"]})
+        >>> where = {"omega_pe": "sqrt(n_e0*e^2/(epsilon_0*m_e))", "lambda_De": "sqrt(epsilon_0*T_e/(n_e0*e^2))"}
+        >>> relation.normalise(time="1/omega_pe", length="lambda_De", where=where).groups
+        {mu: m_e/m_i, gamma_e: gamma_e}
+        """
+        from .scales import normalized
+
+        return normalized(self, self._symbols, self._dimensions, time, length, where or {})
+
     def __str__(self) -> str:
         lines = [str(f) for f in self.factors if f.polynomial.lowest == 0]
         if self.zero_modes:
-            power = (
-                "ω" if self.zero_modes == 1 else f"ω{str(self.zero_modes).translate(SUPERSCRIPT)}"
-            )
+            power = paper(self.exact.main**self.zero_modes)
             plural = "" if self.zero_modes == 1 else "s"
             lines.append(f"{power} = 0: {self.zero_modes} zero mode{plural}")
         return "\n".join(lines)
@@ -266,7 +312,7 @@ def derive_relation(wave: WaveMatrix) -> Relation:
             "no unknown changes in time: omega does not occur in the determinant; "
             "a law with a time derivative is missing"
         )
-    return Relation(exact.primitive()[1], wave.linear.symbols)
+    return Relation(exact.primitive()[1], wave.linear.symbols, wave.all_dimensions)
 
 
 def undetermined_message(wave: WaveMatrix) -> str:

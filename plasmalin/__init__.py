@@ -33,6 +33,7 @@ from .declare.operators import partial_t as partial_t
 from .declare.operators import trace as trace
 from .declare.operators import transpose as transpose
 from .errors import BackgroundError as BackgroundError
+from .errors import ConstraintError as ConstraintError
 from .errors import DeclarationError as DeclarationError
 from .errors import ModelFileError as ModelFileError
 from .errors import NonPolynomialError as NonPolynomialError
@@ -79,6 +80,7 @@ __all__ = [
     "ReadError",
     "ModelFileError",
     "BackgroundError",
+    "ConstraintError",
     "UndeterminedError",
     "NonPolynomialError",
     "ValuesError",

@@ -25,13 +25,14 @@ JOULE_PER = {"eV": 1.0, "keV": 1e3, "MeV": 1e6}
 """Energies are given in these units times the elementary charge."""
 
 KEYS: dict[str, set[str]] = {
-    "file": {"model", "scalar", "vector", "tensor", "parameters", "vector_parameter", "law", "wave", "sweep", "claim"},
+    "file": {"model", "scalar", "vector", "tensor", "parameters", "vector_parameter", "law", "constraint", "wave", "sweep", "claim"},
     "[model]": {"title", "axes", "constants", "assume"},
     "[[scalar]]": {"name", "background", "latex"},
     "[[vector]]": {"name", "background", "latex"},
     "[[tensor]]": {"name", "background", "latex", "symmetric"},
     "[[vector_parameter]]": {"name", "entries"},
     "[[law]]": {"name", "text"},
+    "[[constraint]]": {"name", "text"},
     "[wave]": {"direction", "angle"},
     "[parameters] entry": {"value", "unit", "positive"},
     "[sweep] entry": {"from", "to", "points", "spacing"},
@@ -168,9 +169,10 @@ def _built(data: dict[str, Any]) -> ModelFile:
         _known(entry, "[[vector_parameter]]")
         entries = _plain(entry.get("entries"))
         model.vector_parameter(_text(entry, "name", "[[vector_parameter]]"), entries)
-    for entry in _list(data, "law"):
-        _known(entry, "[[law]]")
-        model.law(_text(entry, "name", "[[law]]"), _text(entry, "text", "[[law]]"))
+    for kind, add in (("law", model.law), ("constraint", model.constraint)):
+        for entry in _list(data, kind):
+            _known(entry, f"[[{kind}]]")
+            add(_text(entry, "name", f"[[{kind}]]"), _text(entry, "text", f"[[{kind}]]"))
     assume = head.get("assume", [])
     if not isinstance(assume, list) or any(not isinstance(n, str) for n in assume):
         raise ModelFileError("[model] assume: give a list of law names")
@@ -342,8 +344,10 @@ def model_text(model: FluidModel) -> str:
             f"name = {_quoted(name)}",
             f"entries = {_value(vector)}",
         ]
-    for law in model.laws.values():
-        lines += ["", "[[law]]", f"name = {_quoted(law.name)}", f"text = {_quoted(str(law))}"]
+    for kind, laws in (("law", model.laws), ("constraint", model.constraints)):
+        for law in laws.values():
+            lines += ["", f"[[{kind}]]", f"name = {_quoted(law.name)}"]
+            lines += [f"text = {_quoted(str(law))}"]
     return "\n".join(lines) + "\n"
 
 

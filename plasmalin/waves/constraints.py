@@ -266,8 +266,8 @@ def _closed(wave: WaveMatrix, form: Row, by_law: Mapping[str, Terms]) -> str:
     if not found:
         return ""
     return (
-        f" What violates it is itself a wave, ω = {paper(expand(I * found[0]))}: write the term so that it drops out, "
-        "-curl(eta*curl(B)) for eta*laplacian(B)."
+        f" Once zero it stays zero, but ω = {paper(expand(I * found[0]))} is a wave that violates it; write the law so that "
+        "this drops out, such as -curl(eta*curl(B)) for eta*laplacian(B)."
     )
 
 

@@ -381,3 +381,18 @@ def test_the_written_derivation_shows_the_proof(tmp_path):
     assert "## Constraints" in text
     assert "ω [Gauss] = " in text
     assert "zero modes, 1 more that a constraint forbids" in text
+
+
+def test_a_memory_closure_beside_it():
+    """Rows with a denominator in omega; and a law that is such a factor times another one."""
+    for factor in (lambda x: x, lambda x: plin.multiplier(x, 1 / (plin.omega + 2 * sympy.I))):
+        model = plin.FluidModel("light with memory")
+        electric, magnetic = model.vector("E"), model.vector("B")
+        nu = model.parameter("nu", positive=True)
+        memory = plin.multiplier(electric, 1 / (plin.omega + sympy.I * nu))
+        model.law("Faraday", factor(partial_t(magnetic) + curl(electric)))
+        model.law("Ampere", partial_t(electric), curl(magnetic) - memory)
+        model.constraint("no monopoles", div(magnetic))
+        wave = wave_of(model)
+        assert wave.forbidden_modes == 1
+        assert error_of_the_identity(wave, wave.constraints[0]) < 1e-12

@@ -1,5 +1,7 @@
 """Labels of modes against the modes that are known: sound, entropy, vorticity, div B, Gauss."""
 
+import pickle
+
 import numpy as np
 import published
 import published_more
@@ -311,3 +313,15 @@ def test_labels_cost_nothing_until_they_are_wanted(monkeypatch):
     assert len(wave.branches("k", [1.0, 2.0], values)) == 5
     with pytest.raises(AssertionError, match="not asked"):
         _ = wave.relation.factors
+
+
+def test_relations_survive_pickling():
+    relation = gas().plane_wave("x").relation
+    again = pickle.loads(pickle.dumps(relation))
+    assert told(again) == told(relation)
+
+
+def test_an_angle_given_as_a_number():
+    wave = mhd(lambda v, b, eta: advect(b, v) - b * div(v)).linear.plane_wave(angle="theta")
+    relation = wave.relation.substitute({"theta": 0.3, "B_0": 0.7})
+    assert relation.zero_mode_labels == {"constraint": 1, "entropy": 1}

@@ -141,7 +141,7 @@ def _commons(
 def holds_off_zero(rows: Sequence[Row], main: sp.Symbol, extra: Sequence[Row]) -> bool | None:
     """Whether every solution with main ≠ 0 satisfies further rows; None where the matrix is singular.
 
-    False is proven by the point itself, at which every known relation holds; True only very probable.
+    Both answers are right but for a negligible chance. Roots at which an entry has a pole are not looked at.
     """
     size = len(rows)
     sample = Sample([*rows, *extra], main)
@@ -149,6 +149,9 @@ def holds_off_zero(rows: Sequence[Row], main: sp.Symbol, extra: Sequence[Row]) -
     if not whole:
         return None
     rest = whole // sample.common(size, range(size, size + len(extra)))
+    for bottom in sample.bottoms:
+        while (shared := rest.gcd(bottom)).degree() > 0:
+            rest = rest // shared
     return bool(rest.degree() == _lowest(rest))
 
 

@@ -141,7 +141,11 @@ def _broken(wave: WaveMatrix, law: str, form: Row) -> ConstraintError:
     by_law = _leftover(wave, form)
     guilty = _guilty(by_law) if by_law else _laws_that_hold(wave, form)
     said = _said(wave, form, by_law, guilty) if by_law else _unsaid(wave, form, guilty)
-    return ConstraintError(f"constraint '{law}' is not preserved: {said}", law, tuple(guilty))
+    idle = [c for c in wave.linear.conditions if c not in eliminated(wave.linear.conditions)[1]]
+    unused = "".join(f". The condition {paper(c.lhs)} = 0 could not be used" for c in idle)
+    return ConstraintError(
+        f"constraint '{law}' is not preserved: {said}{unused}", law, tuple(guilty)
+    )
 
 
 def _said(wave: WaveMatrix, form: Row, by_law: Mapping[str, Terms], guilty: list[str]) -> str:

@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+from collections.abc import Mapping
 from dataclasses import dataclass
 from fractions import Fraction
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
-from sympy import Add, Expr, Poly, S, Symbol, latex, sympify
+from sympy import Add, Expr, Float, Poly, Rational, S, Symbol, latex, sympify
 
 from ..declare.notation import SUPERSCRIPT, paper
 from ..errors import DeclarationError, UndeterminedError
@@ -67,25 +67,24 @@ class Relation:
     ----------
     exact : ExactPolynomial
         Primitive in omega, integer (or Gaussian integer) coefficients in the parameters.
-    forbidden_modes : int
-        How many zero modes of the determinant violate a declared constraint. `exact`, `polynomial` and `factors` hold
-        them; `zero_modes`, and roots and branches with ``zero_modes=True``, do not.
     """
 
     def __init__(
-        self,
-        exact: ExactPolynomial,
-        symbols: Mapping[str, Symbol],
-        modes: Callable[[], Modes],
-        forbidden_modes: int = 0,
+        self, exact: ExactPolynomial, wave: WaveMatrix, values: Mapping[Any, Any] | None = None
     ) -> None:
-        self.exact, self.forbidden_modes = exact, forbidden_modes
-        self._symbols = dict(symbols)
-        self._find_modes = modes
+        self.exact, self._wave, self._values = exact, wave, dict(values or {})
+
+    @property
+    def forbidden_modes(self) -> int:
+        """How many zero modes of the determinant violate a declared constraint.
+
+        `exact`, `polynomial` and `factors` hold them; `zero_modes`, and roots and branches with ``zero_modes=True``, do not.
+        """
+        return self._wave.forbidden_modes
 
     @cached_property
     def _modes(self) -> Modes:
-        return self._find_modes()
+        return self._wave.modes.put(lambda c: c.xreplace(self._values))
 
     @property
     def zero_modes(self) -> int:
@@ -148,23 +147,19 @@ class Relation:
         UndeterminedError
             When nothing of the relation is left.
         """
-        made = {self._symbol(key): sympify(value, strict=True) for key, value in values.items()}
+        made = {self._symbol(key): _in_rationals(value) for key, value in values.items()}
         replaced = self.exact.substitute(made)
         if replaced.degree < 0:
             raise UndeterminedError("with these values the relation vanishes identically")
-        return Relation(
-            replaced.primitive()[1],
-            self._symbols,
-            lambda: self._modes.put(lambda c: c.xreplace(made)),
-            self.forbidden_modes,
-        )
+        earlier = {s: x.xreplace(made) for s, x in self._values.items()}
+        return Relation(replaced.primitive()[1], self._wave, {**made, **earlier})
 
     def _symbol(self, key: Any) -> Any:
         if not isinstance(key, str):
             return key
         known = {
             **{s.name: s for g in self.exact.generators for s in g.free_symbols},
-            **self._symbols,
+            **self._wave.linear.symbols,
         }
         if key not in known:
             raise DeclarationError(
@@ -276,6 +271,13 @@ class Relation:
         return f"$\\displaystyle {text}$" if len(text) < LONGEST_LATEX else None
 
 
+def _in_rationals(value: Any) -> Expr:
+    """A value as an expression, floats in it as the binary rationals that they are."""
+    made = sympify(value, strict=True)
+    floats = ((x, exact_rational(x)) for x in made.atoms(Float))
+    return made.xreplace({x: Rational(q.numerator, q.denominator) for x, q in floats})
+
+
 def _counted(count: int, labels: Mapping[str, int]) -> str:
     """Zero modes in words, with what they are unless all are waves."""
     told = ", ".join(f"{n} {label}" for label, n in labels.items())
@@ -344,9 +346,7 @@ def derive_relation(wave: WaveMatrix) -> Relation:
             "no unknown changes in time: omega does not occur in the determinant; "
             "a law with a time derivative is missing"
         )
-    return Relation(
-        exact.primitive()[1], wave.linear.symbols, lambda: wave.modes, wave.forbidden_modes
-    )
+    return Relation(exact.primitive()[1], wave)
 
 
 def undetermined_message(wave: WaveMatrix) -> str:

@@ -328,6 +328,23 @@ def test_resistivity_that_keeps_the_divergence():
     assert wave_of(model).forbidden_modes == 1
 
 
+def test_a_local_gradient_is_named_as_the_reason():
+    """n0 changes in div(n v) but not under the divergence of Ampere's current."""
+    model = plin.FluidModel("electrons with a density gradient")
+    e, eps0, c = model.parameters("e epsilon_0 c", positive=True)
+    electric, magnetic = model.vector("E"), model.vector("B")
+    n, v = model.scalar("n", "n_0", gradient=("g", 0, 0)), model.vector("v")
+    model.law("continuity", partial_t(n) + div(n * v))
+    model.law("momentum", partial_t(v), -e * electric)
+    model.law("Faraday", partial_t(magnetic), -curl(electric))
+    model.law("Ampere", partial_t(electric), c**2 * curl(magnetic) + e * n * v / eps0)
+    model.constraint("Gauss", eps0 * div(electric), e * (model.symbols["n_0"] - n))
+    error = refused(model)
+    assert error.laws == ("continuity",)
+    assert "leaves −e g ṽ_x from 'continuity'" in str(error)
+    assert "gradient of a background is local" in str(error)
+
+
 def test_a_field_that_no_law_evolves():
     error = refused(with_gauss(two_fluids(displacement=0)))
     assert "No law gives the time derivative of 'E'" in str(error)

@@ -161,6 +161,20 @@ def electrons_with_a_pressure_law():
     return model
 
 
+def test_a_current_that_is_an_unknown_does_not_hide_gauss():
+    model = plin.FluidModel("cold electrons with their current as a field")
+    e, eps0, c, m, n0 = model.parameters("e epsilon_0 c m n_0", positive=True)
+    electric, magnetic, current = model.vector("E"), model.vector("B"), model.vector("J")
+    n, v = model.scalar("n", n0), model.vector("v")
+    model.law("continuity", partial_t(n) + div(n * v))
+    model.law("momentum", m * (partial_t(v) + advect(v, v)), -e * (electric + cross(v, magnetic)))
+    model.law("current", current, -e * n * v)
+    model.law("Faraday", partial_t(magnetic), -curl(electric))
+    model.law("Ampere", partial_t(electric), c**2 * curl(magnetic) - current / eps0)
+    relation = model.linearize().plane_wave("x").relation
+    assert relation.zero_mode_labels == {"wave": 2, "constraint": 2}  # as without the field J
+
+
 def test_gauss_is_told_from_the_continuity_law_of_its_current():
     """The energy law too has a divergence of a flux, which is not the current's."""
     model = electrons_with_a_pressure_law()

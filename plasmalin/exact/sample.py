@@ -25,6 +25,12 @@ from .ring import Ring
 Row: TypeAlias = Mapping[int, sp.Expr]
 
 
+def put_in(row: Row, values: Mapping[Any, sp.Expr]) -> dict[int, sp.Expr]:
+    """A row with symbols replaced, without its zeros."""
+    filled = {j: c.xreplace(values) for j, c in row.items()} if values else dict(row)
+    return {j: c for j, c in filled.items() if c != 0}
+
+
 class Sample:
     """Rows of expressions at a random point, each row cleared of denominators, its entries polynomials in main.
 

@@ -34,7 +34,7 @@ from ..declare.fields import Field
 from ..declare.model import Law
 from ..declare.operators import Advect, Div, Dot, Grad, PartialT
 from ..exact.combination import row_combination
-from ..exact.sample import Row, modes_off_zero, shared_modes
+from ..exact.sample import Row, modes_off_zero, put_in, shared_modes
 from ..linearize.split import terms
 
 if TYPE_CHECKING:
@@ -178,20 +178,26 @@ def implied(wave: WaveMatrix, moving: set[str]) -> Iterator[Row]:
 
     A vector B that is no flow and whose law has a divergence that holds k.B only: (f(omega) k.B = 0). A vector E that is
     no flow and whose law has a divergence that multiples of the continuity laws of its currents complete to omega times
-    k.E + (scalars), in one way only.
+    k.E + (scalars), in one way only; a law that gives a current as an unknown of its own takes part.
     """
-    rows = wave.by_row()
-    for name, law in wave.linear.laws.items():
-        if law.rank != 1:
-            continue
-        mine = [i for i, row in enumerate(wave.rows) if row.law == name]
-        whole = _combined([(rows[i], k) for i, k in zip(mine, wave.k, strict=True)])
+    divergences = _divergences(wave)
+    for name, whole in divergences.items():
         for field in _evolved(wave, whole) - moving:
             row = _along(wave, field)
             found = row_combination([row], wave.omega, whole)
-            gauss = None if found else _gauss(wave, law, whole, row, rows)
+            gauss = None if found else _gauss(wave, name, row, divergences)
             if found or gauss:
                 yield gauss or row
+
+
+def _divergences(wave: WaveMatrix) -> dict[str, dict[int, Expr]]:
+    """The divergence of every vector law."""
+    rows, found = wave.by_row(), {}
+    for name, law in wave.linear.laws.items():
+        if law.rank == 1:
+            mine = [rows[i] for i, row in enumerate(wave.rows) if row.law == name]
+            found[name] = _combined(list(zip(mine, wave.k, strict=True)))
+    return found
 
 
 def _evolved(wave: WaveMatrix, row: Row) -> set[str]:
@@ -207,13 +213,24 @@ def _combined(parts: Sequence[tuple[Row, Expr]]) -> dict[int, Expr]:
 
 
 def _gauss(
-    wave: WaveMatrix, law: Law, whole: Row, along: Row, rows: Sequence[Row]
+    wave: WaveMatrix, name: str, along: Row, divergences: Mapping[str, Row]
 ) -> dict[int, Expr] | None:
     """Gauss's law from the divergence of the law that evolves E; None where it is not told exactly."""
     at_rest: dict[Any, Any] = {wave.omega: S.Zero}
-    numbers = [i for i, row in enumerate(wave.rows) if _same_current(wave, row.law, law)]
-    still = [_put(rows[i], at_rest) for i in numbers]
-    target = _put(whole, at_rest)
+    laws, whole = wave.linear.laws, divergences[name]
+    static = [
+        n for n, row in divergences.items() if not any(c.has(wave.omega) for c in row.values())
+    ]
+    giving = [n for n in static if _vectors(laws[n]) & _vectors(laws[name])]
+    products = {p for n in (name, *giving) for p in _products(laws[n].residual)}
+    rows = [
+        row
+        for row, place in zip(wave.by_row(), wave.rows, strict=True)
+        if _fluxes(laws[place.law]) & products
+    ]
+    rows += [dict(divergences[n]) for n in giving]
+    still = [put_in(row, at_rest) for row in rows]
+    target = put_in(whole, at_rest)
     found = row_combination(still, wave.omega, target) if target else {}
     dependent = any(
         row_combination([r for r in still if r is not row], wave.omega, row) is not None
@@ -221,7 +238,7 @@ def _gauss(
     )
     if found is None or dependent:
         return None
-    parts = [(whole, S.One), *((rows[numbers[i]], -c) for i, c in found.items())]
+    parts = [(whole, S.One), *((rows[i], -c) for i, c in found.items())]
     rate = {j: c.diff(wave.omega) for j, c in _combined(parts).items()}
     made = {j: c for j, c in rate.items() if c != 0}
     vectors = {j: c for j, c in made.items() if wave.columns[j].field.rank > 0}
@@ -231,18 +248,16 @@ def _gauss(
     return made if proper else None
 
 
-def _put(row: Row, values: Mapping[Any, Any]) -> dict[int, Expr]:
-    filled = {j: c.xreplace(values).expand() for j, c in row.items()}
-    return {j: c for j, c in filled.items() if c != 0}
+def _vectors(law: Law) -> set[Field]:
+    return {f for f in law.residual.atoms(Field) if f.rank == 1}
 
 
-def _same_current(wave: WaveMatrix, name: str, other: Law) -> bool:
-    """Whether a scalar law is a continuity law whose flux n*v stands in another law."""
-    law = wave.linear.laws[name]
-    fluxes = {
-        frozenset(t.atoms(Field))
-        for node in law.residual.atoms(Div)
-        for t in terms(node.args[0])
-        if law.rank == 0 and t.atoms(Field)
-    }
-    return bool(fluxes & {frozenset(t.atoms(Field)) for t in terms(other.residual)})
+def _products(expr: Expr) -> set[frozenset[Field]]:
+    """The fields that stand together in each term."""
+    return {frozenset(t.atoms(Field)) for t in terms(expr) if t.atoms(Field)}
+
+
+def _fluxes(law: Law) -> set[frozenset[Field]]:
+    """The fields of the fluxes n*v of a scalar law."""
+    nodes = law.residual.atoms(Div) if law.rank == 0 else ()
+    return {p for node in nodes for p in _products(node.args[0])}

@@ -34,6 +34,7 @@ from .declare.operators import trace as trace
 from .declare.operators import transpose as transpose
 from .errors import AmbiguousText as AmbiguousText
 from .errors import BackgroundError as BackgroundError
+from .errors import ConstraintError as ConstraintError
 from .errors import DeclarationError as DeclarationError
 from .errors import ModelFileError as ModelFileError
 from .errors import NonPolynomialError as NonPolynomialError
@@ -82,6 +83,7 @@ __all__ = [
     "AmbiguousText",
     "ModelFileError",
     "BackgroundError",
+    "ConstraintError",
     "UndeterminedError",
     "NonPolynomialError",
     "ValuesError",

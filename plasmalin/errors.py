@@ -73,6 +73,27 @@ class BackgroundError(PlasmalinError, ValueError):
     """A law that the declared background contradicts, or values that break a condition."""
 
 
+class ConstraintError(PlasmalinError, ValueError):
+    """A constraint that the laws do not preserve.
+
+    Parameters
+    ----------
+    message : str
+        What is left of its time derivative, and what to do.
+    constraint : str
+        The constraint's name.
+    laws : tuple of str
+        The laws that break it.
+    """
+
+    def __init__(self, message: str, constraint: str = "", laws: tuple[str, ...] = ()) -> None:
+        super().__init__(message, constraint, laws)
+        self.message, self.constraint, self.laws = message, constraint, laws
+
+    def __str__(self) -> str:
+        return self.message
+
+
 class UndeterminedError(PlasmalinError, ValueError):
     """Too few or too many laws, or laws that do not determine the unknowns."""
 

@@ -80,7 +80,9 @@ def _swapped(expr, rng):
     choices = []
     for path, node in terms(expr):
         for s in symbols_of(node):
-            twins = [t for n, t in known.items() if n[:-1] == s.name[:-1] and n != s.name and len(n) > 1]
+            twins = [
+                t for n, t in known.items() if n[:-1] == s.name[:-1] and n != s.name and len(n) > 1
+            ]
             choices += [(path, node, s, t) for t in twins]
     if not choices:
         return None
@@ -90,7 +92,11 @@ def _swapped(expr, rng):
 
 def _doppler(expr, rng):
     """One of the Doppler-shifted frequencies loses its shift."""
-    shifted = [(p, n) for p, n in nodes(expr) if isinstance(n, Add) and n.coeff(omega) == 1 and len(n.args) == 2 and not n.has(sympy.I)]
+    shifted = [
+        (p, n)
+        for p, n in nodes(expr)
+        if isinstance(n, Add) and n.coeff(omega) == 1 and len(n.args) == 2 and not n.has(sympy.I)
+    ]
     if not shifted:
         return None
     path, _ = rng.choice(shifted)
@@ -119,7 +125,9 @@ def symbols_of(node):
 def rearranged(claim, rng):
     """The same relation, arranged otherwise."""
     expr = claim.left - claim.right
-    kind = rng.choice(("expanded", "factored", "divided", "inverted", "sides", "renamed", "numerator"))
+    kind = rng.choice(
+        ("expanded", "factored", "divided", "inverted", "sides", "renamed", "numerator")
+    )
     if kind == "expanded":
         return kind, Claim(sympy.expand(expr), S.Zero, claim.definitions)
     if kind == "factored":
@@ -134,10 +142,16 @@ def rearranged(claim, rng):
     if kind == "inverted" and right != 0:
         return kind, Claim(1 / left, 1 / right, claim.definitions)
     if kind == "renamed":
-        part = max((n for _, n in nodes(expr) if not n.has(omega) and n.args), key=lambda n: n.count_ops(), default=None)
+        part = max(
+            (n for _, n in nodes(expr) if not n.has(omega) and n.args),
+            key=lambda n: n.count_ops(),
+            default=None,
+        )
         if part is not None:
             name = sympy.Symbol("Q_short")
-            return kind, Claim(expr.xreplace({part: name}), S.Zero, {**claim.definitions, name: part})
+            return kind, Claim(
+                expr.xreplace({part: name}), S.Zero, {**claim.definitions, name: part}
+            )
     return "sides", Claim(left, right, claim.definitions)
 
 

@@ -12,10 +12,12 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 import plasmalin as plin
+from plasmalin.exact.combination import power_below, row_combination
 from plasmalin.exact.determinant import determinant, eliminate, underdetermined_block
 from plasmalin.exact.matching import diagonal_blocks, maximum_matching
 from plasmalin.exact.polynomial import numerator, polynomial
 from plasmalin.exact.rational import exact_rational
+from plasmalin.exact.sample import holds_off_zero, modes_off_zero, shared_modes
 from plasmalin.exact.univariate import complex_roots
 
 w = sympy.Symbol("omega")
@@ -309,3 +311,56 @@ def test_discriminant_with_complex_coefficients():
     found = polynomial(w**2 + sympy.I * b * w + (a + sympy.I * k), w).discriminant().as_expr()
     expected = (sympy.I * b) ** 2 - 4 * (a + sympy.I * k)
     assert sympy.expand(found - expected) == 0
+
+
+# Rows and modes ----------------------------------------------------------------------------------
+
+
+def small_row(numbers):
+    p, q, r, s = numbers
+    return {j: x for j, x in enumerate((p * w + q * k, r * sympy.I, s * k**2 + w)) if x != 0}
+
+
+@settings(max_examples=40, deadline=None)
+@given(
+    st.lists(st.tuples(*[st.integers(-2, 2)] * 4), min_size=2, max_size=2),
+    st.lists(st.integers(-2, 2), min_size=2, max_size=2),
+)
+def test_row_combination_gives_back_the_target(numbers, factors):
+    rows = [small_row(n) for n in numbers]
+    multipliers = [f + w * n for n, f in enumerate(factors)]
+    target = {
+        j: c
+        for j in range(3)
+        if (c := sympy.expand(sum(m * r.get(j, 0) for m, r in zip(multipliers, rows, strict=True))))
+    }
+    found = row_combination(rows, w, target)
+    assert found is not None
+    for j in range(3):
+        made = sum(c * rows[i].get(j, 0) for i, c in found.items())
+        assert sympy.cancel(made - target.get(j, 0)) == 0
+
+
+def test_row_combination_of_independent_rows():
+    assert row_combination([{0: sympy.S.One}], w, {1: a}) is None
+    found = row_combination([{0: w**2, 1: a}, {1: w}], w, {0: sympy.S.One})
+    assert found == {0: w**-2, 1: -a / w**3}
+    assert [power_below(c, w) for c in found.values()] == [2, 3]
+    assert power_below(1 / (w * (w - a)), w) is None
+
+
+def test_modes_of_a_chain_are_counted_with_their_order():
+    """d_t^2 x = 0 and d_t y = a y: one solution of the chain is constant."""
+    rows = [{0: w, 1: sympy.S.One}, {1: w}, {2: w - a}]
+    x, v, y = ({j: sympy.S.One} for j in range(3))
+    assert shared_modes(rows, w, [w, w - a], [(), (v,), (x,), (y,)]) == [[2, 1, 0, 2], [1, 1, 1, 0]]
+    assert modes_off_zero(rows, w, [(), (v,), (y,)]) == [1, 1, 0]
+    assert [holds_off_zero(rows, w, [r]) for r in (x, v, y)] == [True, True, False]
+    assert holds_off_zero([{0: w}, {0: a}], w, [y]) is None
+
+
+def test_modes_where_roots_of_parameters_are_related():
+    """sin² + cos² = 1 holds at the sampled point: (omega − 1)² with sin² + cos² for one of the ones."""
+    unit = sympy.sin(theta) ** 2 + sympy.cos(theta) ** 2
+    rows = [{0: w - unit}, {1: w - 1}]
+    assert shared_modes(rows, w, [w - 1], [(), ({0: sympy.S.One},)]) == [[2, 1]]

@@ -8,8 +8,20 @@ from dataclasses import dataclass
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
-from sympy import Add, Basic, Eq, Expr, I, Matrix, MatrixBase, Symbol, latex, sqrt
-from sympy import expand_trig, sympify
+from sympy import (
+    Add,
+    Basic,
+    Eq,
+    Expr,
+    I,
+    Matrix,
+    MatrixBase,
+    Symbol,
+    expand_trig,
+    latex,
+    sqrt,
+    sympify,
+)
 from sympy.core.function import AppliedUndef
 
 from ..declare.constants import CODATA
@@ -216,7 +228,9 @@ def _times(factor: Expr) -> Any:
 def _implied(wave: WaveMatrix, symbols: Mapping[str, Any]) -> dict[str, Expr]:
     """Usual names of the wave vector that the wave itself does not use: k = |k| and its components."""
     found = {
-        f"k_{a}": c for a, c in zip(wave.linear.axes, wave.k, strict=True) if f"k_{a}" not in symbols
+        f"k_{a}": c
+        for a, c in zip(wave.linear.axes, wave.k, strict=True)
+        if f"k_{a}" not in symbols
     }
     square = Add(*(c**2 for c in wave.k))
     single = [c for c in wave.k if c != 0]

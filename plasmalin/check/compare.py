@@ -94,11 +94,16 @@ def match(
         return None
     whole = polynomial.degree == derived.polynomial.degree
     if sheets > 1:
-        return Match("branch", "freed of its roots, the claim has only factors of the derived relation")
+        return Match(
+            "branch", "freed of its roots, the claim has only factors of the derived relation"
+        )
     if whole:
         return Match("identical", "both are the same polynomial up to a factor free of ω")
     if has_partner(polynomial, derived.polynomial, solved):
-        return Match("branch", "the claim divides the derived relation; the same with a sign changed does too")
+        return Match(
+            "branch",
+            "the claim divides the derived relation; the same with a sign changed does too",
+        )
     return Match("factor", "every factor of the claim divides the derived relation")
 
 

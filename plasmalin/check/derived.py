@@ -7,8 +7,21 @@ from dataclasses import dataclass
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
-from sympy import Abs, Add, Eq, Expr, Mul, Poly, PolynomialError, Symbol, cancel, cos, expand_trig, sin
-from sympy import sympify
+from sympy import (
+    Abs,
+    Add,
+    Eq,
+    Expr,
+    Mul,
+    Poly,
+    PolynomialError,
+    Symbol,
+    cancel,
+    cos,
+    expand_trig,
+    sin,
+    sympify,
+)
 from sympy import tan as tangent
 
 from ..declare.operators import omega
@@ -94,7 +107,9 @@ def derive(
     raw = wave.relation.exact
     equations = [*wave.linear.conditions, *_light(constants)] if conditions else []
     used = _solved(equations, set(symbols), set(raw.generators))
-    made = raw.substitute({**{a: without_angles(a) for a in raw.generators if a != without_angles(a)}})
+    made = raw.substitute(
+        {**{a: without_angles(a) for a in raw.generators if a != without_angles(a)}}
+    )
     for c in used:
         made = made.substitute({c.symbol: c.value})
     return Derived(bare(made), tuple(used), Add(*(c**2 for c in wave.k)))
@@ -144,7 +159,8 @@ def _solved(equations: list[Eq], claimed: set[Symbol], needed: set[Any]) -> list
         for c in used:
             residual = residual.xreplace({c.symbol: c.value})
         order = sorted(
-            residual.free_symbols, key=lambda s: (s in claimed, s.name == "c", s.name != "mu_0", s.name)
+            residual.free_symbols,
+            key=lambda s: (s in claimed, s.name == "c", s.name != "mu_0", s.name),
         )
         for symbol in order:
             value = linear_solution(residual, symbol)

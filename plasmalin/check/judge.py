@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
-from sympy import Expr, S, Symbol, cancel
+from sympy import S, Symbol, cancel
 
 from ..declare.notation import paper
 from ..errors import NonPolynomialError, UndeterminedError
@@ -20,7 +20,7 @@ from .derived import Derived, derive
 from .limit import LimitFound, find_limits, verify_limit
 from .series import series_order
 from .slips import repairs
-from .special import holds_under, special_values
+from .special import special_values
 from .stated import Stated, read_stated
 from .verdict import Slip, Verdict
 

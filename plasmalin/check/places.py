@@ -86,9 +86,7 @@ def multiplied(claim: Claim, factors: Mapping[Spot, Expr]) -> Claim:
 
 def apart(spots: Iterable[Spot]) -> bool:
     """Whether no place lies inside another."""
-    return not any(
-        a[0] == b[0] and a[1] == b[1][: len(a[1])] for a, b in permutations(spots, 2)
-    )
+    return not any(a[0] == b[0] and a[1] == b[1][: len(a[1])] for a, b in permutations(spots, 2))
 
 
 def exchanges(claim: Claim) -> Iterator[tuple[Expr, Expr, Claim]]:

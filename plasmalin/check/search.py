@@ -105,9 +105,7 @@ def solve_one(search: Search, changed: Callable[[Expr], Claim], scale: Expr = S.
     return [m * scale for m in made if m is not None]
 
 
-def solve_two(
-    search: Search, changed: Callable[[Expr, Expr], Claim]
-) -> list[tuple[Expr, Expr]]:
+def solve_two(search: Search, changed: Callable[[Expr, Expr], Claim]) -> list[tuple[Expr, Expr]]:
     """As `solve_one`, for two unknowns at once."""
     seen: dict[Any, list[tuple[int, int]]] = {}
 

@@ -18,7 +18,16 @@ from .claim import Claim
 from .compare import Match, compare, covered
 from .derived import Derived
 from .places import (
-    Edit, Spot, additions, apart, at, edits, exchanges, grouped, multiplied, powers,
+    Edit,
+    Spot,
+    additions,
+    apart,
+    at,
+    edits,
+    exchanges,
+    grouped,
+    multiplied,
+    powers,
 )  # fmt: skip
 from .search import Search, solve_one, solve_two
 from .verdict import Slip
@@ -149,9 +158,7 @@ def _repaired(search: Search, edit: Edit, scale: Expr) -> Iterator[Repair]:
         yield from _proved(search, (slip,), claim, _cost(edit, value))
 
 
-def _proved(
-    search: Search, slips: tuple[Slip, ...], claim: Claim, cost: float
-) -> Iterator[Repair]:
+def _proved(search: Search, slips: tuple[Slip, ...], claim: Claim, cost: float) -> Iterator[Repair]:
     try:
         found = compare(claim, search.derived)
     except (ArithmeticError, PlasmalinError):
@@ -194,7 +201,9 @@ def _cousins(search: Search, term: Expr) -> list[Expr]:
     new = {n[-1] for n in known if len(n) > 1} - {""}
     found = []
     for old, other in ((a, b) for a in endings for b in new if a != b):
-        swap = {own[n]: known[n[:-1] + other] for n in own if n[-1] == old and n[:-1] + other in known}
+        swap = {
+            own[n]: known[n[:-1] + other] for n in own if n[-1] == old and n[:-1] + other in known
+        }
         if not swap:
             continue
         made = search.claim.written_out(term).xreplace(swap)
@@ -256,7 +265,9 @@ def _idle(edit: Edit, value: Expr) -> bool:
     """Whether a change is none, or is told better as the change of another term."""
     if edit.kind == "times":
         odd = edit.where == "everywhere" and edit.term.is_Symbol
-        return bool(value == 1 or (odd and (value.has(I) or (value == -1 and edit.term.is_positive))))
+        return bool(
+            value == 1 or (odd and (value.has(I) or (value == -1 and edit.term.is_positive)))
+        )
     if value == 0:
         return True
     if edit.kind == "plus":
@@ -266,7 +277,12 @@ def _idle(edit: Edit, value: Expr) -> bool:
 
 def _slip(edit: Edit, value: Expr) -> tuple[Expr, Expr]:
     """The term at fault and its multiplier; a missing term is itself, once."""
-    made = {"times": value, "more": 1 + value, "over": 1 / (1 + value), "over twice": (1 + value) ** -2}
+    made = {
+        "times": value,
+        "more": 1 + value,
+        "over": 1 / (1 + value),
+        "over twice": (1 + value) ** -2,
+    }
     if edit.kind in made:
         return edit.term, made[edit.kind]
     return value, S.One

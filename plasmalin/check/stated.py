@@ -75,7 +75,11 @@ def _each(names: Names, under: Any) -> list[tuple[Expr, Expr, bool]]:
 
 def _one(names: Names, condition: Any) -> tuple[Expr, Expr, bool]:
     if isinstance(condition, Eq):
-        return names.expression(condition.lhs, "under"), names.expression(condition.rhs, "under"), False
+        return (
+            names.expression(condition.lhs, "under"),
+            names.expression(condition.rhs, "under"),
+            False,
+        )
     if not isinstance(condition, str):
         raise DeclarationError(
             f'under: {condition!r} is not a condition; write "m_e/m_i << 1" or "gamma_e = 3"'
@@ -105,4 +109,3 @@ def _solved(names: Names, left: Expr, right: Expr) -> tuple[Symbol, Expr]:
         if value is not None:
             return symbol, value
     raise DeclarationError(f"under: {left} = {right} cannot be solved for a symbol of the model")
-

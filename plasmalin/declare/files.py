@@ -24,13 +24,14 @@ from .units import Unit, read_unit
 LARGEST = 1_000_000
 
 KEYS: dict[str, set[str]] = {
-    "file": {"model", "scalar", "vector", "tensor", "parameters", "vector_parameter", "law", "wave", "sweep", "claim"},
+    "file": {"model", "scalar", "vector", "tensor", "parameters", "vector_parameter", "law", "constraint", "wave", "sweep", "claim"},
     "[model]": {"title", "axes", "constants", "assume"},
     "[[scalar]]": {"name", "background", "unit", "latex"},
     "[[vector]]": {"name", "background", "unit", "latex"},
     "[[tensor]]": {"name", "background", "unit", "latex", "symmetric"},
     "[[vector_parameter]]": {"name", "entries", "unit"},
     "[[law]]": {"name", "text"},
+    "[[constraint]]": {"name", "text"},
     "[wave]": {"direction", "angle"},
     "[parameters] entry": {"value", "unit", "positive"},
     "[sweep] entry": {"from", "to", "points", "spacing"},
@@ -167,9 +168,10 @@ def _built(data: dict[str, Any]) -> ModelFile:
         _known(entry, "[[vector_parameter]]")
         entries, name = _plain(entry.get("entries")), _text(entry, "name", "[[vector_parameter]]")
         model.vector_parameter(name, entries, unit=_unit(entry, f"[[vector_parameter]] {name}"))
-    for entry in _list(data, "law"):
-        _known(entry, "[[law]]")
-        model.law(_text(entry, "name", "[[law]]"), _text(entry, "text", "[[law]]"))
+    for kind, add in (("law", model.law), ("constraint", model.constraint)):
+        for entry in _list(data, kind):
+            _known(entry, f"[[{kind}]]")
+            add(_text(entry, "name", f"[[{kind}]]"), _text(entry, "text", f"[[{kind}]]"))
     assume = head.get("assume", [])
     if not isinstance(assume, list) or any(not isinstance(n, str) for n in assume):
         raise ModelFileError("[model] assume: give a list of law names")
@@ -341,8 +343,10 @@ def model_text(model: FluidModel) -> str:
             f"name = {_quoted(name)}",
             f"entries = {_value(vector)}",
         ]
-    for law in model.laws.values():
-        lines += ["", "[[law]]", f"name = {_quoted(law.name)}", f"text = {_quoted(str(law))}"]
+    for kind, laws in (("law", model.laws), ("constraint", model.constraints)):
+        for law in laws.values():
+            lines += ["", f"[[{kind}]]", f"name = {_quoted(law.name)}"]
+            lines += [f"text = {_quoted(str(law))}"]
     return "\n".join(lines) + "\n"
 
 

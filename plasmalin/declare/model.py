@@ -89,6 +89,7 @@ class FluidModel:
         self._parameters: dict[str, Parameter] = {}
         self._vectors: dict[str, Expr] = {}
         self._laws: dict[str, Law] = {}
+        self._constraints: dict[str, Law] = {}
         self._units: dict[str, Unit] = {}
         self._dimensions = Dimensions({})
 
@@ -109,6 +110,11 @@ class FluidModel:
     def laws(self) -> dict[str, Law]:
         """The laws by name, in the order of declaration."""
         return {name: self._current_law(law) for name, law in self._laws.items()}
+
+    @property
+    def constraints(self) -> dict[str, Law]:
+        """The redundant laws by name, in the order of declaration."""
+        return {name: self._current_law(law) for name, law in self._constraints.items()}
 
     @property
     def symbols(self) -> dict[str, Symbol]:
@@ -569,49 +575,99 @@ class FluidModel:
         UnitError
             When units are declared and two terms have different ones; what declares none is left open.
         """
-        if name in self._laws:
-            raise DeclarationError(f"a law '{name}' is declared already; choose another name")
+        self._laws[name] = self._new_law(name, lhs, rhs, "law")
+        return self._laws[name]
+
+    def constraint(self, name: str, lhs: Any, rhs: Any = 0) -> Law:
+        """Add a redundant law ``lhs = rhs``, one that follows from the others once it holds at the start.
+
+        Gauss's law beside those of Ampere and continuity, div B = 0 beside Faraday's law, quasi-neutrality beside
+        continuity and Ampere's law without displacement current. It is linearized like a law and its zeroth order is
+        checked against the background, but it determines no unknown. `LinearizedModel.plane_wave` proves by exact
+        algebra that the laws preserve it; the zero modes that violate it are then left out.
+
+        Parameters
+        ----------
+        name : str
+            Not the name of a law.
+        lhs, rhs : expressions, or one string for `lhs`
+            As in `law`.
+
+        Returns
+        -------
+        Law
+
+        Raises
+        ------
+        ReadError, RankError, DeclarationError
+            As `law`. (Whether it is preserved is seen later: `ConstraintError`.)
+
+        Examples
+        --------
+        >>> import plasmalin as plin
+        >>> model = plin.FluidModel("vacuum")
+        >>> E, B = model.vector("E"), model.vector("B")
+        >>> c = model.constants("c")
+        >>> _ = model.law("Faraday", plin.partial_t(B), -plin.curl(E))
+        >>> _ = model.law("Ampere", plin.partial_t(E), c**2 * plin.curl(B))
+        >>> _ = model.constraint("no monopoles", plin.div(B))
+        >>> model.linearize().plane_wave("x").relation.zero_modes
+        1
+        """
+        self._constraints[name] = self._new_law(name, lhs, rhs, "constraint")
+        return self._constraints[name]
+
+    def _new_law(self, name: str, lhs: Any, rhs: Any, kind: str) -> Law:
+        for known, others in (("law", self._laws), ("constraint", self._constraints)):
+            if name in others:
+                raise DeclarationError(
+                    f"a {known} '{name}' is declared already; choose another name"
+                )
         try:
-            law = self._made_law(name, lhs, rhs)
+            law = self._made_law(name, lhs, rhs, kind)
         except RankError as error:
-            raise RankError(f"law '{name}': {error}") from None
-        needed = requirements(f"law '{name}'", law.lhs, law.rhs)
+            raise RankError(f"{kind} '{name}': {error}") from None
+        needed = requirements(f"{kind} '{name}'", law.lhs, law.rhs)
         self._dimensions = self._dimensions.require(needed)
-        self._laws[name] = law
         return law
 
-    def _made_law(self, name: str, lhs: Any, rhs: Any) -> Law:
+    def _made_law(self, name: str, lhs: Any, rhs: Any, kind: str) -> Law:
         if isinstance(lhs, str):
             if not (isinstance(rhs, int) and rhs == 0):
-                raise DeclarationError(f"law '{name}': as text, give the whole law as one string")
+                raise DeclarationError(
+                    f"{kind} '{name}': as text, give the whole of it as one string"
+                )
             left, right = read_law(lhs, self._names())
         else:
             left, right = exact(lhs), exact(rhs)
-        left, right = self._checked(name, left), self._checked(name, right)
+        left, right = (self._checked(f"{kind} '{name}'", side) for side in (left, right))
         rank = _common_rank(left, right)
         law = Law(name, left, right, rank)
         if not law.residual.atoms(Field):
-            raise DeclarationError(f"law '{name}' holds no field: {law}")
-        for other in self._laws.values():
-            if _same(law, other):
-                raise DeclarationError(f"law '{name}' repeats law '{other.name}': leave one out")
+            raise DeclarationError(f"{kind} '{name}' holds no field: {law}")
+        for known, others in (("law", self._laws), ("constraint", self._constraints)):
+            for other in others.values():
+                if _same(law, other):
+                    raise DeclarationError(
+                        f"{kind} '{name}' repeats {known} '{other.name}': leave one out"
+                    )
         return law
 
-    def _checked(self, name: str, expr: Expr) -> Expr:
+    def _checked(self, where: str, expr: Expr) -> Expr:
         try:
             expr = self._canonical(expr)
         except DeclarationError as error:
-            raise DeclarationError(f"law '{name}': {error}") from None
+            raise DeclarationError(f"{where}: {error}") from None
         loose = _outside_multipliers(expr).free_symbols & set(WAVE_SYMBOLS)
         if loose:
             raise DeclarationError(
-                f"law '{name}': {', '.join(sorted(s.name for s in loose))} stands outside multiplier(f, g); a law is "
+                f"{where}: {', '.join(sorted(s.name for s in loose))} stands outside multiplier(f, g); a law is "
                 "written in space and time, and the wave enters only as the second argument of multiplier"
             )
         if len(self.axes) < 3:
             for node in expr.atoms(Cross, Curl):
                 raise DeclarationError(
-                    f"law '{name}': {node} leaves the axes '{self.axes}' of the model; "
+                    f"{where}: {node} leaves the axes '{self.axes}' of the model; "
                     "declare it with axes='xyz'"
                 )
         for node in expr.atoms(Components):

@@ -20,21 +20,42 @@ TRIES = 20_000
 def field_image(
     table: Mapping[tuple[int, int], Gaussian], size: int, relations: Sequence[Relation]
 ) -> nmod_mat:
-    """The matrix at a random point where every relation among the generators holds.
+    """The matrix at a random point where every relation among the generators holds."""
+    variables = len(next(iter(table.values())).re.degrees()) if table else 0
+    prime, point = random_place(relations, variables)
+    made = nmod_mat(size, size, prime)
+    for (i, j), p in table.items():
+        made[i, j] = _value(p, point, prime)
+    return made
+
+
+def random_place(relations: Sequence[Relation], variables: int) -> tuple[int, list[int]]:
+    """A prime, and modulo it a square root of -1 and a value for every variable, so that the relations hold.
 
     Primes differ in the roots that they have, so both prime and point are drawn until all roots exist.
     """
     random = Random(7)
-    variables = len(next(iter(table.values())).re.degrees()) if table else 0
     for _ in range(TRIES):
         prime = _prime(random)
         point = _point(relations, variables, prime, random)
         if point:
-            made = nmod_mat(size, size, prime)
-            for (i, j), p in table.items():
-                made[i, j] = _value(p, point, prime)
-            return made
+            return prime, point
     raise ArithmeticError("no point was found at which the relations among the generators hold")
+
+
+def in_main(p: Gaussian, point: Sequence[int], prime: int) -> list[int]:
+    """The coefficients in variable 0, lowest power first, every other variable at its value."""
+    unit, _, *x = point
+    highest = max((int(part.degrees()[0]) for part in (p.re, p.im) if part), default=0)
+    made = [0] * (1 + highest)
+    for part, factor in ((p.re, 1), (p.im, unit)):
+        for exponents, c in part.terms():
+            value = int(c) * factor
+            for base, n in zip(x, exponents[1:], strict=True):
+                if n:
+                    value = value * pow(base, int(n), prime) % prime
+            made[int(exponents[0])] = (made[int(exponents[0])] + value) % prime
+    return made
 
 
 def null_support(matrix: nmod_mat) -> tuple[int, ...]:

@@ -17,7 +17,7 @@ import sympy as sp
 
 from ..errors import UndeterminedError
 from .dependence import field_image, null_support
-from .gaussian import Gaussian, gcd
+from .gaussian import Gaussian, gcd, lcm
 from .matching import diagonal_blocks, maximum_matching
 from .minors import minors_determinant
 from .polynomial import ExactPolynomial, ratio_expr
@@ -164,17 +164,13 @@ def _without_denominators(
     bottom = ring.constant(1)
     for row in {i for i, _ in ratios}:
         inside = {ij: r for ij, r in ratios.items() if ij[0] == row}
-        common = reduce(_lcm, (r.bottom for r in inside.values()))
+        common = reduce(lcm, (r.bottom for r in inside.values()))
         bottom = bottom * common
         for ij, r in inside.items():
             top = r.top * common.over(r.bottom)
             if top:
                 table[ij] = top
     return table, bottom
-
-
-def _lcm(a: Gaussian, b: Gaussian) -> Gaussian:
-    return a if a == b else a * b.over(gcd(a, b))
 
 
 def _phases(table: Table) -> tuple[dict[int, int], dict[int, int]] | None:

@@ -278,5 +278,3 @@ def quotient(a: int, b: int) -> int:
     """a / b in the field."""
     p = field()[0]
     return a * pow(b, -1, p) % p
-
-

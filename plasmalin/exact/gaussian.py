@@ -127,6 +127,11 @@ def gcd(p: Gaussian, q: Gaussian) -> Gaussian:
     return _gaussian_gcd(p, q)
 
 
+def lcm(a: Gaussian, b: Gaussian) -> Gaussian:
+    """A least common multiple."""
+    return a if a == b else a * b.over(gcd(a, b))
+
+
 def gcd_of(polynomials: Iterable[Gaussian], start: Gaussian) -> Gaussian:
     """The common divisor of many, stopping once it is a unit."""
     result = start

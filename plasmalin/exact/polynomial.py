@@ -246,6 +246,9 @@ class ExactPolynomial:
         if turned.phase is not None:
             found = [(_real(p), m) for p, m in irreducible_factors(turned.part) if _holds_main(p)]
             return [(self._with(p)._turned_main(3), m) for p, m in found]
+        real = _real(self._value.re.gcd(self._value.im))
+        if real.holds(0):  # a divisor of both parts; the rest has no real factor
+            return [*self._with(real)._split(), *self._with(self._value.over(real))._split()]
         if len(self) > LONGEST_NORM:
             return squarefree_parts(self._value)
         return self._gaussian_factors()

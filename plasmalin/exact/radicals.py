@@ -95,7 +95,7 @@ def rational_numerator(expr: sp.Expr, main: sp.Symbol) -> tuple[ExactPolynomial,
 
 def _norm(value: Gaussian, variable: int, index: int, base: Ratio, ring: Ring) -> Gaussian:
     """The product over the conjugates, with common factors of the parts taken out first."""
-    parts = _lowered(_slices(value, variable, ring), index, base, ring)
+    parts = _lowered(_slices(value, variable, ring), index, base)
     parts = {j: p for j, p in parts.items() if p}
     if list(parts) == [0]:
         return parts[0]
@@ -130,9 +130,7 @@ def _slices(value: Gaussian, variable: int, ring: Ring) -> dict[int, Gaussian]:
     return {n: Gaussian(make(a), make(b)) for n, (a, b) in parts.items()}
 
 
-def _lowered(
-    parts: dict[int, Gaussian], index: int, base: Ratio, ring: Ring
-) -> dict[int, Gaussian]:
+def _lowered(parts: dict[int, Gaussian], index: int, base: Ratio) -> dict[int, Gaussian]:
     """Powers of the root below its index, the denominators of its base cleared."""
     highest = max(parts, default=0) // index
     found: dict[int, Gaussian] = {}

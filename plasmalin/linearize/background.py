@@ -94,8 +94,8 @@ class Equilibrium:
         return str(self)
 
 
-def balance(law: Law, ledger: Ledger, assumed: bool, size: int) -> Balance:
-    """The zeroth order of one law.
+def balance(law: Law, ledger: Ledger, assumed: bool, size: int, kind: str = "law") -> Balance:
+    """The zeroth order of one law or constraint (`kind`, for messages).
 
     Raises
     ------
@@ -110,7 +110,7 @@ def balance(law: Law, ledger: Ledger, assumed: bool, size: int) -> Balance:
     for r in residuals:
         if not assumed and cannot_vanish(r):
             raise BackgroundError(
-                f"law '{law.name}' leaves {paper(r)} on the background, which is not zero; "
+                f"{kind} '{law.name}' leaves {paper(r)} on the background, which is not zero; "
                 "change a background, add what balances it (a field, a species, a constant source), "
                 f"or linearize(assume=[{law.name!r}]) if a fixed external source does"
             )

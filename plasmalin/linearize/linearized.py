@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import html
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from functools import cached_property
 from typing import TYPE_CHECKING, Any, cast
 
@@ -74,6 +74,8 @@ class LinearizedModel:
         Every piece of every term: order, fate, reason.
     background : Equilibrium
         The equilibrium in words.
+    redundant : mapping of str to Law
+        The nonlinear constraints as declared.
     """
 
     title: str
@@ -86,19 +88,22 @@ class LinearizedModel:
     dimensions: Dimensions
     ledger: Ledger
     background: Equilibrium
+    redundant: Mapping[str, Law] = field(default_factory=dict)
 
     @cached_property
     def equations(self) -> Equations:
         """The linearized laws by name, in vector form, first-order fields with a tilde."""
-        return Equations(
-            {
-                name: cast(
-                    Eq, Eq(self._side(name, "left"), self._side(name, "right"), evaluate=False)
-                )
-                for name in self.laws
-            },
-            self.axes,
-        )
+        return self._first_order(self.laws)
+
+    @cached_property
+    def constraints(self) -> Equations:
+        """The linearized constraints by name, in vector form."""
+        return self._first_order(self.redundant)
+
+    def _first_order(self, names: Mapping[str, Law]) -> Equations:
+        sides = {name: (self._side(name, "left"), self._side(name, "right")) for name in names}
+        made = {name: cast(Eq, Eq(a, b, evaluate=False)) for name, (a, b) in sides.items()}
+        return Equations(made, self.axes)
 
     def _side(self, law: str, side: str) -> Expr:
         kept = (p.value for p in self.ledger if p.law == law and p.side == side and p.fate == KEPT)
@@ -166,11 +171,13 @@ class LinearizedModel:
 
     def report(self) -> str:
         """Equations, background and ledger as plain text."""
+        redundant = ["Constraints", str(self.constraints), ""] if self.redundant else []
         parts = [
             self.title,
             "",
             str(self.equations),
             "",
+            *redundant,
             str(self.background),
             "",
             str(self.ledger),
@@ -189,18 +196,26 @@ class LinearizedModel:
 
 def linearize(model: FluidModel, assume: tuple[str, ...] = ()) -> LinearizedModel:
     """Linearize a model; see `FluidModel.linearize`."""
-    laws = model.laws
+    laws, redundant = model.laws, model.constraints
     for name in assume:
-        if name not in laws:
-            raise DeclarationError(f"assume: no law '{name}'; there are: {', '.join(laws)}")
+        if name not in laws and name not in redundant:
+            raise DeclarationError(
+                f"assume: no law '{name}'; there are: {', '.join([*laws, *redundant])}"
+            )
     pieces, balances = [], []
-    for law in laws.values():
+    for law in (*laws.values(), *redundant.values()):
         assumed = law.name in assume
+        kind = "law" if law.name in laws else "constraint"
         ledger = Ledger(list(entries(law, assumed)), model.axes)
-        balances.append(balance(law, ledger, assumed, len(model.axes)))
+        balances.append(balance(law, ledger, assumed, len(model.axes), kind))
         pieces += list(ledger)
     whole = Ledger(pieces, model.axes)
     _check_determined(model.fields, laws, whole, model.axes)
+    for name in redundant:
+        if not _unknowns(whole, name):
+            raise UndeterminedError(
+                f"constraint '{name}' has no first-order part on this background; leave it out"
+            )
     background = Equilibrium(tuple(balances), model.fields, model.axes)
     return LinearizedModel(
         model.title,
@@ -213,6 +228,7 @@ def linearize(model: FluidModel, assume: tuple[str, ...] = ()) -> LinearizedMode
         model.dimensions,
         whole,
         background,
+        redundant,
     )
 
 

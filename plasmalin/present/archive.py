@@ -27,6 +27,7 @@ def save_branches(branches: Branches, path: str | os.PathLike[str]) -> None:
         radius=branches.radius,
         status=branches.status,
         factor=np.array(branches.factor, np.int64),
+        label=np.array(branches.label),
     )
     write_whole(path, buffer.getvalue())
 
@@ -43,6 +44,7 @@ def header(branches: Branches) -> dict[str, object]:
         "convention": CONVENTION,
         "units": "SI, or as in parameter_units; omega in rad/s",
         "laws": {name: str(law) for name, law in linear.laws.items()},
+        "constraints": {name: str(law) for name, law in linear.redundant.items()},
         "backgrounds": {n: str(f.background) for n, f in linear.fields.items()},
         "wave_vector": [str(c) for c in branches.wave.k],
         "varies": branches.name,

@@ -25,6 +25,7 @@ def to_xarray(branches: Branches) -> Any:
         "radius": (dims, branches.radius, {"units": "rad/s", "meaning": "proven error bound"}),
         "status": (dims, branches.status),
         "factor": ("branch", np.array(branches.factor)),
+        "label": ("branch", np.array(branches.label)),
     }
     coords = {"branch": np.arange(len(branches)), branches.name: branches.along}
     return xarray.Dataset(data, coords=coords, attrs={"title": branches.wave.linear.title})

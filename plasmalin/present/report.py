@@ -25,9 +25,8 @@ LARGEST = 18
 def relation_text(wave: WaveMatrix) -> str:
     """The relation factor by factor; a long one by its size."""
     if len(wave.rows) > LARGEST:
-        degree, zeros = general_degree(wave)
         return (
-            f"{degree} roots and {zeros} zero modes; with {len(wave.rows)} unknowns the relation in symbols is too long "
+            f"{_count_text(wave)}; with {len(wave.rows)} unknowns the relation in symbols is too long "
             "to be read. The roots come from the same exact determinant with the numbers put in."
         )
     relation = wave.relation
@@ -42,15 +41,23 @@ def relation_text(wave: WaveMatrix) -> str:
     return "\n".join(lines)
 
 
+def _count_text(wave: WaveMatrix) -> str:
+    """How many roots and zero modes, and how many zero modes a constraint forbids."""
+    degree, zeros = general_degree(wave)
+    forbidden = wave.forbidden_modes
+    left_out = f", {forbidden} more that a constraint forbids" if forbidden else ""
+    return f"{degree} roots and {zeros - forbidden} zero modes{left_out}"
+
+
 def branch_table(branches: Branches, rows: int = 7) -> str:
     """Frequency and growth rate of every branch at a few points, as plain text."""
     chosen = np.unique(np.linspace(0, len(branches.along) - 1, rows).astype(int))
-    head = f"{'branch':>6} {branches.name:>12} {'frequency':>14} {'growth rate':>14} {'error bound':>12}   rad/s"
+    head = f"{'branch':>6} {'label':<10} {branches.name:>12} {'frequency':>14} {'growth rate':>14} {'error bound':>12}   rad/s"
     lines = [head]
     for b in range(len(branches)):
         for i in chosen:
             lines.append(
-                f"{b:>6} {branches.along[i]:>12.5g} {branches.frequency[b, i]:>14.6g} "
+                f"{b:>6} {branches.label[b]:<10} {branches.along[i]:>12.5g} {branches.frequency[b, i]:>14.6g} "
                 f"{branches.growth_rate[b, i]:>14.6g} {branches.radius[b, i]:>12.1e}"
             )
     return "\n".join(lines)
@@ -88,6 +95,16 @@ def derivation(wave: WaveMatrix, branches: Branches | None) -> str:
         parts += [f"- ${latex(c.lhs, linear.axes)} = 0$" for c in linear.conditions] + [""]
     parts += ["## Linearized laws", ""]
     parts += [f"- {name}: ${linear.equations.latex(name)}$" for name in linear.equations]
+    if linear.redundant:
+        parts += [
+            "",
+            "## Constraints",
+            "",
+            "Redundant laws and the proof that the others preserve them:",
+            "",
+        ]
+        parts += [f"- {name}: ${linear.constraints.latex(name)}$" for name in linear.constraints]
+        parts += ["", "```text", *map(str, wave.constraints), "```"]
     parts += ["", "## Every term and its fate", "", "```text", str(linear.ledger), "```", ""]
     vector = ", ".join(paper(c) for c in wave.k)
     parts += [
@@ -98,8 +115,7 @@ def derivation(wave: WaveMatrix, branches: Branches | None) -> str:
     ]
     formula = wave.relation._repr_latex_() if len(wave.rows) <= LARGEST else None
     parts += [f"${formula.strip('$')}$" if formula else f"```text\n{relation_text(wave)}\n```", ""]
-    degree, zeros = general_degree(wave)
-    parts += [f"{degree} roots and {zeros} zero modes.", ""]
+    parts += [f"{_count_text(wave)}.", ""]
     if branches is not None:
         parts += [
             "## Branches",

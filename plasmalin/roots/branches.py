@@ -13,7 +13,9 @@ from numpy.typing import NDArray
 from sympy import Symbol
 
 from ..errors import DeclarationError, ValuesError
+from ..exact.polynomial import ExactPolynomial
 from .enclose import ZERO, Enclosure, enclose
+from .labels import branch_labels
 from .polarization import null_vectors
 from .slopes import ScaledFamily
 from .solve import Problem, grid_of, pose, rates_of
@@ -42,6 +44,8 @@ class Branches:
         d omega / d(what varies).
     factor : tuple of int
         For each branch the irreducible factor that it belongs to (−1: a zero mode).
+    polynomials : tuple of ExactPolynomial
+        These factors, with the fixed numbers put in.
     events : tuple of Event
         Where branches of one factor meet.
     """
@@ -57,9 +61,15 @@ class Branches:
     factor: tuple[int, ...]
     events: tuple[Event, ...]
     method: str
+    polynomials: tuple[ExactPolynomial, ...]
 
     def __len__(self) -> int:
         return len(self.omega)
+
+    @cached_property
+    def label(self) -> tuple[str, ...]:
+        """For each branch "wave", "constraint", "entropy" or "vortical" (see `plasmalin.waves.labels`)."""
+        return branch_labels(self)
 
     @property
     def frequency(self) -> NDArray[np.float64]:
@@ -277,6 +287,7 @@ class _Sweep:
         return Branches(
             self.wave, self.numbers, self.name, points, omega, radius, status, slope,
             tuple(factor[b] for b in first), tuple(events), tracks[0].method,
+            self.problem.polynomials,
         )  # fmt: skip
 
     def _factor(self, family: Any, s: NDArray[np.float64]) -> tuple[Enclosure, Any, list[Event]]:

@@ -6,9 +6,10 @@ Each irreducible factor is a `Family`: one polynomial in omega for every grid po
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+from collections.abc import Callable
 from dataclasses import dataclass
 from fractions import Fraction
+from functools import lru_cache
 from random import Random
 from typing import TYPE_CHECKING, Any
 
@@ -46,6 +47,9 @@ class Problem:
     degree : int
         How many roots the relation has in general, zero modes left out.
     zero_modes : int
+        Those that no declared constraint forbids.
+    polynomials : tuple of ExactPolynomial
+        The factors as polynomials, in the order of `factors`.
     """
 
     factors: tuple[tuple[Family, int], ...]
@@ -53,6 +57,7 @@ class Problem:
     zeros: int
     degree: int
     zero_modes: int
+    polynomials: tuple[ExactPolynomial, ...]
 
 
 def pose(wave: WaveMatrix, numbers: Numbers) -> Problem:
@@ -63,11 +68,9 @@ def pose(wave: WaveMatrix, numbers: Numbers) -> Problem:
     UndeterminedError
         When the determinant vanishes identically, in general or for these numbers.
     """
-    entries = {
-        ij: c.subs(numbers.solved) if numbers.solved else c for ij, c in wave.entries.items()
-    }
     degree, zero_modes = general_degree(wave)
-    filled = _filled(entries, numbers.fixed)
+    fill = in_numbers(numbers)
+    filled = {ij: c for ij, e in wave.entries.items() if (c := fill(e)) != 0}
     whole = determinant(filled, len(wave.rows), wave.omega)
     if whole.degree < 0:
         raise UndeterminedError(
@@ -77,22 +80,25 @@ def pose(wave: WaveMatrix, numbers: Numbers) -> Problem:
     whole = whole.primitive()[1]
     swept = tuple(g for g in whole.generators if g.free_symbols)
     parts = whole.factor()[1] if whole.has_real_form else whole.squarefree()[1]
-    factors = tuple((_family(p, swept), m) for p, m in parts if p.lowest == 0)
-    zeros = whole.lowest - zero_modes
-    return Problem(factors, swept, zeros, degree, zero_modes)
+    kept = [(p, m) for p, m in parts if p.lowest == 0]
+    factors = tuple((_family(p, swept), m) for p, m in kept)
+    zeros, allowed = whole.lowest - zero_modes, zero_modes - wave.forbidden_modes
+    return Problem(factors, swept, zeros, degree, allowed, tuple(p for p, _ in kept))
 
 
-def _filled(
-    entries: Mapping[tuple[int, int], Expr], fixed: Mapping[Symbol, Fraction]
-) -> dict[tuple[int, int], Expr]:
-    """Entries with the fixed numbers put in, sines and cosines of numbers as rationals on the unit circle."""
-    known = {s: Rational(v.numerator, v.denominator) for s, v in fixed.items()}
-    filled = {ij: c.xreplace(known) for ij, c in entries.items()}
-    angles = {a for c in filled.values() for a in c.atoms(sin, cos) if not a.free_symbols}
-    circle = {a: _on_circle(a) for a in angles}
-    return {ij: c.xreplace(circle) for ij, c in filled.items()} if circle else filled
+def in_numbers(numbers: Numbers) -> Callable[[Expr], Expr]:
+    """What puts the fixed numbers in, sines and cosines of numbers as rationals on the unit circle."""
+    known = {s: Rational(v.numerator, v.denominator) for s, v in numbers.fixed.items()}
+
+    def filled(entry: Expr) -> Expr:
+        made = (entry.subs(numbers.solved) if numbers.solved else entry).xreplace(known)
+        angles = {a for a in made.atoms(sin, cos) if not a.free_symbols}
+        return made.xreplace({a: _on_circle(a) for a in angles}) if angles else made
+
+    return filled
 
 
+@lru_cache
 def _on_circle(function: Expr) -> Rational:
     """sin a or cos a from a rational tan(a/2), so that sin^2 + cos^2 = 1 stays exact."""
     half = _rational((function.args[0] / 2).evalf(DIGITS + 5))

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import unicodedata
 from collections.abc import Mapping
 from dataclasses import dataclass
 from fractions import Fraction
@@ -54,10 +55,7 @@ class WaveEquation:
         )
 
     def __str__(self) -> str:
-        import unicodedata
-
-        head = paper(Symbol(self.name))
-        name = unicodedata.normalize("NFC", f"{head[0]}\u0303{head[1:]}")
+        name = with_tilde(self.name)
         parts = []
         for orders, c in self.terms.items():
             d = "".join(_partial_text(v, n) for v, n in zip("t" + self.axes, orders, strict=True))
@@ -73,6 +71,12 @@ class WaveEquation:
             d = "".join(_partial_latex(v, n) for v, n in zip("t" + self.axes, orders, strict=True))
             parts.append((f"{d} {self.latex_name}", c))
         return f"$\\displaystyle {_joined(parts, latex)} = 0$"
+
+
+def with_tilde(name: str) -> str:
+    """A perturbation's name as it is printed."""
+    head = paper(Symbol(name))
+    return unicodedata.normalize("NFC", f"{head[0]}\u0303{head[1:]}")
 
 
 def _pairs(variables: tuple[Symbol, ...], orders: Orders) -> list[tuple[Symbol, int]]:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from contextlib import suppress
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
@@ -13,14 +13,18 @@ from sympy import Expr, ImmutableDenseMatrix, Symbol, cos, expand, sin
 from ..declare.dimensions import Dimensions
 from ..declare.fields import Field, decorated
 from ..declare.forms import has_dimension, of_dimension
+from ..declare.model import Law
 from ..declare.notation import paper
 from ..declare.operators import WAVE_SYMBOLS, Advect, Div, omega
 from ..declare.reader import read_expression
 from ..declare.units import dimension
 from ..errors import BackgroundError, DeclarationError, UndeterminedError, UnitError
+from ..exact.sample import shared_modes
 from ..linearize.ledger import KEPT
 from ..linearize.linearized import LinearizedModel, symmetric_law
+from .constraints import Preserved, preserved
 from .equation import WaveEquation, wave_equation
+from .labels import Modes, modes_of
 from .lowering import Index, Wave, indices, lower
 from .relation import Relation, derive_relation
 from .response import Reduced, reduced
@@ -72,6 +76,8 @@ class WaveMatrix:
     columns : tuple of Amplitude
     entries : dict of (int, int) to Expr
         The entries that are not zero.
+    constraints : tuple of Preserved
+        Every component of the model's constraints, with the proof that the laws preserve it.
     """
 
     linear: LinearizedModel
@@ -79,6 +85,7 @@ class WaveMatrix:
     rows: tuple[Row, ...]
     columns: tuple[Amplitude, ...]
     entries: Mapping[tuple[int, int], Expr]
+    constraints: tuple[Preserved, ...] = ()
 
     @property
     def omega(self) -> Symbol:
@@ -136,6 +143,27 @@ class WaveMatrix:
             When omega enters other than in polynomials and their ratios.
         """
         return derive_relation(self)
+
+    def by_row(self) -> list[dict[int, Expr]]:
+        """The entries of every row by column."""
+        made: list[dict[int, Expr]] = [{} for _ in self.rows]
+        for (i, j), c in self.entries.items():
+            made[i][j] = c
+        return made
+
+    @cached_property
+    def forbidden_modes(self) -> int:
+        """How many zero modes of the determinant violate the model's constraints."""
+        if not self.constraints:
+            return 0
+        declared = [c.form for c in self.constraints]
+        ((whole, allowed),) = shared_modes(self.by_row(), omega, [omega], [(), declared])
+        return whole - allowed
+
+    @cached_property
+    def modes(self) -> Modes:
+        """What labels the modes: wave, constraint, entropy or vortical."""
+        return modes_of(self)
 
     def column(self, name: str) -> list[int]:
         """The columns of a field by its name, or of one component by its amplitude's name.
@@ -364,14 +392,20 @@ def plane_wave(linear: LinearizedModel, direction: Any, angle: str | None) -> Wa
 
     wave = Wave(linear.axes, k, amplitude)
     number = {c.symbol: j for j, c in enumerate(columns)}
-    rows: list[Row] = []
-    entries: dict[tuple[int, int], Expr] = {}
-    for row, form in _equations(linear, wave):
-        entries |= {(len(rows), number[s]): c for s, c in form.items() if s is not None and c != 0}
-        rows.append(row)
+
+    def by_column(form: Any) -> dict[int, Expr]:
+        return {number[s]: c for s, c in form.items() if s is not None and c != 0}
+
+    equations = [(row, by_column(form)) for row, form in _equations(linear, linear.laws, wave)]
+    rows = tuple(row for row, _ in equations)
     if len(rows) != len(columns):
         raise UndeterminedError(f"{len(rows)} component equations for {len(columns)} unknowns")
-    return WaveMatrix(linear, k, tuple(rows), columns, entries)
+    entries = {(i, j): c for i, (_, form) in enumerate(equations) for j, c in form.items()}
+    made = WaveMatrix(linear, k, rows, columns, entries)
+    redundant = _equations(linear, linear.redundant, wave)
+    return replace(
+        made, constraints=preserved(made, [(row, by_column(form)) for row, form in redundant])
+    )
 
 
 def _default_fields(wave: WaveMatrix) -> tuple[str, ...]:
@@ -418,11 +452,11 @@ def _amplitudes(linear: LinearizedModel) -> tuple[Amplitude, ...]:
     return tuple(found)
 
 
-def _equations(linear: LinearizedModel, wave: Wave) -> Any:
+def _equations(linear: LinearizedModel, laws: Mapping[str, Law], wave: Wave) -> Any:
     """Each component equation with its linear form (zero rows of a symmetric law left out)."""
     from sympy import Add
 
-    for law in linear.laws.values():
+    for law in laws.values():
         kept = [p for p in linear.ledger if p.law == law.name and p.fate == KEPT]
         residual = Add(*(p.value if p.side == "left" else -p.value for p in kept))
         form = lower(residual, wave)

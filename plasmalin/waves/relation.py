@@ -8,15 +8,16 @@ from fractions import Fraction
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
-from sympy import Add, Expr, Poly, Symbol, latex, sympify
+from sympy import Add, Expr, Float, Poly, Rational, Symbol, latex, sympify
 
 from ..declare.dimensions import Dimensions
-from ..declare.notation import SUPERSCRIPT, paper
+from ..declare.notation import paper
 from ..errors import DeclarationError, UndeterminedError
 from ..exact.determinant import determinant, underdetermined_block
 from ..exact.polynomial import ExactPolynomial
 from ..exact.rational import exact_rational
 from .coefficients import by_powers, normalized_coefficients, printed_coefficients
+from .labels import Modes
 from .ordering import LeadingBalance, leading_balances
 
 if TYPE_CHECKING:
@@ -28,7 +29,7 @@ LONGEST_LATEX = 4000
 
 @dataclass(frozen=True)
 class Factor:
-    """An irreducible factor of the relation.
+    """An irreducible factor of the relation, with the modes of one label that it holds.
 
     Attributes
     ----------
@@ -37,10 +38,13 @@ class Factor:
     multiplicity : int
     degree : int
         In omega.
+    label : str
+        "wave", "constraint", "entropy" or "vortical"; see `plasmalin.waves.labels`.
     """
 
     polynomial: ExactPolynomial
     multiplicity: int
+    label: str = "wave"
 
     @property
     def expr(self) -> Expr:
@@ -51,8 +55,10 @@ class Factor:
         return self.polynomial.degree
 
     def __str__(self) -> str:
-        power = f"  (multiplicity {self.multiplicity})" if self.multiplicity > 1 else ""
-        return f"{by_powers(self.polynomial)} = 0{power}"
+        power = f"multiplicity {self.multiplicity}" if self.multiplicity > 1 else ""
+        label = self.label if self.label != "wave" else ""
+        said = ", ".join(x for x in (power, label) if x)
+        return f"{by_powers(self.polynomial)} = 0" + (f"  ({said})" if said else "")
 
 
 class Relation:
@@ -70,16 +76,39 @@ class Relation:
         self,
         exact: ExactPolynomial,
         symbols: Mapping[str, Symbol],
-        dimensions: Dimensions | None = None,
+        wave: WaveMatrix | None = None,
+        values: Mapping[Any, Any] | None = None,
     ) -> None:
-        self.exact = exact
-        self._symbols = dict(symbols)
-        self._dimensions = dimensions or Dimensions({})
+        self.exact, self._symbols = exact, dict(symbols)
+        self._wave, self._values = wave, dict(values or {})
+
+    @property
+    def forbidden_modes(self) -> int:
+        """How many zero modes of the determinant violate a declared constraint.
+
+        `exact`, `polynomial` and `factors` hold them; `zero_modes`, and roots and branches with ``zero_modes=True``, do not.
+        """
+        return 0 if self._wave is None else self._wave.forbidden_modes
+
+    @cached_property
+    def _modes(self) -> Modes | None:
+        if self._wave is None:
+            return None
+        return self._wave.modes.put(lambda c: c.xreplace(self._values))
+
+    @property
+    def _dimensions(self) -> Dimensions:
+        return Dimensions({}) if self._wave is None else self._wave.all_dimensions
 
     @property
     def zero_modes(self) -> int:
-        """The multiplicity of omega = 0."""
-        return self.exact.lowest
+        """The multiplicity of omega = 0, without the modes that a declared constraint forbids."""
+        return self.exact.lowest - self.forbidden_modes
+
+    @cached_property
+    def zero_mode_labels(self) -> dict[str, int]:
+        """How many of all zero modes have each label, those that a declared constraint forbids among "constraint"."""
+        return {f.label: f.multiplicity for f in self.factors if f.polynomial.lowest > 0}
 
     @property
     def degree(self) -> int:
@@ -88,9 +117,23 @@ class Relation:
 
     @cached_property
     def factors(self) -> tuple[Factor, ...]:
-        """The irreducible factors that hold omega, the zero modes (omega itself) last."""
-        found = [Factor(p, m) for p, m in self.exact.factor()[1]]
-        return tuple(sorted(found, key=lambda f: f.polynomial.lowest > 0))
+        """The irreducible factors that hold omega, the zero modes (omega itself) last.
+
+        A factor whose modes have several labels stands once for each of them, with so many modes as its multiplicity.
+        """
+        linear = [(p.as_expr(), m) for p, m in self._irreducible if p.degree == 1]
+        labels = iter(
+            self._modes.labels(linear) if self._modes else [{"wave": m} for _, m in linear]
+        )
+        found = []
+        for p, m in self._irreducible:
+            parts = next(labels) if p.degree == 1 else {"wave": m}
+            found += [Factor(p, n, label) for label, n in parts.items()]
+        return tuple(found)
+
+    @cached_property
+    def _irreducible(self) -> tuple[tuple[ExactPolynomial, int], ...]:
+        return tuple(sorted(self.exact.factor()[1], key=lambda f: f[0].lowest > 0))
 
     @cached_property
     def polynomial(self) -> Poly:
@@ -120,11 +163,12 @@ class Relation:
         UndeterminedError
             When nothing of the relation is left.
         """
-        made = {self._symbol(key): sympify(value, strict=True) for key, value in values.items()}
+        made = {self._symbol(key): _in_rationals(value) for key, value in values.items()}
         replaced = self.exact.substitute(made)
         if replaced.degree < 0:
             raise UndeterminedError("with these values the relation vanishes identically")
-        return Relation(replaced.primitive()[1], self._symbols, self._dimensions)
+        earlier = {s: x.xreplace(made) for s, x in self._values.items()}
+        return Relation(replaced.primitive()[1], self._symbols, self._wave, {**made, **earlier})
 
     def _symbol(self, key: Any) -> Any:
         if not isinstance(key, str):
@@ -159,10 +203,10 @@ class Relation:
         """
         target = self.exact.main if name == "omega" else self._symbol(name)
         found: list[Expr] = []
-        for factor in self.factors:
-            if target is self.exact.main and factor.polynomial.lowest > 0:
+        for polynomial, multiplicity in self._irreducible:
+            if target is self.exact.main and polynomial.lowest > 0:
                 continue
-            found += closed_forms(factor, target) * factor.multiplicity
+            found += closed_forms(polynomial, target) * multiplicity
         return found
 
     def leading(self, orders: Mapping[Any, Any]) -> list[LeadingBalance]:
@@ -249,9 +293,17 @@ class Relation:
         lines = [str(f) for f in self.factors if f.polynomial.lowest == 0]
         if self.zero_modes:
             power = paper(self.exact.main**self.zero_modes)
-            plural = "" if self.zero_modes == 1 else "s"
-            lines.append(f"{power} = 0: {self.zero_modes} zero mode{plural}")
+            lines.append(f"{power} = 0: {_counted(self.zero_modes, self._allowed_labels)}")
+        if self.forbidden_modes:
+            lines.append(
+                f"left out: {_counted(self.forbidden_modes, {})} that a constraint forbids"
+            )
         return "\n".join(lines)
+
+    @property
+    def _allowed_labels(self) -> dict[str, int]:
+        left = self.zero_mode_labels.get("constraint", 0) - self.forbidden_modes
+        return {label: n for label, n in {**self.zero_mode_labels, "constraint": left}.items() if n}
 
     def __repr__(self) -> str:
         return f"<Relation: degree {self.degree}, zero modes {self.zero_modes}, {len(self.exact)} terms>"
@@ -259,12 +311,11 @@ class Relation:
     def latex(self) -> str:
         """The relation as a product of its factors, set equal to zero."""
         parts = []
-        for f in self.factors:
-            power = f"^{{{f.multiplicity}}}" if f.multiplicity > 1 else ""
-            body = latex(_by_printed_powers(f.polynomial))
-            parts.append(
-                f"{body}{power}" if f.polynomial.lowest else rf"\left({body}\right){power}"
-            )
+        for p, whole in self._irreducible:
+            m = whole - (self.forbidden_modes if p.lowest else 0)
+            power = f"^{{{m}}}" if m > 1 else ""
+            body = latex(_by_printed_powers(p))
+            parts += [f"{body}{power}" if p.lowest else rf"\left({body}\right){power}"] if m else []
         return " ".join(parts) + " = 0"
 
     def _repr_latex_(self) -> str | None:
@@ -278,17 +329,31 @@ def _by_printed_powers(polynomial: ExactPolynomial) -> Expr:
     return Add(*(c * polynomial.main**p for p, c in printed_coefficients(polynomial).items()))
 
 
+def _in_rationals(value: Any) -> Expr:
+    """A value as an expression, floats in it as the binary rationals that they are."""
+    made = sympify(value, strict=True)
+    floats = ((x, exact_rational(x)) for x in made.atoms(Float))
+    return made.xreplace({x: Rational(q.numerator, q.denominator) for x, q in floats})
+
+
+def _counted(count: int, labels: Mapping[str, int]) -> str:
+    """Zero modes in words, with what they are unless all are waves."""
+    told = ", ".join(f"{n} {label}" for label, n in labels.items())
+    plural = "" if count == 1 else "s"
+    return f"{count} zero mode{plural}" + (f" ({told})" if set(labels) - {"wave"} else "")
+
+
 def collected(polynomial: ExactPolynomial) -> Expr:
     """A polynomial by powers of omega, divided by what the leading term allows."""
     coefficients = normalized_coefficients(polynomial)
     return Add(*(c * polynomial.main**p for p, c in coefficients.items()))
 
 
-def closed_forms(factor: Factor, target: Symbol) -> list[Expr]:
+def closed_forms(factor: ExactPolynomial, target: Symbol) -> list[Expr]:
     """Roots of one factor in radicals."""
     from sympy import roots, sqrt
 
-    poly = Poly(collected(factor.polynomial), target)
+    poly = Poly(collected(factor), target)
     if poly.degree() == 0:
         return []
     even = all(m[0] % 2 == 0 for m in poly.monoms())
@@ -312,7 +377,7 @@ def derive_relation(wave: WaveMatrix) -> Relation:
             "no unknown changes in time: omega does not occur in the determinant; "
             "a law with a time derivative is missing"
         )
-    return Relation(exact.primitive()[1], wave.linear.symbols, wave.all_dimensions)
+    return Relation(exact.primitive()[1], wave.linear.symbols, wave)
 
 
 def undetermined_message(wave: WaveMatrix) -> str:

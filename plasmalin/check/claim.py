@@ -8,14 +8,27 @@ from dataclasses import dataclass
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
-from sympy import Add, Basic, Eq, Expr, I, Matrix, MatrixBase, Symbol, latex, sqrt
-from sympy import expand_trig, sympify
+from sympy import (
+    Add,
+    Basic,
+    Eq,
+    Expr,
+    I,
+    Matrix,
+    MatrixBase,
+    Symbol,
+    expand_trig,
+    latex,
+    sqrt,
+    sympify,
+)
 from sympy.core.function import AppliedUndef
 
 from ..declare.constants import CODATA
 from ..declare.operators import omega
 from ..declare.typed import read_claim, read_matrix, read_typed
 from ..errors import DeclarationError, ReadError
+from .roles import SPELLINGS, constant
 
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
@@ -33,11 +46,14 @@ class Claim:
         As written; shorthands are symbols.
     definitions : mapping of Symbol to Expr
         What each shorthand that is used stands for; may hold other shorthands.
+    of_field : Symbol or None
+        For a wave equation the amplitude that it is for; it was divided by it.
     """
 
     left: Expr
     right: Expr
     definitions: Mapping[Symbol, Expr]
+    of_field: Symbol | None = None
 
     @cached_property
     def residual(self) -> Expr:
@@ -55,7 +71,7 @@ class Claim:
     def mapped(self, change: Any) -> Claim:
         """The claim with a function applied to both sides and to every definition."""
         made = {s: change(d) for s, d in self.definitions.items()}
-        return Claim(change(self.left), change(self.right), made)
+        return Claim(change(self.left), change(self.right), made, self.of_field)
 
     @property
     def solved(self) -> bool:
@@ -79,12 +95,18 @@ def make_claim(wave: WaveMatrix, claim: Any, where: Mapping[Any, Any]) -> Claim:
     ReadError
         When a text cannot be read, is ambiguous, or holds an unknown name.
     DeclarationError
-        When `where` redefines what the model has, or defines in a circle.
+        When `where` redefines what the model has, or defines in a circle; when the claim holds a symbol that nothing
+        is known of, or neither ω nor a wave number.
     """
     book = Names(wave, where)
     left, right = book.sides(claim)
-    used = book.used(left - right if left.is_commutative else left)
-    return Claim(left, right, used)
+    made = Claim(left, right, book.used(left - right), book.field)
+    if not made.residual.free_symbols & {omega, *wave.wave_symbols}:
+        raise DeclarationError(
+            "claim: it holds neither omega nor a wave number, so it says nothing of a wave; "
+            "give a relation such as omega^2 = ..."
+        )
+    return made
 
 
 class Names:
@@ -92,8 +114,10 @@ class Names:
 
     def __init__(self, wave: WaveMatrix, where: Mapping[Any, Any]) -> None:
         self.wave = wave
+        self.field: Symbol | None = None
         self.symbols: dict[str, Any] = {
-            **{n: Symbol(n, positive=True) for n in CODATA},
+            **{n: constant(wave.linear.symbols, n) for n in CODATA},
+            **{n: constant(wave.linear.symbols, m) for n, m in SPELLINGS.items()},
             **wave.linear.symbols,
             **{s.name: s for c in wave.k for s in c.free_symbols},
             "omega": omega,
@@ -125,7 +149,11 @@ class Names:
         try:
             made = sympify(given, strict=True)
         except (TypeError, ValueError):
-            raise DeclarationError(f"{place}: {given!r} is not an expression") from None
+            made = None
+        if not isinstance(made, Expr) or made.has(MatrixBase):
+            raise DeclarationError(
+                f"{place}: {given!r} is not an expression; give a text, a SymPy expression or a number"
+            )
         return self._own(made, place)
 
     def sides(self, claim: Any) -> tuple[Expr, Expr]:
@@ -192,7 +220,10 @@ class Names:
         (field,) = fields
         parts = [(e.diff(field), e.xreplace({field: sympify(0)})) for e in (left, right)]
         if any(rest != 0 or slope.has(field) for slope, rest in parts):
-            raise DeclarationError(f"claim: the wave equation is not linear in {field}")
+            raise DeclarationError(
+                f"claim: every term of a wave equation holds its field once; {field} stands otherwise here"
+            )
+        self.field = field
         return parts[0][0], parts[1][0]
 
 
@@ -201,6 +232,8 @@ def derivatives(wave: WaveMatrix) -> dict[str, Any]:
     square = Add(*(c**2 for c in wave.k))
     along = {f"partial_{a}": _times(I * c) for a, c in zip(wave.linear.axes, wave.k, strict=True)}
     amplitudes = {s.name: s for s in wave.amplitudes if s.name not in wave.linear.symbols}
+    if len(wave.linear.axes) == 1:  # a vector has one component, and needs no index
+        amplitudes |= {c.field.name: c.symbol for c in wave.columns}
     return {
         **amplitudes,
         **along,
@@ -216,7 +249,9 @@ def _times(factor: Expr) -> Any:
 def _implied(wave: WaveMatrix, symbols: Mapping[str, Any]) -> dict[str, Expr]:
     """Usual names of the wave vector that the wave itself does not use: k = |k| and its components."""
     found = {
-        f"k_{a}": c for a, c in zip(wave.linear.axes, wave.k, strict=True) if f"k_{a}" not in symbols
+        f"k_{a}": c
+        for a, c in zip(wave.linear.axes, wave.k, strict=True)
+        if f"k_{a}" not in symbols
     }
     square = Add(*(c**2 for c in wave.k))
     single = [c for c in wave.k if c != 0]

@@ -13,6 +13,7 @@ from sympy import tan as tangent
 from ..declare.operators import omega
 from ..exact.polynomial import ExactPolynomial
 from ..exact.radicals import rational_numerator
+from .roles import SPELLINGS
 
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
@@ -84,7 +85,9 @@ def derive(wave: WaveMatrix, symbols: Iterable[Symbol], constants: Iterable[Symb
     angles = tuple(a for a in raw.generators if isinstance(a, sin | cos))
     equations = [*wave.linear.conditions, *_light(constants)]
     used = _solved(equations, set(symbols), set(raw.generators))
-    made = raw.substitute({**{a: without_angles(a) for a in raw.generators if a != without_angles(a)}})
+    made = raw.substitute(
+        {**{a: without_angles(a) for a in raw.generators if a != without_angles(a)}}
+    )
     for c in used:
         made = made.substitute({c.symbol: c.value})
     return Derived(bare(made), tuple(used), angles)
@@ -120,7 +123,7 @@ def _by_half(f: Expr) -> Expr:
 
 
 def _light(constants: Iterable[Symbol]) -> list[Eq]:
-    found = {s.name: s for s in constants}
+    found = {SPELLINGS.get(s.name, s.name): s for s in constants}
     if {"c", "epsilon_0", "mu_0"} <= set(found):
         return [Eq(found["c"] ** 2 * found["epsilon_0"] * found["mu_0"], 1, evaluate=False)]
     return []
@@ -134,7 +137,8 @@ def _solved(equations: list[Eq], claimed: set[Symbol], needed: set[Any]) -> list
         for c in used:
             residual = residual.xreplace({c.symbol: c.value})
         order = sorted(
-            residual.free_symbols, key=lambda s: (s in claimed, s.name == "c", s.name != "mu_0", s.name)
+            residual.free_symbols,
+            key=lambda s: (s in claimed, s.name == "c", s.name not in ("mu_0", "mu0"), s.name),
         )
         for symbol in order:
             value = _linear_solution(residual, symbol)

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import difflib
 from collections.abc import Mapping
 from dataclasses import dataclass
 from functools import cached_property
@@ -17,18 +16,14 @@ from sympy import (
     Matrix,
     MatrixBase,
     Symbol,
-    expand_trig,
-    latex,
     sqrt,
     sympify,
 )
-from sympy.core.function import AppliedUndef
 
-from ..declare.constants import CODATA
 from ..declare.operators import omega
-from ..declare.typed import read_claim, read_matrix, read_typed
-from ..errors import DeclarationError, ReadError
-from .roles import SPELLINGS, constant
+from ..declare.typed import latex_reading, read_claim, read_matrix
+from ..errors import DeclarationError
+from .names import Names
 
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
@@ -82,8 +77,8 @@ class Claim:
     @property
     def reading(self) -> str:
         """The claim as it was understood, in LaTeX, with its definitions."""
-        parts = [f"{latex(self.left)} = {latex(self.right)}"]
-        parts += [f"{latex(s)} = {latex(d)}" for s, d in self.definitions.items()]
+        parts = [latex_reading(self.left, self.right)]
+        parts += [latex_reading(s, d) for s, d in self.definitions.items()]
         return r",\quad ".join(parts)
 
 
@@ -98,7 +93,7 @@ def make_claim(wave: WaveMatrix, claim: Any, where: Mapping[Any, Any]) -> Claim:
         When `where` redefines what the model has, or defines in a circle; when the claim holds a symbol that nothing
         is known of, or neither ω nor a wave number.
     """
-    book = Names(wave, where)
+    book = WaveNames(wave, where)
     left, right = book.sides(claim)
     made = Claim(left, right, book.used(left - right), book.field)
     if not made.residual.free_symbols & {omega, *wave.wave_symbols}:
@@ -109,60 +104,23 @@ def make_claim(wave: WaveMatrix, claim: Any, where: Mapping[Any, Any]) -> Claim:
     return made
 
 
-class Names:
-    """What the names of a claim mean: the model's symbols, the wave's, shorthands and constants of nature."""
+class WaveNames(Names):
+    """The names of a claim on a wave."""
 
     def __init__(self, wave: WaveMatrix, where: Mapping[Any, Any]) -> None:
         self.wave = wave
         self.field: Symbol | None = None
-        self.symbols: dict[str, Any] = {
-            **{n: constant(wave.linear.symbols, n) for n in CODATA},
-            **{n: constant(wave.linear.symbols, m) for n, m in SPELLINGS.items()},
-            **wave.linear.symbols,
-            **{s.name: s for c in wave.k for s in c.free_symbols},
-            "omega": omega,
-        }
-        self.implied = _implied(wave, self.symbols)
-        self.given = {_name(key): value for key, value in where.items()}
-        for name in self.given:
-            if name in wave.linear.symbols or name == "omega" or name in _wave_names(wave):
-                raise DeclarationError(
-                    f"where: '{name}' is a symbol of the model already; choose another name for the shorthand"
-                )
-        shorthands = {n: Symbol(n) for n in (*self.implied, *self.given)}
-        self.names = {**self.symbols, **shorthands, "i": I, "I": self.symbols.get("I", I)}
-        self.definitions: dict[Symbol, Expr] = {
-            shorthands[n]: e for n, e in self.implied.items() if n not in self.given
-        }
-        for name, value in self.given.items():
-            self.definitions[shorthands[name]] = self.expression(value, f"where: {name}")
-        self._refuse_circles()
-
-    def expression(self, given: Any, place: str) -> Expr:
-        """One expression from text, a number or SymPy."""
-        if isinstance(given, str):
-            try:
-                return read_typed(given, self.names, self._unknown)
-            except ReadError as error:
-                error.message = f"{place}: {error.message}"
-                raise
-        try:
-            made = sympify(given, strict=True)
-        except (TypeError, ValueError):
-            made = None
-        if not isinstance(made, Expr) or made.has(MatrixBase):
-            raise DeclarationError(
-                f"{place}: {given!r} is not an expression; give a text, a SymPy expression or a number"
-            )
-        return self._own(made, place)
+        waves = {s.name: s for c in wave.k for s in c.free_symbols}
+        symbols = {**wave.linear.symbols, **waves, "omega": omega}
+        super().__init__(symbols, symbols, where, _implied(wave, symbols))
 
     def sides(self, claim: Any) -> tuple[Expr, Expr]:
         """The two sides of a claim; a matrix is its determinant, an expression is set equal to zero."""
         if isinstance(claim, str):
             if "[[" in claim.replace(" ", ""):
-                return _determinant(read_matrix(claim, self.names, self._unknown)), sympify(0)
+                return _determinant(self.read(read_matrix, claim, "claim")), sympify(0)
             names = {**self.names, **derivatives(self.wave)}
-            return self._without_field(*read_claim(claim, names, self._unknown))
+            return self._without_field(*read_claim(claim, names, self.unknown))
         if isinstance(claim, MatrixBase | list | tuple):
             rows = claim.tolist() if isinstance(claim, MatrixBase) else claim
             made = [[self.expression(x, "claim") for x in row] for row in rows]
@@ -170,42 +128,6 @@ class Names:
         if isinstance(claim, Eq):
             return self.expression(claim.lhs, "claim"), self.expression(claim.rhs, "claim")
         return self.expression(claim, "claim"), sympify(0)
-
-    def used(self, expr: Expr) -> dict[Symbol, Expr]:
-        """The definitions that an expression needs, in the order given."""
-        needed: set[Symbol] = set()
-        stack = [expr]
-        while stack:
-            new = stack.pop().free_symbols & set(self.definitions) - needed
-            needed |= new
-            stack += [self.definitions[s] for s in new]
-        return {s: d for s, d in self.definitions.items() if s in needed}
-
-    def _own(self, expr: Expr, place: str) -> Expr:
-        replaced: dict[Any, Any] = {}
-        for atom in expr.free_symbols | expr.atoms(AppliedUndef):
-            name = getattr(atom, "name", str(atom))
-            if name not in self.names:
-                self._unknown(name, place)
-            replaced[atom] = self.names[name]
-        return expand_trig(expr.xreplace(replaced))
-
-    def _unknown(self, name: str, place: str = "claim") -> Expr:
-        near = difflib.get_close_matches(name, self.names, 3)
-        hint = f" (did you mean {' or '.join(near)}?)" if near else ""
-        raise DeclarationError(
-            f"{place}: '{name}' is not a symbol of the model{hint}; say what it stands for, where={{'{name}': \"...\"}}"
-        )
-
-    def _refuse_circles(self) -> None:
-        for symbol, meaning in self.definitions.items():
-            expr = meaning
-            for _ in range(DEEPEST):
-                expr = expr.xreplace(self.definitions)
-            if expr.free_symbols & set(self.definitions):
-                raise DeclarationError(
-                    f"where: '{symbol}' is defined through itself; define it in symbols of the model"
-                )
 
     def _without_field(self, left: Expr, right: Expr) -> tuple[Expr, Expr]:
         """A wave equation for one field is divided by that field's amplitude."""
@@ -258,14 +180,6 @@ def _implied(wave: WaveMatrix, symbols: Mapping[str, Any]) -> dict[str, Expr]:
     size = single[0] if len(single) == 1 else sqrt(square)
     found |= {n: size for n in ("k", "k_abs") if n not in symbols}
     return found
-
-
-def _wave_names(wave: WaveMatrix) -> set[str]:
-    return {s.name for c in wave.k for s in c.free_symbols}
-
-
-def _name(key: Any) -> str:
-    return key.name if isinstance(key, Symbol) else str(key)
 
 
 def _determinant(rows: list[list[Expr]]) -> Expr:

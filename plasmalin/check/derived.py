@@ -84,7 +84,7 @@ def derive(wave: WaveMatrix, symbols: Iterable[Symbol], constants: Iterable[Symb
     raw = wave.relation.exact
     angles = tuple(a for a in raw.generators if isinstance(a, sin | cos))
     equations = [*wave.linear.conditions, *_light(constants)]
-    used = _solved(equations, set(symbols), set(raw.generators))
+    used = solve_conditions(equations, set(symbols), set(raw.generators))
     made = raw.substitute(
         {**{a: without_angles(a) for a in raw.generators if a != without_angles(a)}}
     )
@@ -129,7 +129,7 @@ def _light(constants: Iterable[Symbol]) -> list[Eq]:
     return []
 
 
-def _solved(equations: list[Eq], claimed: set[Symbol], needed: set[Any]) -> list[Condition]:
+def solve_conditions(equations: list[Eq], claimed: set[Symbol], needed: set[Any]) -> list[Condition]:
     """Each condition solved for one symbol that enters it linearly, rather one that the claim does not use."""
     used: list[Condition] = []
     for equation in equations:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import html
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from functools import cached_property
 from typing import TYPE_CHECKING, Any, cast
 
@@ -19,6 +19,7 @@ from .background import Equilibrium, balance, conditions
 from .ledger import KEPT, Ledger, entries
 
 if TYPE_CHECKING:
+    from ..check.verdict import Verdict
     from ..waves.matrix import WaveMatrix
     from .audit import Audit
 
@@ -68,6 +69,8 @@ class LinearizedModel:
         Every piece of every term: order, fate, reason.
     background : Equilibrium
         The equilibrium in words.
+    vectors : mapping of str to Expr
+        The vector parameters by name.
     """
 
     title: str
@@ -78,6 +81,7 @@ class LinearizedModel:
     defaults: Mapping[str, float]
     ledger: Ledger
     background: Equilibrium
+    vectors: Mapping[str, Expr] = field(default_factory=dict)
 
     @cached_property
     def equations(self) -> Equations:
@@ -135,6 +139,47 @@ class LinearizedModel:
         from ..waves.matrix import plane_wave
 
         return plane_wave(self, direction, angle)
+
+    def check(self, law: str, claim: Any, where: Mapping[Any, Any] | None = None) -> Verdict:
+        """Judge a linearized law that was derived by hand.
+
+        Parameters
+        ----------
+        law : str
+            The law's name; "momentum, x" for one component of a vector law.
+        claim : str or SymPy expression or equation
+            The linearized law. The name of a field is its first-order part, ``n_e`` for ñ_e; backgrounds are written
+            by their parameters. In text, as in ``"m_e n_0 ∂_t v_e = e n_0 grad(phi) - T_e grad(n_e)"``, vectors may
+            be written by component, ``v_e_x`` and ``∂_x phi``.
+        where : mapping of str to str or expression, optional
+            Shorthands of the claim, such as ``{"c_s": "sqrt(T_e/m_i)"}``.
+
+        Returns
+        -------
+        Verdict
+            ``identical`` up to a factor free of the wave and modulo the background's conditions, else ``differs``
+            with the wrong, missing and superfluous terms.
+
+        Raises
+        ------
+        DeclarationError
+            When there is no such law, a name is unknown, or a term is not of a linear law.
+        ReadError
+            When a text cannot be read.
+        RankError
+            When ranks do not fit.
+
+        Examples
+        --------
+        >>> import plasmalin as plin
+        >>> linear = plin.load_example("electronegative-dusty-edge").linearize()
+        >>> name = next(iter(linear.laws))
+        >>> linear.check(name, str(linear.laws[name])).kind
+        'differs'
+        """
+        from ..check.laws import check_law
+
+        return check_law(self, law, claim, where)
 
     def audit(self, *, seed: int = 0) -> Audit:
         """Check the linearization by an independent numerical path.
@@ -203,6 +248,7 @@ def linearize(model: FluidModel, assume: tuple[str, ...] = ()) -> LinearizedMode
         model.values,
         whole,
         background,
+        model.vector_parameters,
     )
 
 

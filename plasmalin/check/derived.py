@@ -7,7 +7,22 @@ from dataclasses import dataclass
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
-from sympy import Abs, Eq, Expr, Mul, Poly, PolynomialError, Symbol, cancel, cos, expand_trig, sin
+from sympy import (
+    Abs,
+    Add,
+    Eq,
+    Expr,
+    Mul,
+    Poly,
+    PolynomialError,
+    S,
+    Symbol,
+    cancel,
+    cos,
+    expand_trig,
+    factor_terms,
+    sin,
+)
 from sympy import tan as tangent
 
 from ..declare.operators import omega
@@ -129,7 +144,9 @@ def _light(constants: Iterable[Symbol]) -> list[Eq]:
     return []
 
 
-def solve_conditions(equations: list[Eq], claimed: set[Symbol], needed: set[Any]) -> list[Condition]:
+def solve_conditions(
+    equations: list[Eq], claimed: set[Symbol], needed: set[Any]
+) -> list[Condition]:
     """Each condition solved for one symbol that enters it linearly, rather one that the claim does not use."""
     used: list[Condition] = []
     for equation in equations:
@@ -153,7 +170,7 @@ def _matters(condition: Condition, later: list[Condition], seen: set[Any]) -> bo
 
 
 def _linear_solution(residual: Expr, symbol: Symbol) -> Expr | None:
-    top = cancel(residual).as_numer_denom()[0]
+    top = _essential(residual)
     try:
         poly = Poly(top, symbol)
     except PolynomialError:
@@ -162,3 +179,11 @@ def _linear_solution(residual: Expr, symbol: Symbol) -> Expr | None:
         return None
     slope, rest = poly.all_coeffs()
     return Mul(-1, rest, 1 / slope)
+
+
+def _essential(residual: Expr) -> Expr:
+    """The one factor that must vanish: e (Z n_i0 − n_e0) = 0 is no condition on e. 1 where it is not known which."""
+    factors = Mul.make_args(factor_terms(cancel(residual).as_numer_denom()[0]))
+    sums = [f for f in factors if isinstance(f, Add)]
+    found = sums or [f for f in factors if not f.is_number and not f.is_nonzero]
+    return found[0] if len(found) == 1 else S.One

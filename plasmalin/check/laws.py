@@ -125,7 +125,8 @@ def _compared(
     plain = _comparison(linear, pieces, made, index, [])
     if plain.slips and linear.conditions:
         symbols = made.claim.residual.free_symbols
-        used = solve_conditions(list(linear.conditions), symbols, symbols)
+        needed = symbols.union(*(p.value.free_symbols for p in pieces if p.fate == KEPT))
+        used = solve_conditions(list(linear.conditions), symbols, needed)
         modulo = _comparison(linear, pieces, made, index, used)
         return modulo if modulo.merit > plain.merit else plain
     return plain

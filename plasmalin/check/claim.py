@@ -96,6 +96,8 @@ def make_claim(wave: WaveMatrix, claim: Any, where: Mapping[Any, Any]) -> Claim:
     book = WaveNames(wave, where)
     left, right = book.sides(claim)
     made = Claim(left, right, book.used(left - right), book.field)
+    if made.residual == 0:
+        raise DeclarationError("claim: both sides are the same, so it says nothing of a wave")
     if not made.residual.free_symbols & {omega, *wave.wave_symbols}:
         raise DeclarationError(
             "claim: it holds neither omega nor a wave number, so it says nothing of a wave; "
@@ -119,8 +121,8 @@ class WaveNames(Names):
         if isinstance(claim, str):
             if "[[" in claim.replace(" ", ""):
                 return _determinant(self.read(read_matrix, claim, "claim")), sympify(0)
-            names = {**self.names, **derivatives(self.wave)}
-            return self._without_field(*read_claim(claim, names, self.unknown))
+            both = self.read(read_claim, claim, "claim", derivatives(self.wave))
+            return self._without_field(*both)
         if isinstance(claim, MatrixBase | list | tuple):
             rows = claim.tolist() if isinstance(claim, MatrixBase) else claim
             made = [[self.expression(x, "claim") for x in row] for row in rows]
@@ -183,7 +185,7 @@ def _implied(wave: WaveMatrix, symbols: Mapping[str, Any]) -> dict[str, Expr]:
 
 
 def _determinant(rows: list[list[Expr]]) -> Expr:
-    if len({len(r) for r in rows} | {len(rows)}) != 1 or len(rows) > 4:
+    if {len(r) for r in rows} != {len(rows)} or len(rows) > 4:
         raise DeclarationError("claim: a matrix must be square, with at most four rows")
     found: Basic = Matrix(rows).det(method="berkowitz")
     return found

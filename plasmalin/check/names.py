@@ -74,10 +74,12 @@ class Names:
             )
         return expand_trig(made.xreplace(self.meanings(made, place)))
 
-    def read(self, reader: Callable[..., Any], text: str, place: str) -> Any:
-        """A text by one of the readers of typed mathematics."""
+    def read(
+        self, reader: Callable[..., Any], text: str, place: str, more: Mapping[str, Any] | None = None
+    ) -> Any:
+        """A text by one of the readers of typed mathematics, with more names than those of `where`."""
         try:
-            return reader(text, self.names, self.unknown)
+            return reader(text, {**self.names, **(more or {})}, self.unknown)
         except ReadError as error:
             error.message = f"{place}: {error.message}"
             raise

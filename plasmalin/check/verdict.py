@@ -79,7 +79,7 @@ class Small:
 
     def __str__(self) -> str:
         number = "" if self.value is None else f" (here {self.value:.3g})"
-        return f"{paper(self.group)} ≪ 1{number}" + ("" if self.physical else " — unphysical")
+        return f"{paper(self.group)} ≪ 1{number}" + ("" if self.physical else ", an unphysical ordering")
 
 
 @dataclass(frozen=True)

@@ -8,7 +8,7 @@ import os
 import tempfile
 import tomllib
 from collections.abc import Callable, Iterable, Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from importlib import resources
 from pathlib import Path
 from typing import Any
@@ -68,10 +68,10 @@ class StatedClaim:
     """
 
     text: str
-    law: str | None = None
-    where: Mapping[str, Any] = field(default_factory=dict)
-    under: Mapping[str, Any] | tuple[str, ...] | None = None
-    convention: Mapping[str, str] = field(default_factory=dict)
+    law: str | None
+    where: Mapping[str, Any]
+    under: Mapping[str, Any] | tuple[str, ...] | None
+    convention: Mapping[str, str]
 
 
 @dataclass(frozen=True)

@@ -5,6 +5,7 @@ so that growth is Im omega > 0; right-handed axes x, y, z; wave numbers in rad/m
 """
 
 from . import constants as constants
+from .check.convention import Convention as Convention
 from .declare import laws as laws
 from .declare.fields import components as components
 from .declare.files import load as load
@@ -76,6 +77,7 @@ __all__ = [
     "k_abs",
     "constants",
     "laws",
+    "Convention",
     "PlasmalinError",
     "DeclarationError",
     "RankError",

@@ -1,4 +1,6 @@
-"""The command line: ``plasmalin derive FILE|EXAMPLE [--out DIR]``, ``plasmalin example [NAME]``."""
+"""The command line: ``plasmalin derive FILE|EXAMPLE [--out DIR]``, ``plasmalin check FILE [--out DIR]`` and
+``plasmalin example [NAME]``.
+"""
 
 from __future__ import annotations
 
@@ -12,8 +14,11 @@ import numpy as np
 from numpy.typing import NDArray
 
 from . import __version__
+from .check.convention import Convention
+from .check.verdict import Verdict
 from .declare.files import (
     ModelFile,
+    StatedClaim,
     Sweep,
     example_names,
     example_path,
@@ -21,14 +26,28 @@ from .declare.files import (
     write_whole,
 )
 from .errors import ModelFileError, PlasmalinError
+from .linearize.linearized import LinearizedModel
 from .present.archive import csv_text, save_branches
-from .present.report import CAUTION, branch_table, derivation, growth_text, relation_text
+from .present.report import (
+    CAUTION,
+    branch_table,
+    claim_note,
+    derivation,
+    growth_text,
+    relation_text,
+)
 from .roots.branches import Branches
 from .waves.matrix import WaveMatrix
 
 
 def main(arguments: Sequence[str] | None = None) -> int:
-    """Run the command line; returns the exit code: 0 done, 1 the input is at fault, 2 the command is."""
+    """Run the command line.
+
+    Returns
+    -------
+    int
+        0 done, and every claim agrees; 1 the input is at fault, or a claim does not agree; 2 the command is at fault.
+    """
     options = _parser().parse_args(arguments)
     try:
         return int(options.run(options))
@@ -56,6 +75,12 @@ def _parser() -> argparse.ArgumentParser:
         help="write derivation.md, branches.csv, .npz and .png here",
     )
     derive.set_defaults(run=_derive)
+    check = commands.add_parser("check", help="judge the claims that a model file lists")
+    check.add_argument("source", metavar="FILE", help="a TOML model file with sections [[claim]]")
+    check.add_argument(
+        "--out", type=Path, metavar="DIR", help="write one note per claim here: claim-1.md, ..."
+    )
+    check.set_defaults(run=_check)
     example = commands.add_parser("example", help="list the shipped examples, or print one")
     example.add_argument("name", nargs="?", metavar="NAME")
     example.add_argument(
@@ -80,11 +105,7 @@ def _example(options: argparse.Namespace) -> int:
 
 def _derive(options: argparse.Namespace) -> int:
     file = read_model_file(_source(options.source))
-    if not file.wave:
-        raise ModelFileError(
-            f'{options.source}: no section [wave]; give direction = "x" or one entry per axis'
-        )
-    wave = file.model.linearize(assume=file.assume).plane_wave(**file.wave)
+    wave = _wave(file, file.model.linearize(assume=file.assume), options.source)
     branches = _swept(wave, file)
     _print(wave, branches)
     if options.out is not None:
@@ -94,6 +115,52 @@ def _derive(options: argparse.Namespace) -> int:
             + (", branches.csv, .npz, .png" if branches else "")
         )
     return 0
+
+
+def _wave(file: ModelFile, linear: LinearizedModel, source: str) -> WaveMatrix:
+    if not file.wave:
+        raise ModelFileError(
+            f'{source}: no section [wave]; give direction = "x" or one entry per axis'
+        )
+    return linear.plane_wave(**file.wave)
+
+
+def _check(options: argparse.Namespace) -> int:
+    file = read_model_file(_source(options.source))
+    if not file.claims:
+        raise ModelFileError(f'{options.source}: no section [[claim]]; give text = "omega^2 = ..."')
+    linear = file.model.linearize(assume=file.assume)
+    relations = any(claim.law is None for claim in file.claims)
+    wave = _wave(file, linear, options.source) if relations else None
+    verdicts = [_judged(linear, wave, claim, i) for i, claim in enumerate(file.claims, 1)]
+    for i, (claim, verdict) in enumerate(zip(file.claims, verdicts, strict=True), 1):
+        print(f"claim {i}: {claim.law + ': ' if claim.law else ''}{claim.text}\n{verdict}\n")
+    if options.out is not None:
+        options.out.mkdir(parents=True, exist_ok=True)
+        for i, (claim, verdict) in enumerate(zip(file.claims, verdicts, strict=True), 1):
+            note = claim_note(linear.title, claim, verdict)
+            write_whole(options.out / f"claim-{i}.md", note.encode())
+    agreed = sum(v.agrees for v in verdicts)
+    print(f"{agreed} of {len(verdicts)} claims agree")
+    return 0 if agreed == len(verdicts) else 1
+
+
+def _judged(
+    linear: LinearizedModel, wave: WaveMatrix | None, claim: StatedClaim, number: int
+) -> Verdict:
+    """The verdict on one claim of a file; an error says which claim is at fault."""
+    try:
+        if wave is None or claim.law is not None:
+            return linear.check(claim.law or "", claim.text, claim.where)
+        return wave.check(
+            claim.text,
+            where=claim.where,
+            under=claim.under,
+            convention=Convention(**claim.convention),
+            values=linear.defaults,
+        )
+    except PlasmalinError as error:
+        raise ModelFileError(f"[[claim]] {number}: {error}") from error
 
 
 def _source(name: str) -> Path:

@@ -230,3 +230,122 @@ def test_files_appear_whole_or_not_at_all(tmp_path, monkeypatch):
     with pytest.raises(OSError, match="no space"):
         write_whole(tmp_path / "x.txt", b"content")
     assert list(tmp_path.iterdir()) == []
+
+
+SPEED = 'where = { c_s = "sqrt(7*p_0/(5*rho_0))" }'
+SOUND = f"""
+[[claim]]
+text = "omega^2 = k^2 c_s^2"
+{SPEED}
+"""
+EULER = f"""
+[[claim]]
+law = "momentum"
+text = "rho_0 ∂_t v = -c_s^2 grad(rho)"
+{SPEED}
+"""
+
+
+def test_check_agrees(file, tmp_path, capsys):
+    file.write_text(MODEL + SOUND + EULER, encoding="utf-8")
+    out = tmp_path / "notes"
+    assert main(["check", str(file), "--out", str(out)]) == 0
+    printed = capsys.readouterr().out
+    assert "claim 1: omega^2 = k^2 c_s^2\nidentical: " in printed
+    assert "claim 2: momentum: rho_0 ∂_t v" in printed
+    assert "2 of 2 claims agree" in printed
+    assert sorted(p.name for p in out.iterdir()) == ["claim-1.md", "claim-2.md"]
+    note = (out / "claim-2.md").read_text(encoding="utf-8")
+    assert r"\partial_t \tilde{\mathbf{v}}" in note
+    assert "c_s = sqrt(7*p_0/(5*rho_0))" in note
+    assert "# sound" in note
+    assert r"\begin{itemize}" in note
+
+
+def test_check_disagrees(file, tmp_path, capsys):
+    wrong = SOUND.replace("k^2 c_s^2", "2 k^2 c_s^2")
+    file.write_text(MODEL + EULER.replace("-c_s", "c_s") + SOUND + wrong, encoding="utf-8")
+    assert main(["check", str(file)]) == 1
+    printed = capsys.readouterr()
+    assert "c_s² ∇ρ̃ should have the other sign" in printed.out
+    assert "1 of 3 claims agree" in printed.out
+    assert printed.err == ""
+    assert [p.name for p in tmp_path.iterdir()] == ["sound.toml"]
+
+
+def test_check_passes_on_what_the_file_states(file, monkeypatch, capsys):
+    from plasmalin.check.verdict import Verdict
+    from plasmalin.waves.matrix import WaveMatrix
+
+    asked = []
+
+    def check(self, claim, **options):
+        asked.append((claim, options))
+        return Verdict("identical", True, "", "")
+
+    monkeypatch.setattr(WaveMatrix, "check", check)
+    stated = 'under = ["k << 1"]\nphase = "exp(+i omega t)"\nunits = "gaussian"\n'
+    file.write_text(MODEL + SOUND + stated + SOUND + "under = { p_0 = 3 }\n", encoding="utf-8")
+    assert main(["check", str(file)]) == 0
+    (claim, first), (_, second) = asked
+    assert claim == "omega^2 = k^2 c_s^2"
+    assert first["where"] == {"c_s": "sqrt(7*p_0/(5*rho_0))"}
+    assert first["under"] == ("k << 1",)
+    assert first["convention"] == plin.Convention("exp(+i omega t)", "gaussian")
+    assert first["values"]["rho_0"] == 1.2
+    assert second["under"] == {"p_0": 3}
+    assert second["convention"] == plin.Convention()
+    capsys.readouterr()
+
+
+def test_laws_alone_need_no_wave(file, capsys):
+    file.write_text(MODEL.partition("[wave]")[0] + EULER, encoding="utf-8")
+    assert main(["check", str(file)]) == 0
+    file.write_text(MODEL.partition("[wave]")[0] + SOUND, encoding="utf-8")
+    assert main(["check", str(file)]) == 1
+    assert "no section [wave]" in capsys.readouterr().err
+
+
+@pytest.mark.parametrize(
+    ("old", "new", "message"),
+    [
+        ("[[claim]]", "[[law]]", "unknown entry|must be a text"),
+        ("text = ", "txet = ", r"\[\[claim\]\]: unknown entry 'txet'; did you mean 'text'"),
+        ('text = "omega^2 = k^2 c_s^2"', "text = 3", r"\[\[claim\]\] 1: 'text' must be a text"),
+        ("omega^2 = ", "omega^2 == = ", r"\[\[claim\]\] 1: claim: "),
+        (SPEED, "where = 3", r"\[\[claim\]\] 1 where: give"),
+        (SPEED, "where = { c_s = true }", "c_s: True is not a finite number"),
+        (SPEED, "", "'c_s' is not"),
+        (SPEED, SPEED + "\nunder = 3", r"\[\[claim\]\] 1 under: give"),
+        (SPEED, SPEED + '\nunits = "imperial"', "give one of SI, gaussian"),
+        (SPEED, SPEED + '\nlaw = "heat"', "no law 'heat'; there are: continuity, momentum"),
+        (SPEED, SPEED + '\nlaw = "momentum"\nunits = "SI"', "a claimed law takes 'where' only"),
+    ],
+)  # fmt: skip
+def test_claim_at_fault(file, tmp_path, capsys, old, new, message):
+    import re
+
+    file.write_text(MODEL + SOUND.replace(old, new, 1), encoding="utf-8")
+    out = tmp_path / "notes"
+    assert main(["check", str(file), "--out", str(out)]) == 1
+    printed = capsys.readouterr()
+    assert re.search(message, printed.err), printed.err
+    assert printed.out == ""
+    assert not out.exists()
+
+
+def test_no_claims(file, capsys):
+    assert main(["check", str(file)]) == 1
+    assert "no section [[claim]]" in capsys.readouterr().err
+
+
+def test_claims_are_saved(file, tmp_path):
+    from plasmalin.declare.files import save_model
+
+    stated = 'under = { p_0 = 3 }\nphase = "exp(-i omega t)"\n'
+    more = SOUND + 'under = ["k*L << 1", "p_0 = 1"]\nunits = "gaussian"\n' + EULER
+    file.write_text(MODEL + SOUND + stated + more, encoding="utf-8")
+    read = read_model_file(file)
+    again = tmp_path / "again.toml"
+    save_model(read.model, again, read.claims)
+    assert read_model_file(again).claims == read.claims

@@ -178,7 +178,18 @@ def test_constants_are_codata():
 
 def test_public_names_are_listed():
     public = {name for name in vars(plin) if not name.startswith("_")}
-    rooms = {"declare", "linearize", "waves", "exact", "roots", "study", "present", "errors", "cli"}
+    rooms = {
+        "declare",
+        "linearize",
+        "waves",
+        "exact",
+        "roots",
+        "check",
+        "study",
+        "present",
+        "errors",
+        "cli",
+    }
     assert public - rooms == set(plin.__all__)
 
 

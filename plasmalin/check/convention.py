@@ -3,15 +3,23 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Iterable, Mapping
+from collections.abc import Mapping
 from dataclasses import dataclass
-from typing import Any
+from typing import TYPE_CHECKING
 
 from sympy import Expr, I, Symbol, pi, sqrt
 
 from ..errors import DeclarationError
+from .claim import Claim
+from .compare import Match, compare
+from .derived import derive
+from .roles import Roles, roles
+
+if TYPE_CHECKING:
+    from ..waves.matrix import WaveMatrix
 
 UNITS = ("SI", "gaussian", "heaviside-lorentz")
+PHASES = ("exp(-i omega t)", "exp(+i omega t)")
 
 
 @dataclass(frozen=True)
@@ -24,7 +32,7 @@ class Convention:
         The time dependence of a plane wave: "exp(-i omega t)", growth is Im ω > 0, or "exp(+i omega t)", growth is
         Im ω < 0. The wave runs towards positive k·x in both.
     units : str, default "SI"
-        "SI", "gaussian" or "heaviside-lorentz".
+        "SI", "gaussian" or "heaviside-lorentz". Temperatures are energies in all of them.
 
     Raises
     ------
@@ -43,8 +51,8 @@ class Convention:
 
     def __post_init__(self) -> None:
         object.__setattr__(self, "phase", _phase(self.phase))
-        known = {u.lower(): u for u in UNITS} | {"cgs": "gaussian", "lorentz": UNITS[2]}
-        key = str(self.units).lower().replace("–", "-").replace(" ", "-")
+        known = {u.lower(): u for u in UNITS} | {"cgs": "gaussian", "lorentz-heaviside": UNITS[2]}
+        key = re.sub(r"[\s–_]", "-", str(self.units).lower())
         if key not in known:
             raise DeclarationError(f"units={self.units!r}: give one of {', '.join(UNITS)}")
         object.__setattr__(self, "units", known[key])
@@ -52,67 +60,119 @@ class Convention:
     @property
     def turned(self) -> bool:
         """Whether the phase has the other sign than the derived relation's."""
-        return self.phase != "exp(-i omega t)"
+        return self.phase != PHASES[0]
 
-    def others(self) -> Iterable[Convention]:
+    @property
+    def others(self) -> list[Convention]:
         """The conventions that differ from this one, nearest first."""
-        phases = ("exp(-i omega t)", "exp(+i omega t)")
-        made = (Convention(p, u) for u in UNITS for p in phases)
-        return sorted(
-            (c for c in made if c != self),
-            key=lambda c: (c.phase != self.phase) + (c.units != self.units),
-        )
+        made = [Convention(p, u) for p in PHASES for u in UNITS]
+        return sorted((c for c in made if c != self), key=self.distance)
+
+    def distance(self, other: Convention) -> int:
+        """In how many of phase and units two conventions differ."""
+        return (other.phase != self.phase) + (other.units != self.units)
 
     def __str__(self) -> str:
         return f"{self.phase}, {self.units} units"
 
 
 def _phase(given: str) -> str:
-    """Either spelling of the phase, whatever its spaces, stars and the letter of the unit."""
-    text = re.sub(r"[\s*{}]|\\", "", str(given)).replace("−", "-").replace("ω", "omega")
-    match = re.fullmatch(r"exp[(\[]?([+-]?)[ij][(\[]?(?:k[.·]?[xrz]|k_?xx)?([+-]?)omegat.*", text)
-    if match is None:
+    """Either phase from any usual spelling: exp(-iωt), exp[i(k·x − ωt)], e^{-i omega t} ..."""
+    text = re.sub(r"[\s*{}\[\]()^\\.·]|vec|bf", "", str(given))
+    text = text.replace("−", "-").replace("–", "-").replace("ω", "omega")
+    body = re.fullmatch(r"(?:exp|e)(.*)", text)
+    signs = _signs(body[1]) if body else {}
+    if "omegat" not in signs:
         raise DeclarationError(
-            f'phase={given!r}: give "exp(-i omega t)" or "exp(+i omega t)", the time dependence of a plane wave'
+            f'phase={given!r}: give "{PHASES[0]}" or "{PHASES[1]}", the time dependence of a plane wave'
         )
-    negative = (match[1] == "-") != (match[2] == "-")
-    return "exp(-i omega t)" if negative else "exp(+i omega t)"
+    if signs.get("kx") == signs["omegat"]:
+        raise DeclarationError(
+            f"phase={given!r} runs towards negative k; reverse k in the claim and state exp(±i(k.x − omega t))"
+        )
+    return PHASES[signs["omegat"] == "+"]
 
 
-@dataclass(frozen=True)
-class Roles:
-    """Which symbols of a model are charges, magnetic fields, and the constants of electromagnetism."""
+def _signs(body: str) -> dict[str, str]:
+    """The signs of iωt and of ik·x in an exponent; empty where anything else stands there."""
+    terms = re.findall(r"([+-]?)([^+-]+)", body)
+    outer = re.fullmatch(r"([+-]?)[ij](.*)", body)
+    reverse = False
+    if outer and not all(term[0] in "ij" for _, term in terms):  # one i before the bracket
+        terms, reverse = re.findall(r"([+-]?)([^+-]+)", outer[2]), outer[1] == "-"
+    else:
+        terms = [(sign, term[1:]) for sign, term in terms if term[0] in "ij"]
+    found: dict[str, str] = {}
+    for sign, term in terms:
+        name = "kx" if re.fullmatch(r"k_?[xyzr]{1,2}", term) else term
+        found[name] = "-" if (sign == "-") != reverse else "+"
+    return found if set(found) <= {"kx", "omegat"} else {}
 
-    charges: tuple[Symbol, ...]
-    magnetic: tuple[Symbol, ...]
-    electric: tuple[Symbol, ...]
-    epsilon: Symbol
-    mu: Symbol
-    c: Symbol
+
+def in_si(claim: Claim, convention: Convention, found: Roles) -> Claim:
+    """A claim in its author's convention, said in SI and exp(−iωt); a wave equation holds no phase."""
+    if claim.of_field:
+        convention = Convention(units=convention.units)
+    return claim.mapped(lambda expr: to_si(expr, convention, found))
 
 
-def to_si(expr: Expr, convention: Convention, roles: Roles) -> Expr:
+def to_si(expr: Expr, convention: Convention, found: Roles) -> Expr:
     """An expression in an author's convention, with the same symbols in SI and exp(−iωt).
 
-    Charges, fields and moments change by the usual factors (Jackson, Classical Electrodynamics, 3rd ed., appendix,
-    table 3; from memory): q → q/√(4π ε_0), E → √(4π ε_0) E, B → √(4π/μ_0) B in Gaussian units, without the 4π in
-    Heaviside–Lorentz ones.
+    Charges and fields change by the usual factors (Jackson, Classical Electrodynamics, 3rd ed., appendix, table 3;
+    from memory): q → q/√(4π ε_0), E → √(4π ε_0) E, B → √(4π/μ_0) B, resistivity η → 4π ε_0 η in Gaussian units,
+    without the 4π in Heaviside–Lorentz ones.
     """
     if convention.turned:
         expr = expr.xreplace({I: -I})
-    factors = unit_factors(convention.units, roles)
+    factors = unit_factors(convention.units, found)
     return expr.xreplace({s: s * f for s, f in factors.items()}) if factors else expr
 
 
-def unit_factors(units: str, roles: Roles) -> Mapping[Symbol, Any]:
-    """What every charge and field symbol is multiplied by."""
+def unit_factors(units: str, found: Roles) -> Mapping[Symbol, Expr]:
+    """What every symbol that holds charge in its unit is multiplied by.
+
+    All is written in c and the one vacuum constant that the model has, so that roots of both never meet.
+    """
     if units == "SI":
         return {}
     rational = 4 * pi if units == "gaussian" else 1
-    charge = 1 / sqrt(rational * roles.epsilon)
-    magnetic = roles.c * sqrt(rational * roles.epsilon)  # = sqrt(rational / mu_0)
+    if found.mu in found.own and found.epsilon not in found.own:
+        charge, magnetic = found.c * sqrt(found.mu / rational), sqrt(rational / found.mu)
+    else:
+        charge = 1 / sqrt(rational * found.epsilon)
+        magnetic = found.c / charge
     return {
-        **dict.fromkeys(roles.charges, charge),
-        **dict.fromkeys(roles.electric, 1 / charge),
-        **dict.fromkeys(roles.magnetic, magnetic),
+        s: magnetic if s in found.magnetic else charge**power for s, power in found.charge.items()
     }
+
+
+def under_other_conventions(
+    claim: Claim, wave: WaveMatrix, declared: Convention
+) -> list[tuple[Convention, Match]]:
+    """The conventions other than the declared one under which a claim agrees, nearest first.
+
+    Parameters
+    ----------
+    claim : Claim
+        As its author wrote it.
+    wave : WaveMatrix
+    declared : Convention
+        Under which the claim does not agree; what reads the same under another is not tried again.
+    """
+    found: list[tuple[Convention, Match]] = []
+    model = roles(wave)
+    seen = {in_si(claim, declared, model).residual}
+    rational = bool(claim.residual.free_symbols & {model.epsilon, model.mu})
+    for other in declared.others:
+        if rational and other.units != "SI":
+            continue  # ε_0 and μ_0 are in no formula of other units
+        made = in_si(claim, other, model)
+        if made.residual in seen or any(
+            declared.distance(c) < declared.distance(other) for c, _ in found
+        ):
+            continue
+        seen.add(made.residual)
+        match = compare(made, derive(wave, made.residual.free_symbols, model.constants))
+        found += [(other, match)] if match else []
+    return found

@@ -15,10 +15,12 @@ from sympy import (
     Mul,
     Poly,
     PolynomialError,
+    S,
     Symbol,
     cancel,
     cos,
     expand_trig,
+    factor_terms,
     sin,
     sympify,
 )
@@ -27,6 +29,7 @@ from sympy import tan as tangent
 from ..declare.operators import omega
 from ..exact.polynomial import ExactPolynomial
 from ..exact.radicals import rational_numerator
+from .roles import SPELLINGS
 
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
@@ -106,7 +109,7 @@ def derive(
     """
     raw = wave.relation.exact
     equations = [*wave.linear.conditions, *_light(constants)] if conditions else []
-    used = _solved(equations, set(symbols), set(raw.generators))
+    used = solve_conditions(equations, set(symbols), set(raw.generators))
     made = raw.substitute(
         {**{a: without_angles(a) for a in raw.generators if a != without_angles(a)}}
     )
@@ -145,13 +148,15 @@ def _by_half(f: Expr) -> Expr:
 
 
 def _light(constants: Iterable[Symbol]) -> list[Eq]:
-    found = {s.name: s for s in constants}
+    found = {SPELLINGS.get(s.name, s.name): s for s in constants}
     if {"c", "epsilon_0", "mu_0"} <= set(found):
         return [Eq(found["c"] ** 2 * found["epsilon_0"] * found["mu_0"], 1, evaluate=False)]
     return []
 
 
-def _solved(equations: list[Eq], claimed: set[Symbol], needed: set[Any]) -> list[Condition]:
+def solve_conditions(
+    equations: list[Eq], claimed: set[Symbol], needed: set[Any]
+) -> list[Condition]:
     """Each condition solved for one symbol that enters it linearly, rather one that the claim does not use."""
     used: list[Condition] = []
     for equation in equations:
@@ -160,7 +165,7 @@ def _solved(equations: list[Eq], claimed: set[Symbol], needed: set[Any]) -> list
             residual = residual.xreplace({c.symbol: c.value})
         order = sorted(
             residual.free_symbols,
-            key=lambda s: (s in claimed, s.name == "c", s.name != "mu_0", s.name),
+            key=lambda s: (s in claimed, s.name == "c", s.name not in ("mu_0", "mu0"), s.name),
         )
         for symbol in order:
             value = linear_solution(residual, symbol)
@@ -176,7 +181,7 @@ def _matters(condition: Condition, later: list[Condition], seen: set[Any]) -> bo
 
 def linear_solution(residual: Expr, symbol: Symbol) -> Expr | None:
     """What makes an expression vanish, where a symbol enters it linearly."""
-    top = cancel(residual).as_numer_denom()[0]
+    top = _essential(residual)
     try:
         poly = Poly(top, symbol)
     except PolynomialError:
@@ -185,3 +190,11 @@ def linear_solution(residual: Expr, symbol: Symbol) -> Expr | None:
         return None
     slope, rest = poly.all_coeffs()
     return Mul(-1, rest, 1 / slope)
+
+
+def _essential(residual: Expr) -> Expr:
+    """The one factor that must vanish: e (Z n_i0 − n_e0) = 0 is no condition on e. 1 where it is not known which."""
+    factors = Mul.make_args(factor_terms(cancel(residual).as_numer_denom()[0]))
+    sums = [f for f in factors if isinstance(f, Add)]
+    found = sums or [f for f in factors if not f.is_number and not f.is_nonzero]
+    return found[0] if len(found) == 1 else S.One

@@ -49,9 +49,9 @@ class Components(Expr):  # type: ignore[misc]
         names = axes if len(axes) == self.size else axis_names(self.size)
         terms = [
             (
-                rf"\hat{{\mathbf {axis}}}"
+                rf"\hat{{\mathbf{{{axis}}}}}"
                 if a == 1
-                else rf"{printer.parenthesize(a, 50)}\,\hat{{\mathbf {axis}}}"
+                else rf"{printer.parenthesize(a, 50)}\,\hat{{\mathbf{{{axis}}}}}"
             )
             for a, axis in zip(self.args, names, strict=True)
             if a != 0

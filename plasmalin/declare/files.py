@@ -7,7 +7,7 @@ import math
 import os
 import tempfile
 import tomllib
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
 from importlib import resources
 from pathlib import Path
@@ -35,6 +35,7 @@ KEYS: dict[str, set[str]] = {
     "[wave]": {"direction", "angle"},
     "[parameters] entry": {"value", "unit", "positive"},
     "[sweep] entry": {"from", "to", "points", "spacing"},
+    "[[claim]]": {"text", "law", "where", "under", "phase", "units"},
 }  # fmt: skip
 
 
@@ -50,6 +51,30 @@ class Sweep:
 
 
 @dataclass(frozen=True)
+class StatedClaim:
+    """A claim as a file states it.
+
+    Attributes
+    ----------
+    text : str
+        The claimed relation, or the linearized law where `law` names one.
+    law : str or None
+    where : mapping of str to str or number
+        Shorthands.
+    under : mapping of str to str or number, or tuple of str, or None
+        The conditions that the author states.
+    convention : mapping of str to str
+        ``phase`` and ``units`` where they are given.
+    """
+
+    text: str
+    law: str | None
+    where: Mapping[str, Any]
+    under: Mapping[str, Any] | tuple[str, ...] | None
+    convention: Mapping[str, str]
+
+
+@dataclass(frozen=True)
 class ModelFile:
     """A model file as read.
 
@@ -62,15 +87,15 @@ class ModelFile:
     sweep : Sweep or None
     assume : tuple of str
         Laws that an external source balances.
-    claims : tuple of dict
-        Claimed relations, as they stand.
+    claims : tuple of StatedClaim
+        Claimed relations and laws.
     """
 
     model: FluidModel
     wave: Mapping[str, Any]
     sweep: Sweep | None
     assume: tuple[str, ...]
-    claims: tuple[Mapping[str, Any], ...]
+    claims: tuple[StatedClaim, ...]
 
 
 def load(path: str | os.PathLike[str]) -> FluidModel:
@@ -180,7 +205,7 @@ def _built(data: dict[str, Any]) -> ModelFile:
         _wave(_table(data, "wave")),
         _sweep(_table(data, "sweep")),
         tuple(assume),
-        tuple(_list(data, "claim")),
+        tuple(_claim(entry, number) for number, entry in enumerate(_list(data, "claim"), 1)),
     )
 
 
@@ -303,12 +328,61 @@ def _sweep(table: Mapping[str, Any]) -> Sweep | None:
     return Sweep(name, start, stop, points, spacing == "log")
 
 
+def _claim(entry: Mapping[str, Any], number: int) -> StatedClaim:
+    section = "[[claim]]"
+    _known(entry, section)
+    place = f"{section} {number}"
+    text = _text(entry, "text", place)
+    law = _text(entry, "law", place) if "law" in entry else None
+    convention = {key: _text(entry, key, place) for key in ("phase", "units") if key in entry}
+    under = entry.get("under")
+    if law is not None and (convention or under is not None):
+        raise ModelFileError(f"{place}: a claimed law takes 'where' only")
+    where = _meanings(entry.get("where", {}), f"{place} where")
+    if isinstance(under, list) and all(isinstance(u, str) for u in under):
+        return StatedClaim(text, law, where, tuple(under), convention)
+    stated = None if under is None else _meanings(under, f"{place} under")
+    return StatedClaim(text, law, where, stated, convention)
+
+
+def _meanings(given: Any, place: str) -> Mapping[str, Any]:
+    """A table of texts and numbers."""
+    if not isinstance(given, dict):
+        raise ModelFileError(f'{place}: give {{ name = "..." }}, or for `under` a list of texts')
+    for name, value in given.items():
+        if not isinstance(value, str):
+            _number(value, f"{place} {name}")
+    return given
+
+
 # Writing ---------------------------------------------------------------------------------------
 
 
-def save_model(model: FluidModel, path: str | os.PathLike[str]) -> None:
-    """Write a model as a TOML file; it appears whole or not at all."""
-    write_whole(path, model_text(model).encode())
+def save_model(
+    model: FluidModel, path: str | os.PathLike[str], claims: Iterable[StatedClaim] = ()
+) -> None:
+    """Write a model, and claims on it, as a TOML file; it appears whole or not at all."""
+    text = model_text(model) + "".join(f"\n{claim_text(c)}\n" for c in claims)
+    write_whole(path, text.encode())
+
+
+def claim_text(claim: StatedClaim) -> str:
+    """A claim as a section of a TOML file."""
+    lines = ["[[claim]]", f"text = {_quoted(claim.text)}"]
+    lines += [f"law = {_quoted(claim.law)}"] if claim.law is not None else []
+    lines += [f"where = {_inline(claim.where)}"] if claim.where else []
+    if isinstance(claim.under, Mapping):
+        lines.append(f"under = {_inline(claim.under)}")
+    elif claim.under is not None:
+        lines.append(f"under = [{', '.join(map(_quoted, claim.under))}]")
+    return "\n".join([*lines, *(f"{k} = {_quoted(v)}" for k, v in claim.convention.items())])
+
+
+def _inline(table: Mapping[str, Any]) -> str:
+    shown = (
+        f"{_quoted(n)} = {_quoted(v) if isinstance(v, str) else repr(v)}" for n, v in table.items()
+    )
+    return f"{{ {', '.join(shown)} }}"
 
 
 def model_text(model: FluidModel) -> str:

@@ -29,6 +29,7 @@ from .operators import (
 )
 
 SUPERSCRIPT = str.maketrans("0123456789-", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻")
+UNIT_STREAMS = {"∂_x", "∂_y", "∂_z"}
 HATS = {"x": "x̂", "y": "ŷ", "z": "ẑ"}
 DEFAULT_AXES = {1: "x", 2: "xz", 3: "xyz"}
 GREEK_LETTER = {
@@ -219,7 +220,8 @@ class TextPrinter:
 
     def _operator(self, expr: Operator) -> tuple[str, int]:
         if isinstance(expr, Advect):
-            return f"({self._stream(expr.args[0])}){self.show(expr.args[1], 3)}", 2
+            stream, shown = self._stream(expr.args[0]), self.show(expr.args[1], 3)
+            return f"{stream} {shown}" if stream in UNIT_STREAMS else f"({stream}){shown}", 2
         if isinstance(expr, Multiplier):
             return f"[{self.show(expr.args[1])}]{self.show(expr.args[0], 3)}", 2
         if expr.word == "norm":

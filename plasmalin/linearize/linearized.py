@@ -21,6 +21,7 @@ from .background import Equilibrium, balance, conditions
 from .ledger import KEPT, Ledger, entries
 
 if TYPE_CHECKING:
+    from ..check.verdict import Verdict
     from ..waves.matrix import WaveMatrix
     from .audit import Audit
 
@@ -76,6 +77,8 @@ class LinearizedModel:
         The equilibrium in words.
     redundant : mapping of str to Law
         The nonlinear constraints as declared.
+    vectors : mapping of str to Expr
+        The vector parameters by name.
     """
 
     title: str
@@ -89,6 +92,7 @@ class LinearizedModel:
     ledger: Ledger
     background: Equilibrium
     redundant: Mapping[str, Law] = field(default_factory=dict)
+    vectors: Mapping[str, Expr] = field(default_factory=dict)
 
     @cached_property
     def equations(self) -> Equations:
@@ -148,6 +152,47 @@ class LinearizedModel:
         from ..waves.matrix import plane_wave
 
         return plane_wave(self, direction, angle)
+
+    def check(self, law: str, claim: Any, where: Mapping[Any, Any] | None = None) -> Verdict:
+        """Judge a linearized law that was derived by hand.
+
+        Parameters
+        ----------
+        law : str
+            The law's name; "momentum, x" for one component of a vector law.
+        claim : str or SymPy expression or equation
+            The linearized law. The name of a field is its first-order part, ``n_e`` for ñ_e; backgrounds are written
+            by their parameters. In text, as in ``"m_e n_0 ∂_t v_e = e n_0 grad(phi) - T_e grad(n_e)"``, vectors may
+            be written by component, ``v_e_x`` and ``∂_x phi``.
+        where : mapping of str to str or expression, optional
+            Shorthands of the claim, such as ``{"c_s": "sqrt(T_e/m_i)"}``.
+
+        Returns
+        -------
+        Verdict
+            ``identical`` up to a factor free of the wave and modulo the background's conditions, else ``differs``
+            with the wrong, missing and superfluous terms.
+
+        Raises
+        ------
+        DeclarationError
+            When there is no such law, a name is unknown, or a term is not of a linear law.
+        ReadError
+            When a text cannot be read.
+        RankError
+            When ranks do not fit.
+
+        Examples
+        --------
+        >>> import plasmalin as plin
+        >>> linear = plin.load_example("electronegative-dusty-edge").linearize()
+        >>> name = next(iter(linear.laws))
+        >>> linear.check(name, str(linear.laws[name])).kind
+        'differs'
+        """
+        from ..check.laws import check_law
+
+        return check_law(self, law, claim, where)
 
     def audit(self, *, seed: int = 0) -> Audit:
         """Check the linearization by an independent numerical path.
@@ -229,6 +274,7 @@ def linearize(model: FluidModel, assume: tuple[str, ...] = ()) -> LinearizedMode
         whole,
         background,
         redundant,
+        model.vector_parameters,
     )
 
 

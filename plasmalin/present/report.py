@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -10,6 +11,8 @@ from ..declare.notation import latex, paper
 from ..roots.solve import general_degree
 
 if TYPE_CHECKING:
+    from ..check.verdict import Verdict
+    from ..declare.files import StatedClaim
     from ..roots.branches import Branches
     from ..waves.matrix import WaveMatrix
 
@@ -133,3 +136,18 @@ def derivation(wave: WaveMatrix, branches: Branches | None) -> str:
         ]
         parts += ["", f"Roots: {branches.method}.", ""]
     return "\n".join([*parts, CAUTION, ""])
+
+
+def claim_note(title: str, claim: StatedClaim, verdict: Verdict) -> str:
+    """A referee's note on one claim in Markdown, with the claim as it was understood in LaTeX."""
+    stated = [f"law: {claim.law}"] if claim.law else []
+    stated += [f"{name} = {meaning}" for name, meaning in claim.where.items()]
+    if claim.under:
+        under = claim.under
+        pairs = under.items() if isinstance(under, Mapping) else ()
+        stated.append("under " + (", ".join(f"{n} = {v}" for n, v in pairs) or ", ".join(under)))
+    stated += [f"{key}: {value}" for key, value in claim.convention.items()]
+    parts = [f"# {title}", "", "## Claim", "", "```text", claim.text, *stated, "```", ""]
+    parts += [f"As it was understood: $\\displaystyle {verdict.reading}$", "", "## Verdict", ""]
+    parts += ["```text", str(verdict), "```", "", "## Verdict in LaTeX", ""]
+    return "\n".join([*parts, "```latex", verdict.latex(), "```", ""])

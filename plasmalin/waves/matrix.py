@@ -31,6 +31,8 @@ from .response import Reduced, reduced
 from .susceptibility import susceptibility
 
 if TYPE_CHECKING:
+    from ..check.convention import Convention
+    from ..check.verdict import Verdict
     from ..roots.branches import Branches
     from ..roots.roots import Roots
     from ..study.remark import Advice
@@ -356,6 +358,65 @@ class WaveMatrix:
         from ..study.advice import advise
 
         return advise(self, values or {}, waves)
+
+    def check(
+        self,
+        claim: Any,
+        *,
+        where: Mapping[Any, Any] | None = None,
+        under: Any = None,
+        convention: Convention | None = None,
+        values: Mapping[Any, Any] | None = None,
+        budget_s: float = 30.0,
+    ) -> Verdict:
+        """Judge a dispersion relation that was derived by hand, in its author's own symbols.
+
+        Parameters
+        ----------
+        claim : str, SymPy equation or expression, or small matrix
+            A relation as it is typed in a paper, ``"omega^2 = omega_pe^2 + 3 k^2 v_te^2"``, or solved for ω or for k;
+            a matrix of at most four rows whose determinant vanishes, as text ``"[[a, b], [c, d]]"``, nested list or
+            SymPy matrix; a wave equation for one field, ``"∂_t² n_e + omega_pe² n_e = 3 v_te² ∂_x² n_e"``. An
+            expression is set equal to zero. Text is read, never evaluated.
+        where : mapping of str to str, number or expression, optional
+            What the author's shorthands stand for, ``{"v_te": "sqrt(T_e/m_e)"}``; may use one another.
+        under : mapping or list of str, optional
+            The conditions that the author states: ``{"gamma_e": 3}``, ``["m_e/m_i << 1", "T_i = 0"]``.
+        convention : Convention, optional
+            Phase and units of the claim; exp(−iωt) and SI by default.
+        values : mapping of str to number, optional
+            Numbers, SI, at which the size of what a limit neglects is given.
+        budget_s : float, default 30.0
+            How long the search for conditions and slips may take, s; what was not decided then is said.
+
+        Returns
+        -------
+        Verdict
+            ``.kind``, ``.agrees``, ``.conditions``, ``.slips``, ``.proof`` and ``.reading``; prints as a short note.
+
+        Raises
+        ------
+        ReadError
+            When a text cannot be read or can be read in two ways, with the place.
+        DeclarationError
+            When a name is unknown, a shorthand takes the name of a parameter, or the claim holds no wave.
+
+        Examples
+        --------
+        >>> import plasmalin as plin
+        >>> model = plin.FluidModel("sound", axes="x")
+        >>> rho = model.scalar("rho", background="rho_0")
+        >>> v = model.vector("v")
+        >>> p_0 = model.parameter("p_0", positive=True)
+        >>> _ = model.law("continuity", plin.partial_t(rho) + plin.div(rho * v))
+        >>> _ = model.law("momentum", rho * plin.partial_t(v), -p_0 * plin.grad(rho / model.symbols["rho_0"]))
+        >>> wave = model.linearize().plane_wave("x")
+        >>> wave.check("omega^2 = k^2 c_s^2", where={"c_s": "sqrt(p_0/rho_0)"}).kind
+        'identical'
+        """
+        from ..check.judge import judge
+
+        return judge(self, claim, where, under, convention, values, budget_s)
 
     def __str__(self) -> str:
         lines = [f"{self.linear.title}: plane waves, k = ({', '.join(paper(c) for c in self.k)})"]

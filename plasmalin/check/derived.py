@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
@@ -37,11 +37,14 @@ class Derived:
         The relation without its zero modes.
     conditions : tuple of Condition
         Used in it, and to be used in every claim.
+    wave_symbols : frozenset of Symbol
+        Wave numbers and angles, which are no parameters.
     """
 
     polynomial: ExactPolynomial
     conditions: tuple[Condition, ...]
     angles: tuple[Expr, ...]
+    wave_symbols: frozenset[Symbol] = frozenset()
 
     @cached_property
     def factors(self) -> tuple[tuple[ExactPolynomial, int], ...]:
@@ -66,7 +69,7 @@ class Derived:
     def substituted(self, values: dict[Any, Any]) -> Derived:
         """With parameters replaced by numbers or expressions."""
         made = self.polynomial.substitute({s: self.rational(v) for s, v in values.items()})
-        return Derived(bare(made), self.conditions, self.angles)
+        return replace(self, polynomial=bare(made))
 
 
 def derive(wave: WaveMatrix, symbols: Iterable[Symbol], constants: Iterable[Symbol]) -> Derived:
@@ -87,7 +90,9 @@ def derive(wave: WaveMatrix, symbols: Iterable[Symbol], constants: Iterable[Symb
     made = raw.substitute({**{a: without_angles(a) for a in raw.generators if a != without_angles(a)}})
     for c in used:
         made = made.substitute({c.symbol: c.value})
-    return Derived(bare(made), tuple(used), angles)
+    waves = {s for c in wave.k for s in c.free_symbols}
+    waves |= {half_tangent(s) for s in waves}
+    return Derived(bare(made), tuple(used), angles, frozenset(waves))
 
 
 def bare(polynomial: ExactPolynomial) -> ExactPolynomial:

@@ -6,13 +6,14 @@ from math import gcd
 import published
 import published_more
 import pytest
-from sympy import Integer, Rational, S, ilcm, powdenest
+from sympy import Integer, Rational, S, cancel, ilcm, powdenest
 
 import plasmalin as plin
 from plasmalin import advect, cross, div, grad, laplacian, partial_t
 from plasmalin.check.claim import Names, make_claim
 from plasmalin.check.derived import derive
 from plasmalin.check.limit import LimitFound, find_limits, verify_limit
+from plasmalin.check.series import series_order, series_slip
 from plasmalin.check.special import holds_under, special_values
 
 CASES = {**published.CASES, **published_more.CASES}
@@ -458,3 +459,132 @@ def test_stated_values_are_put_into_both():
     gamma = wave.linear.symbols["gamma"]
     assert holds_under(claim, derived, {gamma: Integer(3)}).kind == "identical"
     assert holds_under(claim, derived, {gamma: Rational(5, 3)}) is None
+
+
+# Expansions ---------------------------------------------------------------------------------------
+
+LANGMUIR = {"w_p": "sqrt(n0*e^2/(eps0*me))", "l_D": "sqrt(eps0*Te_eV/(n0*e))"}
+SOUND = {
+    "c_0": "sqrt(Rg*T0*(1 + Rg/cv))",
+    "nu_S": "(4*mu/3 + zeta + kappa*(1/cv - 1/(cv + Rg)))/rho0",
+}
+SERIES = {
+    # Bohm and Gross 1949, as usually expanded
+    "Bohm-Gross": (
+        published.langmuir_bohm_gross,
+        LANGMUIR,
+        "omega = w_p*(1 + gamma/2*k^2*l_D^2)",
+        ["k^2*l_D^2"],
+    ),
+    "Bohm-Gross, two fluids": (
+        two_fluids,
+        WHERE,
+        "omega = omega_pe*(1 + gamma_e/2*k^2*lambda_De^2)",
+        ["k^2*lambda_De^2", "m_e/(k^2*lambda_De^2*m_i)"],
+    ),
+    # Stokes 1845; Kirchhoff 1868: the damping of sound
+    "Stokes-Kirchhoff": (
+        published.kirchhoff_stokes_sound,
+        SOUND,
+        "omega = c_0*k - I*k^2*nu_S/2",
+        None,
+    ),
+    # Alfven waves with resistivity: Im omega = -eta k^2/(2 mu0)
+    "resistive Alfven": (
+        published_more.resistive_mhd_alfven,
+        {},
+        "omega = k*B0/sqrt(mu0*rho0) - I*eta*k^2/(2*mu0)",
+        ["eta^2*k^2*rho0/(B0^2*mu0)"],
+    ),
+    "weakly dispersive ion sound": (
+        published.ion_acoustic_boltzmann_debye,
+        {},
+        "omega^2 = k^2*e*(Te_eV + gi*Ti_eV)/mi - k^4*eps0*Te_eV^2/(n0*mi)",
+        None,
+    ),
+    "Hall": (
+        published.hall_mhd_parallel,
+        {},
+        "omega = k*B0/sqrt(mu0*rho0)*(1 + k*di/2 + k^2*di^2/8)",
+        ["k*di"],
+    ),
+    "gravity on sound": (
+        published.jeans,
+        {},
+        "omega = cs*k - 2*pi*G*rho0/(cs*k)",
+        ["G*rho0/(cs^2*k^2)"],
+    ),
+    "light in a thin plasma": (
+        published.r_and_l_waves,
+        COLD,
+        "omega = c*k + w_pe^2/(2*c*k)",
+        ["w_pe^2/(c^2*k^2)", "O_e/(c*k)"],
+    ),
+}
+
+
+@pytest.mark.parametrize("name", SERIES)
+def test_an_expansion_is_right_to_its_order(name):
+    make, where, text, groups = SERIES[name]
+    wave = make()
+    claim, derived = prepared(wave, text, where)
+    found = series_order(claim, derived)
+    assert found is not None
+    assert found.next is not None
+    if groups is not None:
+        wanted = expected(groups, wave, where, claim)
+        assert directions((g.group for g in found.groups), claim) == wanted
+
+
+SLIPS = {
+    "half": (
+        published.langmuir_bohm_gross,
+        LANGMUIR,
+        "omega = w_p*(1 + gamma*k^2*l_D^2)",
+        "gamma/2*k^2*l_D^2*w_p",
+    ),
+    "sign of damping": (
+        published_more.resistive_mhd_alfven,
+        {},
+        "omega = k*B0/sqrt(mu0*rho0) + I*eta*k^2/(2*mu0)",
+        "-I*eta*k^2/(2*mu0)",
+    ),
+    "twice the damping": (
+        published_more.resistive_mhd_alfven,
+        {},
+        "omega = k*B0/sqrt(mu0*rho0) - I*eta*k^2/mu0",
+        "-I*eta*k^2/(2*mu0)",
+    ),
+    "second order": (
+        published.hall_mhd_parallel,
+        {},
+        "omega = k*B0/sqrt(mu0*rho0)*(1 + k*di/2 - k^2*di^2/8)",
+        "k^3*di^2*B0/sqrt(mu0*rho0)/8",
+    ),
+    "square": (
+        published.ion_acoustic_boltzmann_debye,
+        {},
+        "omega^2 = k^2*e*(Te_eV + gi*Ti_eV)/mi - k^4*eps0*Te_eV^2/(2*n0*mi)",
+        "-k^4*eps0*Te_eV^2/(n0*mi)",
+    ),
+}
+
+
+@pytest.mark.parametrize("name", SLIPS)
+def test_a_wrong_term_of_an_expansion_is_no_series_and_is_named(name):
+    make, where, text, right = SLIPS[name]
+    wave = make()
+    claim, derived = prepared(wave, text, where)
+    assert series_order(claim, derived) is None
+    slip = series_slip(claim, derived)
+    wanted = claim.written_out(Names(wave, where).expression(right, "test"))
+    assert cancel(slip.should_be - wanted) == 0
+
+
+def test_stated_ratios_choose_the_scaling():
+    wave = two_fluids()
+    claim, derived = prepared(wave, "omega = omega_pe*(1 + gamma_e/2*k^2*lambda_De^2)", WHERE)
+    names = Names(wave, WHERE)
+    both = [names.expression(r, "under") for r in ("k*lambda_De", "m_e/m_i")]
+    assert series_order(claim, derived, both) is not None
+    assert series_order(claim, derived, both[:1]) is None

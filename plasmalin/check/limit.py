@@ -51,6 +51,13 @@ class LimitFound:
     notes: tuple[str, ...] = ()
 
     @property
+    def proof(self) -> str:
+        return (
+            "the claim is the leading part of the derived relation: with symbols as powers of a small number, every "
+            "other term is of higher order (linear programming, its answers checked exactly)"
+        )
+
+    @property
     def physical(self) -> bool:
         """Whether nature has such an ordering."""
         return all(g.physical for g in self.groups)

@@ -67,19 +67,12 @@ class Faces:
         w = weights(self.space.sized, self.cone)
         if w is None:
             return False
-        slopes = {
-            (times(w, self.space.order(b)) - times(w, self.space.order(a))) / (a[0] - b[0])
-            for a, b in combinations(self.claimed, 2)
-            if a[0] != b[0]
-        }
-        for slope in slopes:
-            turned = (slope, *w[1:])
-            part = initial(self.claimed, turned, self.space)
-            if len({v[0] for v in part}) > 1:
-                whole = initial(self.derived, turned, self.space)
-                if divided(whole, part) is None:
-                    return False
-        return True
+        return all(self.begins(turned) for turned in slopes(self.claimed, w, self.space))
+
+    def begins(self, w: Vector) -> bool:
+        """Whether the derived relation begins with the claim's leading terms."""
+        part = initial(self.claimed, w, self.space)
+        return divided(initial(self.derived, w, self.space), part) is not None
 
     def _largest(self, a: Vector, b: Vector) -> Face | None:
         if self._weights(self._face((a, b))) is None:
@@ -219,6 +212,18 @@ class Faces:
         size = self._reduced(minus(term, face.on[0]), quotient)
         ratios = {minus(v, size) for v in answer.rays}
         return extreme(v for v in sorted(ratios) if any(v) and not implied(v, cone, above))
+
+
+def slopes(claimed: Terms, w: Vector, space: Space) -> Iterator[Vector]:
+    """The weights with every weight of ω for which terms with different powers of ω are leading."""
+    orders = {v: times(w, space.order(v)) - w[0] * v[0] for v in claimed}
+    found = {
+        (orders[b] - orders[a]) / (a[0] - b[0]) for a, b in combinations(claimed, 2) if a[0] != b[0]
+    }
+    for slope in sorted(found):
+        turned = (slope, *w[1:])
+        if len({v[0] for v in initial(claimed, turned, space)}) > 1:
+            yield turned
 
 
 def initial(terms: Terms, w: Vector, space: Space) -> Terms:

@@ -176,10 +176,14 @@ def _one_monomial(expr: Expr) -> Expr:
 def number_of(group: Expr, values: Mapping[str, float], claim: Claim) -> float | None:
     """A group's value, when all its symbols are known."""
     meaning = claim.written_out(group)
-    known = {s: values[str(s)] for s in meaning.free_symbols if str(s) in values}
+    known = {s: values[s.name] for s in meaning.free_symbols if s.name in values}
     if set(known) != meaning.free_symbols:
         return None
-    found = meaning.xreplace({s: Float(float(x)) for s, x in known.items()}).evalf()
+    try:
+        numbers = {s: Float(float(x)) for s, x in known.items()}
+    except (TypeError, ValueError):
+        return None  # an array, or a quantity with a unit
+    found = meaning.xreplace(numbers).evalf()
     return float(abs(found)) if found.is_number and found.is_finite else None
 
 

@@ -8,23 +8,18 @@ its Newton polygon at the constant term gives the order and the leading part of 
 from __future__ import annotations
 
 import time
-from collections.abc import Iterable, Iterator, Mapping, Sequence
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, replace
 from fractions import Fraction
-from functools import lru_cache
-from itertools import permutations, product
 
 from sympy import (
     Abs,
     Add,
     Expr,
     I,
-    Integer,
     Mul,
-    Pow,
     S,
     Symbol,
-    binomial,
     cancel,
     expand,
     powsimp,
@@ -38,15 +33,13 @@ from ..errors import PlasmalinError
 from ..exact.polynomial import ExactPolynomial, polynomial
 from .claim import Claim
 from .cones import extreme
+from .corrections import correction, parts
 from .derived import Derived
-from .monomials import ELECTRON_MASS, PURE_NUMBER, Wording, number_of, space_of
+from .monomials import PURE_NUMBER, Wording, number_of, space_of
+from .scalings import Weights, even, is_imaginary, order, paths
 from .verdict import Small
 
-Weights = dict[Expr, Fraction]
-
 MOST_STEPS = 4
-TAYLOR = 4
-SCALES = (1, 4)
 SECOND_THOUGHTS = 1.0
 """Seconds for other scalings once one has shown a slip."""
 
@@ -178,7 +171,7 @@ def _searched(
     end = time.monotonic() + budget
     slips: list[SeriesSlip] = []
     given = None if ratios is None else [claim.written_out(r) for r in ratios]
-    for weights in _paths(expansion, derived, given):
+    for weights in paths(expansion.terms, expansion.symbols, derived, given):
         here: list[SeriesSlip] = []
         for f in expansion.factors:
             found = _judged(expansion, f, weights, end)
@@ -220,153 +213,6 @@ def _in_power(factor: ExactPolynomial, power: int) -> ExactPolynomial | None:
     return polynomial(Add(*(c * omega ** (n // power) for n, c in coefficients.items())), omega)
 
 
-def _is_imaginary(term: Expr) -> bool:
-    return bool(term.has(I))
-
-
-# Scalings ----------------------------------------------------------------------------------------
-
-
-def _paths(
-    expansion: Expansion, derived: Derived, ratios: Sequence[Expr] | None
-) -> Iterator[Weights]:
-    """Powers of ε for symbols, under which the claim's terms are of different order."""
-    paths = _single(expansion, derived) if ratios is None else _stated(ratios, derived)
-    for weights in paths:
-        if len({order(t, weights) for t in expansion.terms}) > 1:
-            yield weights
-
-
-def _single(expansion: Expansion, derived: Derived) -> Iterator[Weights]:
-    """One symbol small or large: wave numbers, what only corrections hold, then two such, then any other."""
-    free = [
-        s
-        for s in expansion.symbols
-        if not PURE_NUMBER.match(s.name) and (s.name not in CODATA or s.name in ELECTRON_MASS)
-    ]
-    free.sort(key=lambda s: (s not in derived.wave_symbols, s.name))
-    real = [t.free_symbols for t in expansion.terms if not _is_imaginary(t)]
-    usual = [
-        s
-        for s in free
-        if s in derived.wave_symbols
-        or s.name in ELECTRON_MASS
-        or (real and not any(s in symbols for symbols in real))
-    ]
-    signs = (Fraction(1), Fraction(-1))
-    for s, sign in product(usual, signs):
-        yield {s: sign}
-    for (a, b), x, y in product(permutations(usual, 2), signs, signs):
-        yield {a: x, b: y * SCALES[1]}
-    for s, sign in product(free, signs):
-        if s not in usual:
-            yield {s: sign}
-
-
-def _stated(ratios: Sequence[Expr], derived: Derived) -> Iterator[Weights]:
-    """For every ratio one of its symbols scales; several ratios are of one size, or one is smaller still."""
-    choices = [_carriers(r, derived) for r in ratios]
-    scales = dict.fromkeys(
-        p for base in ((1,) * len(ratios), *_mixed(len(ratios))) for p in permutations(base)
-    )
-    for scale, chosen in product(scales, product(*choices)):
-        made: Weights = {}
-        for size, (symbol, power) in zip(scale, chosen, strict=True):
-            made[symbol] = made.get(symbol, Fraction(0)) + size / power
-        yield made
-
-
-def _mixed(count: int) -> Iterator[tuple[int, ...]]:
-    for i in range(1, count):
-        yield (SCALES[0],) * i + (SCALES[1],) * (count - i)
-
-
-def _carriers(ratio: Expr, derived: Derived) -> list[tuple[Symbol, Fraction]]:
-    """The symbols of a ratio with their powers, wave numbers first, then those above the line."""
-    symbols = sorted(ratio.free_symbols - {omega}, key=lambda s: s.name)
-    powers = {s: order(ratio, {s: Fraction(1)}) for s in symbols}
-    made = [(s, n) for s, n in powers.items() if n]
-    return sorted(made, key=lambda m: (m[0] not in derived.wave_symbols, m[1] < 0))
-
-
-def order(expr: Expr, weights: Weights) -> Fraction:
-    """The lowest power of ε in an expression whose leading terms do not cancel."""
-    if expr in weights:
-        return weights[expr]
-    if isinstance(expr, Add):
-        return min(order(a, weights) for a in expr.args)
-    if isinstance(expr, Mul):
-        return sum((order(a, weights) for a in expr.args), Fraction(0))
-    if isinstance(expr, Pow) and expr.exp.is_Rational:
-        return order(expr.base, weights) * Fraction(int(expr.exp.p), int(expr.exp.q))
-    return Fraction(0)
-
-
-def even(expr: Expr, weights: Weights) -> Expr:
-    """Roots of sums whose terms have different orders, expanded (binomial series)."""
-    if not expr.args:
-        return expr
-    made = expr.func(*(even(a, weights) for a in expr.args))
-    if not (isinstance(made, Pow) and isinstance(made.base, Add)) or made.exp.is_Integer:
-        return made
-    low = order(made.base, weights)
-    lead = Add(*(t for t in made.base.args if order(t, weights) == low))
-    rest = made.base - lead
-    return Add(*(binomial(made.exp, j) * lead ** (made.exp - j) * rest**j for j in range(TAYLOR)))
-
-
-# Corrections -------------------------------------------------------------------------------------
-
-
-@dataclass(frozen=True)
-class Step:
-    """The smallest correction to a value: its order, and its leading part where one root only has that order."""
-
-    order: Fraction
-    value: Expr | None
-
-
-@lru_cache(maxsize=64)
-def _shifted(factor: ExactPolynomial, value: Expr) -> ExactPolynomial:
-    """The factor as a polynomial in what is added to a value."""
-    return factor.substitute({omega: value + omega})
-
-
-def correction(factor: ExactPolynomial, value: Expr, weights: Weights) -> Step | None:
-    """What must be added to a value for it to be a root, to leading order; None where it is a root."""
-    shifted = _shifted(factor, value)
-    sizes = [order(g, weights) for g in shifted.generators]
-    lowest: dict[int, tuple[Fraction, list[Expr]]] = {}
-    for e, a, b in shifted.terms():
-        if e[0] > factor.degree:
-            continue
-        level = sum((w * n for w, n in zip(sizes, e[1:], strict=True)), Fraction(0))
-        if e[0] in lowest and lowest[e[0]][0] < level:
-            continue
-        powers = (g**n for g, n in zip(shifted.generators, e[1:], strict=True) if n)
-        term = (Integer(a) + I * b) * Mul(*powers)
-        kept = lowest[e[0]][1] if e[0] in lowest and lowest[e[0]][0] == level else []
-        lowest[e[0]] = (level, [*kept, term])
-    if 0 not in lowest:
-        return None
-    slopes = {i: (lowest[0][0] - level) / i for i, (level, _) in lowest.items() if i}
-    steepest = max(slopes.values())
-    edge = [i for i, s in slopes.items() if s == steepest]
-    if edge != [1]:
-        return Step(steepest, None)
-    return Step(steepest, cancel(-Add(*lowest[0][1]) / Add(*lowest[1][1])))
-
-
-def parts(value: Expr) -> tuple[Expr, Expr]:
-    """Real and imaginary part of an expression in real symbols."""
-    top, bottom = value.as_numer_denom()
-    turned = bottom.xreplace({I: -I})
-    whole = expand(top * turned)
-    imaginary = Add(*(t for t in Add.make_args(whole) if t.has(I)))
-    size = expand(bottom * turned)
-    return cancel((whole - imaginary) / size), cancel(expand(imaginary / I) / size)
-
-
 def _judged(
     expansion: Expansion, factor: ExactPolynomial, weights: Weights, end: float
 ) -> SeriesFound | SeriesSlip | None:
@@ -404,8 +250,8 @@ def _judged(
 
 def _last_orders(expansion: Expansion, weights: Weights) -> tuple[Fraction, Fraction]:
     """The highest orders among the real and the imaginary terms; a side without terms has the other's."""
-    real = [order(t, weights) for t in expansion.terms if not _is_imaginary(t)]
-    imaginary = [order(t, weights) for t in expansion.terms if _is_imaginary(t)]
+    real = [order(t, weights) for t in expansion.terms if not is_imaginary(t)]
+    imaginary = [order(t, weights) for t in expansion.terms if is_imaginary(t)]
     return max(real or imaginary), max(imaginary or real)
 
 
@@ -414,15 +260,13 @@ def _slip(
 ) -> SeriesSlip:
     """The claim's term of an order, and what it should be."""
     unit = I if side else S.One
-    same = [
-        t for t in expansion.terms if _is_imaginary(t) == bool(side) and order(t, weights) == at
-    ]
+    same = [t for t in expansion.terms if is_imaginary(t) == bool(side) and order(t, weights) == at]
     should = factored(cancel(Add(*same) + unit * missing))
     named = [
         t
         for t in expansion.written
         if len(expansion.written) == len(expansion.terms)
-        and _is_imaginary(t) == bool(side)
+        and is_imaginary(t) == bool(side)
         and order(expansion.claim.written_out(t), weights) == at
     ]
     return SeriesSlip(Add(*(named or same)), should, at)
@@ -436,7 +280,7 @@ def _sizes(expansion: Expansion, found: SeriesFound) -> list[Expr]:
     low = order(meaning(first), found.scaling)
     sizes = [t / first for t in ordered if order(meaning(t), found.scaling) > low]
     if len(found.scaling) > 1 and found.next is not None:
-        side = [t for t in ordered if _is_imaginary(t) == _is_imaginary(found.next)] or ordered
+        side = [t for t in ordered if is_imaginary(t) == is_imaginary(found.next)] or ordered
         top, bottom = found.next.as_numer_denom()
         sizes += [t / bottom / side[-1] for t in Add.make_args(expand(top))]
     space = space_of(expansion.factors, expansion.symbols)

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
@@ -56,11 +56,14 @@ class Derived:
         Used in it, and to be used in every claim.
     square : Expr
         k·k.
+    wave_symbols : frozenset of Symbol
+        Wave numbers and angles, which are no parameters.
     """
 
     polynomial: ExactPolynomial
     conditions: tuple[Condition, ...]
     square: Expr
+    wave_symbols: frozenset[Symbol] = frozenset()
 
     @cached_property
     def factors(self) -> tuple[tuple[ExactPolynomial, int], ...]:
@@ -85,7 +88,7 @@ class Derived:
     def substituted(self, values: dict[Any, Any]) -> Derived:
         """With parameters replaced by numbers or expressions."""
         made = self.polynomial.substitute({s: self.rational(sympify(v)) for s, v in values.items()})
-        return Derived(bare(made), self.conditions, self.square)
+        return replace(self, polynomial=bare(made))
 
 
 def derive(
@@ -115,7 +118,9 @@ def derive(
     )
     for c in used:
         made = made.substitute({c.symbol: c.value})
-    return Derived(bare(made), tuple(used), Add(*(c**2 for c in wave.k)))
+    waves = {s for c in wave.k for s in c.free_symbols}
+    waves |= {half_tangent(s) for s in waves}
+    return Derived(bare(made), tuple(used), Add(*(c**2 for c in wave.k)), frozenset(waves))
 
 
 def bare(polynomial: ExactPolynomial) -> ExactPolynomial:

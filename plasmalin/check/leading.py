@@ -1,0 +1,179 @@
+"""Parts of a claim as the leading terms of derived factors where some monomials are small."""
+
+from __future__ import annotations
+
+import time
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+
+from sympy import Expr, Symbol
+
+from ..declare.constants import CODATA
+from ..declare.notation import paper
+from ..exact.polynomial import ExactPolynomial
+from .claim import Claim
+from .compare import covered
+from .cones import Vector
+from .derived import Derived
+from .faces import Face, Faces, Leading
+from .monomials import Space, Wording, number_of, space_of
+from .verdict import Small
+
+
+@dataclass(frozen=True)
+class LimitFound:
+    """An ordering under which a claim is the leading part of the derived relation.
+
+    Attributes
+    ----------
+    groups : tuple of Small
+        What must be small, none of them a product of powers of others.
+    neglected : Expr
+        The relative size of the largest term left out; 0 where none is.
+    notes : tuple of str
+        Where two small groups compete, the ratio that decides.
+    """
+
+    groups: tuple[Small, ...]
+    neglected: Expr
+    notes: tuple[str, ...] = ()
+
+    @property
+    def proof(self) -> str:
+        return (
+            "the claim is the leading part of the derived relation: with symbols as powers of a small number, every "
+            "other term is of higher order (linear programming, its answers checked exactly)"
+        )
+
+    @property
+    def physical(self) -> bool:
+        """Whether nature has such an ordering."""
+        return all(g.physical for g in self.groups)
+
+
+@dataclass(frozen=True)
+class Question:
+    """A claim's factors that are not exact, the derived factors, and the symbols to be ordered."""
+
+    claim: Claim
+    parts: tuple[ExactPolynomial, ...]
+    factors: tuple[ExactPolynomial, ...]
+    space: Space
+    wording: Wording
+    waves: frozenset[Symbol]
+    values: Mapping[str, float]
+
+    def small(self, group: Expr, physical: bool = True) -> Small:
+        return Small(group, number_of(group, self.values, self.claim), physical)
+
+
+def question(claim: Claim, derived: Derived, values: Mapping[str, float] | None) -> Question:
+    """What is asked of a claim and a relation."""
+    polynomial, _ = derived.numerator(claim.residual)
+    factors = tuple(f for f, _ in derived.factors)
+    parts = tuple(f for f, _ in polynomial.factor()[1] if not covered(f, derived.polynomial))
+    used = {s for d in claim.definitions.values() for s in d.free_symbols} & derived.symbols
+    space = space_of([*parts, *factors], used)
+    wording = Wording(space, claim, CODATA)
+    return Question(claim, parts, factors, space, wording, derived.wave_symbols, values or {})
+
+
+@dataclass(frozen=True)
+class Checked:
+    """A part that is leading under the conditions, where what is needed besides is small as well."""
+
+    notes: tuple[str, ...]
+    neglected: tuple[Expr, ...]
+    needed: tuple[Vector, ...]
+    reason: str
+    faces: Faces
+    led: tuple[tuple[Face, Leading], ...]
+
+
+UNLIKE = "under the stated conditions the derived relation has no such leading part"
+
+
+def best_of(
+    asked: Question, part: ExactPolynomial, cone: list[Vector], end: float
+) -> Checked | str:
+    """The part against every derived factor: what needs least, or the reason that says most."""
+    answers = [verified(asked, part, f, cone, end) for f in asked.factors]
+    checked = [a for a in answers if isinstance(a, Checked)]
+    if checked:
+        return min(checked, key=lambda a: len(a.needed))
+    if time.monotonic() > end:
+        return "not decided within the time given"
+    reasons = [a for a in answers if isinstance(a, str)]
+    return max(reasons, key=lambda r: (r != UNLIKE, -len(r)), default=UNLIKE)
+
+
+def verified(
+    asked: Question, part: ExactPolynomial, factor: ExactPolynomial, cone: list[Vector], end: float
+) -> Checked | str:
+    """One part of the claim against one derived factor."""
+    space = asked.space
+    faces = Faces(space, space.terms(part), space.terms(factor), cone, end)
+    notes: list[str] = []
+    neglected: list[Expr] = []
+    needed: list[Vector] = []
+    led: list[tuple[Face, Leading]] = []
+    reason = ""
+    found = faces.balanced()
+    if not found:
+        return "the terms of the claim cannot balance under the stated conditions"
+    for face in found:
+        answer = faces.leading(face)
+        if answer is None:
+            return UNLIKE
+        if answer.needed:
+            reason = reason or _needed(asked, answer.needed, face.zeros, factor)
+            needed += [asked.wording.vector(v, face.zeros) for v, _ in answer.needed]
+        led.append((face, answer))
+        neglected += [asked.wording.group(v, face.zeros) for v in answer.rays[:1]]
+        for r in (v for v in faces.claimed if not any(v in f.on for f in found)):
+            graded = faces.correction(r, face, answer)
+            if graded is None:
+                return _unconfirmed(asked, faces, r)
+            notes += competing(asked, faces, r, graded, face.zeros)
+    return Checked(tuple(notes), tuple(neglected), tuple(needed), reason, faces, tuple(led))
+
+
+def _needed(
+    asked: Question,
+    needed: Sequence[tuple[Vector, Vector]],
+    zeros: Sequence[Vector],
+    factor: ExactPolynomial,
+) -> str:
+    """The terms that are not small, and the groups that would make them so."""
+    groups = dict.fromkeys(asked.wording.group(v, zeros) for v, _ in needed)
+    terms = asked.space.terms(factor)
+    shown = paper(asked.space.term(needed[0][1], terms[needed[0][1]]))
+    wanted = ", ".join(f"{paper(g)} ≪ 1" for g in groups)
+    return (
+        f"the term {shown} of the derived relation is not small under the stated conditions; "
+        f"further needed: {wanted}"
+    )
+
+
+def _unconfirmed(asked: Question, faces: Faces, term: Vector) -> str:
+    shown = paper(asked.space.term(term, faces.claimed[term]))
+    return f"beyond the leading order, the term {shown} is not in the derived relation in this form"
+
+
+def competing(
+    asked: Question,
+    faces: Faces,
+    term: Vector,
+    ratios: Sequence[Vector],
+    zeros: Sequence[Vector],
+) -> list[str]:
+    """A correction stands only where the terms left out are smaller still."""
+    groups = dict.fromkeys(asked.wording.group(v, zeros) for v in ratios)
+    shown = paper(asked.space.term(term, faces.claimed[term]))
+    return [f"the term {shown} is confirmed where also {paper(g)} ≪ 1" for g in groups]
+
+
+def largest(groups: Sequence[Small]) -> Expr:
+    """The largest group at the given values, else the first."""
+    known = [g for g in groups if g.value is not None]
+    return max(known, key=lambda g: g.value or 0.0).group if known else groups[0].group

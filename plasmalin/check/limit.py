@@ -1,0 +1,77 @@
+"""A claim as the leading part of the derived relation, under an author's conditions or under those found.
+
+Under an ordering of its symbols a polynomial keeps the terms on one face of its Newton polytope, and the leading roots
+are those of that face (Newton; Puiseux 1850, J. Math. Pures Appl. 15, 365; Bruno, Power Geometry, Elsevier 2000; from
+memory). A claim is a limit when it is such a face, up to factors that do not vanish at its roots.
+"""
+
+from __future__ import annotations
+
+import time
+from collections.abc import Iterable, Mapping
+from itertools import product
+
+from sympy import Expr, S
+
+from ..declare.notation import paper
+from .claim import Claim
+from .cones import weights
+from .derived import Derived
+from .faces import Face, Faces, Leading
+from .leading import LimitFound, Question, best_of, question
+from .monomials import conditions
+from .orderings import find_limits
+
+__all__ = ["LimitFound", "find_limits", "verify_limit"]
+
+
+def verify_limit(
+    claim: Claim,
+    derived: Derived,
+    ratios: Iterable[Expr],
+    values: Mapping[str, float] | None = None,
+    budget: float = 10.0,
+) -> LimitFound | str:
+    """The claim as the leading part wherever an author's ratios are small; or the reason why it is not.
+
+    Parameters
+    ----------
+    claim : Claim
+    derived : Derived
+    ratios : iterable of Expr
+        What is ≪ 1, in the author's or the model's symbols; may hold ω.
+    values, budget
+        As for `find_limits`.
+    """
+    asked = question(claim, derived, values)
+    given = list(ratios)
+    cones = conditions(claim, asked.space, given)
+    if isinstance(cones, str):
+        return cones
+    cones = [c for c in cones if weights(asked.space.sized, c) is not None]
+    if not cones:
+        return "the stated conditions contradict each other"
+    end = time.monotonic() + budget
+    notes: list[str] = []
+    left_out: list[Expr] = []
+    for part, cone in product(asked.parts, cones):
+        answer = best_of(asked, part, cone, end)
+        if isinstance(answer, str):
+            return answer
+        if answer.needed:
+            return answer.reason
+        notes += answer.notes
+        notes += [n for f, led in answer.led for n in _apart(asked, answer.faces, f, led)]
+        left_out += answer.neglected
+    groups = tuple(asked.small(r) for r in given)
+    neglected = left_out[0] if left_out else S.Zero
+    return LimitFound(groups, neglected, tuple(dict.fromkeys(notes)))
+
+
+def _apart(asked: Question, faces: Faces, face: Face, answer: Leading) -> list[str]:
+    """What is needed besides where the terms that the claim keeps are of very different sizes."""
+    groups = dict.fromkeys(asked.wording.group(v, f.zeros) for v, f in faces.apart(face, answer))
+    return [
+        f"where the terms that the claim keeps differ much in size, also {paper(g)} ≪ 1"
+        for g in groups
+    ]

@@ -31,7 +31,7 @@ class Match:
 
 def compare(claim: Claim, derived: Derived) -> Match | None:
     """How a claim agrees with the derived relation, or None where it does not."""
-    found, sheets = derived.numerator(claim.residual)
+    found, sheets = derived.with_zeros(claim.residual)
     polynomial, extraneous = without_poles(found, claim, derived)
     made = match(bare(polynomial), sheets, derived, claim.solved)
     if made is None or (made.kind != "identical" and _loses(claim, polynomial, derived)):

@@ -81,7 +81,12 @@ class Derived:
         return without_angles(expr)
 
     def numerator(self, expr: Expr) -> tuple[ExactPolynomial, int]:
-        """The zeros of an expression as a polynomial without content, and its sheets."""
+        """The zeros of an expression as a polynomial without powers of ω or content, and its sheets."""
+        found, sheets = self.with_zeros(expr)
+        return bare(found), sheets
+
+    def with_zeros(self, expr: Expr) -> tuple[ExactPolynomial, int]:
+        """As `numerator`, powers of ω kept."""
         found, sheets = rational_numerator(self.rational(expr), omega)
         return found.primitive()[1], sheets
 

@@ -11,25 +11,25 @@ from typing import TYPE_CHECKING, Any
 from sympy import S, Symbol, cancel
 
 from ..declare.notation import paper
-from ..errors import NonPolynomialError, UndeterminedError
+from ..errors import NonPolynomialError
 from ..waves.coefficients import normalized_coefficients
-from .claim import Claim, Names, make_claim
+from .claim import Claim, WaveNames, make_claim
 from .compare import compare, covered
-from .convention import Convention, roles, to_si, under_other_conventions
+from .convention import Convention, in_si, under_other_conventions
 from .derived import Derived, derive
-from .limit import LimitFound, find_limits, verify_limit
+from .limit import find_limits, verify_limit
+from .roles import Roles, roles
 from .series import series_order
 from .slips import repairs
 from .special import special_values
 from .stated import Stated, read_stated
-from .verdict import Slip, Verdict
+from .verdict import Verdict
 
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
 
 LONGEST = 400
 """Characters of a coefficient that is shown."""
-CONSTANTS = {"c", "epsilon_0", "mu_0", "eps0", "mu0"}
 
 
 @dataclass(frozen=True, eq=False)
@@ -39,48 +39,55 @@ class Case:
     Attributes
     ----------
     wave : WaveMatrix
+    written : Claim
+        As its author wrote it.
     claim : Claim
-        In the derived relation's convention.
+        In SI and exp(−iωt).
     stated : Stated
+        The author's conditions.
     convention : Convention
         The declared one.
-    values : dict of str to number
+    roles : Roles
+    values : mapping of str to number
     deadline : float
         On the monotonic clock.
     """
 
     wave: WaveMatrix
-    claim: Claim
     written: Claim
+    claim: Claim
     stated: Stated
     convention: Convention
-    values: Mapping[str, float]
+    roles: Roles
+    values: Mapping[str, Any]
     deadline: float
 
     @property
-    def left(self) -> float:
-        return self.deadline - time.monotonic()
+    def time(self) -> float:
+        """Seconds that are left."""
+        return max(self.deadline - time.monotonic(), 0.0)
 
     @cached_property
     def plain(self) -> Derived:
         """The derived relation without the conditions of the background."""
-        return derive(self.wave, self._claimed, self._constants, conditions=False)
+        return self._derived(False)
 
     @cached_property
     def derived(self) -> Derived:
         """The derived relation with the conditions of the background used."""
-        return derive(self.wave, self._claimed, self._constants)
+        return self._derived(True)
+
+    def _derived(self, conditions: bool) -> Derived:
+        claimed = self.claim.residual.free_symbols
+        return derive(self.wave, claimed, self.roles.constants, conditions=conditions)
 
     @property
-    def _claimed(self) -> set[Symbol]:
-        return set(self.claim.residual.free_symbols)
+    def used(self) -> tuple[str, ...]:
+        """The conditions of the background that were used, in words."""
+        conditions = self.derived.conditions
+        return tuple(f"using {paper(c.symbol)} = {paper(c.value)}" for c in conditions)
 
-    @property
-    def _constants(self) -> set[Symbol]:
-        known = self._claimed | set(self.wave.linear.symbols.values())
-        return {s for s in known if s.name in CONSTANTS}
-
-    def verdict(self, kind: str, agrees: bool, proof: str, **more: Any) -> Verdict:
+    def verdict(self, kind: str, proof: str, *, agrees: bool = False, **more: Any) -> Verdict:
         return Verdict(kind, agrees, proof, self.written.reading, **more)
 
 
@@ -90,26 +97,21 @@ def judge(
     where: Mapping[Any, Any] | None = None,
     under: Any = None,
     convention: Convention | None = None,
-    values: Mapping[str, Any] | None = None,
+    values: Mapping[Any, Any] | None = None,
     budget_s: float = 30.0,
 ) -> Verdict:
     """Judge a claimed relation; see `WaveMatrix.check`."""
     deadline = time.monotonic() + budget_s
-    convention = convention or Convention()
     written = make_claim(wave, claim, where or {})
-    stated = read_stated(Names(wave, where or {}), under)
-    made = written
-    if convention != Convention():
-        known = roles(wave)
-        made = written.mapped(lambda e: to_si(e, convention, known))
-    numbers = {**wave.linear.defaults, **(values or {})}
-    case = Case(wave, made, written, stated, convention, numbers, deadline)
+    stated = read_stated(WaveNames(wave, where or {}), under)
+    convention, model = convention or Convention(), roles(wave)
+    numbers = {**wave.linear.defaults, **{str(n): v for n, v in (values or {}).items()}}
+    made = in_si(written, convention, model)
+    case = Case(wave, written, made, stated, convention, model, numbers, deadline)
     try:
         return _answer(case)
     except NonPolynomialError as error:
-        return case.verdict("undecided", False, f"the claim cannot be made polynomial: {error}")
-    except UndeterminedError as error:
-        return case.verdict("undecided", False, str(error))
+        return case.verdict("undecided", f"the claim cannot be made polynomial: {error}")
 
 
 def _answer(case: Case) -> Verdict:
@@ -117,99 +119,96 @@ def _answer(case: Case) -> Verdict:
         found = question(case)
         if found is not None:
             return found
-    found = _special(case) or _limit(case) or _series(case)
-    slips, notes = _slips(case)
-    if found is not None:
-        return Verdict(
-            found.kind, False, found.proof, found.reading, found.conditions, slips, found.notes
-        )
-    return case.verdict("differs", False, _differs(slips, case), slips=slips, notes=notes)
+    right_somewhere = _special(case) or _series(case) or _limit(case)
+    repaired = repairs(case.claim, case.derived, case.time)
+    slips = tuple(s for repair in repaired for s in repair.slips)
+    if right_somewhere is not None:
+        kind, proof, conditions, notes = right_somewhere
+        return case.verdict(kind, proof, conditions=conditions, notes=notes, slips=slips)
+    if slips:
+        proof = "no common divisor takes up the claim; every repair was proved by exact division"
+        return case.verdict("differs", proof, slips=slips, notes=case.used)
+    late = " within the time given" if case.time == 0 else ""
+    proof = f"no common divisor takes up the claim; no single repair was found{late}"
+    return case.verdict("differs", proof, notes=(*case.used, *side_by_side(case)))
 
 
 def _same(case: Case) -> Verdict | None:
     """Identical, a factor or a branch, with the conditions of the background where they are needed."""
     found = compare(case.claim, case.plain)
     if found is not None:
-        return case.verdict(found.kind, True, found.proof)
+        return case.verdict(found.kind, found.proof, agrees=True)
     if case.derived.conditions:
         found = compare(case.claim, case.derived)
         if found is not None:
-            return case.verdict(found.kind, True, found.proof, notes=_used(case.derived))
+            return case.verdict(found.kind, found.proof, agrees=True, notes=case.used)
     return None
-
-
-def _used(derived: Derived) -> tuple[str, ...]:
-    return tuple(f"using {paper(c.symbol)} = {paper(c.value)}" for c in derived.conditions)
 
 
 def _as_stated(case: Case) -> Verdict | None:
     """Right under the conditions that the author states."""
-    values = case.stated.values
+    values, ratios = case.stated.values, list(case.stated.ratios)
     derived = case.derived.substituted(values) if values else case.derived
     claim = case.claim.mapped(lambda e: e.xreplace(dict(values)))
     if values:
         found = compare(claim, derived)
         if found is not None:
             named = {s.name: v for s, v in values.items()}
-            return case.verdict("special", True, found.proof, conditions=named)
-    if not case.stated:
+            return case.verdict("special", found.proof, agrees=True, conditions=named)
+    if not ratios:
         return None
-    reason = ""
-    if case.stated.ratios:
-        found = verify_limit(claim, derived, list(case.stated.ratios), case.values)
-        if isinstance(found, LimitFound):
-            return case.verdict(
-                "limit", True, found.proof, conditions=found.groups, notes=found.notes
-            )
-        reason = found
-    series = series_order(claim, derived, list(case.stated.ratios) or None, case.values)
+    limit = verify_limit(claim, derived, ratios, case.values, case.time / 3)
+    if not isinstance(limit, str):
+        return case.verdict(
+            "limit", LEADING, agrees=True, conditions=limit.groups, notes=_limit_notes(limit)
+        )
+    series = series_order(claim, derived, ratios, case.values, case.time / 3)
     if series is not None:
         return case.verdict(
-            "series", True, series.proof, conditions=series.groups, notes=series.notes
+            "series", series.proof, agrees=True, conditions=series.groups, notes=series.notes
         )
     return None
 
 
+LEADING = "its terms are a face of the Newton polytope of the derived relation"
+
+
+def _limit_notes(found: Any) -> tuple[str, ...]:
+    first = (f"first neglected: {paper(found.neglected)}",) if found.neglected != 0 else ()
+    return (*first, *found.notes)
+
+
 def _other_convention(case: Case) -> Verdict | None:
-    for convention, found in under_other_conventions(case.written, case.wave, case.convention):
-        notes = ("in a model with damping this may be a slip of sign",)
-        return case.verdict("convention", False, found.proof, conditions=(convention,), notes=notes)
-    return None
+    found = under_other_conventions(case.written, case.wave, case.convention)
+    if not found:
+        return None
+    shown = tuple(c for c, _ in found)
+    notes = ("not agreement: with damping or growth this may be a slip of sign",)
+    return case.verdict("convention", found[0][1].proof, conditions=shown, notes=notes)
 
 
-def _special(case: Case) -> Verdict | None:
-    for values in special_values(case.claim, case.derived, case.left / 4):
+Somewhere = tuple[str, str, Any, tuple[str, ...]]
+
+
+def _special(case: Case) -> Somewhere | None:
+    for values in special_values(case.claim, case.derived, case.time / 5):
         named = {s.name: v for s, v in values.items()}
-        proof = "with these values both are the same polynomial, or the claim is a part of it"
-        return case.verdict("special", False, proof, conditions=named)
+        proof = "with these values the claim divides the derived relation exactly"
+        return "special", proof, named, case.used
     return None
 
 
-def _limit(case: Case) -> Verdict | None:
-    for found in find_limits(case.claim, case.derived, case.values, case.left / 3):
-        return case.verdict("limit", False, found.proof, conditions=found.groups, notes=found.notes)
+def _limit(case: Case) -> Somewhere | None:
+    for limit in find_limits(case.claim, case.derived, case.values, case.time / 3):
+        return "limit", LEADING, limit.groups, _limit_notes(limit)
     return None
 
 
-def _series(case: Case) -> Verdict | None:
-    found = series_order(case.claim, case.derived, None, case.values)
+def _series(case: Case) -> Somewhere | None:
+    found = series_order(case.claim, case.derived, None, case.values, case.time / 4)
     if found is None:
         return None
-    return case.verdict("series", False, found.proof, conditions=found.groups, notes=found.notes)
-
-
-def _slips(case: Case) -> tuple[tuple[Slip, ...], tuple[str, ...]]:
-    """Repairs, and the coefficients side by side where there are none."""
-    found = repairs(case.written, case.derived, max(case.left, 1.0))
-    slips = tuple(s for repair in found for s in repair.slips)
-    return slips, () if slips else tuple(side_by_side(case))
-
-
-def _differs(slips: tuple[Slip, ...], case: Case) -> str:
-    if slips:
-        return "no factor is common to all of the claim; every repair was proved by exact division"
-    late = " within the time given" if case.left < 0 else ""
-    return f"the claim does not divide the derived relation; no single repair was found{late}"
+    return "series", found.proof, found.groups, found.notes
 
 
 def side_by_side(case: Case) -> Iterator[str]:
@@ -218,9 +217,9 @@ def side_by_side(case: Case) -> Iterator[str]:
     factors = [f for f, _ in case.derived.factors if not covered(f, claimed)]
     same = [f for f in factors if f.degree == claimed.degree] or [case.derived.polynomial]
     right, theirs = (normalized_coefficients(p) for p in (same[0], claimed))
-    yield "coefficients of the powers of ω that differ, derived and claimed:"
+    yield "coefficients of the powers of ω that differ, derived | claimed:"
     for power in sorted({*right, *theirs}, reverse=True):
         a, b = right.get(power, S.Zero), theirs.get(power, S.Zero)
         if cancel(a - b) != 0:
             shown = (text if len(text := paper(x)) < LONGEST else "a long sum" for x in (a, b))
-            yield f"ω^{power}: " + "   |   ".join(shown)
+            yield f"{paper(Symbol('omega') ** power)}: " + " | ".join(shown)

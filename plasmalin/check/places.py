@@ -206,7 +206,7 @@ def _scaled(claim: Claim, symbol: Symbol) -> Callable[[Expr], Claim]:
 
 
 def _leaves(claim: Claim) -> set[Symbol]:
-    found = (claim.left - claim.right).free_symbols
+    found: set[Symbol] = (claim.left - claim.right).free_symbols
     return {s for d in claim.definitions.values() for s in d.free_symbols} | found
 
 

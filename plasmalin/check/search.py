@@ -118,11 +118,10 @@ def solve_two(search: Search, changed: Callable[[Expr, Expr], Claim]) -> list[tu
     found = []
     try:
         for value in pairs():
-            made = [
-                _monomial(search, value[i], lambda d, i=i: [p[i] for p in pairs(d)]) for i in (0, 1)
-            ]
-            if made[0] is not None and made[1] is not None:
-                found.append((made[0], made[1]))
+            one = _monomial(search, value[0], lambda d: [p[0] for p in pairs(d)])
+            other = _monomial(search, value[1], lambda d: [p[1] for p in pairs(d)])
+            if one is not None and other is not None:
+                found.append((one, other))
     except (ArithmeticError, PlasmalinError):
         return []
     return found

@@ -35,7 +35,7 @@ from ..declare.operators import omega
 from ..errors import PlasmalinError
 from ..exact.polynomial import ExactPolynomial
 from .claim import Claim
-from .compare import Match, covered, loses_a_mode, match
+from .compare import Match, compare, covered, loses_a_mode
 from .derived import Derived
 from .monomials import MASS, PURE_NUMBER, base_and_power
 
@@ -87,11 +87,9 @@ def holds_under(claim: Claim, derived: Derived, values: Mapping[Symbol, Any]) ->
     """
     try:
         special = derived.substituted(dict(values))
-        polynomial, sheets = special.numerator(claim.residual.xreplace(dict(values)))
+        return compare(claim.mapped(lambda e: e.xreplace(dict(values))), special)
     except (PlasmalinError, ArithmeticError):
         return None
-    found = match(polynomial, sheets, special, claim.solved)
-    return None if found and found.kind != "identical" and loses_a_mode(claim) else found
 
 
 def _same_degree(derived: Derived, values: Values) -> bool:

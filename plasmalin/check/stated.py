@@ -11,7 +11,7 @@ from sympy import Eq, Expr, S, Symbol, oo
 from ..declare.operators import omega
 from ..declare.typed import read_condition
 from ..errors import DeclarationError
-from .claim import Claim, Names
+from .claim import Claim, WaveNames
 from .derived import linear_solution
 
 
@@ -34,12 +34,12 @@ class Stated:
         return bool(self.values or self.ratios)
 
 
-def read_stated(names: Names, under: Any) -> Stated:
+def read_stated(names: WaveNames, under: Any) -> Stated:
     """The conditions of a claim.
 
     Parameters
     ----------
-    names : Names
+    names : WaveNames
     under : None, mapping, text or sequence of texts and SymPy equations
         ``{"gamma_e": 3}``, ``["m_e/m_i << 1", "k*lambda_De << 1", "T_i = 0"]``.
 
@@ -59,7 +59,7 @@ def read_stated(names: Names, under: Any) -> Stated:
     return Stated(values, tuple(ratios))
 
 
-def _each(names: Names, under: Any) -> list[tuple[Expr, Expr, bool]]:
+def _each(names: WaveNames, under: Any) -> list[tuple[Expr, Expr, bool]]:
     if under is None:
         return []
     if isinstance(under, Mapping):
@@ -73,7 +73,7 @@ def _each(names: Names, under: Any) -> list[tuple[Expr, Expr, bool]]:
     return [_one(names, c) for c in listed]
 
 
-def _one(names: Names, condition: Any) -> tuple[Expr, Expr, bool]:
+def _one(names: WaveNames, condition: Any) -> tuple[Expr, Expr, bool]:
     if isinstance(condition, Eq):
         return (
             names.expression(condition.lhs, "under"),
@@ -84,7 +84,7 @@ def _one(names: Names, condition: Any) -> tuple[Expr, Expr, bool]:
         raise DeclarationError(
             f'under: {condition!r} is not a condition; write "m_e/m_i << 1" or "gamma_e = 3"'
         )
-    read = read_condition(condition, names.names, names._unknown)
+    read = read_condition(condition, names.names, names.unknown)
     if read.kind == "limit":
         if read.right in (oo, -oo):
             return 1 / read.left, S.One, True
@@ -92,11 +92,11 @@ def _one(names: Names, condition: Any) -> tuple[Expr, Expr, bool]:
     return read.left, read.right, read.kind == "small"
 
 
-def _written(names: Names, expr: Expr) -> Expr:
+def _written(names: WaveNames, expr: Expr) -> Expr:
     return Claim(expr, S.Zero, names.definitions).written_out(expr)
 
 
-def _solved(names: Names, left: Expr, right: Expr) -> tuple[Symbol, Expr]:
+def _solved(names: WaveNames, left: Expr, right: Expr) -> tuple[Symbol, Expr]:
     """An equation solved for one symbol: the left side where it is one, else what it is linear in."""
     residual = _written(names, left - right)
     plain = _written(names, left)

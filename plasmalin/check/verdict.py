@@ -10,8 +10,8 @@ from typing import Any
 
 from sympy import Expr
 
-from ..declare.glyphs import GREEK_NAME
 from ..declare.notation import SUPERSCRIPT, latex, paper
+from ..declare.words import GREEK_NAME
 
 KINDS = (
     "identical", "factor", "branch", "special", "limit", "series", "convention", "differs", "undecided",

@@ -114,7 +114,7 @@ class Ring:
     def __init__(self, names: Sequence[sp.Symbol]) -> None:
         self.names = list(names)
         labels = tuple(f"x{i}" for i in range(len(names)))
-        self.context = nmod_mpoly_ctx.get(labels, field()[0], "lex")
+        self.context = nmod_mpoly_ctx.get(labels, modulus=field()[0], ordering="lex")
         self.gens = dict(zip(self.names, self.context.gens(), strict=True))
 
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import time
 from collections.abc import Iterator, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field, replace
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
@@ -17,10 +17,10 @@ from .claim import Claim, WaveNames, make_claim
 from .compare import compare, covered
 from .convention import Convention, in_si, under_other_conventions
 from .derived import Derived, derive
-from .limit import find_limits, verify_limit
+from .limit import LimitFound, find_limits, verify_limit
 from .roles import Roles, roles
 from .series import series_order
-from .slips import repairs
+from .slips import Repair, repairs, repairs_as_limit
 from .special import special_values
 from .stated import Stated, read_stated
 from .verdict import Verdict
@@ -51,6 +51,8 @@ class Case:
     values : mapping of str to number
     deadline : float
         On the monotonic clock.
+    reasons : list of str
+        Why the author's own conditions do not make the claim right.
     """
 
     wave: WaveMatrix
@@ -61,6 +63,17 @@ class Case:
     roles: Roles
     values: Mapping[str, Any]
     deadline: float
+    reasons: list[str] = field(default_factory=list)
+
+    def as_stated(self) -> Case:
+        """With the values that the author states put into the claim and the relation."""
+        values = dict(self.stated.values)
+        if not values:
+            return self
+        claim = self.claim.mapped(lambda e: e.xreplace(values))
+        made = replace(self, claim=claim)
+        made.__dict__["derived"] = self.derived.substituted(values)
+        return made
 
     @property
     def time(self) -> float:
@@ -115,22 +128,37 @@ def judge(
 
 
 def _answer(case: Case) -> Verdict:
-    for question in (_same, _as_stated, _other_convention):
+    for question in (_same, _as_stated):
         found = question(case)
         if found is not None:
             return found
-    right_somewhere = _special(case) or _series(case) or _limit(case)
-    repaired = repairs(case.claim, case.derived, case.time)
+    case = case.as_stated()
+    somewhere = _other_convention(case) or _special(case) or _series(case) or _limit(case)
+    repaired = _repairs(case, somewhere)
     slips = tuple(s for repair in repaired for s in repair.slips)
-    if right_somewhere is not None:
-        kind, proof, conditions, notes = right_somewhere
-        return case.verdict(kind, proof, conditions=conditions, notes=notes, slips=slips)
+    notes = (*case.reasons, *case.used)
+    if somewhere is not None and not (slips and somewhere.doubtful):
+        return case.verdict(
+            somewhere.kind,
+            somewhere.proof,
+            conditions=somewhere.conditions,
+            notes=(*case.reasons, *somewhere.notes),
+            slips=slips,
+        )
     if slips:
         proof = "no common divisor takes up the claim; every repair was proved by exact division"
-        return case.verdict("differs", proof, slips=slips, notes=case.used)
+        doubt = () if somewhere is None else somewhere.as_notes()
+        return case.verdict("differs", proof, slips=slips, notes=(*notes, *doubt))
     late = " within the time given" if case.time == 0 else ""
     proof = f"no common divisor takes up the claim; no single repair was found{late}"
-    return case.verdict("differs", proof, notes=(*case.used, *side_by_side(case)))
+    return case.verdict("differs", proof, notes=(*notes, *side_by_side(case)))
+
+
+def _repairs(case: Case, somewhere: Somewhere | None) -> list[Repair]:
+    found = repairs(case.claim, case.derived, case.time / 2)
+    if found or (somewhere is not None and not somewhere.doubtful):
+        return found
+    return repairs_as_limit(case.claim, case.derived, case.time)
 
 
 def _same(case: Case) -> Verdict | None:
@@ -147,60 +175,82 @@ def _same(case: Case) -> Verdict | None:
 
 def _as_stated(case: Case) -> Verdict | None:
     """Right under the conditions that the author states."""
+    stated = case.as_stated()
     values, ratios = case.stated.values, list(case.stated.ratios)
-    derived = case.derived.substituted(values) if values else case.derived
-    claim = case.claim.mapped(lambda e: e.xreplace(dict(values)))
+    named = {s.name: v for s, v in values.items()}
     if values:
-        found = compare(claim, derived)
+        found = compare(stated.claim, stated.derived)
         if found is not None:
-            named = {s.name: v for s, v in values.items()}
             return case.verdict("special", found.proof, agrees=True, conditions=named)
     if not ratios:
         return None
-    limit = verify_limit(claim, derived, ratios, case.values, case.time / 3)
+    also = tuple(f"with {name} = {paper(value)}" for name, value in named.items())
+    limit = verify_limit(stated.claim, stated.derived, ratios, case.values, case.time / 3)
     if not isinstance(limit, str):
-        return case.verdict(
-            "limit", LEADING, agrees=True, conditions=limit.groups, notes=_limit_notes(limit)
-        )
-    series = series_order(claim, derived, ratios, case.values, case.time / 3)
+        notes = (*also, *_limit_notes(limit))
+        return case.verdict("limit", LEADING, agrees=True, conditions=limit.groups, notes=notes)
+    series = series_order(stated.claim, stated.derived, ratios, case.values, case.time / 3)
     if series is not None:
+        notes = (*also, *series.notes)
         return case.verdict(
-            "series", series.proof, agrees=True, conditions=series.groups, notes=series.notes
+            "series", series.proof, agrees=True, conditions=series.groups, notes=notes
         )
+    case.reasons.append(f"under the stated conditions: {limit}")
     return None
 
 
 LEADING = "its terms are a face of the Newton polytope of the derived relation"
 
 
-def _limit_notes(found: Any) -> tuple[str, ...]:
+def _limit_notes(found: LimitFound) -> tuple[str, ...]:
     first = (f"first neglected: {paper(found.neglected)}",) if found.neglected != 0 else ()
     return (*first, *found.notes)
 
 
-def _other_convention(case: Case) -> Verdict | None:
+@dataclass(frozen=True)
+class Somewhere:
+    """Where a claim is right, though its author does not say so.
+
+    Attributes
+    ----------
+    kind, proof, conditions, notes
+        As of the verdict.
+    doubtful : bool
+        Whether a located slip is the better answer: an ordering that nature does not have, or in part only.
+    """
+
+    kind: str
+    proof: str
+    conditions: Any
+    notes: tuple[str, ...] = ()
+    doubtful: bool = False
+
+    def as_notes(self) -> tuple[str, ...]:
+        return (f"right in part or nowhere in nature: {', '.join(map(str, self.conditions))}",)
+
+
+def _other_convention(case: Case) -> Somewhere | None:
     found = under_other_conventions(case.written, case.wave, case.convention)
     if not found:
         return None
     shown = tuple(c for c, _ in found)
     notes = ("not agreement: with damping or growth this may be a slip of sign",)
-    return case.verdict("convention", found[0][1].proof, conditions=shown, notes=notes)
-
-
-Somewhere = tuple[str, str, Any, tuple[str, ...]]
+    return Somewhere("convention", found[0][1].proof, shown, notes)
 
 
 def _special(case: Case) -> Somewhere | None:
     for values in special_values(case.claim, case.derived, case.time / 5):
         named = {s.name: v for s, v in values.items()}
         proof = "with these values the claim divides the derived relation exactly"
-        return "special", proof, named, case.used
+        return Somewhere("special", proof, named, case.used)
     return None
 
 
 def _limit(case: Case) -> Somewhere | None:
     for limit in find_limits(case.claim, case.derived, case.values, case.time / 3):
-        return "limit", LEADING, limit.groups, _limit_notes(limit)
+        in_part = any("confirmed" in note for note in limit.notes)
+        doubtful = in_part or not limit.physical
+        return Somewhere("limit", LEADING, limit.groups, _limit_notes(limit), doubtful)
     return None
 
 
@@ -208,7 +258,7 @@ def _series(case: Case) -> Somewhere | None:
     found = series_order(case.claim, case.derived, None, case.values, case.time / 4)
     if found is None:
         return None
-    return "series", found.proof, found.groups, found.notes
+    return Somewhere("series", found.proof, found.groups, found.notes)
 
 
 def side_by_side(case: Case) -> Iterator[str]:

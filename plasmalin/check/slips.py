@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import time
 from collections.abc import Iterable, Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
+from fractions import Fraction
 from itertools import combinations
 from typing import Any
 
@@ -14,9 +15,11 @@ from ..declare.notation import paper
 from ..declare.operators import omega
 from ..errors import PlasmalinError
 from ..exact.polynomial import ExactPolynomial
+from ..exact.polynomial import polynomial as read_exact
+from ..waves.ordering import leading_balances
 from .claim import Claim
 from .compare import Match, compare, covered
-from .derived import Derived
+from .derived import Derived, bare
 from .places import (
     Edit,
     Spot,
@@ -32,6 +35,8 @@ from .places import (
 from .search import Search, solve_one, solve_two
 from .verdict import Slip
 
+MOST_PARTS = 40
+"""Leading parts of the derived relation that are tried."""
 MOST = 6
 """Repairs that are listed."""
 DIVISIONS = ("over", "over twice", "more")
@@ -82,11 +87,49 @@ def repairs(claim: Claim, derived: Derived, budget: float) -> list[Repair]:
     return [r for r in found if r.cost <= found[0].cost + WORSE][:MOST]
 
 
+def repairs_as_limit(claim: Claim, derived: Derived, budget: float) -> list[Repair]:
+    """Repairs after which the claim is a leading part of the derived relation, one or two symbols scaling."""
+    deadline = time.monotonic() + budget
+    polynomial, _ = derived.numerator(claim.residual)
+    for target in leading_parts(derived, polynomial.degree):
+        part = replace(derived, polynomial=target)
+        search = Search(claim, part, target, deadline)
+        found = [*_single(search), *_divided(search)]
+        if found or search.late:
+            return sorted(found, key=lambda r: r.cost)[:MOST]
+    return []
+
+
+def leading_parts(derived: Derived, degree: int) -> list[ExactPolynomial]:
+    """The leading balances of a degree in ω under one symbol, or two, becoming small or large."""
+    found: dict[Expr, ExactPolynomial] = {}
+    for factor, _ in derived.factors:
+        if factor.degree <= degree:
+            continue
+        plain = [g for g in factor.generators if g.is_Symbol]
+        single = [{g: Fraction(w)} for g in plain for w in (1, -1)]
+        double = [{**a, **b} for a, b in combinations(single, 2) if set(a) != set(b)]
+        for weights in (*single, *double):
+            for balance in leading_balances(factor, weights, None):
+                if balance.roots == degree and balance.expr not in found:
+                    found[balance.expr] = bare(read_exact(balance.expr, omega))
+    return sorted(found.values(), key=lambda p: -len(p))[:MOST_PARTS]
+
+
 def _whole(claim: Claim, derived: Derived, deadline: float) -> list[Repair]:
     """The questions, cheapest first, for each factor that the claim lacks."""
     polynomial, _ = derived.numerator(claim.residual)
     targets = _targets(polynomial, derived)
-    for question in (_single, _divided, _wholesale, _alike, _other_species, _scaled, _double):
+    for question in (
+        _single,
+        _divided,
+        _wholesale,
+        _split,
+        _alike,
+        _other_species,
+        _scaled,
+        _double,
+    ):
         for target in targets:
             found = list(question(Search(claim, derived, target, deadline)))
             if found:
@@ -179,6 +222,21 @@ def _wholesale(search: Search) -> Iterator[Repair]:
             yield from _proved(search, (Slip(node, node ** (power - 1), text),), claim, 1.2)
 
 
+def _split(search: Search) -> Iterator[Repair]:
+    """A term that is there several times should be there once with a symbol's sign turned."""
+    for spots, node in grouped(search.claim):
+        count, rest = node.as_coeff_Mul()
+        if len(spots) != 1 or not count.is_Integer or abs(count) < 2:
+            continue
+        for symbol in sorted(rest.free_symbols - {omega}, key=str):
+            twin = count / abs(count) * (rest.xreplace({symbol: -symbol}) - rest)
+            claim = multiplied(search.claim, {spots[0]: 1 + twin / node})
+            if not search.late and search.vanishes(claim):
+                text = f"in one of the {abs(count)} terms {paper(rest)} the sign of {paper(symbol)} is wrong"
+                slip = Slip(node, (1 + twin / node), text)
+                yield from _proved(search, (slip,), claim, 1.5)
+
+
 def _other_species(search: Search) -> Iterator[Repair]:
     """A term of another species is missing: one that is there, with that species' symbols."""
     for node, changed, where in additions(search.claim):
@@ -244,7 +302,8 @@ def _double(search: Search) -> Iterator[Repair]:
             if S.One in values:
                 continue
             slips = tuple(_named(search, s, v) for s, v in zip(pair, values, strict=True))
-            cost = 2.0 + sum(len(Mul.make_args(v)) for v in values)
+            bare_numbers = sum(s.term.is_number for s in slips)
+            cost = 2.0 + sum(len(Mul.make_args(v)) for v in values) + bare_numbers
             yield from _proved(search, slips, changed(*values), cost)
 
 
@@ -317,13 +376,18 @@ KIND_COST = {
 
 
 def _cost(edit: Edit, value: Expr) -> float:
-    size = sum(
-        (0.0 if f in (S.One, S.NegativeOne) else 1.0) + (3.0 if f.has(omega) else 0.0)
-        for f in Mul.make_args(value)
-    )
+    size = sum(map(_weight, Mul.make_args(value)))
     roots = sum(1.0 for p in value.atoms(Pow) if not p.exp.is_Integer)
     place = {"": 0.0, "everywhere": 0.4}.get(edit.where, 0.3)
     return size + roots + place + KIND_COST[edit.kind] + 0.01 * len(str(edit.term))
+
+
+def _weight(factor: Expr) -> float:
+    """How far one factor of a repair is from simple."""
+    if factor in (S.One, S.NegativeOne):
+        return 0.0
+    base = factor.base if isinstance(factor, Pow) else factor
+    return 1.0 + (2.5 if isinstance(base, Add) else 1.5 if factor.has(omega) else 0.0)
 
 
 def _distinct(found: Iterable[Repair]) -> list[Repair]:

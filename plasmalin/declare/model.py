@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Any
 
 from sympy import Add, Expr, Float, Rational, S, Symbol, expand
@@ -14,6 +14,7 @@ from .fields import AXES, Components, Field, FieldAtom, components, exact
 from .notation import law_text
 from .operators import OPERATORS, WAVE_SYMBOLS, WORDS, Cross, Curl, Multiplier, identity, rank_of
 from .reader import read_expression, read_law
+from .role import Role
 
 if TYPE_CHECKING:
     from ..linearize.linearized import LinearizedModel
@@ -29,6 +30,8 @@ class Law:
     lhs: Expr
     rhs: Expr
     rank: int
+    role: Role | None = None
+    """What it is for, where it is a ready law."""
 
     @property
     def residual(self) -> Expr:
@@ -458,7 +461,11 @@ class FluidModel:
         del self._laws[name]
 
     def _current_law(self, law: Law) -> Law:
-        return Law(law.name, self._canonical(law.lhs), self._canonical(law.rhs), law.rank)
+        role = law.role and law.role.mapped(self._canonical)
+        return replace(law, lhs=self._canonical(law.lhs), rhs=self._canonical(law.rhs), role=role)
+
+    def _assign(self, name: str, role: Role) -> None:
+        self._laws[name] = replace(self._laws[name], role=role)
 
     def _canonical(self, expr: Expr) -> Expr:
         """The expression in the model's own symbols and fields; a decimal is that decimal, exactly."""

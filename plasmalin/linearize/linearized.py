@@ -193,7 +193,7 @@ def linearize(model: FluidModel, assume: tuple[str, ...] = ()) -> LinearizedMode
         pieces += list(ledger)
     whole = Ledger(pieces, model.axes)
     _check_determined(model.fields, laws, whole, model.axes)
-    background = Equilibrium(tuple(balances), model.fields, model.axes)
+    background = Equilibrium(tuple(balances), model.fields, model.axes, laws)
     return LinearizedModel(
         model.title,
         model.axes,

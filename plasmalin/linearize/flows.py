@@ -10,7 +10,7 @@ from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from typing import Any, cast
 
-from sympy import Add, Dummy, EmptySet, Expr, Mul, S, Symbol, expand, linsolve
+from sympy import Add, Dummy, Expr, Mul, S, Symbol, expand, linsolve
 from sympy.polys.polyerrors import PolynomialError
 from sympy.solvers.solveset import NonlinearError
 
@@ -141,6 +141,12 @@ def _carried(found: list[Source], fluxes: Mapping[Field, Expr]) -> Iterator[Sour
 
 # Drifts ------------------------------------------------------------------------------------------
 
+READABLE = 4
+"""Components of flows that hang together, beyond which their closed form fills pages; they stay conditions."""
+
+Group = tuple[list[Expr], set[Symbol]]
+"""Equations that hang together, and the unknowns in them."""
+
 
 def drifts(
     laws: Mapping[str, Law], residuals: Mapping[str, tuple[Expr, ...]]
@@ -156,14 +162,28 @@ def drifts(
     flows = {o.args[0] for law in laws.values() for o in law.residual.atoms(Advect)}
     given = [v.background for v in flows if isinstance(v, Field)]
     entries = {x for b in given if isinstance(b, Components) for x in b.args}
-    unknown = sorted((x for x in entries if isinstance(x, Symbol)), key=str)
+    unknown = {x for x in entries if isinstance(x, Symbol)}
     balances = [r for n, law in laws.items() if law.rank == 1 for r in residuals.get(n, ())]
-    equations = [r for r in balances if r.free_symbols & set(unknown)]
+    groups = _groups([r for r in balances if r.free_symbols & unknown], unknown)
+    found = [pair for g in groups if len(g[1]) <= READABLE for pair in _solved(*g)]
+    return dict(sorted(found, key=str))
+
+
+def _groups(equations: list[Expr], unknown: set[Symbol]) -> list[Group]:
+    groups: list[Group] = []
+    for equation in equations:
+        symbols = equation.free_symbols & unknown
+        joined = [g for g in groups if g[1] & symbols]
+        together = [e for g in joined for e in g[0]]
+        groups = [g for g in groups if g not in joined]
+        groups.append(([*together, equation], symbols.union(*(g[1] for g in joined))))
+    return groups
+
+
+def _solved(equations: list[Expr], symbols: set[Symbol]) -> list[tuple[Symbol, Expr]]:
+    unknown = sorted(symbols, key=str)
     try:
-        solved = linsolve(equations, unknown) if equations else EmptySet
+        solved = linsolve(equations, unknown)
     except (NonlinearError, PolynomialError):
-        return {}
-    if solved is EmptySet:
-        return {}
-    (values,) = solved
-    return {u: value for u, value in zip(unknown, values, strict=True) if value != u}
+        return []
+    return [(u, x) for values in solved for u, x in zip(unknown, values, strict=True) if u != x]

@@ -159,14 +159,21 @@ def drifts(
     residuals : mapping of str to tuple of Expr
         What each law leaves on the background.
     """
-    flows = {o.args[0] for law in laws.values() for o in law.residual.atoms(Advect)}
-    given = [v.background for v in flows if isinstance(v, Field)]
+    given = [v.background for law in laws.values() for v in _flows(law.residual)]
     entries = {x for b in given if isinstance(b, Components) for x in b.args}
     unknown = {x for x in entries if isinstance(x, Symbol)}
     balances = [r for n, law in laws.items() if law.rank == 1 for r in residuals.get(n, ())]
     groups = _groups([r for r in balances if r.free_symbols & unknown], unknown)
     found = [pair for g in groups if len(g[1]) <= READABLE for pair in _solved(*g)]
     return dict(sorted(found, key=str))
+
+
+def _flows(expr: Expr) -> Iterator[Field]:
+    """The velocities of a law: those that advect, and those in the flux of a density."""
+    fluxes = [o.args[0] for o in expr.atoms(Div) if o.rank == 0]
+    held = {f for flux in fluxes if not isinstance(flux, Field) for f in flux.atoms(Field)}
+    held |= {o.args[0] for o in expr.atoms(Advect)}
+    yield from (f for f in held if isinstance(f, Field) and f.rank == 1)
 
 
 def _groups(equations: list[Expr], unknown: set[Symbol]) -> list[Group]:

@@ -71,7 +71,7 @@ def split(expr: Expr) -> Pieces:
     if isinstance(expr, Norm):
         return _split_norm(expr)
     if isinstance(expr, Multiplier):
-        return [(order, Multiplier(x, expr.args[1])) for order, x in split(expr.args[0])]
+        return _split_multiplier(expr)
     if isinstance(expr, Operator):
         return _multilinear(type(expr), expr.args)
     if isinstance(expr, Components):
@@ -87,6 +87,15 @@ def _multilinear(make: Any, args: tuple[Any, ...]) -> Pieces:
         if made != 0:
             pieces.append((sum(order for order, _ in choice), made))
     return pieces
+
+
+def _split_multiplier(expr: Multiplier) -> Pieces:
+    """The zeroth order stays whole: a difference that vanishes there needs no value of the factor at k = 0."""
+    f, g = expr.args
+    parts = split(f)
+    zeroth = Add(*(x for order, x in parts if order == 0))
+    whole = [(0, zeroth), *((order, x) for order, x in parts if order > 0)]
+    return [(order, Multiplier(x, g)) for order, x in whole if x != 0]
 
 
 def _split_components(expr: Components) -> Pieces:

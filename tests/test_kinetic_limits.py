@@ -117,3 +117,28 @@ def test_three_moments_against_the_kinetic_response():
     at = np.linspace(0.05, 6, 80)
     kinetic = 1 + at * 1j * np.sqrt(np.pi) * wofz(at)
     assert np.abs(sympy.lambdify(zeta, solved)(at + 0j) - kinetic).max() < 0.35
+
+
+def test_gyroviscosity_of_a_field_that_moves():
+    """Along B, omega^2 ± omega k^2 p/(rho Omega) = k^2 v_A^2 (N. Yajima 1966, Prog. Theor. Phys. 36, 1, from memory)."""
+    model = plin.FluidModel("finite Larmor radius in one fluid")
+    rho0, p0, b0, mu0, m, q = model.parameters("rho_0 p_0 B_0 mu_0 m q", positive=True)
+    rho, p = model.scalar("rho", background=rho0), model.scalar("p", background=p0)
+    v, b = model.vector("v"), model.vector("B", background=(0, 0, b0))
+    stress = laws.gyroviscous_stress(v, p, b, charge=q, mass=m)
+    laws.continuity(model, rho, v)
+    pressure = p * plin.identity + stress
+    laws.momentum(model, rho, v, mass=1, force=laws.magnetic_force(b, mu0), pressure=pressure)
+    laws.adiabatic_pressure(model, p, v, 2)
+    laws.induction(model, b, v)
+    linear = model.linearize()
+    assert len(linear.ledger) < 400  # what is of second order in so long a product is left together
+    assert "O₂[" in str(linear.ledger)
+    assert linear.audit().passed
+    values = {"rho_0": 2.0, "p_0": 0.4, "B_0": 1.5, "mu_0": 1.0, "m": 0.3, "q": 1.0}
+    k = 0.9
+    turn, alfven = k**2 * 0.4 * 0.3 / (2.0 * 1.5), k**2 * 1.5**2 / 2.0
+    found = linear.plane_wave("z").roots(values, k=k).omega
+    for sign in (1, -1):
+        for omega in np.roots([1, sign * turn, -alfven]):
+            assert np.abs(found - omega).min() < 1e-12

@@ -5,9 +5,11 @@ from functools import cache
 import mpmath
 import numpy as np
 import pytest
-from published_own import CASES
+from published_fluids import CASES as FLUIDS
+from published_own import CASES as PLASMAS
 from scipy.optimize import brentq
 
+CASES = PLASMAS | FLUIDS
 TOLERANCE = 1e-10
 
 

@@ -37,6 +37,11 @@ def declared(model: FluidModel, given: Any, rank: int, what: str) -> Any:
     )
 
 
+def named(model: FluidModel, given: Any, rank: int, what: str) -> Any:
+    """The field where a name is given, else what is given."""
+    return declared(model, given, rank, what) if isinstance(given, str) else given
+
+
 def ready_law(model: FluidModel, name: str, lhs: Expr, rhs: Any, role: Role) -> Law:
     """Add a law with its role.
 

@@ -8,7 +8,7 @@ from sympy import Expr
 
 from ..model import FluidModel, Law
 from ..operators import advect, partial_t
-from .closures import declared
+from .closures import declared, named
 
 
 def grain_charge(
@@ -26,6 +26,7 @@ def grain_charge(
     (Melandsø, Aslaksen and Havnes 1993, Planet. Space Sci. 41, 321, from memory).
     """
     charge = declared(model, charge, 0, "grain_charge")
+    v = named(model, v, 1, "grain_charge")
     rate = partial_t(charge) + advect(v, charge)
     return model.law(name or f"{charge} charging", rate, electron_current + ion_current)
 

@@ -9,7 +9,7 @@ from sympy import Expr, S
 from ..model import FluidModel, Law
 from ..operators import cross, curl, div, dot, grad, partial_t
 from ..role import Role
-from .closures import declared, ready_law
+from .closures import declared, named, ready_law
 from .pressure import adiabatic_pressure
 from .species import continuity, momentum
 from .viscosity import viscous_force, viscous_heat
@@ -67,7 +67,7 @@ def induction(
     -----
     Landau and Lifshitz, Electrodynamics of Continuous Media, sec. 65.
     """
-    magnetic = declared(model, magnetic, 1, "induction")
+    magnetic, v = declared(model, magnetic, 1, "induction"), named(model, v, 1, "induction")
     electric = cross(v, magnetic) - resistivity / mu_0 * curl(magnetic) - hall
     return model.law(name, partial_t(magnetic), curl(electric))
 

@@ -23,7 +23,7 @@ from ..operators import (
     rank_of,
 )
 from ..role import Role
-from .closures import declared, ready_law
+from .closures import declared, named, ready_law
 
 
 def isothermal_pressure(n: Expr, temperature: Any) -> Expr:
@@ -88,6 +88,7 @@ def adiabatic_pressure(
     Landau and Lifshitz, Fluid Mechanics, sec. 2 and 49.
     """
     p = declared(model, p, 0, "adiabatic_pressure")
+    v = named(model, v, 1, "adiabatic_pressure")
     rate = partial_t(p) + advect(v, p) + gamma * p * div(v)
     role = Role(v, closes=(p,), exchange=exact(collisions))
     return ready_law(
@@ -137,6 +138,7 @@ def energy(
     Braginskii (1965), Reviews of Plasma Physics 1, 205 (from memory).
     """
     temperature = declared(model, temperature, 0, "energy")
+    n, v = named(model, n, 0, "energy"), named(model, v, 1, "energy")
     rate = n / (gamma - 1) * (partial_t(temperature) + advect(v, temperature))
     work = n * temperature * div(v)
     right = _conducted(conductivity, temperature) + heating + collisions
@@ -176,6 +178,8 @@ def double_adiabatic(
 
     G. F. Chew, M. L. Goldberger and F. E. Low (1956), Proc. R. Soc. A 236, 112.
     """
+    n = named(model, n, 0, "double_adiabatic")
+    v, magnetic = (named(model, f, 1, "double_adiabatic") for f in (v, magnetic))
     strength = norm(magnetic)
     parallel = declared(model, parallel, 0, "double_adiabatic")
     perpendicular = declared(model, perpendicular, 0, "double_adiabatic")

@@ -11,7 +11,7 @@ from ..fields import exact
 from ..model import FluidModel, Law
 from ..operators import advect, cross, div, dot, grad, laplacian, partial_t, rank_of
 from ..role import Role
-from .closures import declared, ready_law
+from .closures import declared, named, ready_law
 
 
 def continuity(
@@ -37,7 +37,7 @@ def continuity(
     -----
     Landau and Lifshitz, Fluid Mechanics, sec. 1.
     """
-    n = declared(model, n, 0, "continuity")
+    n, v = declared(model, n, 0, "continuity"), named(model, v, 1, "continuity")
     return model.law(name or f"{n} continuity", partial_t(n) + div(n * v), source)
 
 
@@ -84,7 +84,7 @@ def momentum(
     -----
     Braginskii (1965), Reviews of Plasma Physics 1, 205 (from memory).
     """
-    v = declared(model, v, 1, "momentum")
+    n, v = named(model, n, 0, "momentum"), declared(model, v, 1, "momentum")
     inertia = S.Zero if massless else mass * n * (partial_t(v) + advect(v, v))
     right = force + collisions - pressure_gradient(pressure)
     role = Role(v, pressure=exact(pressure), exchange=exact(collisions))
@@ -116,6 +116,7 @@ def relativistic_momentum(
     -------
     Law
     """
+    n = named(model, n, 0, "relativistic_momentum")
     v = declared(model, v, 1, "relativistic_momentum")
     u = v / sqrt(1 - dot(v, v) / c**2)
     return model.law(name or f"{v} momentum", mass * n * (partial_t(u) + advect(v, u)), force)

@@ -460,6 +460,26 @@ class FluidModel:
             raise DeclarationError(f"no law '{name}'; there are: {', '.join(self._laws)}")
         del self._laws[name]
 
+    def remove_field(self, name: str) -> None:
+        """Take a field out of the model that no law holds any more.
+
+        Raises
+        ------
+        DeclarationError
+            When there is no such field, or a law still holds it.
+        """
+        if name not in self._fields:
+            raise DeclarationError(f"no field '{name}'; there are: {', '.join(self._fields)}")
+        field = self._fields[name]
+        held = [
+            n for n, law in self.laws.items() if self._refreshed(field) in law.residual.atoms(Field)
+        ]
+        if held:
+            raise DeclarationError(
+                f"the field '{name}' is in law {', '.join(map(repr, held))}; remove that first"
+            )
+        del self._fields[name]
+
     def _current_law(self, law: Law) -> Law:
         role = law.role and law.role.mapped(self._canonical)
         return replace(law, lhs=self._canonical(law.lhs), rhs=self._canonical(law.rhs), role=role)

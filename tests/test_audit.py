@@ -349,4 +349,4 @@ def test_audit_shares_no_code_with_the_symbolic_path():
         for node in ast.walk(ast.parse(inspect.getsource(audit_module)))
         if isinstance(node, ast.ImportFrom) and node.level
     }
-    assert imported == {"declare.fields", "declare.operators", "errors", "linearized"}
+    assert imported == {"declare.fields", "declare.operators", "errors", "exchange", "linearized"}

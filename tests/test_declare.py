@@ -199,3 +199,14 @@ def test_remove_law(model, n, v):
     assert not model.laws
     with pytest.raises(plin.DeclarationError, match="no law 'continuity'"):
         model.remove_law("continuity")
+
+
+def test_remove_field(model, n, v):
+    model.law("continuity", plin.partial_t(n) + plin.div(n * v))
+    with pytest.raises(plin.DeclarationError, match="is in law 'continuity'; remove that first"):
+        model.remove_field(v.name)
+    model.remove_law("continuity")
+    model.remove_field(v.name)
+    assert v.name not in model.fields
+    with pytest.raises(plin.DeclarationError, match="no field"):
+        model.remove_field(v.name)

@@ -4,7 +4,7 @@ import numpy as np
 import pytest
 import sympy
 from published import read
-from test_laws import same_relation
+from test_declared_twice import same_relation
 
 import plasmalin as plin
 from plasmalin import Species

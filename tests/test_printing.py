@@ -32,7 +32,7 @@ def test_a_dyad_is_printed_as_one():
     text = str(linear.equations)
     assert "(∇p̃_perp)·(ẑ⊗ẑ)" in text
     assert "[0, 0, 0;" not in text
-    assert r"\hat{\mathbf z}\,\hat{\mathbf z}" in linear.equations.latex("momentum")
+    assert r"\hat{\mathbf{z}}\,\hat{\mathbf{z}}" in linear.equations.latex("momentum")
     assert "pmatrix" not in linear.equations.latex("momentum")
 
 

@@ -219,10 +219,10 @@ def test_every_operator():
 
 def test_ready_laws_have_the_units_that_their_docstrings_say():
     model, laws = plin.FluidModel("every ready law"), plin.laws
-    n, rho, p, p_perp, temperature, phi, psi, q = (
+    n, rho, p, p_par, p_perp, temperature, phi, psi, q = (
         model.scalar(name, unit=unit, background=f"{name}_0")
         for name, unit in {
-            "n": "m^-3", "rho": "kg/m^3", "p": "Pa", "p_perp": "Pa", "T": "eV", "phi": "V", "psi": "m^2/s^2", "q": "C",
+            "n": "m^-3", "rho": "kg/m^3", "p": "Pa", "p_par": "Pa", "p_perp": "Pa", "T": "eV", "phi": "V", "psi": "m^2/s^2", "q": "C",
         }.items()
     )  # fmt: skip
     v, w, electric, magnetic = (
@@ -246,7 +246,7 @@ def test_ready_laws_have_the_units_that_their_docstrings_say():
         + laws.viscous_force(v, mu)
         + laws.bohm_force(n, mass, hbar)
     )
-    pressure = laws.polytropic_pressure(n, n_0, t_0, gamma)
+    pressure = p + n * temperature + laws.polytropic_pressure(n, n_0, t_0, gamma) + p_par + p_perp
     laws.continuity(model, n, v, source)
     laws.momentum(model, n, v, mass=mass, force=lorentz + drag + other, pressure=pressure)
     laws.relativistic_momentum(model, n, w, mass=mass, c=c, force=e * n * electric)
@@ -256,7 +256,7 @@ def test_ready_laws_have_the_units_that_their_docstrings_say():
     laws.adiabatic_pressure(model, p, v, gamma, heating=laws.frictional_heat(n, v, n, w, alpha))
     loss = laws.landau_heat_loss(temperature, n_0, v_t)
     laws.energy(model, temperature, n, v, gamma, conductivity=kappa, heating=-loss)
-    laws.double_adiabatic(model, n, v, magnetic, p, p_perp)
+    laws.double_adiabatic(model, n, v, magnetic, p_par, p_perp)
     laws.poisson(model, phi, e * (n - laws.boltzmann_density(n_0, e, t_0, phi)), epsilon_0=eps_0)
     laws.maxwell(model, electric, magnetic, e * n * v, mu_0=mu_0, epsilon_0=eps_0)
     laws.self_gravity(model, psi, rho, big_g=big_g)

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
 from contextlib import contextmanager
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from fractions import Fraction
 from typing import TYPE_CHECKING, Any
 
@@ -19,6 +19,7 @@ from .notation import law_text
 from .operators import OPERATORS, WAVE_SYMBOLS, WORDS, Cross, Curl, Multiplier, identity, rank_of
 from .quantities import plain_number
 from .reader import read_expression, read_law
+from .role import Role
 from .units import NONE, Unit, read_unit
 
 if TYPE_CHECKING:
@@ -35,6 +36,8 @@ class Law:
     lhs: Expr
     rhs: Expr
     rank: int
+    role: Role | None = None
+    """What it is for, where it is a ready law."""
 
     @property
     def residual(self) -> Expr:
@@ -688,8 +691,34 @@ class FluidModel:
         del self._laws[name]
         self._dimensions = self._dimensions.forget(f"law '{name}'")
 
+    def remove_field(self, name: str) -> None:
+        """Take a field out of the model that no law holds any more.
+
+        Raises
+        ------
+        DeclarationError
+            When there is no such field, or a law still holds it.
+        """
+        if name not in self._fields:
+            raise DeclarationError(f"no field '{name}'; there are: {', '.join(self._fields)}")
+        field = self._fields[name]
+        held = [
+            n
+            for n, law in {**self.laws, **self.constraints}.items()
+            if self._refreshed(field) in law.residual.atoms(Field)
+        ]
+        if held:
+            raise DeclarationError(
+                f"the field '{name}' is in law {', '.join(map(repr, held))}; remove that first"
+            )
+        del self._fields[name]
+
     def _current_law(self, law: Law) -> Law:
-        return Law(law.name, self._canonical(law.lhs), self._canonical(law.rhs), law.rank)
+        role = law.role and law.role.mapped(self._canonical)
+        return replace(law, lhs=self._canonical(law.lhs), rhs=self._canonical(law.rhs), role=role)
+
+    def _assign(self, name: str, role: Role) -> None:
+        self._laws[name] = replace(self._laws[name], role=role)
 
     def _canonical(self, expr: Expr) -> Expr:
         """The expression in the model's own symbols and fields; a decimal is that decimal, exactly."""

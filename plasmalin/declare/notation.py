@@ -70,7 +70,9 @@ def by_dyads(expr: Any) -> Any:
     args = [by_dyads(a) for a in expr.args]
     if not isinstance(expr, Dot | Ddot):
         return expr.func(*args)
-    parts = [a.as_independent(Operator, Components, FieldAtom, as_Add=False) for a in args]
+    parts = [
+        a.as_independent(Operator, Components, FieldAtom, Identity, as_Add=False) for a in args
+    ]
     return Mul(*(scalar for scalar, _ in parts), expr.func(*(rest for _, rest in parts)))
 
 

@@ -2,17 +2,19 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
+from functools import cached_property
 from typing import Any, cast
 
-from sympy import Add, Eq, Expr, S, expand, factor_terms
+from sympy import Add, Eq, Expr, S, Symbol, expand, factor_terms
 
 from ..declare.fields import Components, Field, components
 from ..declare.model import Law
 from ..declare.notation import name_text, paper
 from ..declare.operators import identity
 from ..errors import BackgroundError
+from .flows import Source, drifts, sources
 from .ledger import BALANCE, Ledger
 from .settle import _combined, settle
 
@@ -54,19 +56,27 @@ def _side(terms: tuple[Expr, ...], axes: str) -> str:
 
 
 class Equilibrium:
-    """The background in words: the fields, and in each law what balances what.
+    """The background in words: the fields, in each law what balances what, drifts, net charge and current.
 
     Attributes
     ----------
     balances : tuple of Balance
     fields : dict of str to Expr
         The backgrounds that are not zero.
+    sources : tuple of Source
+        Net charge and current, as the laws of the fields have them.
+    drifts : dict of Symbol to Expr
+        Components of background flows that the momentum laws give, e.g. E x B and Pedersen drifts.
     """
 
     def __init__(
-        self, balances: tuple[Balance, ...], fields: Mapping[str, Field], axes: str
+        self,
+        balances: tuple[Balance, ...],
+        fields: Mapping[str, Field],
+        axes: str,
+        laws: Mapping[str, Law] | None = None,
     ) -> None:
-        self.balances, self._axes = balances, axes
+        self.balances, self._axes, self._laws = balances, axes, laws or {}
         self.fields = {n: f.background for n, f in fields.items() if f.background != 0}
 
     def __str__(self) -> str:
@@ -74,8 +84,27 @@ class Equilibrium:
         named = (f"{name} = {value}" for name, value in shown)
         lines = ["Background: " + (", ".join(named) or "everything is zero")]
         lines += [f"  {b.text(self._axes)}" for b in self.balances]
+        lines += [f"  {text}" for text in (*self._drift_texts(), *self._source_texts())]
         lines += self.warnings
         return "\n".join(lines)
+
+    @cached_property
+    def sources(self) -> tuple[Source, ...]:
+        return sources(self._laws)
+
+    @cached_property
+    def drifts(self) -> dict[Symbol, Expr]:
+        return drifts(self._laws, {b.law: b.residuals for b in self.balances if not b.assumed})
+
+    def _drift_texts(self) -> Iterator[str]:
+        for symbol, value in self.drifts.items():
+            held = (b.law for b in self.balances if any(r.has(symbol) for r in b.residuals))
+            laws = ", ".join(n for n in held if self._laws[n].rank == 1)
+            yield f"Drift {name_text(symbol.name)} = {paper(value, self._axes)} (balanced in {laws})"
+
+    def _source_texts(self) -> Iterator[str]:
+        for s in self.sources:
+            yield f"Net {s.what} (in {s.law}): {paper(s.value, self._axes)}"
 
     @property
     def warnings(self) -> list[str]:

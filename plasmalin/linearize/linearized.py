@@ -261,7 +261,7 @@ def linearize(model: FluidModel, assume: tuple[str, ...] = ()) -> LinearizedMode
             raise UndeterminedError(
                 f"constraint '{name}' has no first-order part on this background; leave it out"
             )
-    background = Equilibrium(tuple(balances), model.fields, model.axes)
+    background = Equilibrium(tuple(balances), model.fields, model.axes, laws)
     return LinearizedModel(
         model.title,
         model.axes,

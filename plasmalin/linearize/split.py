@@ -5,7 +5,7 @@
 
 from __future__ import annotations
 
-from itertools import product
+from math import prod
 from typing import Any
 
 from sympy import Add, Dummy, Expr, Mul
@@ -22,7 +22,7 @@ Pieces = list[tuple[int, Expr]]
 
 
 class Remainder(Expr):  # type: ignore[misc]
-    """What a smooth function leaves beyond first order: exact minus zeroth minus first order."""
+    """What a function or a long product leaves beyond first order: exact minus zeroth minus first order."""
 
     is_commutative = True
     rank = 0
@@ -52,6 +52,10 @@ def terms(expr: Expr) -> list[Expr]:
     return [] if expr == 0 else [expr]
 
 
+MANY = 64
+"""Pieces of one term, beyond which those of second and higher order are left together in one `Remainder`."""
+
+
 def split(expr: Expr) -> Pieces:
     """All pieces of an expression with their orders; together they sum to it exactly.
 
@@ -60,40 +64,79 @@ def split(expr: Expr) -> Pieces:
     DeclarationError
         When a function of fields is not smooth.
     """
+    if _count(expr) <= MANY:
+        return _split(expr, ALL)
+    low = _split(expr, 1)
+    return [*low, (2, Remainder(expr, Add(*(x for _, x in low))))]
+
+
+ALL = 1000
+"""Above any order that a law reaches."""
+
+
+def _count(expr: Expr) -> int:
+    """How many pieces an expression has, or a little more."""
+    if not expr.atoms(Field):
+        return 1
+    if isinstance(expr, Field):
+        return 2
+    if isinstance(expr, Norm):
+        return 3
+    counts = [_count(a) for a in expr.args]
+    if isinstance(expr, Mul | Operator):
+        return prod(counts)
+    return sum(counts) + 1
+
+
+def _split(expr: Expr, highest: int) -> Pieces:
+    """The pieces up to an order."""
     if not expr.atoms(Field):
         return [(0, expr)]
     if isinstance(expr, Field):
         return [(0, Background(expr)), (1, Perturbation(expr))]
     if isinstance(expr, Add):
-        return [piece for a in expr.args for piece in split(a)]
+        return [piece for a in expr.args for piece in _split(a, highest)]
     if isinstance(expr, Mul):
-        return _multilinear(Mul, expr.args)
+        return _multilinear(Mul, expr.args, highest)
     if isinstance(expr, Norm):
-        return _split_norm(expr)
+        return _up_to(highest, _split_norm(expr))
     if isinstance(expr, Multiplier):
-        return [(order, Multiplier(x, expr.args[1])) for order, x in split(expr.args[0])]
+        return _split_multiplier(expr, highest)
     if isinstance(expr, Operator):
-        return _multilinear(type(expr), expr.args)
+        return _multilinear(type(expr), expr.args, highest)
     if isinstance(expr, Components):
-        return _split_components(expr)
-    return _taylor(expr)
+        return _split_components(expr, highest)
+    return _up_to(highest, _taylor(expr))
 
 
-def _multilinear(make: Any, args: tuple[Any, ...]) -> Pieces:
+def _up_to(highest: int, pieces: Pieces) -> Pieces:
+    return [(order, x) for order, x in pieces if order <= highest]
+
+
+def _multilinear(make: Any, args: tuple[Any, ...], highest: int) -> Pieces:
     """Products, and operators that are linear in each argument."""
-    pieces: Pieces = []
-    for choice in product(*(split(a) for a in args)):
-        made = make(*(x for _, x in choice))
-        if made != 0:
-            pieces.append((sum(order for order, _ in choice), made))
-    return pieces
+    choices: list[tuple[int, tuple[Expr, ...]]] = [(0, ())]
+    for a in args:
+        parts = _split(a, highest)
+        choices = [(o + p, (*c, x)) for o, c in choices for p, x in parts if o + p <= highest]
+    made = ((order, make(*chosen)) for order, chosen in choices)
+    return [(order, x) for order, x in made if x != 0]
 
 
-def _split_components(expr: Components) -> Pieces:
+def _split_multiplier(expr: Multiplier, highest: int) -> Pieces:
+    """The zeroth order stays whole: a difference that vanishes there needs no value of the factor at k = 0."""
+    f, g = expr.args
+    parts = _split(f, highest)
+    zeroth = Add(*(x for order, x in parts if order == 0))
+    whole = [(0, zeroth), *((order, x) for order, x in parts if order > 0)]
+    return [(order, Multiplier(x, g)) for order, x in whole if x != 0]
+
+
+def _split_components(expr: Components, highest: int) -> Pieces:
     size, pieces = expr.size, []
     indices = [(i,) if expr.rank == 1 else (i, j) for i in range(size) for j in range(size)]
     for index in dict.fromkeys(indices):
-        for order, x in split(expr.entry(index)):
+        for order, x in _split(expr.entry(index), highest):
             pieces.append((order, _unit_component(x, index, size)))
     return [(order, x) for order, x in pieces if x != 0]
 
@@ -107,7 +150,7 @@ def _unit_component(x: Expr, index: tuple[int, ...], size: int) -> Expr:
 
 def _split_norm(expr: Norm) -> Pieces:
     """|v| = |v0| + v0.v~/|v0| + remainder; where v0 is zero, |v~| is of first order but not linear."""
-    parts = split(expr.args[0])
+    parts = _split(expr.args[0], 1)
     zeroth = Add(*(x for order, x in parts if order == 0))
     first = Add(*(x for order, x in parts if order == 1))
     length = Norm(zeroth)
@@ -127,7 +170,7 @@ def _taylor(expr: Expr) -> Pieces:
     slots = [a for a in expr.args if a.atoms(Field)]
     dummies = [Dummy() for _ in slots]
     shape = expr.func(*(dummies[slots.index(a)] if a in slots else a for a in expr.args))
-    parts = [split(a) for a in slots]
+    parts = [_split(a, 1) for a in slots]
     zeroth = {d: Add(*(x for o, x in p if o == 0)) for d, p in zip(dummies, parts, strict=True)}
     base = shape.xreplace(zeroth)
     pieces: Pieces = [(0, base)]

@@ -127,6 +127,11 @@ class Branches:
         branch, point = np.unravel_index(int(growth.argmax()), growth.shape)
         return float(self.along[point]), complex(self.omega[branch, point]), int(branch)
 
+    @cached_property
+    def _vectors(self) -> NDArray[np.complex128]:
+        """The amplitudes of every mode, shape (branch, n, amplitudes)."""
+        return null_vectors(self.wave, self.numbers, self.omega)
+
     def amplitudes(self, field: str, per: str) -> NDArray[np.complex128]:
         """The polarization: a field's amplitude per unit of another.
 
@@ -151,7 +156,7 @@ class Branches:
         if len(unit) > 1:
             names = ", ".join(self.wave.columns[j].symbol.name for j in unit)
             raise DeclarationError(f"per={per!r} has several components; name one of {names}")
-        vectors = null_vectors(self.wave, self.numbers, self.omega)
+        vectors = self._vectors
         chosen = vectors[:, :, self.wave.column(field)]
         with np.errstate(divide="ignore", invalid="ignore"):
             ratio = np.where(

@@ -204,6 +204,10 @@ def _solve_missing(wave: WaveMatrix, known: set[Symbol]) -> dict[Symbol, Expr]:
                     solved[symbol] = found[0]
                     missing.discard(symbol)
                     progress = True
+    for symbol, value in wave.linear.background.drifts.items() if missing else ():
+        if symbol in missing and value.free_symbols <= known | set(solved):
+            solved[symbol] = value.subs(solved)  # components that only hang together
+            missing.discard(symbol)
     if missing:
         names = ", ".join(sorted(s.name for s in missing))
         raise ValuesError(

@@ -149,7 +149,7 @@ class LinearizedModel:
         >>> _ = model.law("momentum", rho * plin.partial_t(v), -p_0 * plin.grad(rho))
         >>> wave = model.linearize().plane_wave("x")
         """
-        from ..waves.matrix import plane_wave
+        from ..waves.plane import plane_wave
 
         return plane_wave(self, direction, angle)
 

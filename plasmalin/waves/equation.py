@@ -128,7 +128,7 @@ def wave_equation(wave: WaveMatrix, name: str) -> WaveEquation:
 
 def _general(wave: WaveMatrix) -> tuple[WaveMatrix, str]:
     """The same wave with its components as independent symbols."""
-    from .matrix import plane_wave
+    from .plane import plane_wave
 
     axes = wave.linear.axes
     names = tuple(f"k_{a}" if c != 0 else 0 for a, c in zip(axes, wave.k, strict=True))

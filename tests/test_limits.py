@@ -13,6 +13,7 @@ from plasmalin import advect, cross, div, grad, laplacian, partial_t
 from plasmalin.check.claim import WaveNames, make_claim
 from plasmalin.check.derived import derive
 from plasmalin.check.limit import LimitFound, find_limits, verify_limit
+from plasmalin.check.rates import rate_order
 from plasmalin.check.series import series_order, series_slip
 from plasmalin.check.special import holds_under, special_values
 
@@ -588,3 +589,60 @@ def test_stated_ratios_choose_the_scaling():
     both = [names.expression(r, "under") for r in ("k*lambda_De", "m_e/m_i")]
     assert series_order(claim, derived, both) is not None
     assert series_order(claim, derived, both[:1]) is None
+
+
+# Rates ------------------------------------------------------------------------------------------------
+
+RATES = {
+    # Bohm and Gross 1949, Phys. Rev. 75, 1864; O'Neil, Winfrey and Malmberg 1971, Phys. Fluids 14, 1204
+    "weak beam": (published_more.weak_beam_plasma, "sqrt(3)/2^(4/3)*eta^(1/3)", "1/V", ["eta"]),
+    # Buneman 1959, Phys. Rev. 115, 503
+    "Buneman": (published.buneman_electron_ion, "sqrt(3)/2^(4/3)*M^(-1/3)", "1/V", ["1/M"]),
+    # two equal beams at the maximum: half the plasma frequency of one
+    "two streams": (
+        published.counterstreaming_cold_beams,
+        "wp0/2",
+        "sqrt(3)*wp0/(2*V)",
+        ["wp0"],
+    ),
+    # Jeans 1902
+    "free fall": (published.jeans, "sqrt(4*pi*G*rho0)", None, ["cs^2*k^2/(G*rho0)"]),
+    "drag": (
+        published_more.ion_acoustic_neutral_drag,
+        "-nu/2",
+        None,
+        ["nu/(k*sqrt(e*Te_eV/mi))"],
+    ),
+    # Stokes 1845; Kirchhoff 1868
+    "sound": (
+        published.kirchhoff_stokes_sound,
+        "-k^2/(2*rho0)*(4*mu/3 + zeta + kappa*(1/cv - 1/(cv + Rg)))",
+        None,
+        ["k*mu/(rho0*sqrt(Rg*T0))"],
+    ),
+}
+
+
+def found_rate(name, factor=1):
+    make, text, resonance, ratios = RATES[name]
+    wave = make()
+    names = Names(wave, {})
+    value = names.expression(text, "claim")
+    claim = make_claim(wave, "omega = 1", {})
+    derived = derive(wave, value.free_symbols, ())
+    if resonance is not None:
+        derived = derived.substituted({names.symbols["k"]: names.expression(resonance, "under")})
+    return rate_order(
+        factor * value, claim, derived, [names.expression(r, "under") for r in ratios]
+    )
+
+
+@pytest.mark.parametrize("name", RATES)
+def test_a_published_rate_is_the_leading_imaginary_part(name):
+    assert found_rate(name) is not None
+
+
+@pytest.mark.parametrize("name", RATES)
+def test_a_rate_with_another_number_is_none(name):
+    assert found_rate(name, 2) is None
+    assert found_rate(name, Rational(2) ** Rational(1, 3)) is None

@@ -12,7 +12,6 @@ from ..declare.constants import CODATA
 from ..declare.notation import paper
 from ..exact.polynomial import ExactPolynomial
 from .claim import Claim
-from .compare import covered
 from .cones import Vector
 from .derived import Derived
 from .faces import Face, Faces, Leading
@@ -71,7 +70,8 @@ def question(claim: Claim, derived: Derived, values: Mapping[str, float] | None)
     """What is asked of a claim and a relation."""
     polynomial, _ = derived.numerator(claim.residual)
     factors = tuple(f for f, _ in derived.factors)
-    parts = tuple(f for f, _ in polynomial.factor()[1] if not covered(f, derived.polynomial))
+    rest = polynomial.exact_div(polynomial.gcd(derived.polynomial))
+    parts = tuple(f for f, _ in rest.factor()[1])
     used = {s for d in claim.definitions.values() for s in d.free_symbols} & derived.symbols
     space = space_of([*parts, *factors], used)
     wording = Wording(space, claim, CODATA)
@@ -177,3 +177,16 @@ def largest(groups: Sequence[Small]) -> Expr:
     """The largest group at the given values, else the first."""
     known = [g for g in groups if g.value is not None]
     return max(known, key=lambda g: g.value or 0.0).group if known else groups[0].group
+
+
+def apart(asked: Question, checked: Checked) -> list[str]:
+    """What is needed besides where the terms that the claim keeps are of very different sizes."""
+    groups = dict.fromkeys(
+        asked.wording.group(v, f.zeros)
+        for face, led in checked.led
+        for v, f in checked.faces.apart(face, led)
+    )
+    return [
+        f"where the terms that the claim keeps differ much in size, also {paper(g)} ≪ 1"
+        for g in groups
+    ]

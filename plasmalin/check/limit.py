@@ -13,12 +13,10 @@ from itertools import product
 
 from sympy import Expr, S
 
-from ..declare.notation import paper
 from .claim import Claim
 from .cones import weights
 from .derived import Derived
-from .faces import Face, Faces, Leading
-from .leading import LimitFound, Question, best_of, question
+from .leading import LimitFound, apart, best_of, question
 from .monomials import conditions
 from .orderings import find_limits
 
@@ -61,17 +59,8 @@ def verify_limit(
         if answer.needed:
             return answer.reason
         notes += answer.notes
-        notes += [n for f, led in answer.led for n in _apart(asked, answer.faces, f, led)]
+        notes += apart(asked, answer)
         left_out += answer.neglected
     groups = tuple(asked.small(r) for r in given)
     neglected = left_out[0] if left_out else S.Zero
     return LimitFound(groups, neglected, tuple(dict.fromkeys(notes)))
-
-
-def _apart(asked: Question, faces: Faces, face: Face, answer: Leading) -> list[str]:
-    """What is needed besides where the terms that the claim keeps are of very different sizes."""
-    groups = dict.fromkeys(asked.wording.group(v, f.zeros) for v, f in faces.apart(face, answer))
-    return [
-        f"where the terms that the claim keeps differ much in size, also {paper(g)} ≪ 1"
-        for g in groups
-    ]

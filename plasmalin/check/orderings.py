@@ -19,7 +19,7 @@ from .compare import covered
 from .cones import Quotient, Vector, extreme, implied, minus, smallest, times, weights
 from .derived import Derived
 from .faces import Faces, divided, initial, matched_shifts, slopes
-from .leading import Checked, LimitFound, Question, largest, question, verified
+from .leading import Checked, LimitFound, Question, apart, best_of, largest, question, verified
 from .monomials import ELECTRON_MASS, MASS, Space, Terms
 from .verdict import Small
 
@@ -64,8 +64,19 @@ def find_limits(
     if not found:
         found = list(_searched(asked, min(end, time.monotonic() + SEARCH)))
     found.sort(key=_simplicity)
-    pruned = [_irredundant(asked, f, end) for f in found[:MOST_FOUND]]
-    return sorted(_widest(asked, pruned), key=_simplicity)
+    late = min(end, time.monotonic() + 3 * SEARCH)
+    pruned = [_irredundant(asked, f, late) for f in found[:MOST_FOUND]]
+    widest = sorted(_widest(asked, pruned), key=_simplicity)
+    return [_noted(asked, f, min(end, time.monotonic() + SEARCH)) for f in widest[:1]] + widest[1:]
+
+
+def _noted(asked: Question, found: LimitFound, end: float) -> LimitFound:
+    """With what is needed besides where the claim's terms differ much in size."""
+    cone = [v for g in found.groups if (v := asked.wording.exponents(g.group)) is not None]
+    answers = [best_of(asked, p, cone, end) for p in asked.parts] if cone else []
+    checked = [a for a in answers if isinstance(a, Checked)]
+    notes = [n for c in checked for n in (*c.notes, *apart(asked, c))]
+    return replace(found, notes=tuple(dict.fromkeys((*found.notes, *notes))))
 
 
 def _simplicity(found: LimitFound) -> tuple[bool, int, int]:

@@ -17,6 +17,7 @@ from sympy import (
 )
 
 from ..declare.constants import CODATA
+from ..declare.notation import paper
 from ..declare.operators import omega
 from .derived import Derived
 from .monomials import ELECTRON_MASS, PURE_NUMBER
@@ -33,7 +34,7 @@ def paths(
     """Powers of ε for symbols, under which the claim's terms are of different order."""
     found = _single(terms, symbols, derived) if ratios is None else _stated(ratios, derived)
     for weights in found:
-        if len({order(t, weights) for t in terms}) > 1:
+        if not terms or len({order(t, weights) for t in terms}) > 1:
             yield weights
 
 
@@ -118,3 +119,8 @@ def even(expr: Expr, weights: Weights) -> Expr:
 def is_imaginary(term: Expr) -> bool:
     """Whether a term of a sum in real symbols is imaginary."""
     return bool(term.has(I))
+
+
+def scaled(weights: Weights) -> str:
+    """A scaling in words."""
+    return ", ".join(f"{paper(s)} ~ ε^({n})" for s, n in weights.items())

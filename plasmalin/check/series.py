@@ -36,7 +36,7 @@ from .cones import extreme
 from .corrections import correction, parts
 from .derived import Derived
 from .monomials import PURE_NUMBER, Wording, number_of, space_of
-from .scalings import Weights, even, is_imaginary, order, paths
+from .scalings import Weights, even, is_imaginary, order, paths, scaled
 from .verdict import Small
 
 MOST_STEPS = 4
@@ -64,9 +64,8 @@ class SeriesFound:
 
     @property
     def proof(self) -> str:
-        scales = ", ".join(f"{paper(s)} ~ ε^{n}" for s, n in self.scaling.items())
         return (
-            f"with {scales} the derived relation, shifted by the claim, has its smallest root beyond the claim's last "
+            f"with {scaled(self.scaling)} the derived relation, shifted by the claim, has its smallest root beyond the claim's last "
             "term (Newton polygon, exact)"
         )
 
@@ -226,7 +225,7 @@ def _judged(
             return None
         try:
             step = correction(factor, value, weights)
-        except (PlasmalinError, ArithmeticError):
+        except (PlasmalinError, ArithmeticError, RecursionError):
             return None
         if step is None or step.order <= first:
             return None

@@ -626,12 +626,12 @@ RATES = {
 def found_rate(name, factor=1):
     make, text, resonance, ratios = RATES[name]
     wave = make()
-    names = Names(wave, {})
+    names = WaveNames(wave, {})
     value = names.expression(text, "claim")
     claim = make_claim(wave, "omega = 1", {})
     derived = derive(wave, value.free_symbols, ())
     if resonance is not None:
-        derived = derived.substituted({names.symbols["k"]: names.expression(resonance, "under")})
+        derived = derived.substituted({names.names["k"]: names.expression(resonance, "under")})
     return rate_order(
         factor * value, claim, derived, [names.expression(r, "under") for r in ratios]
     )

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Mapping
 from dataclasses import dataclass
 from functools import cached_property
@@ -29,6 +30,7 @@ if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
 
 DEEPEST = 30
+RATE_NAMES = ("gamma", "Imomega")
 
 
 @dataclass(frozen=True)
@@ -104,6 +106,24 @@ def make_claim(wave: WaveMatrix, claim: Any, where: Mapping[Any, Any]) -> Claim:
             "give a relation such as omega^2 = ..."
         )
     return made
+
+
+def make_rate(names: WaveNames, claim: Any) -> Claim | None:
+    """A claim that gives Im ω alone, "gamma = ..." or "Im(omega) = ..."; None for any other.
+
+    The name gamma means Im ω only where neither the model nor `where` has it.
+    """
+    if isinstance(claim, Eq) and isinstance(claim.lhs, Symbol):
+        left, value = claim.lhs.name, claim.rhs
+    elif isinstance(claim, str) and claim.count("=") == 1:
+        left, value = (part.strip() for part in claim.split("="))
+    else:
+        return None
+    plain = re.sub(r"[\s()*]", "", left).replace("ω", "omega").replace("γ", "gamma")
+    if plain not in RATE_NAMES or plain in names.names:
+        return None
+    right = names.expression(value, "claim")
+    return Claim(Symbol("gamma"), right, names.used(right))
 
 
 class WaveNames(Names):

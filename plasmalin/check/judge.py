@@ -8,22 +8,23 @@ from dataclasses import dataclass, field, replace
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
-from sympy import S, Symbol, cancel
+from sympy import Rational, S, Symbol, cancel, factor, sqrt
 
 from ..declare.notation import paper
 from ..errors import NonPolynomialError
 from ..waves.coefficients import normalized_coefficients
-from .claim import Claim, WaveNames, make_claim
+from .claim import Claim, WaveNames, make_claim, make_rate
 from .compare import compare, covered
 from .convention import Convention, in_si, under_other_conventions
 from .derived import Derived, derive
 from .limit import LimitFound, find_limits, verify_limit
+from .rates import rate_order
 from .roles import Roles, roles
-from .series import series_order
-from .slips import Repair, repairs, repairs_as_limit
+from .series import series_order, series_slip
+from .slips import repairs, repairs_as_limit
 from .special import special_values
 from .stated import Stated, read_stated
-from .verdict import Verdict
+from .verdict import Slip, Verdict
 
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
@@ -43,6 +44,8 @@ class Case:
         As its author wrote it.
     claim : Claim
         In SI and exp(−iωt).
+    whole : Claim
+        The same with every shorthand of `where`, to word conditions in.
     stated : Stated
         The author's conditions.
     convention : Convention
@@ -58,6 +61,7 @@ class Case:
     wave: WaveMatrix
     written: Claim
     claim: Claim
+    whole: Claim
     stated: Stated
     convention: Convention
     roles: Roles
@@ -70,8 +74,8 @@ class Case:
         values = dict(self.stated.values)
         if not values:
             return self
-        claim = self.claim.mapped(lambda e: e.xreplace(values))
-        made = replace(self, claim=claim)
+        claim, whole = (c.mapped(lambda e: e.xreplace(values)) for c in (self.claim, self.whole))
+        made = replace(self, claim=claim, whole=whole)
         made.__dict__["derived"] = self.derived.substituted(values)
         return made
 
@@ -115,14 +119,19 @@ def judge(
 ) -> Verdict:
     """Judge a claimed relation; see `WaveMatrix.check`."""
     deadline = time.monotonic() + budget_s
-    written = make_claim(wave, claim, where or {})
-    stated = read_stated(WaveNames(wave, where or {}), under)
+    names = WaveNames(wave, where or {})
+    rate = make_rate(names, claim)
+    written = rate or make_claim(wave, claim, where or {})
+    stated = read_stated(names, under)
     convention, model = convention or Convention(), roles(wave)
     numbers = {**wave.linear.defaults, **{str(n): v for n, v in (values or {}).items()}}
-    made = in_si(written, convention, model)
-    case = Case(wave, written, made, stated, convention, model, numbers, deadline)
+    made, whole = (
+        in_si(c, convention, model)
+        for c in (written, replace(written, definitions=names.definitions))
+    )
+    case = Case(wave, written, made, whole, stated, convention, model, numbers, deadline)
     try:
-        return _answer(case)
+        return _answer(case) if rate is None else _rate(case)
     except NonPolynomialError as error:
         return case.verdict("undecided", f"the claim cannot be made polynomial: {error}")
 
@@ -133,9 +142,8 @@ def _answer(case: Case) -> Verdict:
         if found is not None:
             return found
     case = case.as_stated()
-    somewhere = _other_convention(case) or _special(case) or _series(case) or _limit(case)
-    repaired = _repairs(case, somewhere)
-    slips = tuple(s for repair in repaired for s in repair.slips)
+    somewhere = _other_convention(case) or _where_right(case)
+    slips = _slips(case, somewhere)
     notes = (*case.reasons, *case.used)
     if somewhere is not None and not (slips and somewhere.doubtful):
         return case.verdict(
@@ -154,11 +162,57 @@ def _answer(case: Case) -> Verdict:
     return case.verdict("differs", proof, notes=(*notes, *side_by_side(case)))
 
 
-def _repairs(case: Case, somewhere: Somewhere | None) -> list[Repair]:
+def _slips(case: Case, somewhere: Somewhere | None) -> tuple[Slip, ...]:
+    """Repairs of the relation, of an expansion's later term, or of a leading part."""
+    if case.claim.solved and somewhere is None and (later := _later_term(case)):
+        return later
     found = repairs(case.claim, case.derived, case.time / 2)
-    if found or (somewhere is not None and not somewhere.doubtful):
-        return found
-    return repairs_as_limit(case.claim, case.derived, case.time)
+    if not found and (somewhere is None or somewhere.doubtful):
+        later = () if case.claim.solved else _later_term(case)
+        if later:
+            return later
+        found = repairs_as_limit(case.claim, case.derived, case.time)
+    return tuple(s for repair in found for s in repair.slips)
+
+
+def _later_term(case: Case) -> tuple[Slip, ...]:
+    """The term of an expansion that is wrong where the terms before it are right."""
+    ratios = list(case.stated.ratios) or None
+    found = series_slip(case.whole, case.derived, ratios, case.time / 5)
+    if found is None or found.term == 0:
+        return ()
+    multiplier = factor(cancel(found.should_be / case.whole.written_out(found.term)))
+    words = f"{paper(found.term)} should be {paper(found.should_be)}, the terms before it are right"
+    return (Slip(found.term, multiplier, words),)
+
+
+def _rate(case: Case) -> Verdict:
+    """A growth or damping rate given by itself."""
+    stated = case.as_stated()
+    ratios = list(case.stated.ratios) or None
+    value = stated.whole.right
+    found = rate_order(value, stated.whole, stated.derived, ratios, case.values, case.time / 2)
+    if found is not None:
+        notes = (*_values_in_words(case), *case.used)
+        stated_so = bool(case.stated)
+        return case.verdict(
+            "series", found.proof, agrees=stated_so, conditions=found.groups, notes=notes
+        )
+    for number in RATE_SLIPS:
+        if case.time < 1:
+            break
+        right = number * value
+        if rate_order(right, stated.whole, stated.derived, ratios, case.values, case.time / 4):
+            words = f"the rate should carry the factor {paper(number)}"
+            slip = Slip(case.written.right, number, words)
+            return case.verdict("differs", "the repaired rate was proved", slips=(slip,))
+    proof = "it is no leading imaginary part of a derived root in the orderings that were tried"
+    return case.verdict("differs", proof)
+
+
+RATE_SLIPS = [
+    S(n) for n in (-1, 2, S.Half, sqrt(2), 1 / sqrt(2), 2 ** Rational(1, 3), 2 ** Rational(-1, 3))
+] + [2 ** Rational(2, 3), 2 ** Rational(-2, 3), sqrt(3), 1 / sqrt(3), S(4) / 3, S(3) / 4]
 
 
 def _same(case: Case) -> Verdict | None:
@@ -184,12 +238,12 @@ def _as_stated(case: Case) -> Verdict | None:
             return case.verdict("special", found.proof, agrees=True, conditions=named)
     if not ratios:
         return None
-    also = tuple(f"with {name} = {paper(value)}" for name, value in named.items())
-    limit = verify_limit(stated.claim, stated.derived, ratios, case.values, case.time / 3)
+    also = _values_in_words(case)
+    limit = verify_limit(stated.whole, stated.derived, ratios, case.values, case.time / 3)
     if not isinstance(limit, str):
         notes = (*also, *_limit_notes(limit))
         return case.verdict("limit", LEADING, agrees=True, conditions=limit.groups, notes=notes)
-    series = series_order(stated.claim, stated.derived, ratios, case.values, case.time / 3)
+    series = series_order(stated.whole, stated.derived, ratios, case.values, case.time / 3)
     if series is not None:
         notes = (*also, *series.notes)
         return case.verdict(
@@ -197,6 +251,10 @@ def _as_stated(case: Case) -> Verdict | None:
         )
     case.reasons.append(f"under the stated conditions: {limit}")
     return None
+
+
+def _values_in_words(case: Case) -> tuple[str, ...]:
+    return tuple(f"with {paper(s)} = {paper(value)}" for s, value in case.stated.values.items())
 
 
 LEADING = "its terms are a face of the Newton polytope of the derived relation"
@@ -225,6 +283,13 @@ class Somewhere:
     notes: tuple[str, ...] = ()
     doubtful: bool = False
 
+    @property
+    def asks(self) -> int:
+        """How much must hold: one parameter equal to another counts twice, as it is rarely meant."""
+        if not isinstance(self.conditions, Mapping):
+            return len(self.conditions)
+        return sum(1 if value.is_number else 2 for value in self.conditions.values())
+
     def as_notes(self) -> tuple[str, ...]:
         return (f"right in part or nowhere in nature: {', '.join(map(str, self.conditions))}",)
 
@@ -238,6 +303,13 @@ def _other_convention(case: Case) -> Somewhere | None:
     return Somewhere("convention", found[0][1].proof, shown, notes)
 
 
+def _where_right(case: Case) -> Somewhere | None:
+    """The values or the ordering that asks least; values stand first where both ask as much."""
+    special, ordered = _special(case), _series(case) or _limit(case)
+    found = [s for s in (special, ordered) if s is not None]
+    return min(found, key=lambda s: (s.doubtful, s.asks), default=None)
+
+
 def _special(case: Case) -> Somewhere | None:
     for values in special_values(case.claim, case.derived, case.time / 5):
         named = {s.name: v for s, v in values.items()}
@@ -247,7 +319,7 @@ def _special(case: Case) -> Somewhere | None:
 
 
 def _limit(case: Case) -> Somewhere | None:
-    for limit in find_limits(case.claim, case.derived, case.values, case.time / 3):
+    for limit in find_limits(case.whole, case.derived, case.values, case.time / 3):
         in_part = any("confirmed" in note for note in limit.notes)
         doubtful = in_part or not limit.physical
         return Somewhere("limit", LEADING, limit.groups, _limit_notes(limit), doubtful)
@@ -255,7 +327,7 @@ def _limit(case: Case) -> Somewhere | None:
 
 
 def _series(case: Case) -> Somewhere | None:
-    found = series_order(case.claim, case.derived, None, case.values, case.time / 4)
+    found = series_order(case.whole, case.derived, None, case.values, case.time / 4)
     if found is None:
         return None
     return Somewhere("series", found.proof, found.groups, found.notes)

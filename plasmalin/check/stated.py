@@ -24,7 +24,7 @@ class Stated:
     values : dict of Symbol to Expr
         γ_e = 3, T_i = 0, k V = ω_p (solved for one symbol).
     ratios : tuple of Expr
-        What is small against one, in the model's symbols.
+        What is small against one, in the author's symbols.
     """
 
     values: dict[Symbol, Expr]
@@ -52,7 +52,7 @@ def read_stated(names: WaveNames, under: Any) -> Stated:
     ratios: list[Expr] = []
     for left, right, small in _each(names, under):
         if small:
-            ratios.append(_written(names, left / right))
+            ratios.append(left / right)
         else:
             symbol, value = _solved(names, left, right)
             values = {s: v.xreplace({symbol: value}) for s, v in values.items()} | {symbol: value}
@@ -100,6 +100,8 @@ def _solved(names: WaveNames, left: Expr, right: Expr) -> tuple[Symbol, Expr]:
     """An equation solved for one symbol: the left side where it is one, else what it is linear in."""
     residual = _written(names, left - right)
     plain = _written(names, left)
+    if plain.is_Symbol and not _written(names, right).has(plain):
+        return plain, _written(names, right)
     waves = names.wave.wave_symbols
     order = sorted(
         residual.free_symbols - {omega}, key=lambda s: (s != plain, s not in waves, s.name)

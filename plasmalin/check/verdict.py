@@ -123,7 +123,9 @@ class Verdict:
 
     def _lines(self) -> list[str]:
         shown = self._conditions()
-        lines = [f"{self.kind}: {WORDS[self.kind]}{':' if shown else '.'}"]
+        lines = [
+            f"{self.kind}: {WORDS[self.kind].removesuffix('' if shown else ' where')}{':' if shown else '.'}"
+        ]
         lines += [f"  {c}" for c in shown]
         lines += [f"  {UNSTATED}"] if self.kind in STATED and not self.agrees else []
         lines += [f"  repair: {s}" for s in self.slips]

@@ -9,6 +9,7 @@ from __future__ import annotations
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from fractions import Fraction
+from functools import lru_cache
 from random import Random
 from typing import TYPE_CHECKING, Any
 
@@ -63,11 +64,19 @@ def pose(wave: WaveMatrix, numbers: Numbers) -> Problem:
     UndeterminedError
         When the determinant vanishes identically, in general or for these numbers.
     """
-    entries = {
-        ij: c.subs(numbers.solved) if numbers.solved else c for ij, c in wave.entries.items()
-    }
+    return _posed(wave, frozenset(numbers.fixed.items()), frozenset(numbers.solved.items()))
+
+
+@lru_cache(maxsize=16)
+def _posed(
+    wave: WaveMatrix,
+    fixed: frozenset[tuple[Symbol, Fraction]],
+    solved: frozenset[tuple[Symbol, Expr]],
+) -> Problem:
+    """The same problem serves every grid, so the last few are kept."""
+    entries = {ij: c.subs(dict(solved)) if solved else c for ij, c in wave.entries.items()}
     degree, zero_modes = general_degree(wave)
-    filled = _filled(entries, numbers.fixed)
+    filled = _filled(entries, dict(fixed))
     whole = determinant(filled, len(wave.rows), wave.omega)
     if whole.degree < 0:
         raise UndeterminedError(
@@ -107,6 +116,7 @@ def grid_of(problem: Problem, numbers: Numbers) -> Grid:
     return [_grid(g, numbers) for g in problem.generators]
 
 
+@lru_cache(maxsize=64)
 def general_degree(wave: WaveMatrix) -> tuple[int, int]:
     """The degree and the zero modes of the relation, from one random exact evaluation.
 

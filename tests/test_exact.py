@@ -13,6 +13,7 @@ from hypothesis import strategies as st
 
 import plasmalin as plin
 from plasmalin.exact.determinant import determinant, eliminate, underdetermined_block
+from plasmalin.exact.factoring import is_irreducible
 from plasmalin.exact.matching import diagonal_blocks, maximum_matching
 from plasmalin.exact.polynomial import numerator, polynomial
 from plasmalin.exact.rational import exact_rational
@@ -309,3 +310,27 @@ def test_discriminant_with_complex_coefficients():
     found = polynomial(w**2 + sympy.I * b * w + (a + sympy.I * k), w).discriminant().as_expr()
     expected = (sympy.I * b) ** 2 - 4 * (a + sympy.I * k)
     assert sympy.expand(found - expected) == 0
+
+
+@given(
+    st.lists(st.integers(-9, 9), min_size=6, max_size=6),
+    st.lists(st.integers(-9, 9), min_size=6, max_size=6),
+)
+def test_a_product_is_never_proven_irreducible(first, second):
+    """Images in prime fields prove only what is so: two factors that hold the main symbol are both found."""
+    monomials = [1, k, w, w * k, w**2, w**2 * k]
+    p, q = (w**3 + sum(c * m for c, m in zip(cs, monomials, strict=True)) for cs in (first, second))
+    factors = polynomial(sympy.expand(p * q), w).factor()[1]
+    assert sum(m for _, m in factors) >= 2
+    product = sympy.prod([f.as_expr() ** m for f, m in factors])
+    assert sympy.expand(product - p * q) == 0
+
+
+def test_long_irreducible_polynomials_are_known_from_prime_fields():
+    for expression, proven in (
+        (w**6 + k * w**2 + 3, True),
+        (w**4 + 1, False),
+        (w**2 - k**2, False),
+    ):
+        part = polynomial(expression, w)._value.re
+        assert is_irreducible(part) == proven

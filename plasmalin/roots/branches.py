@@ -73,13 +73,10 @@ class Branches:
     @cached_property
     def wave_number(self) -> NDArray[Any]:
         """|k| along the sweep, rad/m, shape (n,)."""
-        from sympy import Add, lambdify, sqrt
+        from sympy import Add, sqrt
 
-        square = Add(*(c**2 for c in self.wave.k))
-        symbols = sorted(square.free_symbols, key=str)
-        columns = (self.numbers.doubles(s) for s in symbols)
-        value = lambdify(symbols, sqrt(square), "numpy")(*columns)
-        return np.broadcast_to(np.asarray(value), self.along.shape)
+        value = self.numbers.value(sqrt(Add(*(c**2 for c in self.wave.k))))
+        return np.broadcast_to(value, self.along.shape)
 
     @property
     def phase_velocity(self) -> NDArray[np.float64]:

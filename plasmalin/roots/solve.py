@@ -209,10 +209,8 @@ def rates_of(problem: Problem, numbers: Numbers, symbol: Symbol) -> list[NDArray
     size = int(np.prod(numbers.shape, dtype=np.int64))
     rates = []
     for generator in problem.generators:
-        slope = _loose_slope(generator, symbol)
-        symbols = sorted(slope.free_symbols, key=str)
-        value = lambdify(symbols, slope, "numpy")(*(numbers.doubles(s) for s in symbols))
-        rates.append(np.broadcast_to(np.asarray(value), numbers.shape).reshape(size))
+        value = numbers.value(_loose_slope(generator, symbol))
+        rates.append(np.broadcast_to(value, numbers.shape).reshape(size))
     return rates
 
 

@@ -12,6 +12,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 import plasmalin as plin
+from plasmalin.exact.circle import on_circle
 from plasmalin.exact.determinant import determinant, eliminate, underdetermined_block
 from plasmalin.exact.factoring import is_irreducible
 from plasmalin.exact.matching import diagonal_blocks, maximum_matching
@@ -334,3 +335,13 @@ def test_long_irreducible_polynomials_are_known_from_prime_fields():
     ):
         part = polynomial(expression, w)._value.re
         assert is_irreducible(part) == proven
+
+
+@given(st.floats(-1e6, 1e6))
+def test_sines_and_cosines_to_32_digits(angle):
+    for name in ("sin", "cos"):
+        ((high, low),) = on_circle(name, [angle])
+        with mpmath.workdps(60):
+            exact = getattr(mpmath, name)(mpmath.mpf(angle))
+            assert high == float(exact)
+            assert abs(exact - mpmath.mpf(high) - mpmath.mpf(low)) <= 1e-31 * abs(exact)

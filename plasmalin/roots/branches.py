@@ -13,6 +13,8 @@ from sympy import Symbol
 
 from ..errors import DeclarationError, ValuesError
 from .enclose import ZERO, Enclosure, enclose
+from .family import Family
+from .meetings import placed
 from .polarization import null_vectors
 from .slopes import ScaledFamily
 from .solve import Problem, grid_of, pose, rates_of
@@ -42,7 +44,8 @@ class Branches:
     factor : tuple of int
         For each branch the irreducible factor that it belongs to (−1: a zero mode).
     events : tuple of Event
-        Where branches of one factor meet.
+        Where branches of one factor meet, in order, the place with a proven radius where what varies enters the factor
+        as it is.
     """
 
     wave: WaveMatrix
@@ -257,10 +260,11 @@ class _Sweep:
         omega[:, ~np.isfinite(points)], radius[:, ~np.isfinite(points)] = np.nan, np.inf
         return Branches(
             self.wave, self.numbers, self.name, points, omega, radius, status, slope,
-            tuple(factor[b] for b in first), tuple(events), tracks[0].method,
+            tuple(factor[b] for b in first), tuple(sorted(events, key=lambda e: e.at)),
+            tracks[0].method,
         )  # fmt: skip
 
-    def _factor(self, family: Any, s: NDArray[np.float64]) -> tuple[Enclosure, Any, list[Event]]:
+    def _factor(self, family: Family, s: NDArray[np.float64]) -> tuple[Enclosure, Any, list[Event]]:
         found = self._enclosed(family, s)
         scaled = ScaledFamily(
             family, found.omega, [hi for hi, _ in grid_of(self.problem, self.at(s))]
@@ -277,7 +281,10 @@ class _Sweep:
 
         slope = slopes(found.omega, s)
         order, events = track(solve, s, found.omega, slope)
+        if events and self.problem.generators == (self.symbol,):
+            largest = float(np.abs(found.omega[np.isfinite(found.omega)]).max())
+            events = placed(family, events, (largest, float(np.abs(s).max())))
         return found.reordered(order), np.take_along_axis(slope, order, axis=1), events
 
-    def _enclosed(self, family: Any, s: NDArray[np.float64]) -> Enclosure:
+    def _enclosed(self, family: Family, s: NDArray[np.float64]) -> Enclosure:
         return enclose(family, grid_of(self.problem, self.at(s)), points=len(s))

@@ -19,6 +19,7 @@ from numpy.typing import NDArray
 from sympy import Abs, Dummy, Expr, Rational, Symbol, cos, lambdify, sin, sqrt
 
 from ..errors import UndeterminedError
+from ..exact.circle import on_circle
 from ..exact.determinant import determinant
 from ..exact.polynomial import ExactPolynomial
 from .family import Family, Grid
@@ -98,11 +99,11 @@ def _filled(
     known = {s: Rational(v.numerator, v.denominator) for s, v in fixed.items()}
     filled = {ij: c.xreplace(known) for ij, c in entries.items()}
     angles = {a for c in filled.values() for a in c.atoms(sin, cos) if not a.free_symbols}
-    circle = {a: _on_circle(a) for a in angles}
+    circle = {a: _rational_on_circle(a) for a in angles}
     return {ij: c.xreplace(circle) for ij, c in filled.items()} if circle else filled
 
 
-def _on_circle(function: Expr) -> Rational:
+def _rational_on_circle(function: Expr) -> Rational:
     """sin a or cos a from a rational tan(a/2), so that sin^2 + cos^2 = 1 stays exact."""
     half = _rational((function.args[0] / 2).evalf(DIGITS + 5))
     with mpmath.workdps(DIGITS + 5):
@@ -182,7 +183,21 @@ def _grid(generator: Expr, numbers: Numbers) -> tuple[NDArray[Any], NDArray[Any]
     if isinstance(generator, Symbol):
         hi = numbers.swept[generator].reshape(size)
         return hi, np.zeros_like(hi)
-    return _evaluated(generator, numbers, size)
+    values = _angle(generator, numbers)
+    if values is None:
+        return _evaluated(generator, numbers, size)
+    different, place = np.unique(values.reshape(size), return_inverse=True)
+    kind = "sin" if isinstance(generator, sin) else "cos"
+    parts = np.array(on_circle(kind, different.tolist())).reshape(-1, 2)
+    return parts[place, 0], parts[place, 1]
+
+
+def _angle(generator: Expr, numbers: Numbers) -> NDArray[np.float64] | None:
+    """The real angles of a sine or cosine of something swept."""
+    if isinstance(generator, sin | cos) and isinstance(generator.args[0], Symbol):
+        values = numbers.swept[generator.args[0]]
+        return None if np.iscomplexobj(values) else values
+    return None
 
 
 def _evaluated(generator: Expr, numbers: Numbers, size: int) -> tuple[NDArray[Any], NDArray[Any]]:

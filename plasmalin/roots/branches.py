@@ -9,7 +9,6 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 from numpy.typing import NDArray
-from sympy import Symbol
 
 from ..errors import DeclarationError, ValuesError
 from .enclose import ZERO, Enclosure, enclose
@@ -19,7 +18,7 @@ from .polarization import null_vectors
 from .slopes import ScaledFamily
 from .solve import Problem, grid_of, pose, rates_of
 from .tracking import Event, track
-from .values import Numbers, gather, with_defaults
+from .values import Numbers, gather, left_out, with_defaults
 
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
@@ -200,9 +199,7 @@ def find_branches(
 ) -> Branches:
     """All branches; see `WaveMatrix.branches`."""
     zero_modes = bool(waves.pop("zero_modes", False))
-    given = {key.name if isinstance(key, Symbol) else key for key in values} | set(waves)
-    if name in given:
-        raise ValuesError(f"'{name}' is what varies; leave it out of the other values")
+    left_out((name,), values, waves)
     points = np.asarray(along, dtype=float)
     if points.ndim != 1 or not len(points):
         raise ValuesError(
@@ -213,7 +210,7 @@ def find_branches(
         raise ValuesError(
             "only one quantity varies along branches; give single numbers for the others"
         )
-    return _Sweep(wave, pose(wave, numbers), numbers, name).branches(points, zero_modes)
+    return Sweep(wave, pose(wave, numbers), numbers, name).branches(points, zero_modes)
 
 
 def _complex_scalars(numbers: Numbers, name: str) -> int:
@@ -221,7 +218,7 @@ def _complex_scalars(numbers: Numbers, name: str) -> int:
     return sum(s.name != name and bool((a == a.flat[0]).all()) for s, a in numbers.swept.items())
 
 
-class _Sweep:
+class Sweep:
     """Solves and tracks every factor along one quantity."""
 
     def __init__(self, wave: WaveMatrix, problem: Problem, numbers: Numbers, name: str) -> None:
@@ -266,25 +263,30 @@ class _Sweep:
 
     def _factor(self, family: Family, s: NDArray[np.float64]) -> tuple[Enclosure, Any, list[Event]]:
         found = self._enclosed(family, s)
-        scaled = ScaledFamily(
-            family, found.omega, [hi for hi, _ in grid_of(self.problem, self.at(s))]
-        )
-
-        def slopes(omega: NDArray[Any], points: NDArray[np.float64]) -> NDArray[Any]:
-            numbers = self.at(points)
-            grid = [hi for hi, _ in grid_of(self.problem, numbers)]
-            return scaled.slope(omega, grid, rates_of(self.problem, numbers, self.symbol))
-
-        def solve(points: NDArray[np.float64]) -> tuple[NDArray[Any], NDArray[Any]]:
-            omega = self._enclosed(family, points).omega
-            return omega, slopes(omega, points)
-
-        slope = slopes(found.omega, s)
-        order, events = track(solve, s, found.omega, slope)
+        order, slope, events = self.tracked(family, s, found.omega)
         if events and self.problem.generators == (self.symbol,):
             largest = float(np.abs(found.omega[np.isfinite(found.omega)]).max())
             events = placed(family, events, (largest, float(np.abs(s).max())))
         return found.reordered(order), np.take_along_axis(slope, order, axis=1), events
+
+    def tracked(
+        self, family: Family, s: NDArray[np.float64], omega: NDArray[np.complex128]
+    ) -> tuple[NDArray[np.int64], NDArray[np.complex128], list[Event]]:
+        """The roots of every branch, the slopes of the roots, and where branches meet."""
+        scaled = ScaledFamily(family, omega, [hi for hi, _ in grid_of(self.problem, self.at(s))])
+
+        def slopes(roots: NDArray[Any], points: NDArray[np.float64]) -> NDArray[Any]:
+            numbers = self.at(points)
+            grid = [hi for hi, _ in grid_of(self.problem, numbers)]
+            return scaled.slope(roots, grid, rates_of(self.problem, numbers, self.symbol))
+
+        def solve(points: NDArray[np.float64]) -> tuple[NDArray[Any], NDArray[Any]]:
+            between = self._enclosed(family, points).omega
+            return between, slopes(between, points)
+
+        slope = slopes(omega, s)
+        order, events = track(solve, s, omega, slope)
+        return order, slope, events
 
     def _enclosed(self, family: Family, s: NDArray[np.float64]) -> Enclosure:
         return enclose(family, grid_of(self.problem, self.at(s)), points=len(s))

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass
 from functools import cached_property
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING, Any, overload
 
 from sympy import Expr, ImmutableDenseMatrix, Symbol, cos, expand, sin
 
@@ -25,6 +25,7 @@ from .susceptibility import susceptibility
 if TYPE_CHECKING:
     from ..roots.branches import Branches
     from ..roots.roots import Roots
+    from ..roots.surfaces import Surfaces
 
 
 @dataclass(frozen=True)
@@ -234,16 +235,31 @@ class WaveMatrix:
 
         return find_roots(self, values or {}, waves)
 
+    @overload
     def branches(
         self, name: str, along: Any, values: Mapping[Any, Any] | None = None, **waves: Any
-    ) -> Branches:
+    ) -> Branches: ...
+
+    @overload
+    def branches(
+        self,
+        name: tuple[str, str],
+        along: tuple[Any, Any],
+        values: Mapping[Any, Any] | None = None,
+        **waves: Any,
+    ) -> Surfaces: ...
+
+    def branches(
+        self, name: Any, along: Any, values: Mapping[Any, Any] | None = None, **waves: Any
+    ) -> Branches | Surfaces:
         """All branches omega along a wave number or a parameter, tracked through crossings.
 
         Parameters
         ----------
-        name : str
-            What varies: a wave number or any parameter.
-        along : array_like, shape (n,)
+        name : str, or tuple of two
+            What varies: a wave number or any parameter; two of them for a grid.
+        along : array_like, shape (n,), or tuple of two
+            For a grid both increase.
         values : mapping of str to number, optional
         **waves : number
             The other wave numbers, by name.
@@ -251,6 +267,7 @@ class WaveMatrix:
         Returns
         -------
         Branches
+            For two names `Surfaces`: labels over the grid, and the cells around which they permute.
 
         Raises
         ------
@@ -258,7 +275,10 @@ class WaveMatrix:
             As `roots`; also when `along` is not one-dimensional.
         """
         from ..roots.branches import find_branches
+        from ..roots.surfaces import find_surfaces
 
+        if not isinstance(name, str):
+            return find_surfaces(self, tuple(name), tuple(along), values or {}, waves)
         return find_branches(self, name, along, values or {}, waves)
 
     def __str__(self) -> str:

@@ -84,4 +84,4 @@ def _carrier(ordered: Scaled, path: Path, nodes: NDArray[np.int64], degree: int)
     sheet = Sheet.unknown(degree, len(nodes))
     for chosen, part in _sheets(ordered.at(nodes), degree, False):
         sheet.copy_from(part, chosen)
-    return Carrier.of(ordered, path, nodes, coefficients(ordered, degree, nodes), sheet)
+    return Carrier.of(ordered, path, nodes, sheet)

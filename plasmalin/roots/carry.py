@@ -12,7 +12,6 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from .coefficients import Coefficients
 from .doubledouble import Array
 from .path import Path
 from .scaling import Scaled
@@ -33,11 +32,10 @@ class Carrier:
     slopes: Complex
 
     @classmethod
-    def of(
-        cls, scaled: Scaled, path: Path, nodes: NDArray[np.int64], c: Coefficients, sheet: Sheet
-    ) -> Carrier:
-        slopes = _slopes(scaled, c, nodes, sheet.re + 1j * sheet.im)
-        return cls(scaled, path, nodes, sheet, c.high_imag is None, slopes)
+    def of(cls, scaled: Scaled, path: Path, nodes: NDArray[np.int64], sheet: Sheet) -> Carrier:
+        slopes = _slopes(scaled, nodes, sheet.re + 1j * sheet.im)
+        mirrored = scaled.high.shape[1] == len(sheet.re) + 1
+        return cls(scaled, path, nodes, sheet, mirrored, slopes)
 
     def starts(self, points: NDArray[np.int64]) -> Sheet:
         """Roots at some points of the path; UNKNOWN where the ends of an interval are not alike."""
@@ -71,45 +69,40 @@ def _rows(degree: int, real: int, mirrored: bool) -> int:
     return real + (degree - real) // 2 if mirrored else degree
 
 
-def _slopes(scaled: Scaled, c: Coefficients, nodes: NDArray[np.int64], z: Complex) -> Complex:
-    """d root / d quantity = -p_g / p_z, shape (G, degree, nodes)."""
-    columns = [hi[nodes] for hi, _ in scaled.columns]
+def _slopes(scaled: Scaled, nodes: NDArray[np.int64], z: Complex) -> Complex:
+    """d root / d quantity = -p_g / p_z in working precision, shape (G, degree, nodes)."""
     powers = [
-        _power_table(x, int(e)) for x, e in zip(columns, scaled.exponents.max(axis=0), strict=True)
+        _power_table(hi[nodes], e)
+        for (hi, _), e in zip(scaled.columns, scaled.exponents.T, strict=True)
     ]
-    plain = c.plain
+    plain = _polynomials(scaled, np.prod([part for part, _ in powers], axis=0), len(z))
     slope = np.zeros_like(z)
-    for j in range(c.degree, 0, -1):
+    for j in range(len(z), 0, -1):
         slope = slope * z + j * plain[j]
-    rates = np.empty((len(columns), *z.shape), np.complex128)
-    for i in range(len(columns)):
-        rate = _rate(scaled, powers, i, c.degree)
+    rates = np.empty((len(powers), *z.shape), np.complex128)
+    for i in range(len(powers)):
+        factors = [rate if i == place else part for place, (part, rate) in enumerate(powers)]
         value = np.zeros_like(z)
-        for row in rate[::-1]:
+        for row in _polynomials(scaled, np.prod(factors, axis=0), len(z))[::-1]:
             value = value * z + row
         rates[i] = -value / slope
     return rates
 
 
-def _power_table(x: Array, highest: int) -> Array:
-    table = np.ones((highest + 1, len(x)))
-    for n in range(highest):
+def _power_table(x: Array, exponents: NDArray[np.int64]) -> tuple[Array, Array]:
+    """x to all exponents, and the derivatives, shape (terms, nodes) each."""
+    table = np.ones((int(exponents.max()) + 1, len(x)))
+    for n in range(len(table) - 1):
         np.multiply(table[n], x, out=table[n + 1])
-    return table
+    return table[exponents], exponents[:, None] * table[np.maximum(exponents - 1, 0)]
 
 
-def _rate(scaled: Scaled, powers: list[Array], place: int, degree: int) -> Complex:
-    """The derivative of all coefficients by one quantity, shape (degree + 1, nodes)."""
-    rate = np.zeros((scaled.high.shape[1], powers[place].shape[1]))
-    for row, high in zip(scaled.exponents, scaled.high, strict=True):
-        if row[place]:
-            term = float(row[place]) * powers[place][row[place] - 1]
-            for i, e in enumerate(row):
-                if i != place:
-                    term = term * powers[i][e]
-            rate += high[:, None] * term
-    parts = rate.reshape(-1, degree + 1, rate.shape[1])
-    return np.asarray(parts[0] + (1j * parts[1] if len(parts) > 1 else 0.0))
+def _polynomials(scaled: Scaled, monomials: Array, degree: int) -> NDArray[Any]:
+    """The sums of terms for every power of the unknown, shape (degree + 1, nodes)."""
+    # Not by BLAS, whose sums may depend on the number of threads.
+    sums = np.einsum("tj,tn->jn", scaled.high, monomials)
+    parts = sums.reshape(-1, degree + 1, monomials.shape[1])
+    return np.asarray(parts[0] + 1j * parts[1] if len(parts) > 1 else parts[0])
 
 
 def _quintic(

@@ -187,7 +187,8 @@ def scaled(table: Table, columns: Columns) -> Scaled | None:
     """Scaled for these points; None where they span so much that doubles could overflow."""
     shifts = np.array([_middle(hi) for hi, _ in columns], np.int64)
     near = [
-        (np.ldexp(hi, -s), np.ldexp(lo, -s)) for (hi, lo), s in zip(columns, shifts, strict=True)
+        (hi * np.ldexp(1.0, -s), lo * np.ldexp(1.0, -s))
+        for (hi, lo), s in zip(columns, shifts, strict=True)
     ]
     binary = table.binary + (table.exponents @ shifts)[:, None]
     sizes = np.where(table.high != 0, binary, -(2**40)).max(axis=0)

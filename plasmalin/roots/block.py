@@ -15,7 +15,7 @@ from .scaling import Scaled, Table, scaled
 from .sheets import UNKNOWN, Sheet, from_nothing, proven
 from .solved import Solved, Status
 
-NEAR, FAR = 0.05, 0.8
+NEAR, FAR = 0.02, 0.8
 """Logarithmic distance between nodes: where one step should do, and where several may be needed."""
 DENSE = 4
 """Points from node to node that make near nodes worth while."""

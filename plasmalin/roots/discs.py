@@ -24,7 +24,7 @@ FAIR, SHARP = 2.0**-53, 2.0**-56
 """Radii relative to a root that are good enough, and that leave it right to the last digit."""
 LEAST = 1.25
 """A radius of so many times what the error of the coefficients makes it cannot become much smaller."""
-ROUGH_STEPS, SHORT = 4, 2.0**-20
+ROUGH_STEPS, SHORT = 2, 2.0**-20
 """Steps in working precision at most, and the relative length of one after which they end."""
 SMALLEST_PART = 2.0**-24
 """Real and imaginary part are made right one by one down to this share of the root."""

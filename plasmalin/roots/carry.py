@@ -17,8 +17,6 @@ from .path import Path
 from .scaling import Scaled
 from .sheets import UNKNOWN, Sheet
 
-Complex = NDArray[np.complex128]
-
 
 @dataclass(frozen=True)
 class Carrier:
@@ -29,11 +27,11 @@ class Carrier:
     nodes: NDArray[np.int64]
     sheet: Sheet
     mirrored: bool
-    slopes: Complex
+    slopes: NDArray[Any]
 
     @classmethod
     def of(cls, scaled: Scaled, path: Path, nodes: NDArray[np.int64], sheet: Sheet) -> Carrier:
-        slopes = _slopes(scaled, nodes, sheet.re + 1j * sheet.im)
+        slopes = _slopes(scaled, nodes, sheet.re + 1j * sheet.im if sheet.im.any() else sheet.re)
         mirrored = scaled.high.shape[1] == len(sheet.re) + 1
         return cls(scaled, path, nodes, sheet, mirrored, slopes)
 
@@ -69,20 +67,21 @@ def _rows(degree: int, real: int, mirrored: bool) -> int:
     return real + (degree - real) // 2 if mirrored else degree
 
 
-def _slopes(scaled: Scaled, nodes: NDArray[np.int64], z: Complex) -> Complex:
+def _slopes(scaled: Scaled, nodes: NDArray[np.int64], z: NDArray[Any]) -> NDArray[Any]:
     """d root / d quantity = -p_g / p_z in working precision, shape (G, degree, nodes)."""
     powers = [
         _power_table(hi[nodes], e)
         for (hi, _), e in zip(scaled.columns, scaled.exponents.T, strict=True)
     ]
     plain = _polynomials(scaled, np.prod([part for part, _ in powers], axis=0), len(z))
-    slope = np.zeros_like(z)
+    kind = np.result_type(plain, z)
+    slope = np.zeros(z.shape, kind)
     for j in range(len(z), 0, -1):
         slope = slope * z + j * plain[j]
-    rates = np.empty((len(powers), *z.shape), np.complex128)
+    rates = np.empty((len(powers), *z.shape), kind)
     for i in range(len(powers)):
         factors = [rate if i == place else part for place, (part, rate) in enumerate(powers)]
-        value = np.zeros_like(z)
+        value = np.zeros(z.shape, kind)
         for row in _polynomials(scaled, np.prod(factors, axis=0), len(z))[::-1]:
             value = value * z + row
         rates[i] = -value / slope
@@ -116,23 +115,27 @@ def _quintic(
     nodes, s = carrier.nodes, carrier.path.s
     rows = _rows(len(carrier.sheet.re), real, carrier.mirrored)
     change = [hi[nodes[spans + 1]] - hi[nodes[spans]] for hi, _ in carrier.scaled.columns]
-    ends = [_end(carrier, rows, node, change) for node in (spans, spans + 1, third)]
+    ends = [_end(carrier, rows, real, node, change) for node in (spans, spans + 1, third)]
     place = (s[nodes[third]] - s[nodes[spans]]) / length
     if rows - real > 1:
         for other, where in ((1, 1.0), (2, place)):
             follow = _followers(real, ends[0], ends[other], where)
             ends[other] = tuple(np.take_along_axis(a, follow, axis=0) for a in ends[other])
-    if rows == real:
-        ends = [(value.real, rate.real) for value, rate in ends]
     return _through(ends, place)
 
 
-def _end(carrier: Carrier, rows: int, node: NDArray[np.int64], change: list[Array]) -> Any:
-    """Roots and their slopes in t at some nodes."""
+def _end(
+    carrier: Carrier, rows: int, real: int, node: NDArray[np.int64], change: list[Array]
+) -> Any:
+    """Roots and their slopes in t at some nodes, as real numbers where all of them are."""
     sheet = carrier.sheet
-    value = sheet.re[:rows, node] + 1j * sheet.im[:rows, node]
-    rate = sum(d * r[:rows, node] for d, r in zip(change, carrier.slopes, strict=True))
-    return value, rate
+    value: Any = sheet.re[:rows].take(node, axis=1)
+    rate: Any = 0.0
+    for d, slopes in zip(change, carrier.slopes, strict=True):
+        rate = rate + d * slopes[:rows].take(node, axis=1)
+    if rows == real:
+        return value, rate.real
+    return value + 1j * sheet.im[:rows].take(node, axis=1), rate
 
 
 def _through(ends: list[Any], place: Array) -> list[Any]:

@@ -98,12 +98,6 @@ def matrices_of(case):
     return -np.linalg.solve(linear, constant), constant, linear, sample
 
 
-def floor_of(case):
-    """Batched eigvals, microseconds a point."""
-    matrices, *_ = matrices_of(case)
-    return seconds(lambda: np.linalg.eigvals(matrices), 5) / len(matrices) * 1e6
-
-
 def ours_and_floor(case):
     """Microseconds a point, the best of some repeats, and the median of the ratios of neighboring runs."""
     matrices, *_ = matrices_of(case)

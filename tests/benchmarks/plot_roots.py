@@ -11,18 +11,20 @@ mpl.use("svg")
 
 import matplotlib.pyplot as plt
 import numpy as np
-from bench_roots import Case, floor_of, seconds
+from bench_roots import Case, ours_and_floor
 from models import electromagnetic, numbers
 
 SPECIES = (2, 3, 4, 5)
 POINTS = tuple(4**n for n in range(4, 9))
+TICKS = 1, 3, 10, 30, 100, 300
 
 
 def measured(count, points):
     """Unknowns, and microseconds a point: ours and batched eigvals."""
     case = Case(electromagnetic(count).linearize(), numbers(count), points)
-    ours = seconds(case.enclosures, 7) / case.points * 1e6
-    return len(case.wave.rows), ours, floor_of(case)
+    case.enclosures()
+    ours, floor, _ = ours_and_floor(case)
+    return len(case.wave.rows), ours, floor
 
 
 def draw(ax, x, rows, label):
@@ -34,7 +36,9 @@ def draw(ax, x, rows, label):
     ax.set_xticks(x, [f"{n:,}" for n in x])
     ax.set_xticks([], minor=True)
     ax.set_xlabel(label)
-    ax.set_ylim(ours.min() / 2, floor.max() * 1.5)
+    ax.set_yticks(TICKS, [str(n) for n in TICKS])
+    ax.set_yticks([], minor=True)
+    ax.set_ylim(TICKS[0], TICKS[-1])
 
 
 def main():
@@ -45,7 +49,7 @@ def main():
     draw(left, [r[0] for r in rows], rows, "unknowns (4,096 points)")
     draw(right, list(POINTS), [measured(2, n) for n in POINTS], "points (14 unknowns)")
     left.set_ylabel("microseconds a point")
-    left.legend(frameon=False)
+    right.legend(frameon=False, loc="upper right")
     figure.savefig(file, metadata={"Date": None, "Creator": None})
 
 

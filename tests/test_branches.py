@@ -7,7 +7,7 @@ import pytest
 from published import CASES, read
 
 import plasmalin as plin
-from plasmalin import curl, partial_t
+from plasmalin import components, curl, dot, grad, partial_t
 from plasmalin.roots.tracking import track
 
 
@@ -217,3 +217,61 @@ def test_true_crossing_of_three_factors():
     assert [(f.degree, f.multiplicity) for f in wave.relation.factors] == [(1, 2), (1, 2), (1, 2)]
     branches = wave.branches("k", [-1.0, 1.0])
     assert np.allclose(branches.omega[:, 0], -branches.omega[:, 1])
+
+
+@pytest.fixture(scope="module")
+def coupled():
+    """Two modes, one drifting and damped: (omega - k U + i nu) omega = g^2, invented."""
+    model = plin.FluidModel("two coupled modes")
+    u, nu, g = model.parameters("U nu g")
+    a, b = model.scalar("a", background=0), model.scalar("b", background=0)
+    model.law("a", partial_t(a) + dot(components(u, 0, 0), grad(a)) + nu * a, g * b)
+    model.law("b", partial_t(b), -g * a)
+    return model.linearize().plane_wave(("k", 0, 0))
+
+
+def test_labels_are_consistent_where_no_exceptional_point_is_encircled(coupled):
+    """The two roots coalesce where (k U - i nu)^2 + 4 g^2 = 0: at k = 0, nu = 2 g only (nu > 0)."""
+    k, nu = np.linspace(-1, 1, 10), np.linspace(0.5, 4, 12)
+    whole = coupled.branches(("k", "nu"), (k, nu), {"U": 1.0, "g": 1.0})
+    (event,) = whole.events
+    (left, right), (low, high) = event.cell
+    assert (event.kind, event.branches) == ("exceptional point", (0, 1))
+    assert left < 0 < right
+    assert low < 2 < high
+    assert whole.cut.any()
+    beyond = coupled.branches(("k", "nu"), (k, nu[nu > 2.5]), {"U": 1.0, "g": 1.0})
+    assert beyond.events == ()
+    assert not beyond.cut.any()
+    jumps = [np.abs(np.diff(beyond.omega, axis=axis)).max() for axis in (1, 2)]
+    assert max(jumps) < 0.5 < np.abs(beyond.omega[0] - beyond.omega[1]).min()
+    assert (beyond.status == "certified").all()
+    assert repr(beyond) == "<Surfaces: 2 branches over k, nu, 10 x 5 points>"
+
+
+def test_surfaces_follow_branches(coupled):
+    """A row of a grid is what a sweep along it gives, and growth is where the formula has it."""
+    k, nu = np.linspace(0.2, 1, 5), np.linspace(0.5, 4, 6)
+    grid = coupled.branches(("k", "nu"), (k, nu), {"U": 1.0, "g": 1.0}, zero_modes=True)
+    sweep = coupled.branches("nu", nu, {"U": 1.0, "g": 1.0}, k=0.2)
+    assert np.array_equal(grid.omega[:, 0], sweep.omega)
+    shift = k[:, None] - 1j * nu
+    product = (grid.omega - shift) * grid.omega
+    assert np.allclose(product, 1.0, rtol=1e-12)
+    assert np.array_equal(grid.growth_rate, grid.omega.imag)
+    assert np.array_equal(grid.frequency, grid.omega.real)
+    assert len(grid) == len(grid.factor) == 2
+
+
+@pytest.mark.parametrize(
+    ("names", "along", "values", "message"),
+    [
+        (("k", "nu"), ([1.0, 0.5], [1.0]), {}, "must be finite, one-dimensional and increasing"),
+        (("k", "nu"), ([0.5, 1.0], [1.0]), {"nu": 2.0}, "'nu' is what varies"),
+        (("k", "nu", "g"), ([1.0], [1.0], [1.0]), {}, "a grid takes two names"),
+        (("k", "nu"), ([0.5, 1.0], [1.0, 2.0]), {"U": [1.0, 2.0]}, "only two quantities vary"),
+    ],
+)
+def test_bad_grids_of_branches(coupled, names, along, values, message):
+    with pytest.raises(plin.ValuesError, match=message):
+        coupled.branches(names, along, {"U": 1.0, "g": 1.0, **values})

@@ -304,3 +304,28 @@ def test_discs_about_disturbed_roots_hold_the_roots(roots, digits):
         centre = (start.z - found.z_step)[:, 0]
         inside = np.abs(centre[:, None] - z[None]) <= (found.z_radius + 4 * UNIT * np.abs(start.z))
         assert np.array_equal(inside.sum(axis=1), np.ones(len(z)))
+
+
+@given(st.integers(0, 2**32 - 1))
+def test_rows_that_are_not_reached_yet_change_nothing(seed):
+    """Horner steps over the rows that hold something so far give the same bits as over all rows."""
+    random = np.random.default_rng(seed)
+    starts = np.sort(random.integers(0, 5, 4))[::-1]
+    table = random.normal(size=(4, 6, 3)) * (np.arange(6)[:, None] >= starts[:, None, None])
+    x, x_low = random.normal(size=3), 1e-17 * random.normal(size=3)
+    reached = [slice(int(s), 6) for s in starts]
+    parts = [(level[rows], 1e-17 * level[rows]) for level, rows in zip(table, reached, strict=True)]
+    whole = horner([(level, 1e-17 * level) for level in table], x, (6, 3), x_low)
+    found = horner(parts, x, (6, 3), x_low, reached)
+    assert all(np.array_equal(a, b) for a, b in zip(whole, found, strict=True))
+
+
+def test_coarse_and_scattered_points():
+    """Grids so coarse that the starts are rough, and points in no order, against exact arithmetic."""
+    expression = (OMEGA**2 - 1 - 3 * K**2 - Q**2) * (OMEGA**2 - K**2 * Q / 7) - K * Q / 100
+    polynomial, random = family(expression, K, Q), np.random.default_rng(5)
+    k, q = (a.ravel() for a in np.meshgrid(np.geomspace(0.1, 50, 20), np.geomspace(0.2, 9, 15)))
+    for grid in (plain(k, q), plain(*np.exp(random.normal(size=(2, 300))))):
+        found = enclose(polynomial, grid, points=300)
+        assert (found.status == "certified").all()
+        check(polynomial, grid, found, range(0, 300, 37))

@@ -1,25 +1,30 @@
 """Tracking on closed forms: order through avoided crossings, onsets to ten digits, labels beyond a coalescence."""
 
+from fractions import Fraction
+
 import numpy as np
 import pytest
 import sympy as sp
 
 from plasmalin.roots.enclose import enclose
 from plasmalin.roots.family import Family
+from plasmalin.roots.meetings import placed
 from plasmalin.roots.slopes import ScaledFamily
 from plasmalin.roots.tracking import track
 
 OMEGA, K = sp.symbols("omega k")
 
 
-def solver(expression):
-    """Roots and slopes of a polynomial in omega and k with rational coefficients, through the engine."""
-    from fractions import Fraction
-
+def family_of(expression):
     terms = sp.Poly(sp.expand(expression), OMEGA, K).terms()
     parts = [sp.sympify(c).as_real_imag() for _, c in terms]
     exact = tuple(tuple(Fraction(int(x.p), int(x.q)) for x in pair) for pair in parts)
-    family = Family(np.array([e for e, _ in terms], np.int64), exact)
+    return Family(np.array([e for e, _ in terms], np.int64), exact)
+
+
+def solver(expression):
+    """Roots and slopes of a polynomial in omega and k with rational coefficients, through the engine."""
+    family = family_of(expression)
 
     def solve(k):
         omega = enclose(family, [(k, np.zeros_like(k))], points=len(k)).omega
@@ -52,8 +57,10 @@ def test_onsets_are_the_roots_of_the_discriminant():
     square_free = sp.Poly(sp.discriminant(expression, OMEGA), K).sqf_part()
     exact = [r for r in square_free.nroots(n=30) if abs(sp.im(r)) < 1e-20 and 0.05 < sp.re(r) < 3]
     assert [e.kind for e in events] == ["onset"] * len(exact)
-    for event, k in zip(events, sorted(float(sp.re(r)) for r in exact), strict=True):
-        assert event.at == pytest.approx(k, rel=1e-10)
+    proven = placed(family_of(expression), events, (3.0, 3.0))
+    for event, better, k in zip(events, proven, sorted(sp.re(r) for r in exact), strict=True):
+        assert event.at == pytest.approx(float(k), rel=1e-10)
+        assert abs(sp.Float(better.at, 30) - k) <= better.radius < 5e-16
 
 
 def test_growing_and_damped_keep_their_labels():
@@ -92,3 +99,25 @@ def test_very_few_points(points):
     omega, events = tracked(OMEGA**2 - 1 - K**2, np.linspace(0.5, 1.0, points))
     assert omega.shape == (points, 2)
     assert events == []
+
+
+def test_places_of_events_are_proven_where_two_meet():
+    """The double point of a nodal cubic at k = 1/3, and three lines through one point, where nothing is proven."""
+    third, k = sp.Rational(1, 3), np.linspace(0.1, 1.0, 20)
+    node = OMEGA**2 - (K - third) ** 2 * (K + 1)
+    (event,) = placed(family_of(node), tracked(node, k)[1], (1.0, 1.0))
+    assert event.kind == "crossing"
+    assert abs(Fraction(event.at) - Fraction(1, 3)) <= event.radius < 1e-16
+    lines = (OMEGA - K) * (OMEGA + K - 2 * third) * (OMEGA - third)
+    events = tracked(lines, k)[1]
+    assert events
+    assert placed(family_of(lines), events, (1.0, 1.0)) == events
+
+
+def test_an_onset_where_growth_is_complex():
+    """Complex coefficients: (omega - i)^2 = k - 1/7 coalesces at omega = i."""
+    expression = (OMEGA - sp.I) ** 2 - (K - sp.Rational(1, 7))
+    (event,) = tracked(expression, np.linspace(0.0, 1.0, 11))[1]
+    (better,) = placed(family_of(expression), [event], (2.0, 1.0))
+    assert better.omega == pytest.approx(1j, abs=1e-30)
+    assert abs(Fraction(better.at) - Fraction(1, 7)) <= better.radius < 1e-16

@@ -12,8 +12,10 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 import plasmalin as plin
+from plasmalin.exact.circle import on_circle
 from plasmalin.exact.combination import power_below, row_combination
 from plasmalin.exact.determinant import determinant, eliminate, underdetermined_block
+from plasmalin.exact.factoring import is_irreducible
 from plasmalin.exact.matching import diagonal_blocks, maximum_matching
 from plasmalin.exact.polynomial import numerator, polynomial
 from plasmalin.exact.rational import exact_rational
@@ -364,3 +366,37 @@ def test_modes_where_roots_of_parameters_are_related():
     unit = sympy.sin(theta) ** 2 + sympy.cos(theta) ** 2
     rows = [{0: w - unit}, {1: w - 1}]
     assert shared_modes(rows, w, [w - 1], [(), ({0: sympy.S.One},)]) == [[2, 1]]
+
+
+@given(
+    st.lists(st.integers(-9, 9), min_size=6, max_size=6),
+    st.lists(st.integers(-9, 9), min_size=6, max_size=6),
+)
+def test_a_product_is_never_proven_irreducible(first, second):
+    """Images in prime fields prove only what is so: two factors that hold the main symbol are both found."""
+    monomials = [1, k, w, w * k, w**2, w**2 * k]
+    p, q = (w**3 + sum(c * m for c, m in zip(cs, monomials, strict=True)) for cs in (first, second))
+    factors = polynomial(sympy.expand(p * q), w).factor()[1]
+    assert sum(m for _, m in factors) >= 2
+    product = sympy.prod([f.as_expr() ** m for f, m in factors])
+    assert sympy.expand(product - p * q) == 0
+
+
+def test_long_irreducible_polynomials_are_known_from_prime_fields():
+    for expression, proven in (
+        (w**6 + k * w**2 + 3, True),
+        (w**4 + 1, False),
+        (w**2 - k**2, False),
+    ):
+        part = polynomial(expression, w)._value.re
+        assert is_irreducible(part) == proven
+
+
+@given(st.floats(-1e6, 1e6))
+def test_sines_and_cosines_to_32_digits(angle):
+    for name in ("sin", "cos"):
+        ((high, low),) = on_circle(name, [angle])
+        with mpmath.workdps(60):
+            exact = getattr(mpmath, name)(mpmath.mpf(angle))
+            assert high == float(exact)
+            assert abs(exact - mpmath.mpf(high) - mpmath.mpf(low)) <= 1e-31 * abs(exact)

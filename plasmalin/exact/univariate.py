@@ -62,11 +62,11 @@ def _bits(digits: int) -> int:
 
 def _centre(z: Any) -> tuple[Fraction, Fraction, Fraction]:
     re, im = z.real, z.imag
-    radius = _fraction(re.rad()) + _fraction(im.rad())
-    return _fraction(re.mid()), _fraction(im.mid()), radius
+    radius = fraction(re.rad()) + fraction(im.rad())
+    return fraction(re.mid()), fraction(im.mid()), radius
 
 
-def _fraction(exact: Any) -> Fraction:
+def fraction(exact: Any) -> Fraction:
     mantissa, exponent = exact.man_exp()
     return Fraction(int(mantissa)) * Fraction(
         2 ** max(int(exponent), 0), 2 ** max(-int(exponent), 0)
@@ -128,7 +128,9 @@ def _simple_roots(
     try:
         while bits < 100_000:
             flint.ctx.prec = bits
-            poly = flint.acb_poly([flint.acb(_arb(re), _arb(im)) for re, im in coefficients])
+            poly = flint.acb_poly(
+                [flint.acb(real_ball(re), real_ball(im)) for re, im in coefficients]
+            )
             boxes = _isolated(poly)
             found = [_refined(poly, boxes, i, digits) for i in range(len(boxes))]
             if len(found) == len(coefficients) - 1 and all(found):
@@ -163,8 +165,8 @@ def _refined(
         distance = poly.degree() * abs(step)
         if not distance.is_finite():
             return None
-        reach = _fraction(distance.upper().mid()) + _fraction(distance.rad())
-        centre = _fraction(z.real.mid()), _fraction(z.imag.mid())
+        reach = fraction(distance.upper().mid()) + fraction(distance.rad())
+        centre = fraction(z.real.mid()), fraction(z.imag.mid())
         if reach <= _wanted(centre, digits) and _meets_no_other(centre, reach, boxes, i):
             re, im = (x if abs(x) > reach else Fraction(0) for x in centre)
             return re, im, 3 * reach
@@ -184,10 +186,10 @@ def _meets_no_other(
 ) -> bool:
     def apart(box: Any) -> bool:
         sides = zip(centre, (box.real, box.imag), strict=True)
-        return any(abs(c - _fraction(x.mid())) > reach + _fraction(x.rad()) for c, x in sides)
+        return any(abs(c - fraction(x.mid())) > reach + fraction(x.rad()) for c, x in sides)
 
     return all(apart(box) for j, box in enumerate(boxes) if j != i)
 
 
-def _arb(x: Fraction) -> Any:
+def real_ball(x: Fraction) -> Any:
     return flint.arb(flint.fmpq(x.numerator, x.denominator))

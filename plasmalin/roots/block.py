@@ -15,12 +15,14 @@ from .scaling import Scaled, Table, scaled
 from .sheets import UNKNOWN, Sheet, from_nothing, proven
 from .solved import Solved, Status
 
-NEAR, FAR = 0.2, 0.8
+NEAR, FAR = 0.02, 0.8
 """Logarithmic distance between nodes: where one step should do, and where several may be needed."""
+DENSE = 4
+"""Points from node to node that make near nodes worth while."""
 ALONE = 48
 """So few points are solved from nothing."""
-WORK = 12288
-"""Numbers in one work array, so that a batch stays in cache."""
+WORK = 24576
+"""Numbers in one work array: enough to outweigh the cost of a call, few enough to stay near in cache."""
 COLD = 256
 """Points solved from nothing at a time."""
 
@@ -34,7 +36,7 @@ def solve_block(table: Table, columns: Columns, points: NDArray[np.int64], made:
     """
     near = scaled(table, columns)
     if near is not None:
-        for chosen, sheet in _sheets(near, table.degree, NEAR):
+        for chosen, sheet in _sheets(near, table.degree, True):
             made.put(points[chosen], in_omega(sheet, table.structure, near.unknown))
     elif len(points) == 1:
         made.state[points] = Status.NOT_CERTIFIED
@@ -45,7 +47,7 @@ def solve_block(table: Table, columns: Columns, points: NDArray[np.int64], made:
             solve_block(table, half, points[part], made)
 
 
-def _sheets(near: Scaled, degree: int, reach: float) -> Iterator[tuple[NDArray[np.int64], Sheet]]:
+def _sheets(near: Scaled, degree: int, dense: bool) -> Iterator[tuple[NDArray[np.int64], Sheet]]:
     """Batch by batch the points and their roots; what cannot be carried comes again at the end, from nothing.
 
     The nodes of the path are solved the same way, along a path of their own: on a grid of two quantities that one
@@ -54,13 +56,16 @@ def _sheets(near: Scaled, degree: int, reach: float) -> Iterator[tuple[NDArray[n
     points = len(near.columns[0][0])
     path = path_of(near.columns)
     ordered = near.along(path)
-    stride = path.stride(reach) if points > ALONE else 1
+    stride = path.stride(NEAR) if dense else 1
+    rough = stride < DENSE
+    if rough:
+        stride = path.stride(FAR)
     rest = [np.arange(points)]
-    if stride > 1:
+    if stride > 1 and points > ALONE:
         carrier = _carrier(ordered, path, path.nodes(stride), degree)
         rest.clear()
         for chosen in _batches(np.arange(points), max(64, WORK // degree)):
-            sheet = proven(coefficients(ordered, degree, chosen), carrier.starts(chosen))
+            sheet = proven(coefficients(ordered, degree, chosen), carrier.starts(chosen), rough)
             known = sheet.real != UNKNOWN
             rest.append(chosen[~known])
             if known.all():
@@ -77,6 +82,6 @@ def _batches(points: NDArray[np.int64], size: int) -> Iterator[NDArray[np.int64]
 
 def _carrier(ordered: Scaled, path: Path, nodes: NDArray[np.int64], degree: int) -> Carrier:
     sheet = Sheet.unknown(degree, len(nodes))
-    for chosen, part in _sheets(ordered.at(nodes), degree, FAR):
+    for chosen, part in _sheets(ordered.at(nodes), degree, False):
         sheet.copy_from(part, chosen)
-    return Carrier.of(ordered, path, nodes, coefficients(ordered, degree, nodes), sheet)
+    return Carrier.of(ordered, path, nodes, sheet)

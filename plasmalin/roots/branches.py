@@ -10,17 +10,18 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 from numpy.typing import NDArray
-from sympy import Symbol
 
 from ..errors import DeclarationError, ValuesError
 from ..exact.polynomial import ExactPolynomial
 from .enclose import ZERO, Enclosure, enclose
+from .family import Family
 from .labels import branch_labels
+from .meetings import placed
 from .polarization import null_vectors
 from .slopes import ScaledFamily
 from .solve import Problem, grid_of, pose, rates_of
 from .tracking import Event, track
-from .values import Numbers, gather, scaled, to_si, with_defaults
+from .values import Numbers, gather, left_out, scaled, to_si, with_defaults
 
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
@@ -47,7 +48,8 @@ class Branches:
     polynomials : tuple of ExactPolynomial
         These factors, with the fixed numbers put in.
     events : tuple of Event
-        Where branches of one factor meet.
+        Where branches of one factor meet, in order, the place with a proven radius where what varies enters the factor
+        as it is.
     """
 
     wave: WaveMatrix
@@ -84,13 +86,10 @@ class Branches:
     @cached_property
     def wave_number(self) -> NDArray[Any]:
         """|k| along the sweep, rad/m, shape (n,)."""
-        from sympy import Add, lambdify, sqrt
+        from sympy import Add, sqrt
 
-        square = Add(*(c**2 for c in self.wave.k))
-        symbols = sorted(square.free_symbols, key=str)
-        columns = (self.numbers.doubles(s) for s in symbols)
-        value = lambdify(symbols, sqrt(square), "numpy")(*columns)
-        return np.broadcast_to(np.asarray(value), self.along.shape)
+        value = self.numbers.value(sqrt(Add(*(c**2 for c in self.wave.k))))
+        return np.broadcast_to(value, self.along.shape)
 
     @property
     def phase_velocity(self) -> NDArray[np.float64]:
@@ -216,9 +215,7 @@ def find_branches(
 ) -> Branches:
     """All branches; see `WaveMatrix.branches`."""
     zero_modes = bool(waves.pop("zero_modes", False))
-    given = {key.name if isinstance(key, Symbol) else key for key in values} | set(waves)
-    if name in given:
-        raise ValuesError(f"'{name}' is what varies; leave it out of the other values")
+    left_out((name,), values, waves)
     number, factor = to_si(wave, name, along)
     points = scaled(np.asarray(number, dtype=float), factor)
     if points.ndim != 1 or not len(points):
@@ -230,7 +227,7 @@ def find_branches(
         raise ValuesError(
             "only one quantity varies along branches; give single numbers for the others"
         )
-    found = _Sweep(wave, pose(wave, numbers), numbers, name).branches(points, zero_modes)
+    found = Sweep(wave, pose(wave, numbers), numbers, name).branches(points, zero_modes)
     unit = wave.linear.units.get(name)
     if unit is None or unit.scale == 1:
         return found
@@ -239,12 +236,9 @@ def find_branches(
 
 def _in_unit(branches: Branches, along: NDArray[np.float64], scale: Fraction) -> Branches:
     """What varies, and the slopes along it, in a unit that is `scale` SI units."""
-    return replace(
-        branches,
-        along=along,
-        slope=branches.slope * float(scale),
-        events=tuple(replace(e, at=e.at / float(scale)) for e in branches.events),
-    )
+    size = float(scale)
+    events = (replace(e, at=e.at / size, radius=e.radius / size) for e in branches.events)
+    return replace(branches, along=along, slope=branches.slope * size, events=tuple(events))
 
 
 def _complex_scalars(numbers: Numbers, name: str) -> int:
@@ -252,7 +246,7 @@ def _complex_scalars(numbers: Numbers, name: str) -> int:
     return sum(s.name != name and bool((a == a.flat[0]).all()) for s, a in numbers.swept.items())
 
 
-class _Sweep:
+class Sweep:
     """Solves and tracks every factor along one quantity."""
 
     def __init__(self, wave: WaveMatrix, problem: Problem, numbers: Numbers, name: str) -> None:
@@ -291,28 +285,36 @@ class _Sweep:
         omega[:, ~np.isfinite(points)], radius[:, ~np.isfinite(points)] = np.nan, np.inf
         return Branches(
             self.wave, self.numbers, self.name, points, omega, radius, status, slope,
-            tuple(factor[b] for b in first), tuple(events), tracks[0].method,
-            self.problem.polynomials,
+            tuple(factor[b] for b in first), tuple(sorted(events, key=lambda e: e.at)),
+            tracks[0].method, self.problem.polynomials,
         )  # fmt: skip
 
-    def _factor(self, family: Any, s: NDArray[np.float64]) -> tuple[Enclosure, Any, list[Event]]:
+    def _factor(self, family: Family, s: NDArray[np.float64]) -> tuple[Enclosure, Any, list[Event]]:
         found = self._enclosed(family, s)
-        scaled = ScaledFamily(
-            family, found.omega, [hi for hi, _ in grid_of(self.problem, self.at(s))]
-        )
-
-        def slopes(omega: NDArray[Any], points: NDArray[np.float64]) -> NDArray[Any]:
-            numbers = self.at(points)
-            grid = [hi for hi, _ in grid_of(self.problem, numbers)]
-            return scaled.slope(omega, grid, rates_of(self.problem, numbers, self.symbol))
-
-        def solve(points: NDArray[np.float64]) -> tuple[NDArray[Any], NDArray[Any]]:
-            omega = self._enclosed(family, points).omega
-            return omega, slopes(omega, points)
-
-        slope = slopes(found.omega, s)
-        order, events = track(solve, s, found.omega, slope)
+        order, slope, events = self.tracked(family, s, found.omega)
+        if events and self.problem.generators == (self.symbol,):
+            largest = float(np.abs(found.omega[np.isfinite(found.omega)]).max())
+            events = placed(family, events, (largest, float(np.abs(s).max())))
         return found.reordered(order), np.take_along_axis(slope, order, axis=1), events
 
-    def _enclosed(self, family: Any, s: NDArray[np.float64]) -> Enclosure:
+    def tracked(
+        self, family: Family, s: NDArray[np.float64], omega: NDArray[np.complex128]
+    ) -> tuple[NDArray[np.int64], NDArray[np.complex128], list[Event]]:
+        """The roots of every branch, the slopes of the roots, and where branches meet."""
+        scaled = ScaledFamily(family, omega, [hi for hi, _ in grid_of(self.problem, self.at(s))])
+
+        def slopes(roots: NDArray[Any], points: NDArray[np.float64]) -> NDArray[Any]:
+            numbers = self.at(points)
+            grid = [hi for hi, _ in grid_of(self.problem, numbers)]
+            return scaled.slope(roots, grid, rates_of(self.problem, numbers, self.symbol))
+
+        def solve(points: NDArray[np.float64]) -> tuple[NDArray[Any], NDArray[Any]]:
+            between = self._enclosed(family, points).omega
+            return between, slopes(between, points)
+
+        slope = slopes(omega, s)
+        order, events = track(solve, s, omega, slope)
+        return order, slope, events
+
+    def _enclosed(self, family: Family, s: NDArray[np.float64]) -> Enclosure:
         return enclose(family, grid_of(self.problem, self.at(s)), points=len(s))

@@ -1,4 +1,8 @@
-"""Roots carried along a path: cubic Hermite interpolation between solved nodes gives starts for the points between."""
+"""Roots carried along a path: Hermite interpolation between solved nodes gives starts for the points between.
+
+Values and slopes at the two nodes about a point and at one more give a quintic; where there is no third one that
+belongs to the same roots, a cubic.
+"""
 
 from __future__ import annotations
 
@@ -8,13 +12,10 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from .coefficients import Coefficients
 from .doubledouble import Array
 from .path import Path
 from .scaling import Scaled
 from .sheets import UNKNOWN, Sheet
-
-Complex = NDArray[np.complex128]
 
 
 @dataclass(frozen=True)
@@ -26,14 +27,13 @@ class Carrier:
     nodes: NDArray[np.int64]
     sheet: Sheet
     mirrored: bool
-    slopes: Complex
+    slopes: NDArray[Any]
 
     @classmethod
-    def of(
-        cls, scaled: Scaled, path: Path, nodes: NDArray[np.int64], c: Coefficients, sheet: Sheet
-    ) -> Carrier:
-        slopes = _slopes(scaled, c, nodes, sheet.re + 1j * sheet.im)
-        return cls(scaled, path, nodes, sheet, c.high_imag is None, slopes)
+    def of(cls, scaled: Scaled, path: Path, nodes: NDArray[np.int64], sheet: Sheet) -> Carrier:
+        slopes = _slopes(scaled, nodes, sheet.re + 1j * sheet.im if sheet.im.any() else sheet.re)
+        mirrored = scaled.high.shape[1] == len(sheet.re) + 1
+        return cls(scaled, path, nodes, sheet, mirrored, slopes)
 
     def starts(self, points: NDArray[np.int64]) -> Sheet:
         """Roots at some points of the path; UNKNOWN where the ends of an interval are not alike."""
@@ -44,15 +44,22 @@ class Carrier:
         interval = np.clip(np.searchsorted(nodes, points, side="right") - 1, 0, len(nodes) - 2)
         alike = (known[:-1] == known[1:]) & ~self.path.breaks[nodes[1:]]
         made.real[:] = np.where(alike, known[:-1], UNKNOWN)[interval]
-        for real in np.unique(made.real[made.real != UNKNOWN]).tolist():
+        for real in made.kinds:
             chosen = np.flatnonzero(made.real == real)
             first, last = interval[chosen[0]], interval[chosen[-1]]
             spans, span = np.arange(first, last + 1), interval[chosen] - first
             left, right = s[nodes[spans]], s[nodes[spans + 1]]
             length = np.where(right > left, right - left, 1.0)
             t = (s[points[chosen]] - left[span]) / length[span]
-            _fill(made, chosen, real, _values(_cubic(self, real, spans), span, t))
+            curve = _quintic(self, real, spans, self._third(spans, alike), length)
+            _fill(made, chosen, real, _values(curve, span, t))
         return made
+
+    def _third(self, spans: NDArray[np.int64], alike: NDArray[np.bool_]) -> NDArray[np.int64]:
+        """For each interval a node beside it with the same kinds of roots; its own left end if there is none."""
+        before = alike[np.maximum(spans - 1, 0)] & (spans > 0)
+        after = alike[np.minimum(spans + 1, len(alike) - 1)] & (spans + 1 < len(alike))
+        return np.where(before, spans - 1, np.where(after, spans + 2, spans))
 
 
 def _rows(degree: int, real: int, mirrored: bool) -> int:
@@ -60,80 +67,107 @@ def _rows(degree: int, real: int, mirrored: bool) -> int:
     return real + (degree - real) // 2 if mirrored else degree
 
 
-def _slopes(scaled: Scaled, c: Coefficients, nodes: NDArray[np.int64], z: Complex) -> Complex:
-    """d root / d quantity = -p_g / p_z, shape (G, degree, nodes)."""
-    columns = [hi[nodes] for hi, _ in scaled.columns]
+def _slopes(scaled: Scaled, nodes: NDArray[np.int64], z: NDArray[Any]) -> NDArray[Any]:
+    """d root / d quantity = -p_g / p_z in working precision, shape (G, degree, nodes)."""
     powers = [
-        _power_table(x, int(e)) for x, e in zip(columns, scaled.exponents.max(axis=0), strict=True)
+        _power_table(hi[nodes], e)
+        for (hi, _), e in zip(scaled.columns, scaled.exponents.T, strict=True)
     ]
-    plain = c.plain
-    slope = np.zeros_like(z)
-    for j in range(c.degree, 0, -1):
+    plain = _polynomials(scaled, np.prod([part for part, _ in powers], axis=0), len(z))
+    kind = np.result_type(plain, z)
+    slope = np.zeros(z.shape, kind)
+    for j in range(len(z), 0, -1):
         slope = slope * z + j * plain[j]
-    rates = np.empty((len(columns), *z.shape), np.complex128)
-    for i in range(len(columns)):
-        rate = _rate(scaled, powers, i, c.degree)
-        value = np.zeros_like(z)
-        for row in rate[::-1]:
+    rates = np.empty((len(powers), *z.shape), kind)
+    for i in range(len(powers)):
+        factors = [rate if i == place else part for place, (part, rate) in enumerate(powers)]
+        value = np.zeros(z.shape, kind)
+        for row in _polynomials(scaled, np.prod(factors, axis=0), len(z))[::-1]:
             value = value * z + row
         rates[i] = -value / slope
     return rates
 
 
-def _power_table(x: Array, highest: int) -> Array:
-    table = np.ones((highest + 1, len(x)))
-    for n in range(highest):
+def _power_table(x: Array, exponents: NDArray[np.int64]) -> tuple[Array, Array]:
+    """x to all exponents, and the derivatives, shape (terms, nodes) each."""
+    table = np.ones((int(exponents.max()) + 1, len(x)))
+    for n in range(len(table) - 1):
         np.multiply(table[n], x, out=table[n + 1])
-    return table
+    return table[exponents], exponents[:, None] * table[np.maximum(exponents - 1, 0)]
 
 
-def _rate(scaled: Scaled, powers: list[Array], place: int, degree: int) -> Complex:
-    """The derivative of all coefficients by one quantity, shape (degree + 1, nodes)."""
-    rate = np.zeros((scaled.high.shape[1], powers[place].shape[1]))
-    for row, high in zip(scaled.exponents, scaled.high, strict=True):
-        if row[place]:
-            term = float(row[place]) * powers[place][row[place] - 1]
-            for i, e in enumerate(row):
-                if i != place:
-                    term = term * powers[i][e]
-            rate += high[:, None] * term
-    parts = rate.reshape(-1, degree + 1, rate.shape[1])
-    return np.asarray(parts[0] + (1j * parts[1] if len(parts) > 1 else 0.0))
+def _polynomials(scaled: Scaled, monomials: Array, degree: int) -> NDArray[Any]:
+    """The sums of terms for every power of the unknown, shape (degree + 1, nodes)."""
+    # Not by BLAS, whose sums may depend on the number of threads.
+    sums = np.einsum("tj,tn->jn", scaled.high, monomials)
+    parts = sums.reshape(-1, degree + 1, monomials.shape[1])
+    return np.asarray(parts[0] + 1j * parts[1] if len(parts) > 1 else parts[0])
 
 
-def _cubic(carrier: Carrier, real: int, spans: NDArray[np.int64]) -> list[Any]:
-    """Coefficients in t of the Hermite cubics over some intervals, each of shape (rows, spans)."""
-    sheet, nodes = carrier.sheet, carrier.nodes
-    rows = _rows(len(sheet.re), real, carrier.mirrored)
+def _quintic(
+    carrier: Carrier,
+    real: int,
+    spans: NDArray[np.int64],
+    third: NDArray[np.int64],
+    length: Array,
+) -> list[Any]:
+    """Coefficients in t, 0 to 1 over each of some intervals, each of shape (rows, spans)."""
+    nodes, s = carrier.nodes, carrier.path.s
+    rows = _rows(len(carrier.sheet.re), real, carrier.mirrored)
     change = [hi[nodes[spans + 1]] - hi[nodes[spans]] for hi, _ in carrier.scaled.columns]
-    values, rates = [], []
-    for end in (spans, spans + 1):
-        values.append(sheet.re[:rows, end] + 1j * sheet.im[:rows, end])
-        rates.append(sum(d * s[:rows, end] for d, s in zip(change, carrier.slopes, strict=True)))
+    ends = [_end(carrier, rows, real, node, change) for node in (spans, spans + 1, third)]
+    place = (s[nodes[third]] - s[nodes[spans]]) / length
     if rows - real > 1:
-        follow = _followers(real, values, rates)
-        values[1], rates[1] = (np.take_along_axis(a, follow, axis=0) for a in (values[1], rates[1]))
+        for other, where in ((1, 1.0), (2, place)):
+            follow = _followers(real, ends[0], ends[other], where)
+            ends[other] = tuple(np.take_along_axis(a, follow, axis=0) for a in ends[other])
+    return _through(ends, place)
+
+
+def _end(
+    carrier: Carrier, rows: int, real: int, node: NDArray[np.int64], change: list[Array]
+) -> Any:
+    """Roots and their slopes in t at some nodes, as real numbers where all of them are."""
+    sheet = carrier.sheet
+    value: Any = sheet.re[:rows].take(node, axis=1)
+    rate: Any = 0.0
+    for d, slopes in zip(change, carrier.slopes, strict=True):
+        rate = rate + d * slopes[:rows].take(node, axis=1)
     if rows == real:
-        values, rates = [v.real for v in values], [r.real for r in rates]
-    jump = values[1] - values[0]
-    return [values[0], rates[0], 3 * jump - 2 * rates[0] - rates[1], rates[0] + rates[1] - 2 * jump]
+        return value, rate.real
+    return value + 1j * sheet.im[:rows].take(node, axis=1), rate
 
 
-def _followers(real: int, values: list[Any], rates: list[Any]) -> NDArray[np.int64]:
-    """For every row at the left end its row at the right one: real roots by order, others by extrapolation."""
-    follow = np.broadcast_to(np.arange(len(values[0]))[:, None], values[0].shape).copy()
-    left, right = (
-        v[real:] + 0.5 * sign * r[real:] for v, r, sign in zip(values, rates, (1, -1), strict=True)
-    )
-    follow[real:] = real + np.abs(left[:, None] - right[None, :]).argmin(axis=1)
+def _through(ends: list[Any], place: Array) -> list[Any]:
+    """The cubic through both ends, then t^2 (t - 1)^2 (a + b t) so that it meets the third node at `place`."""
+    (value, rate), (right, right_rate), (other, other_rate) = ends
+    jump = right - value
+    cubic = [value, rate, 3 * jump - 2 * rate - right_rate, rate + right_rate - 2 * jump]
+    lone = place == 0
+    t = np.where(lone, -1.0, place)
+    weight, weight_rate = (t * (t - 1)) ** 2, 2 * t * (t - 1) * (2 * t - 1)
+    off = other - (value + t * (rate + t * (cubic[2] + t * cubic[3])))
+    off_rate = other_rate - (rate + t * (2 * cubic[2] + 3 * t * cubic[3]))
+    factor = off / weight
+    b = np.where(lone, 0.0, (off_rate - weight_rate * factor) / weight)
+    a = np.where(lone, 0.0, factor - b * t)
+    return [cubic[0], cubic[1], cubic[2] + a, cubic[3] + b - 2 * a, a - 2 * b, b]
+
+
+def _followers(real: int, left: Any, right: Any, place: float | Array) -> NDArray[np.int64]:
+    """For every row at the left end its row at `place`: real roots by order, others by extrapolation halfway."""
+    follow = np.broadcast_to(np.arange(len(left[0]))[:, None], left[0].shape).copy()
+    ahead = left[0][real:] + 0.5 * place * left[1][real:]
+    back = right[0][real:] - 0.5 * place * right[1][real:]
+    follow[real:] = real + np.abs(ahead[:, None] - back[None, :]).argmin(axis=1)
     return follow
 
 
-def _values(cubic: list[Any], span: NDArray[np.int64], t: Array) -> NDArray[Any]:
-    value: NDArray[Any] = cubic[3][:, span]
-    for part in cubic[2::-1]:
+def _values(curve: list[Any], span: NDArray[np.int64], t: Array) -> NDArray[Any]:
+    value: NDArray[Any] = curve[-1].take(span, axis=1)
+    for part in curve[-2::-1]:
         value *= t
-        value += part[:, span]
+        value += part.take(span, axis=1)
     return value
 
 

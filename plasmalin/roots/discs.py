@@ -22,6 +22,10 @@ from .doubledouble import UNIT, Array, complex_horner, complex_noise, horner, re
 
 FAIR, SHARP = 2.0**-53, 2.0**-56
 """Radii relative to a root that are good enough, and that leave it right to the last digit."""
+LEAST = 1.25
+"""A radius of so many times what the error of the coefficients makes it cannot become much smaller."""
+ROUGH_STEPS, SHORT = 2, 2.0**-20
+"""Steps in working precision at most, and the relative length of one after which they end."""
 SMALLEST_PART = 2.0**-24
 """Real and imaginary part are made right one by one down to this share of the root."""
 LEADING = 2.0**-150, 2.0**200
@@ -68,26 +72,29 @@ def spread(guess: Guess) -> Spread:
     """All differences, each taken once."""
     x, z = guess.x, guess.z
     product, z_product = np.ones_like(x), np.ones_like(z)
-    for i in range(len(x)):
-        for j in range(i + 1, len(x)):
-            difference = x[i] - x[j]
-            product[i] *= difference
-            product[j] *= difference
+    for i in range(len(x) - 1):
+        difference = x[i] - x[i + 1 :]
+        _share(product, i, difference, difference)
     np.negative(product[1::2], out=product[1::2])
     gap, z_square = _neighbors(x), np.full(z.shape, np.inf)
     for i in range(len(z)):
-        _against_real(i, guess, product, z_product, gap, z_square)
-        for j in range(i + 1, len(z)):
-            difference = z[i] - z[j]
-            z_product[i] *= difference
-            z_product[j] *= -difference
-            _nearest(z_square, (i, j), difference)
-            if guess.mirrored:
-                difference = z[i] - z[j].conj()
-                z_product[i] *= difference
-                z_product[j] *= -difference.conj()
-                _nearest(z_square, (i, j), difference)
+        if guess.mirrored:
+            _against_real(i, guess, product, z_product, gap, z_square)
+        difference = z[i] - z[i + 1 :]
+        _apart(z_product, z_square, i, difference, difference)
+        if guess.mirrored:
+            # Up to its sign z_j - conj(z_i) is the conjugate of z_i - conj(z_j).
+            difference = z[i] - z[i + 1 :].conj()
+            _apart(z_product, z_square, i, difference, difference.conj())
+    if not guess.mirrored:
+        np.negative(z_product[1::2], out=z_product[1::2])
     return Spread(product, z_product, gap, np.sqrt(z_square))
+
+
+def _share(product: NDArray[Any], i: int, mine: NDArray[Any], theirs: NDArray[Any]) -> None:
+    """The differences of root i to the later ones multiplied into both products, the signs of theirs left out."""
+    product[i] *= mine.prod(axis=0)
+    product[i + 1 :] *= theirs
 
 
 def _neighbors(x: Array) -> Array:
@@ -109,31 +116,43 @@ def _against_real(
     z_square: Array,
 ) -> None:
     """The differences of z_i to all real roots and to its own mirror image."""
-    if not guess.mirrored:
-        return
     z = guess.z[i]
     z_product[i] *= 2j * z.imag
     np.minimum(z_square[i], 4 * z.imag**2, out=z_square[i])
-    for j in range(len(guess.x)):
-        difference = z - guess.x[j]
-        square = difference.real**2 + difference.imag**2
-        z_product[i] *= difference
-        product[j] *= square
-        np.minimum(gap[j], np.sqrt(square), out=gap[j])
-        np.minimum(z_square[i], square, out=z_square[i])
+    if len(guess.x):
+        difference = z - guess.x
+        square = _square(difference)
+        z_product[i] *= difference.prod(axis=0)
+        product *= square
+        np.minimum(gap, np.sqrt(square), out=gap)
+        np.minimum(z_square[i], square.min(axis=0), out=z_square[i])
 
 
-def _nearest(z_square: Array, pair: tuple[int, int], difference: NDArray[np.complex128]) -> None:
-    square = difference.real**2 + difference.imag**2
-    for i in pair:
-        np.minimum(z_square[i], square, out=z_square[i])
+def _apart(
+    product: NDArray[np.complex128],
+    nearest: Array,
+    i: int,
+    mine: NDArray[np.complex128],
+    theirs: NDArray[np.complex128],
+) -> None:
+    """The same for z_i and the later ones, with the squares of the distances."""
+    if len(mine):
+        square = _square(mine)
+        np.minimum(nearest[i], square.min(axis=0), out=nearest[i])
+        np.minimum(nearest[i + 1 :], square, out=nearest[i + 1 :])
+        _share(product, i, mine, theirs)
+
+
+def _square(z: NDArray[np.complex128]) -> Array:
+    return np.asarray(z.real**2 + z.imag**2)
 
 
 @dataclass(frozen=True)
 class Discs:
     """Steps, radii about ``guess - step``, and for every point whether one root lies in every disc.
 
-    `fair` discs are small against the root, `sharp` ones against its real and its imaginary part.
+    `fair` discs are small against the root; `sharp` ones against its real and its imaginary part, or as small as
+    the error of the coefficients lets them be.
     """
 
     x_step: Array
@@ -175,7 +194,9 @@ def discs(c: Coefficients, guess: Guess) -> Discs:
     x_radius, z_radius = second * x_large + x_doubt, second * z_large + z_doubt
     x, z = guess.x - x_step, guess.z - z_step
     fair = proven & _within(x_radius, FAIR * np.abs(x)) & _within(z_radius, FAIR * np.abs(z))
-    sharp = fair & _within(x_radius, SHARP * np.abs(x)) & _within(z_radius, SHARP * _part(z))
+    x_limit = np.maximum(SHARP * np.abs(x), LEAST * x_error / np.abs(x_bottom))
+    z_limit = np.maximum(SHARP * _part(z), LEAST * z_error / np.abs(z_bottom))
+    sharp = fair & _within(x_radius, x_limit) & _within(z_radius, z_limit)
     return Discs(x_step, z_step, x_radius, z_radius, fair, sharp)
 
 
@@ -242,20 +263,26 @@ def _part(z: NDArray[np.complex128]) -> Array:
     return np.asarray(np.maximum(part, SMALLEST_PART * np.abs(z)))
 
 
-def rough_step(c: Coefficients, guess: Guess) -> Guess:
-    """One simultaneous step in working precision, kept well inside the gaps."""
-    apart = spread(guess)
-    x = _stepped(c, guess.x, apart.x_product, apart.x_gap / (8 * guess.degree))
-    z = _stepped(c, guess.z, apart.z_product, apart.z_gap / (8 * guess.degree))
-    return Guess(x, z, guess.mirrored)
+def settled(c: Coefficients, guess: Guess) -> Guess:
+    """After simultaneous steps in working precision, kept well inside the gaps, until they are short."""
+    for _ in range(ROUGH_STEPS):
+        apart, longest = spread(guess), 1 / (8 * guess.degree)
+        x, x_step = _stepped(c, guess.x, apart.x_product, apart.x_gap * longest)
+        z, z_step = _stepped(c, guess.z, apart.z_product, apart.z_gap * longest)
+        guess = Guess(x, z, guess.mirrored)
+        if all((s <= SHORT * np.abs(r)).all() for s, r in ((x_step, x), (z_step, z))):
+            break
+    return guess
 
 
 def _stepped(c: Coefficients, z: NDArray[Any], product: NDArray[Any], longest: Array) -> Any:
+    """The next numbers, and how far they are."""
     if not len(z):
-        return z
+        return z, z.real
     step = _plain(c, z) / (c.plain[-1] * product)
     length = np.abs(step)
-    return z - np.where(length <= longest, step, step * (longest / length))
+    step = np.where(length <= longest, step, step * (longest / length))
+    return z - step, np.abs(step)
 
 
 def _plain(c: Coefficients, z: NDArray[Any]) -> NDArray[Any]:

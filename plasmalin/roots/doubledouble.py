@@ -102,26 +102,45 @@ def _sum_error(a: Array, b: Any, total: Array, out: Array, work: Array) -> None:
 
 
 def horner(
-    coefficients: Sequence[Pair], x: Array, shape: tuple[int, ...], x_low: Array | None = None
+    coefficients: Sequence[Pair],
+    x: Array,
+    shape: tuple[int, ...],
+    x_low: Array | None = None,
+    reached: Sequence[slice] | None = None,
 ) -> tuple[Array, Array]:
-    """sum_j c_j x^j, highest power first, coefficients and x broadcast to one shape."""
-    value, low, product, error, work, high, rest = (np.empty(shape) for _ in range(7))
-    halves = split(x)
-    value[...], low[...] = coefficients[0]
-    for c, c_low in coefficients[1:]:
-        np.multiply(value, x, out=product)
-        _cut(value, high, rest)
-        _product_error((high, rest), halves, product, error, work)
-        low *= x
-        low += error
-        if x_low is not None:
-            np.multiply(value, x_low, out=work)
-            low += work
-        np.add(product, c, out=value)
-        _sum_error(product, c, value, error, work)
-        low += error
-        low += c_low
+    """sum_j c_j x^j, highest power first, coefficients and x broadcast to one shape.
+
+    Where many leading coefficients are zero, `reached` names the rows that a step has to take and the coefficients
+    hold these rows alone; every slice holds the one before, and the result is the same.
+    """
+    reached = reached or [slice(None)] * len(coefficients)
+    value, low = np.zeros(shape), np.zeros(shape)
+    work = [np.empty(shape) for _ in range(5)]
+    parts = [np.broadcast_to(part, shape) for part in (x, *split(x))]
+    if x_low is not None:
+        parts.append(np.broadcast_to(x_low, shape))
+    value[reached[0]], low[reached[0]] = coefficients[0]
+    for rows, pair in zip(reached[1:], coefficients[1:], strict=True):
+        here = [part[rows] for part in parts]
+        _step(value[rows], low[rows], pair, here, [w[rows] for w in work])
     return value, low
+
+
+def _step(value: Array, low: Array, coefficient: Pair, x: list[Array], space: list[Array]) -> None:
+    """value = value * x + coefficient, the errors in `low`; x with its halves and, if it has one, its low part."""
+    product, error, work, high, rest = space
+    np.multiply(value, x[0], out=product)
+    _cut(value, high, rest)
+    _product_error((high, rest), (x[1], x[2]), product, error, work)
+    low *= x[0]
+    low += error
+    if len(x) > 3:
+        np.multiply(value, x[3], out=work)
+        low += work
+    np.add(product, coefficient[0], out=value)
+    _sum_error(product, coefficient[0], value, error, work)
+    low += error
+    low += coefficient[1]
 
 
 def complex_horner(

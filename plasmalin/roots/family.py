@@ -18,7 +18,7 @@ Exact = tuple[Fraction, Fraction]
 """An exact complex number."""
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Family:
     """p(omega; g_1 ... g_G) = sum_t c_t omega^e_t0 prod_i g_i^e_ti.
 

@@ -86,8 +86,9 @@ def _assembled(parts: Parts, scale: float, sheet: Sheet, zeros: int, in_order: b
     made = Solved.empty(points, zeros + roots)
     place = slice(zeros, None)
     made.omega[:, :zeros] = 0.0
-    # Adding zero turns -0.0 into 0.0.
-    made.omega.real[:, place], made.omega.imag[:, place] = (scale * p.T + 0.0 for p in parts[:2])
+    for part, into in ((parts.re, made.omega.real), (parts.im, made.omega.imag)):
+        np.multiply(part.T, scale, out=into[:, place])
+        np.add(into, 0.0, out=into)  # turns -0.0 into 0.0
     grown = scale * (1 + 16 * UNIT)
     total = parts.re_error if in_order else np.hypot(parts.re_error, parts.im_error)
     made.radius[:, :zeros], made.radius[:, place] = 0.0, grown * total.T

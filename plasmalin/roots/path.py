@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 Columns: TypeAlias = list[tuple[NDArray[np.float64], NDArray[np.float64]]]
 """Real swept quantities over the points, high and low part."""
 
-FARTHEST = 16
+FARTHEST = 64
 """Points from node to node at most."""
 
 
@@ -56,7 +56,7 @@ class Path:
 def path_of(columns: Columns) -> Path:
     """Sorted by the quantities, those with the fewest values first."""
     points = len(columns[0][0])
-    counts = [len(np.unique(hi)) for hi, _ in columns]
+    counts = [len(np.unique(hi)) if len(columns) > 1 else points for hi, _ in columns]
     place = tuple(int(i) for i in np.argsort(counts, kind="stable"))
     order = np.lexsort([columns[i][0] for i in reversed(place)])
     s = np.arange(points, dtype=float)

@@ -9,6 +9,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass, replace
 from fractions import Fraction
+from functools import lru_cache
 from math import comb, gcd
 
 import numpy as np
@@ -96,7 +97,11 @@ def columns_of(grid: Grid) -> Columns:
 
 def table_of(family: Family, grid: Grid) -> Table:
     """The table that belongs to `columns_of(grid)`."""
-    complex_places = [i for i, (hi, _) in enumerate(grid) if np.iscomplexobj(hi)]
+    return _table(family, tuple(i for i, (hi, _) in enumerate(grid) if np.iscomplexobj(hi)))
+
+
+@lru_cache(maxsize=64)
+def _table(family: Family, complex_places: tuple[int, ...]) -> Table:
     structure = structure_of(family, not complex_places)
     degree = (family.degree - structure.lowest) // structure.step
     gathered: dict[tuple[int, ...], dict[int, Exact]] = {}
@@ -121,7 +126,7 @@ def table_of(family: Family, grid: Grid) -> Table:
 
 
 def _in_real_quantities(
-    exponents: list[int], c: Exact, complex_places: list[int]
+    exponents: list[int], c: Exact, complex_places: tuple[int, ...]
 ) -> list[tuple[tuple[int, ...], Exact]]:
     """The monomial with (x + i y)^n expanded at every complex place."""
     terms: list[tuple[tuple[int, ...], Exact]] = [((), c)]
@@ -182,7 +187,8 @@ def scaled(table: Table, columns: Columns) -> Scaled | None:
     """Scaled for these points; None where they span so much that doubles could overflow."""
     shifts = np.array([_middle(hi) for hi, _ in columns], np.int64)
     near = [
-        (np.ldexp(hi, -s), np.ldexp(lo, -s)) for (hi, lo), s in zip(columns, shifts, strict=True)
+        (hi * np.ldexp(1.0, -s), lo * np.ldexp(1.0, -s))
+        for (hi, lo), s in zip(columns, shifts, strict=True)
     ]
     binary = table.binary + (table.exponents @ shifts)[:, None]
     sizes = np.where(table.high != 0, binary, -(2**40)).max(axis=0)

@@ -9,11 +9,11 @@ import numpy as np
 from numpy.typing import NDArray
 
 from .coefficients import Coefficients
-from .discs import Discs, Guess, discs, rough_step
+from .discs import Discs, Guess, discs, settled
 from .doubledouble import Array
 from .starts import cold_starts
 
-ATTEMPTS = 24
+ATTEMPTS = 6
 PATIENCE = 3
 """After so many attempts discs that are fair but not sharp are taken."""
 NEARLY_REAL = 2.0**-30
@@ -53,7 +53,7 @@ class Sheet:
         z.real, z.imag = self.re[others, points], self.im[others, points]
         return Guess(self.re[:real, points], z, mirrored)
 
-    def put(self, points: NDArray[np.int64], guess: Guess, found: Discs) -> None:
+    def put(self, points: NDArray[np.int64] | slice, guess: Guess, found: Discs) -> None:
         """Store corrected roots with their radii."""
         x, z, real = guess.x - found.x_step, guess.z - found.z_step, len(guess.x)
         self.re[:real, points], self.im[:real, points] = x.real, 0.0
@@ -64,6 +64,11 @@ class Sheet:
                 self.re[rows, points], self.im[rows, points] = z.real, sign * z.imag
                 self.radius[rows, points] = found.z_radius
         self.real[points] = real
+
+    @property
+    def kinds(self) -> list[int]:
+        """The numbers of real roots that occur."""
+        return [int(n) for n in np.flatnonzero(np.bincount(self.real - UNKNOWN)[1:])]
 
     def at(self, points: NDArray[np.bool_]) -> Sheet:
         return Sheet(
@@ -78,10 +83,13 @@ class Sheet:
         self.real[points] = other.real
 
 
-def proven(c: Coefficients, start: Sheet) -> Sheet:
-    """The roots near the starts, with their discs; UNKNOWN where nothing is proven."""
+def proven(c: Coefficients, start: Sheet, rough: bool = False) -> Sheet:
+    """The roots near the starts, with their discs; UNKNOWN where nothing is proven.
+
+    Rough starts take steps in working precision first.
+    """
     made = Sheet.unknown(c.degree, c.points)
-    _prove(c, start, c.high_imag is None, made)
+    _prove(c, start, c.high_imag is None, made, rough)
     return made
 
 
@@ -101,27 +109,27 @@ def from_nothing(c: Coefficients) -> Sheet:
 def _without_symmetry(c: Coefficients, free: Sheet) -> Sheet:
     """Proven as if the coefficients were complex first, which tells close real roots from a pair."""
     apart = Sheet.unknown(c.degree, c.points)
-    _prove(c, free, False, apart)
+    _prove(c, free, False, apart, False)
     return proven(c, _canonical(apart))
 
 
-def _prove(c: Coefficients, start: Sheet, mirrored: bool, made: Sheet) -> None:
+def _prove(c: Coefficients, start: Sheet, mirrored: bool, made: Sheet, rough: bool) -> None:
     """Points with the same number of real roots go together."""
-    for real in np.unique(start.real[start.real != UNKNOWN]).tolist():
+    for real in start.kinds:
         points = np.flatnonzero(start.real == real)
         everything = len(points) == c.points
         guess = start.guess(real, mirrored, slice(None) if everything else points)
-        _polish(c if everything else c.at(points), guess, points, made)
+        here = c if everything else c.at(points)
+        _polish(here, settled(here, guess) if rough else guess, points, made)
 
 
 def _polish(c: Coefficients, guess: Guess, points: NDArray[np.int64], made: Sheet) -> None:
     """Steps until every disc is sharp; points that are done drop out."""
-    guess = rough_step(c, guess)
     for attempt in range(ATTEMPTS):
         found = discs(c, guess)
         done = found.sharp if attempt < PATIENCE else found.fair
         if done.all():
-            made.put(points, guess, found)
+            made.put(slice(None) if len(points) == len(made.real) else points, guess, found)
             return
         made.put(points[done], guess.at(done), found.at(done))
         guess = Guess(guess.x - found.x_step, guess.z - found.z_step, guess.mirrored)

@@ -6,7 +6,7 @@ Each irreducible factor is a `Family`: one polynomial in omega for every grid po
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from fractions import Fraction
 from functools import lru_cache
@@ -19,6 +19,7 @@ from numpy.typing import NDArray
 from sympy import Abs, Dummy, Expr, Rational, Symbol, cos, lambdify, sin, sqrt
 
 from ..errors import UndeterminedError
+from ..exact.circle import on_circle
 from ..exact.determinant import determinant
 from ..exact.polynomial import ExactPolynomial
 from .family import Family, Grid
@@ -68,8 +69,18 @@ def pose(wave: WaveMatrix, numbers: Numbers) -> Problem:
     UndeterminedError
         When the determinant vanishes identically, in general or for these numbers.
     """
+    return _posed(wave, frozenset(numbers.fixed.items()), frozenset(numbers.solved.items()))
+
+
+@lru_cache(maxsize=16)
+def _posed(
+    wave: WaveMatrix,
+    fixed: frozenset[tuple[Symbol, Fraction]],
+    solved: frozenset[tuple[Symbol, Expr]],
+) -> Problem:
+    """The same problem serves every grid, so the last few are kept."""
     degree, zero_modes = general_degree(wave)
-    fill = in_numbers(numbers)
+    fill = _filling(dict(fixed), dict(solved))
     filled = {ij: c for ij, e in wave.entries.items() if (c := fill(e)) != 0}
     whole = determinant(filled, len(wave.rows), wave.omega)
     if whole.degree < 0:
@@ -88,10 +99,16 @@ def pose(wave: WaveMatrix, numbers: Numbers) -> Problem:
 
 def in_numbers(numbers: Numbers) -> Callable[[Expr], Expr]:
     """What puts the fixed numbers in, sines and cosines of numbers as rationals on the unit circle."""
-    known = {s: Rational(v.numerator, v.denominator) for s, v in numbers.fixed.items()}
+    return _filling(numbers.fixed, numbers.solved)
+
+
+def _filling(
+    fixed: Mapping[Symbol, Fraction], solved: Mapping[Symbol, Expr]
+) -> Callable[[Expr], Expr]:
+    known = {s: Rational(v.numerator, v.denominator) for s, v in fixed.items()}
 
     def filled(entry: Expr) -> Expr:
-        made = (entry.subs(numbers.solved) if numbers.solved else entry).xreplace(known)
+        made = (entry.subs(solved) if solved else entry).xreplace(known)
         angles = {a for a in made.atoms(sin, cos) if not a.free_symbols}
         return made.xreplace({a: _on_circle(a) for a in angles}) if angles else made
 
@@ -113,6 +130,7 @@ def grid_of(problem: Problem, numbers: Numbers) -> Grid:
     return [_grid(g, numbers) for g in problem.generators]
 
 
+@lru_cache(maxsize=64)
 def general_degree(wave: WaveMatrix) -> tuple[int, int]:
     """The degree and the zero modes of the relation, from one random exact evaluation.
 
@@ -178,7 +196,21 @@ def _grid(generator: Expr, numbers: Numbers) -> tuple[NDArray[Any], NDArray[Any]
     if isinstance(generator, Symbol):
         hi = numbers.swept[generator].reshape(size)
         return hi, np.zeros_like(hi)
-    return _evaluated(generator, numbers, size)
+    values = _angle(generator, numbers)
+    if values is None:
+        return _evaluated(generator, numbers, size)
+    different, place = np.unique(values.reshape(size), return_inverse=True)
+    kind = "sin" if isinstance(generator, sin) else "cos"
+    parts = np.array(on_circle(kind, different.tolist())).reshape(-1, 2)
+    return parts[place, 0], parts[place, 1]
+
+
+def _angle(generator: Expr, numbers: Numbers) -> NDArray[np.float64] | None:
+    """The real angles of a sine or cosine of something swept."""
+    if isinstance(generator, sin | cos) and isinstance(generator.args[0], Symbol):
+        values = numbers.swept[generator.args[0]]
+        return None if np.iscomplexobj(values) else values
+    return None
 
 
 def _evaluated(generator: Expr, numbers: Numbers, size: int) -> tuple[NDArray[Any], NDArray[Any]]:
@@ -205,10 +237,8 @@ def rates_of(problem: Problem, numbers: Numbers, symbol: Symbol) -> list[NDArray
     size = int(np.prod(numbers.shape, dtype=np.int64))
     rates = []
     for generator in problem.generators:
-        slope = _loose_slope(generator, symbol)
-        symbols = sorted(slope.free_symbols, key=str)
-        value = lambdify(symbols, slope, "numpy")(*(numbers.doubles(s) for s in symbols))
-        rates.append(np.broadcast_to(np.asarray(value), numbers.shape).reshape(size))
+        value = numbers.value(_loose_slope(generator, symbol))
+        rates.append(np.broadcast_to(value, numbers.shape).reshape(size))
     return rates
 
 

@@ -1,10 +1,13 @@
-"""Numbers near all roots, for any polynomial: radii from the Newton polygon, then Ehrlich-Aberth iteration.
+"""Numbers near all roots, for any polynomial: eigenvalues of the companion matrix, then Ehrlich-Aberth iteration.
 
-Starting radii: Bini 1996, Numer. Algorithms 13, 179; the iteration: Aberth 1973, Math. Comp. 27, 339 (from memory).
-Working precision only: what follows proves or rejects the result.
+Where roots span so much that eigenvalues lose the small ones, which their sizes from the Newton polygon tell, the
+iteration starts from these sizes in all directions. Starting radii: Bini 1996, Numer. Algorithms 13, 179; the iteration:
+Aberth 1973, Math. Comp. 27, 339 (from memory). Working precision only: what follows proves or rejects the result.
 """
 
 from __future__ import annotations
+
+from contextlib import suppress
 
 import numpy as np
 from numpy.typing import NDArray
@@ -15,6 +18,10 @@ from .doubledouble import UNIT, Array
 GOLDEN = np.pi * (3 - np.sqrt(5))
 """Turns by this angle spread any number of directions evenly."""
 SWEEPS = 60
+LIKELY = 2.0**8
+"""Sizes of eigenvalues and those from the polygon agree to this factor, or the eigenvalues are not taken."""
+ASIDE = 2.0**-20
+"""So far eigenvalues are moved in all directions: real ones could not leave the axis, equal ones not part."""
 
 Complex = NDArray[np.complex128]
 
@@ -27,22 +34,44 @@ def cold_starts(c: Coefficients) -> Complex:
 def _polygon_radii(c: Complex) -> Array:
     """Sizes of the roots: slopes of the least concave majorant of log2 |c_j|, shape (degree, points)."""
     n = len(c) - 1
-    logs = np.maximum(np.log2(np.abs(c)), -1e5)
-    slopes = np.empty((n, c.shape[1]))
-    for i in range(1, n + 1):
-        steepest = np.full((i, c.shape[1]), -np.inf)
-        for a in range(i):
-            for b in range(i, n + 1):
-                np.maximum(steepest[a], (logs[b] - logs[a]) / (b - a), out=steepest[a])
-        slopes[i - 1] = steepest.min(axis=0)
-    return np.asarray(np.exp2(np.clip(-slopes, -900, 900)))
+    logs, place = np.maximum(np.log2(np.abs(c)), -1e5), np.arange(n + 1)
+    length = (place[None, :] - place[:, None])[:, :, None]
+    rise = logs[None, :] - logs[:, None]
+    slopes = np.where(length > 0, rise / np.maximum(length, 1), -np.inf)
+    # Of the slope from a to b the largest over b >= i, then the smallest over a < i.
+    steepest = np.maximum.accumulate(slopes[:, ::-1], axis=1)[:, ::-1]
+    steepest = np.minimum.accumulate(steepest, axis=0)[place[:-1], place[1:]]
+    return np.asarray(np.exp2(np.clip(-steepest, -900, 900)))
+
+
+def _eigenvalues(c: Complex) -> Complex:
+    """Of the companion matrices, shape (degree, points); NaN where there are none."""
+    n = len(c) - 1
+    column = -(c[:-1] / c[-1]).T
+    usable = np.isfinite(column).all(axis=1)
+    real = not c.imag.any()
+    matrices = np.zeros((int(usable.sum()), n, n), float if real else complex)
+    matrices[:, np.arange(1, n), np.arange(n - 1)] = 1
+    matrices[:, :, -1] = column[usable].real if real else column[usable]
+    found = np.full((n, c.shape[1]), complex(np.nan, np.nan))
+    with suppress(np.linalg.LinAlgError):  # one that does not converge stops all
+        found[:, usable] = np.linalg.eigvals(matrices).T
+    return found
+
+
+def _starts(c: Complex) -> Complex:
+    """Eigenvalues where their sizes are likely, else polygon radii in all directions."""
+    radii = _polygon_radii(c)
+    turns = np.exp(1j * (0.5 + GOLDEN * np.arange(len(radii))))[:, None]
+    near = _eigenvalues(c)
+    ratio = np.sort(np.abs(near), axis=0) / np.sort(radii, axis=0)
+    likely = ((ratio > 1 / LIKELY) & (ratio < LIKELY)).all(axis=0)
+    return np.asarray(np.where(likely, near * (1 + ASIDE * turns), radii * turns))
 
 
 def _aberth(c: Complex) -> Complex:
     """Iterated until the values are rounding noise; each point stops on its own."""
-    n = len(c) - 1
-    turns = np.exp(1j * (0.5 + GOLDEN * np.arange(n)))[:, None]
-    z = _polygon_radii(c) * turns
+    z = _starts(c)
     active = np.arange(c.shape[1])
     for _ in range(SWEEPS):
         step, quiet = _aberth_step(c[:, active], z[:, active])
@@ -50,7 +79,7 @@ def _aberth(c: Complex) -> Complex:
         active = active[~quiet]
         if not len(active):
             break
-    return np.asarray(z)
+    return z
 
 
 def _aberth_step(c: Complex, z: Complex) -> tuple[Complex, NDArray[np.bool_]]:

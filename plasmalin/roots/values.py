@@ -3,15 +3,16 @@
 from __future__ import annotations
 
 import difflib
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from fractions import Fraction
+from functools import lru_cache
 from typing import TYPE_CHECKING, Any
 
 import mpmath
 import numpy as np
 from numpy.typing import NDArray
-from sympy import Expr, Symbol
+from sympy import Expr, Symbol, lambdify
 
 from ..declare.operators import WAVE_SYMBOLS
 from ..declare.quantities import in_si
@@ -49,12 +50,24 @@ class Numbers:
         """A symbol's array or its one number, in double precision."""
         return self.swept[symbol] if symbol in self.swept else float(self.fixed[symbol])
 
+    def value(self, expression: Expr) -> NDArray[Any]:
+        """An expression's array or one number, in double precision."""
+        function, symbols = _compiled(expression)
+        return np.asarray(function(*(self.doubles(s) for s in symbols)))
+
     def at(self, symbol: Symbol, point: int) -> Any:
         """A symbol's number at one point of the flattened grid, for mpmath at its working precision."""
         if symbol in self.swept:
             return high_precision(self.swept[symbol].flat[point])
         value = self.fixed[symbol]
         return mpmath.mpf(value.numerator) / value.denominator
+
+
+@lru_cache(maxsize=512)
+def _compiled(expression: Expr) -> tuple[Callable[..., Any], list[Symbol]]:
+    """The same few expressions are evaluated in every call."""
+    symbols = sorted(expression.free_symbols, key=str)
+    return lambdify(symbols, expression, "numpy"), symbols
 
 
 def high_precision(value: Any) -> Any:
@@ -177,6 +190,13 @@ def with_defaults(wave: WaveMatrix, values: Mapping[Any, Any]) -> dict[Any, Any]
     return {**defaults, **values}
 
 
+def left_out(names: tuple[str, ...], values: Mapping[Any, Any], waves: Mapping[str, Any]) -> None:
+    """Raises where what varies is also among the other values."""
+    given = {key.name if isinstance(key, Symbol) else key for key in values} | set(waves)
+    for name in given.intersection(names):
+        raise ValuesError(f"'{name}' is what varies; leave it out of the other values")
+
+
 def needed_symbols(wave: WaveMatrix) -> set[Symbol]:
     """The symbols that the wave matrix holds, omega left out."""
     found: set[Any] = set()
@@ -237,14 +257,13 @@ def _check_sign(symbol: Symbol, numbers: Numbers) -> None:
 
 
 def _check_residual(law: str, residual: Expr, numbers: Numbers) -> None:
-    from sympy import Add, expand, lambdify
+    from sympy import Add, expand
 
     terms = Add.make_args(expand(residual))
     symbols = sorted(residual.free_symbols, key=str)
-    numeric = [numbers.swept[s] if s in numbers.swept else float(numbers.fixed[s]) for s in symbols]
     with np.errstate(all="ignore"):
-        parts = [np.abs(np.asarray(lambdify(symbols, t, "numpy")(*numeric))) for t in terms]
-        total = np.abs(np.asarray(lambdify(symbols, Add(*terms), "numpy")(*numeric)))
+        parts = [np.abs(numbers.value(t)) for t in terms]
+        total = np.abs(numbers.value(Add(*terms)))
         largest = np.max([np.broadcast_to(p, numbers.shape) for p in parts], axis=0)
         breach = np.max(np.nan_to_num(total / np.where(largest > 0, largest, 1.0)), initial=0.0)
     if breach > BREACH:

@@ -6,7 +6,7 @@ from collections.abc import Mapping
 from contextlib import suppress
 from dataclasses import dataclass
 from functools import cached_property
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING, Any, overload
 
 from sympy import Expr, ImmutableDenseMatrix, Symbol
 
@@ -31,6 +31,7 @@ if TYPE_CHECKING:
     from ..check.verdict import Verdict
     from ..roots.branches import Branches
     from ..roots.roots import Roots
+    from ..roots.surfaces import Surfaces
     from ..study.remark import Advice
 
 
@@ -290,17 +291,32 @@ class WaveMatrix:
 
         return find_roots(self, values or {}, waves)
 
+    @overload
     def branches(
         self, name: str, along: Any, values: Mapping[Any, Any] | None = None, **waves: Any
-    ) -> Branches:
+    ) -> Branches: ...
+
+    @overload
+    def branches(
+        self,
+        name: tuple[str, str],
+        along: tuple[Any, Any],
+        values: Mapping[Any, Any] | None = None,
+        **waves: Any,
+    ) -> Surfaces: ...
+
+    def branches(
+        self, name: Any, along: Any, values: Mapping[Any, Any] | None = None, **waves: Any
+    ) -> Branches | Surfaces:
         """All branches omega along a wave number or a parameter, tracked through crossings.
 
         Parameters
         ----------
-        name : str
-            What varies: a wave number or any parameter.
-        along : array_like, shape (n,)
-            Rad/m for a wave number; for a parameter in the unit that it declares, SI without one.
+        name : str, or tuple of two
+            What varies: a wave number or any parameter; two of them for a grid.
+        along : array_like, shape (n,), or tuple of two
+            Rad/m for a wave number; for a parameter in the unit that it declares, SI without one. For a grid both
+            increase.
         values : mapping of str to number, optional
         **waves : number
             The other wave numbers, by name.
@@ -308,6 +324,7 @@ class WaveMatrix:
         Returns
         -------
         Branches
+            For two names `Surfaces`: labels over the grid, and the cells around which they permute.
 
         Raises
         ------
@@ -315,7 +332,10 @@ class WaveMatrix:
             As `roots`; also when `along` is not one-dimensional.
         """
         from ..roots.branches import find_branches
+        from ..roots.surfaces import find_surfaces
 
+        if not isinstance(name, str):
+            return find_surfaces(self, tuple(name), tuple(along), values or {}, waves)
         return find_branches(self, name, along, values or {}, waves)
 
     def advice(self, values: Mapping[Any, Any] | None = None, **waves: Any) -> Advice:

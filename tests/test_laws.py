@@ -5,7 +5,7 @@ import pytest
 import sympy
 
 import plasmalin as plin
-from plasmalin import laws
+from plasmalin import curl, laws, partial_t
 
 
 def test_friction_conserves_momentum_identically():
@@ -130,3 +130,26 @@ def test_bohm_dispersion():
 def test_magnetic_force_needs_a_velocity():
     with pytest.raises(plin.DeclarationError, match="needs both magnetic= and v="):
         laws.lorentz_force(sympy.Symbol("n"), 1, magnetic=plin.components(0, 0, 1))
+
+
+def conducting(memory):
+    """Light in a conductor, its current a law of its own or a multiplier with memory."""
+    model = plin.FluidModel("light in a conductor")
+    eps0, c, sigma, tau = model.parameters("eps0 c sigma_0 tau", positive=True)
+    electric, magnetic = model.vector("E"), model.vector("B")
+    model.law("Faraday", partial_t(magnetic), -curl(electric))
+    if memory:
+        current = plin.multiplier(electric, sigma / (1 - sympy.I * plin.omega * tau))
+    else:
+        current = model.vector("J")
+        model.law("Ohm", tau * partial_t(current) + current, sigma * electric)
+    model.law("Ampere", partial_t(electric), c**2 * curl(magnetic) - current / eps0)
+    return model.linearize().plane_wave("x").relation
+
+
+def test_a_conductivity_that_depends_on_the_frequency():
+    """sigma_0/(1 − i ω τ) is the law τ dJ/dt + J = sigma_0 E (Drude 1900, Ann. Phys. 306, 566; from memory)."""
+    with_memory, with_law = conducting(True), conducting(False)
+    assert {f.polynomial for f in with_memory.factors if f.polynomial.lowest == 0} == {
+        f.polynomial for f in with_law.factors if f.polynomial.lowest == 0
+    }

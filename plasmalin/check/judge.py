@@ -8,7 +8,7 @@ from dataclasses import dataclass, field, replace
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
-from sympy import Rational, S, Symbol, cancel, factor, sqrt
+from sympy import Add, Rational, S, Symbol, cancel, factor, sqrt
 
 from ..declare.notation import paper
 from ..errors import NonPolynomialError
@@ -21,7 +21,7 @@ from .limit import LimitFound, find_limits, verify_limit
 from .rates import rate_order
 from .roles import Roles, roles
 from .series import series_order, series_slip
-from .slips import repairs, repairs_as_limit
+from .slips import leading_parts, repairs, repairs_as_limit
 from .special import special_values
 from .stated import Stated, read_stated
 from .verdict import Slip, Verdict
@@ -168,10 +168,9 @@ def _slips(case: Case, somewhere: Somewhere | None) -> tuple[Slip, ...]:
         return later
     found = repairs(case.claim, case.derived, case.time / 2)
     if not found and (somewhere is None or somewhere.doubtful):
-        later = () if case.claim.solved else _later_term(case)
-        if later:
-            return later
-        found = repairs_as_limit(case.claim, case.derived, case.time)
+        found = repairs_as_limit(case.claim, case.derived, case.time / 2)
+    if not found and not case.claim.solved:
+        return _later_term(case)
     return tuple(s for repair in found for s in repair.slips)
 
 
@@ -182,6 +181,8 @@ def _later_term(case: Case) -> tuple[Slip, ...]:
     if found is None or found.term == 0:
         return ()
     multiplier = factor(cancel(found.should_be / case.whole.written_out(found.term)))
+    if multiplier.has(Add):
+        return ()
     words = f"{paper(found.term)} should be {paper(found.should_be)}, the terms before it are right"
     return (Slip(found.term, multiplier, words),)
 
@@ -305,9 +306,26 @@ def _other_convention(case: Case) -> Somewhere | None:
 
 def _where_right(case: Case) -> Somewhere | None:
     """The values or the ordering that asks least; values stand first where both ask as much."""
-    special, ordered = _special(case), _series(case) or _limit(case)
-    found = [s for s in (special, ordered) if s is not None]
-    return min(found, key=lambda s: (s.doubtful, s.asks), default=None)
+    orders = (_series, _limit) if case.claim.solved else (_limit, _series)
+    ordered = (answer for question in orders if (answer := question(case)) is not None)
+    found = [s for s in (_special(case), next(ordered, None)) if s is not None]
+    return min(found, key=lambda s: (s.doubtful, s.asks)) if found else _special_limit(case)
+
+
+def _special_limit(case: Case) -> Somewhere | None:
+    """Values of parameters and an ordering together."""
+    degree = case.derived.numerator(case.claim.residual)[0].degree
+    end = time.monotonic() + case.time / 4
+    for part in leading_parts(case.derived, degree):
+        if time.monotonic() > end:
+            return None
+        for values in special_values(case.claim, replace(case.derived, polynomial=part), 1.0):
+            narrowed = case.derived.substituted(values)
+            for limit in find_limits(case.whole, narrowed, case.values, 3.0):
+                said = tuple(f"with {paper(s)} = {paper(v)}" for s, v in values.items())
+                notes = (*said, *_limit_notes(limit))
+                return Somewhere("limit", LEADING, limit.groups, notes, not limit.physical)
+    return None
 
 
 def _special(case: Case) -> Somewhere | None:

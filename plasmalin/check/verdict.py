@@ -78,7 +78,8 @@ class Small:
         return None if self.value is None else abs(self.value) < 0.1
 
     def __str__(self) -> str:
-        number = "" if self.value is None else f" (here {self.value:.3g})"
+        large = "" if self.holds is not False else ", not small"
+        number = "" if self.value is None else f" (here {self.value:.3g}{large})"
         return f"{paper(self.group)} ≪ 1{number}" + (
             "" if self.physical else ", an unphysical ordering"
         )

@@ -13,7 +13,7 @@ from ..declare.operators import PartialT, k_x, k_y, k_z, omega
 from ..exact.radicals import rational_numerator
 from ..linearize.ledger import Piece
 from ..waves.lowering import Index, Wave, lower
-from .derived import without_angles
+from .angles import Angles
 from .lawclaim import Term
 
 Cell = tuple[Index, Symbol, Any]
@@ -42,7 +42,7 @@ def _by_powers(coefficient: Expr) -> Iterator[tuple[Any, Expr]]:
 
 def vanishes(expr: Expr) -> bool:
     """Whether an expression is identically zero, by exact algebra."""
-    return expr == 0 or len(rational_numerator(without_angles(expr), omega)[0]) == 0
+    return expr == 0 or len(rational_numerator(Angles({}).rational(expr), omega)[0]) == 0
 
 
 def general_wave(axes: str) -> Wave:

@@ -3,12 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, field, replace
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
 from sympy import (
-    Abs,
     Add,
     Eq,
     Expr,
@@ -18,17 +17,14 @@ from sympy import (
     S,
     Symbol,
     cancel,
-    cos,
-    expand_trig,
     factor_terms,
-    sin,
     sympify,
 )
-from sympy import tan as tangent
 
 from ..declare.operators import omega
 from ..exact.polynomial import ExactPolynomial
 from ..exact.radicals import rational_numerator
+from .angles import Angles, angles_of
 from .roles import SPELLINGS
 
 if TYPE_CHECKING:
@@ -58,12 +54,15 @@ class Derived:
         k·k.
     wave_symbols : frozenset of Symbol
         Wave numbers and angles, which are no parameters.
+    angles : Angles
+        How sines and cosines are written.
     """
 
     polynomial: ExactPolynomial
     conditions: tuple[Condition, ...]
     square: Expr
     wave_symbols: frozenset[Symbol] = frozenset()
+    angles: Angles = field(default_factory=lambda: Angles({}))
 
     @cached_property
     def factors(self) -> tuple[tuple[ExactPolynomial, int], ...]:
@@ -75,10 +74,10 @@ class Derived:
         return {s for g in self.polynomial.generators for s in g.free_symbols}
 
     def rational(self, expr: Expr) -> Expr:
-        """An expression with the conditions used, angles by their half tangents, |k| for k > 0."""
+        """An expression with the conditions used, angles made rational, |k| for k > 0."""
         for c in self.conditions:
             expr = expr.xreplace({c.symbol: c.value})
-        return without_angles(expr)
+        return self.angles.rational(expr)
 
     def numerator(self, expr: Expr) -> tuple[ExactPolynomial, int]:
         """The zeros of an expression as a polynomial without powers of ω or content, and its sheets."""
@@ -118,43 +117,19 @@ def derive(
     raw = wave.relation.exact
     equations = [*wave.linear.conditions, *_light(constants)] if conditions else []
     used = solve_conditions(equations, set(symbols), set(raw.generators))
-    made = raw.substitute(
-        {**{a: without_angles(a) for a in raw.generators if a != without_angles(a)}}
-    )
+    angles = angles_of(raw)
+    images = {a: angles.rational(a) for a in raw.generators}
+    made = raw.substitute({a: image for a, image in images.items() if a != image})
     for c in used:
         made = made.substitute({c.symbol: c.value})
-    waves = {s for c in wave.k for s in c.free_symbols}
-    waves |= {half_tangent(s) for s in waves}
-    return Derived(bare(made), tuple(used), Add(*(c**2 for c in wave.k)), frozenset(waves))
+    waves = angles.symbols.union(*(c.free_symbols for c in wave.k))
+    return Derived(bare(made), tuple(used), Add(*(c**2 for c in wave.k)), waves, angles)
 
 
 def bare(polynomial: ExactPolynomial) -> ExactPolynomial:
     """Without content and without powers of ω."""
     part = polynomial.primitive()[1]
     return part.without_main() if part.lowest > 0 else part
-
-
-def without_angles(expr: Expr) -> Expr:
-    """sin and cos by the tangent of the half angle, which makes them rational; |k| as k, which is positive."""
-    if expr.atoms(tangent):
-        expr = expr.replace(tangent, lambda a: sin(a) / cos(a))
-    replaced: dict[Any, Any] = {}
-    for f in expr.atoms(sin, cos):
-        plain = expand_trig(f) if not f.args[0].is_Symbol else f
-        replaced[f] = plain.xreplace({g: _by_half(g) for g in plain.atoms(sin, cos)})
-    for a in expr.atoms(Abs):
-        replaced[a] = a.args[0] if a.args[0].is_Symbol else a
-    return expr.xreplace(replaced) if replaced else expr
-
-
-def half_tangent(angle: Expr) -> Symbol:
-    """The symbol that stands for tan(angle/2)."""
-    return Symbol(f"tan_half_{angle}", real=True)
-
-
-def _by_half(f: Expr) -> Expr:
-    t = half_tangent(f.args[0])
-    return (2 * t if isinstance(f, sin) else 1 - t**2) / (1 + t**2)
 
 
 def _light(constants: Iterable[Symbol]) -> list[Eq]:

@@ -216,10 +216,11 @@ class Faces:
 
 def slopes(claimed: Terms, w: Vector, space: Space) -> Iterator[Vector]:
     """The weights with every weight of ω for which terms with different powers of ω are leading."""
-    orders = {v: times(w, space.order(v)) - w[0] * v[0] for v in claimed}
-    found = {
-        (orders[b] - orders[a]) / (a[0] - b[0]) for a, b in combinations(claimed, 2) if a[0] != b[0]
-    }
+    lowest: dict[Fraction, Fraction] = {}
+    for v in claimed:
+        order = times(w, space.order(v)) - w[0] * v[0]
+        lowest[v[0]] = min(order, lowest.get(v[0], order))
+    found = {(lowest[b] - lowest[a]) / (a - b) for a, b in combinations(lowest, 2)}
     for slope in sorted(found):
         turned = (slope, *w[1:])
         if len({v[0] for v in initial(claimed, turned, space)}) > 1:

@@ -29,6 +29,8 @@ from .verdict import Slip, Verdict
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
 
+ASIDE = 4.0
+"""Seconds for the slips of a claim that is right somewhere."""
 LONGEST = 400
 """Characters of a coefficient that is shown."""
 
@@ -95,17 +97,31 @@ class Case:
         return self._derived(True)
 
     def _derived(self, conditions: bool) -> Derived:
-        claimed = self.claim.residual.free_symbols
-        return derive(self.wave, claimed, self.roles.constants, conditions=conditions)
+        return derive(self.wave, self._claimed, self.roles.constants, conditions=conditions)
+
+    @property
+    def fitting(self) -> Derived:
+        """The derived relation in symbols of the claim: conditions used where the claim lacks a symbol."""
+        known = self._claimed | self.plain.wave_symbols
+        return self.plain if self.plain.symbols <= known else self.derived
+
+    @property
+    def _claimed(self) -> set[Symbol]:
+        found: set[Symbol] = self.claim.residual.free_symbols
+        return found
 
     @property
     def used(self) -> tuple[str, ...]:
         """The conditions of the background that were used, in words."""
-        conditions = self.derived.conditions
-        return tuple(f"using {paper(c.symbol)} = {paper(c.value)}" for c in conditions)
+        return in_words(self.fitting)
 
     def verdict(self, kind: str, proof: str, *, agrees: bool = False, **more: Any) -> Verdict:
         return Verdict(kind, agrees, proof, self.written.reading, **more)
+
+
+def in_words(derived: Derived) -> tuple[str, ...]:
+    """The conditions of the background that a relation uses."""
+    return tuple(f"using {paper(c.symbol)} = {paper(c.value)}" for c in derived.conditions)
 
 
 def judge(
@@ -166,9 +182,11 @@ def _slips(case: Case, somewhere: Somewhere | None) -> tuple[Slip, ...]:
     """Repairs of the relation, of an expansion's later term, or of a leading part."""
     if case.claim.solved and somewhere is None and (later := _later_term(case)):
         return later
-    found = repairs(case.claim, case.derived, case.time / 2)
+    answered = somewhere is not None and not somewhere.doubtful
+    budget = min(case.time / 2, ASIDE) if answered else case.time / 2
+    found = repairs(case.claim, case.fitting, budget)
     if not found and (somewhere is None or somewhere.doubtful):
-        found = repairs_as_limit(case.claim, case.derived, case.time / 2)
+        found = repairs_as_limit(case.claim, case.fitting, case.time / 2)
     if not found and not case.claim.solved:
         return _later_term(case)
     return tuple(s for repair in found for s in repair.slips)
@@ -224,7 +242,8 @@ def _same(case: Case) -> Verdict | None:
     if case.derived.conditions:
         found = compare(case.claim, case.derived)
         if found is not None:
-            return case.verdict(found.kind, found.proof, agrees=True, notes=case.used)
+            words = in_words(case.derived)
+            return case.verdict(found.kind, found.proof, agrees=True, notes=words)
     return None
 
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import re
 from collections.abc import Iterable, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from fractions import Fraction
 from typing import TypeAlias
 
@@ -43,6 +43,9 @@ class Space:
 
     columns: tuple[Expr, ...]
     sized: int
+    _known: dict[int, tuple[ExactPolynomial, Terms]] = field(
+        default_factory=dict, compare=False, repr=False
+    )
 
     def order(self, v: Vector) -> Vector:
         """The exponents of the symbols that have sizes."""
@@ -50,6 +53,11 @@ class Space:
 
     def terms(self, polynomial: ExactPolynomial) -> Terms:
         """Exponents, all columns, and the Gaussian integer coefficient of every term."""
+        if id(polynomial) not in self._known:
+            self._known[id(polynomial)] = polynomial, self._terms(polynomial)
+        return self._known[id(polynomial)][1]
+
+    def _terms(self, polynomial: ExactPolynomial) -> Terms:
         place = {c: i for i, c in enumerate(self.columns)}
         images = [(place[omega], Fraction(1))]
         images += [(place[b], p) for b, p in map(base_and_power, polynomial.generators)]

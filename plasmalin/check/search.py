@@ -13,17 +13,22 @@ from fractions import Fraction
 from functools import cached_property
 from typing import Any
 
-from sympy import Add, Dummy, Expr, Integer, S, Symbol, pi
+from sympy import Add, Dummy, Expr, Integer, S, pi
 
 from ..declare.operators import omega
 from ..errors import PlasmalinError
 from ..exact import finite
+from ..exact.field import ROOT, power_of_scale, quotient
+from ..exact.field import field as prime_field
 from ..exact.polynomial import ExactPolynomial
 from .claim import Claim
 from .derived import Derived
+from .places import Changes
+from .pointwise import ClaimAtPoint
 
 POWERS = tuple(Fraction(n, 2) for n in (0, 2, -2, 4, -4, 1, -1, 3, -3, 6, -6, 8, -8))
 MOST_SUMS = 8
+SEED = 20
 
 unknown = Dummy("unknown", positive=True)
 second = Dummy("second", positive=True)
@@ -41,13 +46,16 @@ class Search:
         The factor of the derived relation that the claim should have and does not.
     deadline : float
         On the monotonic clock.
+    shared : dict
+        The claim at points, for all searches of it.
     """
 
     claim: Claim
     derived: Derived
     target: ExactPolynomial
     deadline: float
-    points: dict[Any, finite.Point] = field(default_factory=dict)
+    shared: dict[Any, ClaimAtPoint] = field(default_factory=dict)
+    _targets: dict[Any, Any] = field(default_factory=dict)
 
     @cached_property
     def symbols(self) -> list[Expr]:
@@ -70,56 +78,72 @@ class Search:
     def late(self) -> bool:
         return time.monotonic() > self.deadline
 
-    def point(self, doubled: Any = None) -> finite.Point:
-        if doubled not in self.points:
-            self.points[doubled] = finite.Point(20, doubled)
-        return self.points[doubled]
+    def claim_at(self, doubled: Any = None) -> ClaimAtPoint:
+        """The claim at the point, or at the one with a symbol doubled."""
+        if doubled not in self.shared:
+            point = finite.Point(SEED, doubled)
+            unknowns = [unknown, second]
+            self.shared[doubled] = ClaimAtPoint(self.claim, self.derived, point, unknowns)
+        return self.shared[doubled]
 
-    def conditions(self, claim: Claim, doubled: Any, unknowns: Sequence[Symbol]) -> Any:
-        """The polynomials in the unknowns that must vanish at a point, and their ring."""
-        point = self.point(doubled)
-        expr = self.derived.rational(claim.residual)
-        top, ring = finite.numerator(expr, point, [omega, *unknowns])
-        target = point.polynomial(self.target, ring)
-        return finite.remainders(top, target, ring, omega), ring
+    def target_at(self, doubled: Any = None) -> Any:
+        if doubled not in self._targets:
+            at = self.claim_at(doubled)
+            self._targets[doubled] = at.point.polynomial(self.target, at.ring)
+        return self._targets[doubled]
 
-    def vanishes(self, claim: Claim) -> bool:
-        """Whether the target divides a claim without unknowns, at one point."""
+    def conditions(self, changes: Changes, doubled: Any = None) -> list[Any]:
+        """The polynomials in the unknowns that must vanish at a point."""
+        top = self.claim_at(doubled).numerator(changes)
+        return finite.remainders(top, self.target_at(doubled), 0)
+
+    def holds(self, changes: Changes) -> bool:
+        """Whether the target divides the changed claim, which holds no unknown, at the point."""
         try:
-            return not self.conditions(claim, None, [])[0]
+            return not self.conditions(changes)
+        except (ArithmeticError, PlasmalinError):
+            return False
+
+    def holds_for(self, claim: Claim) -> bool:
+        """Whether the target divides another claim at the point."""
+        try:
+            at = ClaimAtPoint(claim, self.derived, finite.Point(SEED), [])
+            target = at.point.polynomial(self.target, at.ring)
+            return not finite.remainders(at.numerator({}), target, 0)
         except (ArithmeticError, PlasmalinError):
             return False
 
 
-def solve_one(search: Search, changed: Callable[[Expr], Claim], scale: Expr = S.One) -> list[Expr]:
-    """The multiples of `scale` that the unknown may be: numbers times powers of symbols."""
+def solve_one(search: Search, changes: Changes) -> list[Expr]:
+    """What the unknown may be: numbers times powers of symbols."""
 
     def zeros(doubled: Any = None) -> list[int]:
-        rests, ring = search.conditions(changed(unknown * scale), doubled, [unknown])
-        return finite.common_zeros(rests, ring, unknown) or []
+        rests = search.conditions(changes, doubled)
+        return finite.common_zeros(rests, search.claim_at(doubled).ring, unknown) or []
 
     try:
-        made = [_monomial(search, v, zeros) for v in zeros()]
+        made = [monomial(search, v, zeros) for v in zeros()]
     except (ArithmeticError, PlasmalinError):
         return []
-    return [m * scale for m in made if m is not None]
+    return [m for m in made if m is not None]
 
 
-def solve_two(search: Search, changed: Callable[[Expr, Expr], Claim]) -> list[tuple[Expr, Expr]]:
+def solve_two(search: Search, changes: Changes) -> list[tuple[Expr, Expr]]:
     """As `solve_one`, for two unknowns at once."""
     seen: dict[Any, list[tuple[int, int]]] = {}
 
     def pairs(doubled: Any = None) -> list[tuple[int, int]]:
         if doubled not in seen:
-            rests, ring = search.conditions(changed(unknown, second), doubled, [unknown, second])
+            rests = search.conditions(changes, doubled)
+            ring = search.claim_at(doubled).ring
             seen[doubled] = finite.common_pairs(rests, ring, unknown, second)
         return seen[doubled]
 
     found = []
     try:
         for value in pairs():
-            one = _monomial(search, value[0], lambda d: [p[0] for p in pairs(d)])
-            other = _monomial(search, value[1], lambda d: [p[1] for p in pairs(d)])
+            one = monomial(search, value[0], lambda d: [p[0] for p in pairs(d)])
+            other = monomial(search, value[1], lambda d: [p[1] for p in pairs(d)])
             if one is not None and other is not None:
                 found.append((one, other))
     except (ArithmeticError, PlasmalinError):
@@ -127,22 +151,23 @@ def solve_two(search: Search, changed: Callable[[Expr, Expr], Claim]) -> list[tu
     return found
 
 
-def _monomial(search: Search, value: int, zeros: Callable[[Any], list[int]]) -> Expr | None:
-    """A value of the field as a number times powers of symbols."""
+def monomial(search: Search, value: int, values: Callable[[Any], Sequence[int]]) -> Expr | None:
+    """A value of the field as a number times powers of symbols, by its values with one symbol doubled."""
     if value == 0:
         return S.Zero
+    point = search.claim_at().point
     parts, rest = S.One, value
     for symbol in search.symbols:
-        ratios = (finite.quotient(v, value) for v in zeros(symbol))
-        steps = (finite.power_of_scale(r, 2, POWERS) for r in ratios)
+        ratios = (quotient(v, value) for v in values(symbol))
+        steps = (power_of_scale(r, 2, POWERS) for r in ratios)
         power = next((s for s in steps if s is not None), None)
         if power is None:
             return None
         if power:
             parts *= symbol ** (Integer(power.numerator) / power.denominator)
-            root = search.point().root_of(symbol)
-            rest = finite.quotient(rest, pow(root, int(power * finite.ROOT), finite.field()[0]))
-    number = finite.recognized(rest)
+            root = point.root_of(symbol)
+            rest = quotient(rest, pow(root, int(power * ROOT), prime_field()[0]))
+    number = point.recognized(rest)
     return None if number is None else number * parts
 
 

@@ -27,8 +27,11 @@ WAYS: dict[str, Callable[[Any, Any, Any], Any]] = {
     "plus below": lambda node, base, u: 1 / (1 / node + u),
     "plus in one": lambda node, base, u: node * (base + u) / base,
     "plus in one below": lambda node, base, u: node * base / (base + u),
-    "squared": lambda node, base, u: node**2,
+    "plus to half": lambda node, base, u: node / 2 + u,
     "inverted": lambda node, base, u: 1 / node,
+    "squared": lambda node, base, u: node**2,
+    "once more": lambda node, base, u: node * base,
+    "once less": lambda node, base, u: node / base,
 }
 """What stands at a place (where it is a power, with its base) and the unknown, to what should stand there.
 
@@ -94,27 +97,22 @@ def exchanges(claim: Claim) -> Iterator[tuple[Expr, Expr, Claim]]:
     leaves = sorted(_leaves(claim) - {omega}, key=str)
     angles = [(sin(a), cos(a)) for a in {f.args[0] for f in claim.residual.atoms(sin, cos)}]
     for a, b in [*combinations(leaves, 2), *angles]:
+        if {a, b} & {*_leaves_of(claim, a), *_leaves_of(claim, b)}:
+            continue  # a shorthand and what it is defined by: the exchange would define it in a circle
         swap = {a: b, b: a}
         yield a, b, claim.mapped(lambda e, swap=swap: e.xreplace(swap))
 
 
+POWERS = ("inverted", "squared", "once more", "once less")
+
+
 def powers(claim: Claim) -> Iterator[Edit]:
-    """Every sum, or power of one, squared or inverted."""
+    """Every sum, or power of one, with another power."""
     for part, expr in parts(claim).items():
         for path, node in nodes(expr):
             if isinstance(node, Add) or (isinstance(node, Pow) and isinstance(node.base, Add)):
-                for kind in ("squared", "inverted"):
+                for kind in POWERS[:2] if isinstance(node, Add) else POWERS:
                     yield Edit(node, kind, _label(part), ((part, path),))
-
-
-def additions(claim: Claim) -> list[Edit]:
-    """Every sum of the claim, for a term more in it."""
-    return [
-        Edit(node, "plus", _label(part), ((part, path),))
-        for part, expr in parts(claim).items()
-        for path, node in nodes(expr)
-        if isinstance(node, Add) or (not path and node != 0)
-    ]
 
 
 def parts(claim: Claim) -> dict[str, Expr]:
@@ -155,7 +153,10 @@ def _on(spots: list[Spot], node: Expr) -> list[Edit]:
     where = "everywhere" if len(spots) > 1 else _label(spots[0][0])
     several = isinstance(node, Mul | Pow) and any(isinstance(a, Add) for a in node.args)
     kinds = ("times", "over", "over twice", *(("more",) if several else ()))
-    return [Edit(node, kind, where, tuple(spots)) for kind in kinds]
+    made = [Edit(node, kind, where, tuple(spots)) for kind in kinds]
+    if len(spots) == 1 and node.as_coeff_Mul()[0] % 2 == 0:
+        made.append(Edit(node, "plus to half", where, tuple(spots)))
+    return made
 
 
 def _label(part: str) -> str:
@@ -205,6 +206,16 @@ def _put(expr: Expr, new: Mapping[Path, Expr]) -> Expr:
 def _leaves(claim: Claim) -> set[Symbol]:
     found: set[Symbol] = (claim.left - claim.right).free_symbols
     return {s for d in claim.definitions.values() for s in d.free_symbols} | found
+
+
+def _leaves_of(claim: Claim, symbol: Expr) -> set[Symbol]:
+    """What a shorthand is defined by, through other shorthands too; nothing for a symbol."""
+    found: set[Symbol] = set()
+    if symbol not in claim.definitions:
+        return found
+    for s in claim.definitions[symbol].free_symbols:
+        found |= {s} | _leaves_of(claim, s)
+    return found
 
 
 def _shared(claim: Claim) -> list[tuple[Symbol, tuple[Spot, ...]]]:

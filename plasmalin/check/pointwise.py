@@ -172,7 +172,7 @@ def _touched_names(claim: Claim, changed: Iterable[str]) -> set[Symbol]:
 def _operands(node: Expr) -> tuple[Expr, ...]:
     """What a node is computed from; nothing for what has a value of its own."""
     if isinstance(node, Add | Mul | Abs):
-        return node.args
+        return tuple(a for a in node.args if isinstance(a, Expr))
     if isinstance(node, Pow) and node.exp.is_Rational:
         plain = node.exp.is_Integer or not (node.base.is_Symbol or node.base.is_number)
         return (node.base,) if plain or node.base == omega else ()

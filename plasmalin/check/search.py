@@ -7,13 +7,13 @@ symbols, which points with one symbol doubled tell. What is found here is a cand
 from __future__ import annotations
 
 import time
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, field
 from fractions import Fraction
 from functools import cached_property
 from typing import Any
 
-from sympy import Add, Dummy, Expr, Integer, S, pi
+from sympy import Dummy, Expr, Mul, Rational, S, pi
 
 from ..declare.operators import omega
 from ..errors import PlasmalinError
@@ -26,8 +26,10 @@ from .derived import Derived
 from .places import Changes
 from .pointwise import ClaimAtPoint
 
-POWERS = tuple(Fraction(n, 2) for n in (0, 2, -2, 4, -4, 1, -1, 3, -3, 6, -6, 8, -8))
-MOST_SUMS = 8
+POWERS: tuple[Fraction, ...] = tuple(
+    Fraction(n, 2) for n in (0, 2, -2, 4, -4, 1, -1, 3, -3, 6, -6, 8, -8)
+)
+POWERS += Fraction(1, 4), Fraction(-1, 4)
 SEED = 20
 
 unknown = Dummy("unknown", positive=True)
@@ -63,39 +65,34 @@ class Search:
         claimed = self.derived.rational(self.claim.residual).free_symbols - {omega}
         return [*sorted(claimed | self.derived.symbols, key=str), pi]
 
-    @cached_property
-    def scales(self) -> list[Expr]:
-        """What the unknown may be a multiple of, beyond symbols: powers of ω, sums that the claim holds."""
-        sums = {self.claim.written_out(a) for a in _sums_of(self.claim)} | {self.derived.square}
-        sums = {a for a in sums if isinstance(a, Add)}
-        turned = {a.args[0] - a.args[1] for a in sums if len(a.args) == 2}
-        kept = sorted(sums | turned, key=lambda a: (a.count_ops(), str(a)))[:MOST_SUMS]
-        return [
-            omega, 1 / omega, omega**2, omega**-2, *(a**n for a in kept for n in (1, -1)),
-        ]  # fmt: skip
-
     @property
     def late(self) -> bool:
         return time.monotonic() > self.deadline
 
-    def claim_at(self, doubled: Any = None) -> ClaimAtPoint:
-        """The claim at the point, or at the one with a symbol doubled."""
-        if doubled not in self.shared:
-            point = finite.Point(SEED, doubled)
+    def claim_at(self, doubled: Any = None, step: int = 0) -> ClaimAtPoint:
+        """The claim at the point, or at the one with a symbol doubled, or so many steps further."""
+        place = doubled, step
+        if place not in self.shared:
+            point = finite.Point(SEED, doubled, step)
             unknowns = [unknown, second]
-            self.shared[doubled] = ClaimAtPoint(self.claim, self.derived, point, unknowns)
-        return self.shared[doubled]
+            self.shared[place] = ClaimAtPoint(self.claim, self.derived, point, unknowns)
+        return self.shared[place]
 
-    def target_at(self, doubled: Any = None) -> Any:
-        if doubled not in self._targets:
-            at = self.claim_at(doubled)
-            self._targets[doubled] = at.point.polynomial(self.target, at.ring)
-        return self._targets[doubled]
+    def target_at(self, doubled: Any = None, step: int = 0) -> Any:
+        place = doubled, step
+        if place not in self._targets:
+            at = self.claim_at(doubled, step)
+            self._targets[place] = at.point.polynomial(self.target, at.ring)
+        return self._targets[place]
 
-    def conditions(self, changes: Changes, doubled: Any = None) -> list[Any]:
+    def modulus_at(self, doubled: Any = None, step: int = 0) -> Any:
+        """The target as a polynomial in ω alone."""
+        return finite.univariate(self.target_at(doubled, step), 0)
+
+    def conditions(self, changes: Changes, doubled: Any = None, step: int = 0) -> list[Any]:
         """The polynomials in the unknowns that must vanish at a point."""
-        top = self.claim_at(doubled).numerator(changes)
-        return finite.remainders(top, self.target_at(doubled), 0)
+        top = self.claim_at(doubled, step).numerator(changes)
+        return finite.remainders(top, self.target_at(doubled, step), 0)
 
     def holds(self, changes: Changes) -> bool:
         """Whether the target divides the changed claim, which holds no unknown, at the point."""
@@ -155,22 +152,24 @@ def monomial(search: Search, value: int, values: Callable[[Any], Sequence[int]])
     """A value of the field as a number times powers of symbols, by its values with one symbol doubled."""
     if value == 0:
         return S.Zero
-    point = search.claim_at().point
-    parts, rest = S.One, value
+    powers: dict[Expr, Fraction] = {}
     for symbol in search.symbols:
         ratios = (quotient(v, value) for v in values(symbol))
         steps = (power_of_scale(r, 2, POWERS) for r in ratios)
         power = next((s for s in steps if s is not None), None)
         if power is None:
             return None
-        if power:
-            parts *= symbol ** (Integer(power.numerator) / power.denominator)
-            root = point.root_of(symbol)
-            rest = quotient(rest, pow(root, int(power * ROOT), prime_field()[0]))
-    number = point.recognized(rest)
-    return None if number is None else number * parts
+        powers[symbol] = power
+    return product(search, value, powers)
 
 
-def _sums_of(claim: Claim) -> set[Expr]:
-    expressions = [claim.left, claim.right, *claim.definitions.values()]
-    return set().union(*(e.atoms(Add) for e in expressions))
+def product(search: Search, value: int, powers: Mapping[Expr, Fraction]) -> Expr | None:
+    """A number times known powers of symbols, whose value is given; None where the number is not a simple one."""
+    point = search.claim_at().point
+    for symbol, power in powers.items():
+        root = point.root_of(symbol)
+        value = quotient(value, pow(root, int(power * ROOT), prime_field()[0]))
+    number = point.recognized(value)
+    if number is None:
+        return None
+    return number * Mul(*(s ** Rational(n.numerator, n.denominator) for s, n in powers.items()))

@@ -9,7 +9,7 @@ from fractions import Fraction
 from itertools import combinations
 from typing import Any
 
-from sympy import Add, Expr, Integer, Mul, Pow, S, Symbol
+from sympy import Add, Expr, Integer, Mul, Pow, S
 
 from ..declare.notation import paper
 from ..declare.operators import omega
@@ -20,11 +20,11 @@ from ..waves.ordering import leading_balances
 from .claim import Claim
 from .compare import Match, compare, covered
 from .derived import Derived, bare
+from .missing import Shapes, missing
 from .places import (
     Changes,
     Edit,
     Spot,
-    additions,
     apart,
     at,
     changed,
@@ -129,10 +129,8 @@ def _whole(claim: Claim, derived: Derived, deadline: float) -> list[Repair]:
         _single,
         _divided,
         _wholesale,
-        _split,
+        _missing,
         _alike,
-        _other_species,
-        _scaled,
         _double,
     ):
         for search in searches:
@@ -177,31 +175,35 @@ def _single(search: Search) -> Iterator[Repair]:
     """One factor or one term, a number times powers of symbols."""
     for edit in edits(search.claim):
         if edit.kind not in DIVISIONS and not search.late:
-            yield from _repaired(search, edit, S.One)
+            yield from _repaired(search, edit)
 
 
 def _divided(search: Search) -> Iterator[Repair]:
     """One term divided or multiplied by one plus a number times powers of symbols."""
     for edit in edits(search.claim):
         if edit.kind in DIVISIONS and not search.late:
-            yield from _repaired(search, edit, S.One)
+            yield from _repaired(search, edit)
 
 
-def _scaled(search: Search) -> Iterator[Repair]:
-    """One factor or one term that holds ω or a sum."""
-    listed = [e for e in edits(search.claim) if e.kind in ("times", "plus", "over", "over twice")]
-    for scale in search.scales:
-        for edit in listed:
-            if search.late:
-                return
-            yield from _repaired(search, edit, scale)
+def _missing(search: Search) -> Iterator[Repair]:
+    """A term that is missing, or a factor on one, that is a sum or depends on ω."""
+    shapes = Shapes(search)
+    for kind in ("plus", "times"):
+        for edit in edits(search.claim):
+            if edit.kind.startswith(kind) and not search.late:
+                for value in missing(search, edit, shapes):
+                    if not is_idle(edit, value):
+                        yield from _known(search, edit, value)
 
 
-def _repaired(search: Search, edit: Edit, scale: Expr) -> Iterator[Repair]:
-    for found in solve_one(search, edit.changes(unknown * scale)):
-        value = found * scale
+def _repaired(search: Search, edit: Edit) -> Iterator[Repair]:
+    for value in solve_one(search, edit.changes(unknown)):
         if not is_idle(edit, value):
-            yield from _proved(search, edit.changes(value), (told(edit, value),), cost(edit, value))
+            yield from _known(search, edit, value)
+
+
+def _known(search: Search, edit: Edit, value: Expr) -> Iterator[Repair]:
+    yield from _proved(search, edit.changes(value), (told(edit, value),), cost(edit, value))
 
 
 def _proved(
@@ -230,54 +232,6 @@ def _wholesale(search: Search) -> Iterator[Repair]:
     for edit in powers(search.claim):
         if not search.late and search.holds(edit.changes(S.One)):
             yield from _proved(search, edit.changes(S.One), (told(edit, S.One),), 1.2)
-
-
-def _split(search: Search) -> Iterator[Repair]:
-    """A term that is there several times should be there once with a symbol's sign turned."""
-    for spots, node in grouped(search.claim):
-        count, rest = node.as_coeff_Mul()
-        if len(spots) != 1 or not count.is_Integer or abs(count) < 2:
-            continue
-        for symbol in sorted(rest.free_symbols - {omega}, key=str):
-            twin = count / abs(count) * (rest.xreplace({symbol: -symbol}) - rest)
-            changes = {spots[0]: ("plus", twin)}
-            if not search.late and search.holds(changes):
-                text = f"in one of the {abs(count)} terms {paper(rest)} the sign of {paper(symbol)} is wrong"
-                slip = Slip(node, (1 + twin / node), text)
-                yield from _proved(search, changes, (slip,), 1.5)
-
-
-def _other_species(search: Search) -> Iterator[Repair]:
-    """A term of another species is missing: one that is there, with that species' symbols."""
-    for edit in additions(search.claim):
-        for term in Add.make_args(edit.term):
-            for new in _cousins(search, term):
-                for value in (new, -new):
-                    if search.late:
-                        return
-                    if search.holds(edit.changes(value)):
-                        yield from _proved(search, edit.changes(value), (told(edit, value),), 2.0)
-
-
-def _cousins(search: Search, term: Expr) -> list[Expr]:
-    """A term with one species' symbols replaced by another's, gyration in either sense."""
-    own = {s.name: s for s in search.claim.written_out(term).free_symbols - {omega}}
-    known = {s.name: s for s in search.symbols if isinstance(s, Symbol)}
-    endings = {n[-1] for n in own if len(n) > 1}
-    new = {n[-1] for n in known if len(n) > 1} - {""}
-    found = []
-    for old, other in ((a, b) for a in endings for b in new if a != b):
-        swap = {
-            own[n]: known[n[:-1] + other] for n in own if n[-1] == old and n[:-1] + other in known
-        }
-        if not swap:
-            continue
-        made = search.claim.written_out(term).xreplace(swap)
-        found.append(made)
-        turned = made.xreplace({omega: -omega})
-        if turned != made:
-            found.append(turned)
-    return found
 
 
 USUAL = (S.NegativeOne, Integer(2), S.Half)

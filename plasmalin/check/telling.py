@@ -36,8 +36,11 @@ def _slip(edit: Edit, value: Expr) -> tuple[Expr, Expr]:
         "more": 1 + value,
         "over": 1 / (1 + value),
         "over twice": (1 + value) ** -2,
-        "squared": edit.term,
+        "plus to half": S.Half + value / edit.term,
         "inverted": edit.term**-2,
+        "squared": edit.term,
+        "once more": _base(edit.term),
+        "once less": 1 / _base(edit.term),
     }
     if edit.kind in made:
         return edit.term, made[edit.kind]
@@ -71,13 +74,18 @@ def _words(edit: Edit, value: Expr) -> str:
     return f"{term}{place} should carry the factor {paper(factor)}{depends}, which makes it {made}"
 
 
+def _base(node: Expr) -> Expr:
+    return node.base if isinstance(node, Pow) else node
+
+
 KIND_COST = {
-    "times": 0.0, "more": 1.0, "over": 0.8, "over twice": 0.9, "plus": 0.6, "plus in one": 0.7, "plus in one below": 0.7, "plus below": 0.9,
+    "times": 0.0, "more": 1.0, "over": 0.8, "over twice": 0.9, "plus": 0.6, "plus in one": 0.7, "plus in one below": 0.7, "plus below": 0.9, "plus to half": 0.7,
 }  # fmt: skip
 
 
 def cost(edit: Edit, value: Expr) -> float:
-    size = sum(map(_weight, Mul.make_args(value)))
+    terms = Add.make_args(value)
+    size = len(terms) - 1 + sum(_weight(f) for t in terms for f in Mul.make_args(t))
     roots = sum(1.0 for p in value.atoms(Pow) if not p.exp.is_Integer)
     place = {"": 0.0, "everywhere": 0.4}.get(edit.where, 0.3)
     return size + roots + place + KIND_COST[edit.kind] + 0.01 * len(str(edit.term))

@@ -30,16 +30,20 @@ class Point:
     seed : int
     doubled : Expr, optional
         A symbol whose twelfth root is twice what it is without; its value is 2**12 times.
+    step : int
+        How often every symbol's twelfth root was multiplied by a number of its own.
     """
 
-    def __init__(self, seed: int, doubled: Any = None) -> None:
-        self.seed, self.doubled = seed, doubled
+    def __init__(self, seed: int, doubled: Any = None, step: int = 0) -> None:
+        self.seed, self.doubled, self.step = seed, doubled, step
         self.prime, self.unit = field()
         self._known: dict[sp.Expr, int] = {}
 
     def root_of(self, symbol: Any) -> int:
         """The twelfth root of a symbol's value."""
-        value = random.Random(f"{self.seed}:{symbol}").randrange(2, self.prime)
+        draw = random.Random(f"{self.seed}:{symbol}")
+        value, factor = (draw.randrange(2, self.prime) for _ in range(2))
+        value = value * pow(factor, self.step, self.prime) % self.prime
         return value * 2 % self.prime if symbol == self.doubled else value
 
     def number(self, expr: sp.Expr) -> int:
@@ -137,10 +141,14 @@ class Quotient:
         mine, theirs = divmod(other.bottom, common)[0], divmod(self.bottom, common)[0]
         return Quotient(self.top * mine + other.top * theirs, self.bottom * mine)
 
-    def __mul__(self, other: Quotient) -> Quotient:
+    def __mul__(self, other: Quotient | int) -> Quotient:
+        if isinstance(other, int):
+            return Quotient(self.top * other, self.bottom)
         return Quotient(self.top * other.top, self.bottom * other.bottom)
 
-    def __truediv__(self, other: Quotient) -> Quotient:
+    def __truediv__(self, other: Quotient | int) -> Quotient:
+        if isinstance(other, int):
+            return Quotient(self.top, self.bottom * other)
         return self * other**-1
 
     def __rtruediv__(self, other: int) -> Quotient:
@@ -226,22 +234,3 @@ def univariate(p: Any, place: int) -> nmod_poly:
     """A polynomial that holds one unknown only."""
     terms = {int(e[place]): int(c) for e, c in p.to_dict().items()}
     return nmod_poly([terms.get(n, 0) for n in range(max(terms, default=0) + 1)], field()[0])
-
-
-def reconstructed(value: nmod_poly, modulus: nmod_poly) -> tuple[nmod_poly, nmod_poly] | None:
-    """The one quotient of polynomials of low degrees that a residue is, by the extended algorithm of Euclid.
-
-    None where numerator and denominator together leave less than one degree to confirm it.
-    """
-    zero = value * 0
-    a, b, u, v = modulus, value, zero, zero + 1
-    best: tuple[int, nmod_poly, nmod_poly] | None = None
-    while b:
-        size = b.degree() + v.degree()
-        if best is None or size < best[0]:
-            best = size, b, v
-        q, rest = divmod(a, b)
-        a, b, u, v = b, rest, v, u - q * v
-    if best is None or best[0] > modulus.degree() - 2:
-        return None
-    return best[1], best[2]

@@ -12,7 +12,7 @@ from dataclasses import dataclass, field
 from functools import cached_property
 from typing import Any
 
-from sympy import Add, Expr, Mul, Symbol, factor_terms
+from sympy import Add, Expr, Mul, Pow, Symbol, expand, factor
 
 from ..declare.operators import omega
 from ..errors import PlasmalinError
@@ -23,7 +23,7 @@ from ..exact.sparse import bases_of, weights_of
 from .places import Edit, nodes, parts
 from .search import POWERS, Search, product, unknown
 
-MOST_TERMS = 4
+MOST_TERMS = 6
 """Monomials in a coefficient."""
 MOST_SUMS = 16
 """Sums with ω that a missing term may have for factors or denominators."""
@@ -43,7 +43,7 @@ def missing(search: Search, edit: Edit, shapes: Shapes) -> Iterator[Expr]:
         residue = Residue(search, edit, shapes)
         linear = residue.at(None, 0) is not None
         found = map(residue.made, residue.shapes()) if linear else [_constant(search, edit)]
-        yield from (factor_terms(x) if isinstance(x, Add) else x for x in found if x is not None)
+        yield from (collected(x) for x in found if x is not None)
     except (ArithmeticError, PlasmalinError):
         return
 
@@ -216,7 +216,24 @@ def _constant(search: Search, edit: Edit) -> Expr | None:
 
 
 def few_terms(search: Search, value: ValueAt) -> Expr | None:
-    """A number as a sum of a few monomials in the symbols."""
+    """A number as a sum of a few monomials in the symbols, or as one over such a sum."""
+    found = _sum(search, value)
+    if found is None:
+        below = _sum(search, lambda d, s: quotient(1, value(d, s)))
+        found = None if below is None else 1 / collected(below)
+    return found
+
+
+def collected(value: Expr) -> Expr:
+    """A sum as a product or as a power of a sum, where that is shorter."""
+    made = factor(value) if isinstance(value, Add) else value
+    top, bottom = made.as_numer_denom()
+    if isinstance(top, Pow) and isinstance(top.base, Add):
+        return expand(top.base / bottom ** (1 / top.exp)) ** top.exp
+    return made if made.count_ops() < value.count_ops() else value
+
+
+def _sum(search: Search, value: ValueAt) -> Expr | None:
     sequence = [value(None, 0)]
     bases: list[int] | None = None
     for count in range(1, MOST_TERMS + 1):

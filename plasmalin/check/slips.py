@@ -6,7 +6,7 @@ import time
 from collections.abc import Iterable, Iterator
 from dataclasses import dataclass, replace
 from fractions import Fraction
-from itertools import combinations
+from itertools import combinations, product
 from typing import Any
 
 from sympy import Add, Expr, Integer, Mul, Pow, S
@@ -34,7 +34,7 @@ from .places import (
     powers,
 )
 from .search import Search, second, solve_one, solve_two, unknown
-from .telling import cost, is_idle, told
+from .telling import cost, is_idle, shortened, told
 from .verdict import Slip
 
 MOST_PARTS = 40
@@ -42,6 +42,8 @@ MOST_PARTS = 40
 MOST = 6
 """Repairs that are listed."""
 DIVISIONS = ("over", "over twice", "more")
+CONTORTED = 16.0
+"""A change that costs so much is no repair: it replaces what the author wrote."""
 WORSE = 3.0
 """How much less simple than the simplest a listed repair may be."""
 
@@ -128,15 +130,15 @@ def _whole(claim: Claim, derived: Derived, deadline: float) -> list[Repair]:
     for question in (
         _single,
         _divided,
+        _by_shorthands,
         _wholesale,
         _missing,
         _alike,
         _double,
     ):
-        for search in searches:
-            found = list(question(search))
-            if found:
-                return found
+        found = [r for s in searches for r in question(s) if r.cost < CONTORTED]
+        if found:
+            return found
     return []
 
 
@@ -191,19 +193,32 @@ def _missing(search: Search) -> Iterator[Repair]:
     for kind in ("plus", "times"):
         for edit in edits(search.claim):
             if edit.kind.startswith(kind) and not search.late:
-                for value in missing(search, edit, shapes):
-                    if not is_idle(edit, value):
-                        yield from _known(search, edit, value)
+                yield from _known(search, edit, missing(search, edit, shapes))
+
+
+def _by_shorthands(search: Search) -> Iterator[Repair]:
+    """A factor that is a shorthand which depends on ω."""
+    names = [s for s in search.claim.definitions if search.claim.written_out(s).has(omega)]
+    listed = [e for e in edits(search.claim) if e.kind == "times" and names]
+    for edit, name, power in product(listed, names, (1, -1)):
+        if not search.late and search.holds(edit.changes(name**power)):
+            yield from _known(search, edit, [name**power])
 
 
 def _repaired(search: Search, edit: Edit) -> Iterator[Repair]:
-    for value in solve_one(search, edit.changes(unknown)):
-        if not is_idle(edit, value):
-            yield from _known(search, edit, value)
+    values = solve_one(search, edit.changes(unknown))
+    signs = [v for v in values if not (-v in values and v.could_extract_minus_sign())]
+    yield from _known(search, edit, signs)
 
 
-def _known(search: Search, edit: Edit, value: Expr) -> Iterator[Repair]:
-    yield from _proved(search, edit.changes(value), (told(edit, value),), cost(edit, value))
+def _known(search: Search, edit: Edit, values: Iterable[Expr]) -> Iterator[Repair]:
+    """What the unknown may be, in the author's symbols, proved."""
+    inside = {part for part, _ in edit.spots} - {"left", "right"}
+    for value in values:
+        made = value if inside else shortened(search.claim, value)
+        if not is_idle(edit, made):
+            slips = (told(edit, made),)
+            yield from _proved(search, edit.changes(made), slips, cost(edit, made))
 
 
 def _proved(

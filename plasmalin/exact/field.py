@@ -31,6 +31,8 @@ def field() -> tuple[int, int]:
 def quotient(a: int, b: int) -> int:
     """a / b in the field."""
     p = field()[0]
+    if b % p == 0:
+        raise ZeroDivisionError("division by zero in the field")
     return a * pow(b, -1, p) % p
 
 

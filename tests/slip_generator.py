@@ -8,8 +8,17 @@ from sympy import Add, Mul, Pow, S
 from plasmalin.check.claim import Claim
 from plasmalin.declare.operators import omega
 
-NUMBERS = (2, S.Half, 3, S(4) / 3, -1, -1)
-KINDS = ("factor", "sign", "dropped", "exponent", "swapped", "doppler", "symbol")
+NUMBERS = (2, S.Half, 3, S(4) / 3, S(2) / 3, sympy.sqrt(2), sympy.cbrt(2))
+KINDS = (
+    "factor", "sign", "dropped", "exponent", "swapped", "doppler", "symbol", "power of a sum", "conjugated",
+    "component", "not squared", "root",
+)  # fmt: skip
+DEFINED = (
+    "factor in a definition",
+    "symbol in a definition",
+    "definition not squared",
+    "root in a definition",
+)
 
 
 def nodes(expr, path=()):
@@ -44,14 +53,104 @@ def terms(expr):
 
 def slip(expr, rng):
     """One slip in one place: (kind, the wrong expression), or None where the kind does not fit."""
+    kind, made = _any(expr, rng)
+    return None if made in (None, expr) or not made.has(omega) else (kind, made)
+
+
+def _any(expr, rng):
     kind = rng.choice(KINDS)
-    made = globals()[f"_{kind}"](expr, rng)
-    return None if made is None else (kind, made)
+    return kind, globals()[f"_{kind.replace(' ', '_')}"](expr, rng)
+
+
+def slip_of_claim(claim, rng):
+    """As `slip`, for a claim as an author types it: on either side, or in a definition."""
+    if claim.definitions and rng.random() < 0.4:
+        kind = rng.choice(DEFINED)
+        made = _in_definition(kind, claim, rng)
+    else:
+        sides = {"left": claim.left, "right": claim.right}
+        side = rng.choice([s for s in sides if sides[s] not in (0, omega**2)])
+        kind, sides[side] = _any(sides[side], rng)
+        if kind == "root":
+            return None
+        made = None if None in sides.values() else Claim(*sides.values(), claim.definitions)
+    return None if made is None or not made.residual.has(omega) else (kind, made)
+
+
+def _in_definition(kind, claim, rng):
+    name = rng.choice(sorted(claim.definitions, key=str))
+    wrong = claim.definitions[name]
+    if kind == "factor in a definition":
+        wrong = rng.choice(NUMBERS) * wrong
+    elif kind == "symbol in a definition":
+        path, node = rng.choice(terms(wrong))
+        found = symbols_of(node)
+        if not found:
+            return None
+        wrong = put(wrong, path, node / rng.choice(found))
+    elif kind == "root in a definition":
+        wrong = wrong**2 if wrong.atoms(Pow) else sympy.sqrt(wrong)
+    else:
+        return Claim(*(e.subs(name**2, name) for e in (claim.left, claim.right)), claim.definitions)
+    return Claim(claim.left, claim.right, {**claim.definitions, name: wrong})
 
 
 def _factor(expr, rng):
     path, node = rng.choice(terms(expr))
-    return put(expr, path, rng.choice(NUMBERS[:-2]) * node)
+    return put(expr, path, rng.choice(NUMBERS) * node)
+
+
+def _power_of_a_sum(expr, rng):
+    """A power of a sum, or a sum in a denominator, with another power."""
+    found = [(p, n) for p, n in nodes(expr) if isinstance(n, Pow) and isinstance(n.base, Add)]
+    if not found:
+        return None
+    path, node = rng.choice(found)
+    powers = [-node.exp, node.exp / 2 if abs(node.exp) > 1 else 2 * node.exp]
+    return put(expr, path, node.base ** rng.choice(powers))
+
+
+def _conjugated(expr, rng):
+    """i with the other sign in one term."""
+    found = [(p, n) for p, n in terms(expr) if n.has(sympy.I)]
+    if not found:
+        return None
+    path, node = rng.choice(found)
+    return put(expr, path, node.xreplace({sympy.I: -sympy.I}))
+
+
+def _component(expr, rng):
+    """k for one of its components, and the reverse, or sine for cosine."""
+    known = {s.name: s for s in expr.free_symbols}
+    names = [(a, b) for a in ("kx", "kz", "ky") for b in ("kx", "kz", "ky") if a != b]
+    swaps = [{known[a]: known[b]} for a, b in names if a in known and b in known]
+    swaps += [{f: sympy.cos(f.args[0])} for f in expr.atoms(sympy.sin)]
+    swaps += [{f: sympy.sin(f.args[0])} for f in expr.atoms(sympy.cos)]
+    found = [(p, n, s) for p, n in terms(expr) for s in swaps if n.xreplace(s) not in (n, S.Zero)]
+    if not found:
+        return None
+    path, node, swap = rng.choice(found)
+    return put(expr, path, node.xreplace(swap))
+
+
+def _not_squared(expr, rng):
+    """A square that was forgotten."""
+    found = [
+        (p, n) for p, n in nodes(expr) if isinstance(n, Pow) and n.exp == 2 and n.base.is_Symbol
+    ]
+    if not found:
+        return None
+    path, node = rng.choice(found)
+    return put(expr, path, node.base)
+
+
+def _root(expr, rng):
+    """A root that was forgotten, or one too many."""
+    found = [(p, n) for p, n in terms(expr) if symbols_of(n)]
+    if not found:
+        return None
+    path, node = rng.choice(found)
+    return put(expr, path, node * sympy.sqrt(rng.choice(symbols_of(node))))
 
 
 def _sign(expr, rng):

@@ -7,23 +7,30 @@ symbols, which points with one symbol doubled tell. What is found here is a cand
 from __future__ import annotations
 
 import time
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, field
 from fractions import Fraction
 from functools import cached_property
 from typing import Any
 
-from sympy import Add, Dummy, Expr, Integer, S, Symbol, pi
+from sympy import Dummy, Expr, Mul, Rational, S, pi
 
 from ..declare.operators import omega
 from ..errors import PlasmalinError
 from ..exact import finite
+from ..exact.field import ROOT, power_of_scale, quotient
+from ..exact.field import field as prime_field
 from ..exact.polynomial import ExactPolynomial
 from .claim import Claim
 from .derived import Derived
+from .places import Changes
+from .pointwise import ClaimAtPoint
 
-POWERS = tuple(Fraction(n, 2) for n in (0, 2, -2, 4, -4, 1, -1, 3, -3, 6, -6, 8, -8))
-MOST_SUMS = 8
+POWERS: tuple[Fraction, ...] = tuple(
+    Fraction(n, 2) for n in (0, 2, -2, 4, -4, 1, -1, 3, -3, 6, -6, 8, -8)
+)
+POWERS += Fraction(1, 4), Fraction(-1, 4)
+SEED = 20
 
 unknown = Dummy("unknown", positive=True)
 second = Dummy("second", positive=True)
@@ -41,13 +48,16 @@ class Search:
         The factor of the derived relation that the claim should have and does not.
     deadline : float
         On the monotonic clock.
+    shared : dict
+        The claim at points, for all searches of it.
     """
 
     claim: Claim
     derived: Derived
     target: ExactPolynomial
     deadline: float
-    points: dict[Any, finite.Point] = field(default_factory=dict)
+    shared: dict[Any, ClaimAtPoint] = field(default_factory=dict)
+    _targets: dict[Any, Any] = field(default_factory=dict)
 
     @cached_property
     def symbols(self) -> list[Expr]:
@@ -55,71 +65,82 @@ class Search:
         claimed = self.derived.rational(self.claim.residual).free_symbols - {omega}
         return [*sorted(claimed | self.derived.symbols, key=str), pi]
 
-    @cached_property
-    def scales(self) -> list[Expr]:
-        """What the unknown may be a multiple of, beyond symbols: powers of ω, sums that the claim holds."""
-        sums = {self.claim.written_out(a) for a in _sums_of(self.claim)} | {self.derived.square}
-        sums = {a for a in sums if isinstance(a, Add)}
-        turned = {a.args[0] - a.args[1] for a in sums if len(a.args) == 2}
-        kept = sorted(sums | turned, key=lambda a: (a.count_ops(), str(a)))[:MOST_SUMS]
-        return [
-            omega, 1 / omega, omega**2, omega**-2, *(a**n for a in kept for n in (1, -1)),
-        ]  # fmt: skip
-
     @property
     def late(self) -> bool:
         return time.monotonic() > self.deadline
 
-    def point(self, doubled: Any = None) -> finite.Point:
-        if doubled not in self.points:
-            self.points[doubled] = finite.Point(20, doubled)
-        return self.points[doubled]
+    def claim_at(self, doubled: Any = None, step: int = 0) -> ClaimAtPoint:
+        """The claim at the point, or at the one with a symbol doubled, or so many steps further."""
+        place = doubled, step
+        if place not in self.shared:
+            point = finite.Point(SEED, doubled, step)
+            unknowns = [unknown, second]
+            self.shared[place] = ClaimAtPoint(self.claim, self.derived, point, unknowns)
+        return self.shared[place]
 
-    def conditions(self, claim: Claim, doubled: Any, unknowns: Sequence[Symbol]) -> Any:
-        """The polynomials in the unknowns that must vanish at a point, and their ring."""
-        point = self.point(doubled)
-        expr = self.derived.rational(claim.residual)
-        top, ring = finite.numerator(expr, point, [omega, *unknowns])
-        target = point.polynomial(self.target, ring)
-        return finite.remainders(top, target, ring, omega), ring
+    def target_at(self, doubled: Any = None, step: int = 0) -> Any:
+        place = doubled, step
+        if place not in self._targets:
+            at = self.claim_at(doubled, step)
+            self._targets[place] = at.point.polynomial(self.target, at.ring)
+        return self._targets[place]
 
-    def vanishes(self, claim: Claim) -> bool:
-        """Whether the target divides a claim without unknowns, at one point."""
+    def modulus_at(self, doubled: Any = None, step: int = 0) -> Any:
+        """The target as a polynomial in ω alone."""
+        return finite.univariate(self.target_at(doubled, step), 0)
+
+    def conditions(self, changes: Changes, doubled: Any = None, step: int = 0) -> list[Any]:
+        """The polynomials in the unknowns that must vanish at a point."""
+        top = self.claim_at(doubled, step).numerator(changes)
+        return finite.remainders(top, self.target_at(doubled, step), 0)
+
+    def holds(self, changes: Changes) -> bool:
+        """Whether the target divides the changed claim, which holds no unknown, at the point."""
         try:
-            return not self.conditions(claim, None, [])[0]
+            return not self.conditions(changes)
+        except (ArithmeticError, PlasmalinError):
+            return False
+
+    def holds_for(self, claim: Claim) -> bool:
+        """Whether the target divides another claim at the point."""
+        try:
+            at = ClaimAtPoint(claim, self.derived, finite.Point(SEED), [])
+            target = at.point.polynomial(self.target, at.ring)
+            return not finite.remainders(at.numerator({}), target, 0)
         except (ArithmeticError, PlasmalinError):
             return False
 
 
-def solve_one(search: Search, changed: Callable[[Expr], Claim], scale: Expr = S.One) -> list[Expr]:
-    """The multiples of `scale` that the unknown may be: numbers times powers of symbols."""
+def solve_one(search: Search, changes: Changes) -> list[Expr]:
+    """What the unknown may be: numbers times powers of symbols."""
 
     def zeros(doubled: Any = None) -> list[int]:
-        rests, ring = search.conditions(changed(unknown * scale), doubled, [unknown])
-        return finite.common_zeros(rests, ring, unknown) or []
+        rests = search.conditions(changes, doubled)
+        return finite.common_zeros(rests, search.claim_at(doubled).ring, unknown) or []
 
     try:
-        made = [_monomial(search, v, zeros) for v in zeros()]
+        made = [monomial(search, v, zeros) for v in zeros()]
     except (ArithmeticError, PlasmalinError):
         return []
-    return [m * scale for m in made if m is not None]
+    return [m for m in made if m is not None]
 
 
-def solve_two(search: Search, changed: Callable[[Expr, Expr], Claim]) -> list[tuple[Expr, Expr]]:
+def solve_two(search: Search, changes: Changes) -> list[tuple[Expr, Expr]]:
     """As `solve_one`, for two unknowns at once."""
     seen: dict[Any, list[tuple[int, int]]] = {}
 
     def pairs(doubled: Any = None) -> list[tuple[int, int]]:
         if doubled not in seen:
-            rests, ring = search.conditions(changed(unknown, second), doubled, [unknown, second])
+            rests = search.conditions(changes, doubled)
+            ring = search.claim_at(doubled).ring
             seen[doubled] = finite.common_pairs(rests, ring, unknown, second)
         return seen[doubled]
 
     found = []
     try:
         for value in pairs():
-            one = _monomial(search, value[0], lambda d: [p[0] for p in pairs(d)])
-            other = _monomial(search, value[1], lambda d: [p[1] for p in pairs(d)])
+            one = monomial(search, value[0], lambda d: [p[0] for p in pairs(d)])
+            other = monomial(search, value[1], lambda d: [p[1] for p in pairs(d)])
             if one is not None and other is not None:
                 found.append((one, other))
     except (ArithmeticError, PlasmalinError):
@@ -127,25 +148,28 @@ def solve_two(search: Search, changed: Callable[[Expr, Expr], Claim]) -> list[tu
     return found
 
 
-def _monomial(search: Search, value: int, zeros: Callable[[Any], list[int]]) -> Expr | None:
-    """A value of the field as a number times powers of symbols."""
+def monomial(search: Search, value: int, values: Callable[[Any], Sequence[int]]) -> Expr | None:
+    """A value of the field as a number times powers of symbols, by its values with one symbol doubled."""
     if value == 0:
         return S.Zero
-    parts, rest = S.One, value
+    powers: dict[Expr, Fraction] = {}
     for symbol in search.symbols:
-        ratios = (finite.quotient(v, value) for v in zeros(symbol))
-        steps = (finite.power_of_scale(r, 2, POWERS) for r in ratios)
+        ratios = (quotient(v, value) for v in values(symbol))
+        steps = (power_of_scale(r, 2, POWERS) for r in ratios)
         power = next((s for s in steps if s is not None), None)
         if power is None:
             return None
-        if power:
-            parts *= symbol ** (Integer(power.numerator) / power.denominator)
-            root = search.point().root_of(symbol)
-            rest = finite.quotient(rest, pow(root, int(power * finite.ROOT), finite.field()[0]))
-    number = finite.recognized(rest)
-    return None if number is None else number * parts
+        powers[symbol] = power
+    return product(search, value, powers)
 
 
-def _sums_of(claim: Claim) -> set[Expr]:
-    expressions = [claim.left, claim.right, *claim.definitions.values()]
-    return set().union(*(e.atoms(Add) for e in expressions))
+def product(search: Search, value: int, powers: Mapping[Expr, Fraction]) -> Expr | None:
+    """A number times known powers of symbols, whose value is given; None where the number is not a simple one."""
+    point = search.claim_at().point
+    for symbol, power in powers.items():
+        root = point.root_of(symbol)
+        value = quotient(value, pow(root, int(power * ROOT), prime_field()[0]))
+    number = point.recognized(value)
+    if number is None:
+        return None
+    return number * Mul(*(s ** Rational(n.numerator, n.denominator) for s, n in powers.items()))

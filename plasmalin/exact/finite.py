@@ -8,36 +8,18 @@ from __future__ import annotations
 
 import random
 from collections.abc import Iterable, Sequence
+from dataclasses import dataclass
 from fractions import Fraction
-from functools import lru_cache, reduce
+from functools import reduce
 from itertools import combinations
 from typing import Any
 
 import sympy as sp
 from flint import nmod_mpoly, nmod_mpoly_ctx, nmod_poly
 
+from .field import ROOT, field, numeric_root, small_rational
 from .polynomial import ExactPolynomial
-from .radicals import isolated
 from .rational import exact_rational
-
-ROOT = 12
-"""Every symbol is a twelfth power, so that its square, cube and fourth roots are in the field."""
-
-LARGEST = 4096
-"""The largest numerator and denominator that a number is recognized with."""
-
-
-@lru_cache
-def field() -> tuple[int, int]:
-    """A prime of 61 bits in which -1, 2, 3, 5 and 7 have square roots and 2 and 3 cube roots, and the root of -1."""
-    p = 2**61 + 1 - (2**61 % 24)
-    while True:
-        p -= 24
-        if not sp.isprime(p) or any(pow(a, (p - 1) // 2, p) != 1 for a in (2, 3, 5, 7)):
-            continue
-        if all(pow(a, (p - 1) // 3, p) == 1 for a in (2, 3)):
-            root = next(r for a in range(2, 60) if pow(r := pow(a, p // 4, p), 2, p) == p - 1)
-            return p, root
 
 
 class Point:
@@ -48,16 +30,20 @@ class Point:
     seed : int
     doubled : Expr, optional
         A symbol whose twelfth root is twice what it is without; its value is 2**12 times.
+    step : int
+        How often every symbol's twelfth root was multiplied by a number of its own.
     """
 
-    def __init__(self, seed: int, doubled: Any = None) -> None:
-        self.seed, self.doubled = seed, doubled
+    def __init__(self, seed: int, doubled: Any = None, step: int = 0) -> None:
+        self.seed, self.doubled, self.step = seed, doubled, step
         self.prime, self.unit = field()
         self._known: dict[sp.Expr, int] = {}
 
     def root_of(self, symbol: Any) -> int:
         """The twelfth root of a symbol's value."""
-        value = random.Random(f"{self.seed}:{symbol}").randrange(2, self.prime)
+        draw = random.Random(f"{self.seed}:{symbol}")
+        value, factor = (draw.randrange(2, self.prime) for _ in range(2))
+        value = value * pow(factor, self.step, self.prime) % self.prime
         return value * 2 % self.prime if symbol == self.doubled else value
 
     def number(self, expr: sp.Expr) -> int:
@@ -86,12 +72,26 @@ class Point:
         if power.denominator == 1:
             return pow(self.number(base), power.numerator, p)
         if base.is_number and ROOT % power.denominator == 0:
-            root = sp.ntheory.residue_ntheory.nthroot_mod(self.number(base), power.denominator, p)
+            root = numeric_root(self.number(base), power.denominator)
             if root is not None:
-                return pow(int(root), power.numerator, p)
+                return pow(root, power.numerator, p)
         if ROOT % power.denominator == 0 and base.is_Symbol:
             return pow(self.root_of(base), int(power * ROOT), p)
         return pow(self.root_of(base**power), ROOT, p)
+
+    def recognized(self, value: int) -> sp.Expr | None:
+        """The small rational number that a value stands for, its square or cube root, or i times one of them."""
+        for turn in (0, 1):
+            rest = value * pow(self.unit, -turn, self.prime) % self.prime
+            for index in (1, 2, 3):
+                power = small_rational(pow(rest, index, self.prime))
+                if power is None or (index > 1 and power <= 0):
+                    continue
+                root = sp.root(power, index)
+                for made in (root, -root):
+                    if self.number(made) == rest:
+                        return sp.I**turn * made
+        return None
 
     def polynomial(self, given: ExactPolynomial, ring: Ring) -> nmod_mpoly:
         """An exact polynomial at this point, a polynomial in its main symbol."""
@@ -115,91 +115,87 @@ class Ring:
         self.names = list(names)
         labels = tuple(f"x{i}" for i in range(len(names)))
         self.context = nmod_mpoly_ctx.get(labels, modulus=field()[0], ordering="lex")
+        self.one = self.context.constant(1)
         self.gens = dict(zip(self.names, self.context.gens(), strict=True))
 
+    def constant(self, value: int) -> Quotient:
+        return Quotient(self.context.constant(value), self.one)
 
-Value = Any
-"""A number of the field (int), or a pair (numerator, denominator) of polynomials."""
-
-
-def numerator(expr: sp.Expr, point: Point, unknowns: Sequence[sp.Symbol]) -> tuple[Any, Ring]:
-    """The numerator of an expression at a point, a polynomial in the unknowns, freed of roots by norms."""
-    plain, radicals = isolated(expr, *unknowns)
-    ring = Ring([*unknowns, *(r.symbol for r in radicals)])
-    top, _ = ratio(plain, point, ring)
-    for radical in reversed(radicals):
-        high, low = ratio(radical.base, point, ring)
-        gen = ring.gens[radical.symbol]
-        if top.degrees()[ring.names.index(radical.symbol)]:
-            top = top.resultant(gen**radical.index * low - high, str(gen))
-    return top, ring
+    def gen(self, name: sp.Symbol) -> Quotient:
+        return Quotient(self.gens[name], self.one)
 
 
-def ratio(expr: sp.Expr, point: Point, ring: Ring) -> tuple[Any, Any]:
-    """Numerator and denominator, not in lowest terms."""
-    one = ring.context.constant(1)
-    seen: dict[sp.Expr, Value] = {}
+@dataclass(frozen=True, slots=True)
+class Quotient:
+    """A rational function over the field, not in lowest terms."""
 
-    def visit(node: sp.Expr) -> Value:
-        if node not in seen:
-            seen[node] = made(node)
-        return seen[node]
+    top: Any
+    bottom: Any
 
-    def made(node: sp.Expr) -> Value:
-        if node in ring.gens:
-            return ring.gens[node], one
-        if isinstance(node, sp.Add | sp.Mul):
-            plain, rest = _split([visit(a) for a in node.args], node.is_Add, point.prime)
-            join = _sum if node.is_Add else _product
-            if not rest:
-                return plain
-            neutral = 0 if node.is_Add else 1
-            pairs = rest if plain == neutral else [*rest, (plain * one, one)]
-            return reduce(join, pairs)
-        if isinstance(node, sp.Pow) and node.exp.is_Integer:
-            base, n = visit(node.base), int(node.exp)
-            if isinstance(base, int):
-                return pow(base, n, point.prime)
-            top, bottom = base
-            return (top**n, bottom**n) if n >= 0 else (bottom**-n, top**-n)
-        return point.number(node)
+    def __add__(self, other: Quotient | int) -> Quotient:
+        if isinstance(other, int):
+            return Quotient(self.top + other * self.bottom, self.bottom)
+        if self.bottom == other.bottom:
+            return Quotient(self.top + other.top, self.bottom)
+        common = self.bottom.gcd(other.bottom)
+        mine, theirs = divmod(other.bottom, common)[0], divmod(self.bottom, common)[0]
+        return Quotient(self.top * mine + other.top * theirs, self.bottom * mine)
 
-    value = visit(expr)
-    return (value * one, one) if isinstance(value, int) else value
+    def __mul__(self, other: Quotient | int) -> Quotient:
+        if isinstance(other, int):
+            return Quotient(self.top * other, self.bottom)
+        return Quotient(self.top * other.top, self.bottom * other.bottom)
 
+    def __truediv__(self, other: Quotient | int) -> Quotient:
+        if isinstance(other, int):
+            return Quotient(self.top, self.bottom * other)
+        return self * other**-1
 
-def _split(values: list[Value], adds: bool, prime: int) -> tuple[int, list[Value]]:
-    """The plain numbers joined to one, and the rest."""
-    plain, rest = 0 if adds else 1, []
-    for v in values:
-        if isinstance(v, int):
-            plain = (plain + v if adds else plain * v) % prime
-        else:
-            rest.append(v)
-    return plain, rest
+    def __rtruediv__(self, other: int) -> Quotient:
+        return Quotient(other * self.bottom, self._invertible())
 
+    def __pow__(self, n: int) -> Quotient:
+        if n >= 0:
+            return Quotient(self.top**n, self.bottom**n)
+        return Quotient(self.bottom**-n, self._invertible() ** -n)
 
-def _sum(a: Value, b: Value) -> Value:
-    if a[1] == b[1]:
-        return a[0] + b[0], a[1]
-    common = a[1].gcd(b[1])
-    mine, theirs = divmod(b[1], common)[0], divmod(a[1], common)[0]
-    return a[0] * mine + b[0] * theirs, a[1] * mine
+    def _invertible(self) -> Any:
+        if not self.top:
+            raise ZeroDivisionError("a quotient over the field has the denominator 0")
+        return self.top
+
+    def __neg__(self) -> Quotient:
+        return Quotient(-1 * self.top, self.bottom)
+
+    __radd__ = __add__
 
 
-def _product(a: Value, b: Value) -> Value:
-    return a[0] * b[0], a[1] * b[1]
+def without_root(top: Any, place: int, index: int, base: Quotient, gen: Any) -> Any:
+    """A polynomial freed of a root, ``root**index = base``: the root put in where its powers are whole, else a norm."""
+    powers = {e[place] for e in top.to_dict()}
+    if not any(powers):
+        return top
+    if any(n % index for n in powers):
+        return top.resultant(gen**index * base.bottom - base.top, f"x{place}")
+    highest = max(powers) // index
+    made = top * 0
+    for n, part in split(top, place).items():
+        made += part * base.top ** (n // index) * base.bottom ** (highest - n // index)
+    return made
 
 
-def remainders(top: Any, divisor: Any, ring: Ring, main: sp.Symbol) -> list[Any]:
-    """What must vanish for `divisor`, a polynomial in `main`, to divide `top`: one polynomial for each power."""
-    place = ring.names.index(main)
-    rest = divmod(top, divisor)[1]
+def split(p: Any, place: int) -> dict[int, Any]:
+    """The coefficients of the powers of one unknown."""
     groups: dict[int, dict[tuple[int, ...], int]] = {}
-    for exponents, c in rest.to_dict().items():
+    for exponents, c in p.to_dict().items():
         key = tuple(0 if i == place else n for i, n in enumerate(exponents))
         groups.setdefault(int(exponents[place]), {})[key] = c
-    return [ring.context.from_dict(g) for g in groups.values()]
+    return {n: p.context().from_dict(g) for n, g in groups.items()}
+
+
+def remainders(top: Any, divisor: Any, place: int) -> list[Any]:
+    """What must vanish for `divisor`, a polynomial in one unknown, to divide `top`: a polynomial for each power."""
+    return [*split(divmod(top, divisor)[1], place).values()]
 
 
 def common_zeros(polynomials: Iterable[Any], ring: Ring, unknown: sp.Symbol) -> list[int] | None:
@@ -237,44 +233,4 @@ def common_pairs(
 def univariate(p: Any, place: int) -> nmod_poly:
     """A polynomial that holds one unknown only."""
     terms = {int(e[place]): int(c) for e, c in p.to_dict().items()}
-    return nmod_poly([terms.get(n, 0) for n in range(max(terms) + 1)], field()[0])
-
-
-def recognized(value: int) -> sp.Expr | None:
-    """A small rational number, its square root, or i times it, that a value of the field is; None where it is none."""
-    p, unit = field()
-    for turn, factor in ((0, 1), (1, pow(unit, -1, p))):
-        found = _small_rational(value * factor % p)
-        if found is not None:
-            return sp.I**turn * found
-        square = _small_rational(pow(value * factor, 2, p))
-        if square is not None and square > 0:
-            return sp.I**turn * sp.sqrt(square)
-    return None
-
-
-def _small_rational(value: int) -> sp.Rational | None:
-    """By the half-extended algorithm of Euclid (Wang 1981, SYMSAC, 212)."""
-    p = field()[0]
-    a, b, u, v = p, value % p, 0, 1
-    while b > LARGEST:
-        q = a // b
-        a, b, u, v = b, a - q * b, v, u - q * v
-    if v == 0 or abs(v) > LARGEST:
-        return None
-    return sp.Rational(b, v)
-
-
-def power_of_scale(ratio: int, scale: int, powers: Iterable[Fraction]) -> Fraction | None:
-    """The power n for which ``scale**n`` (2**12 for a doubled symbol) is a ratio of two values."""
-    p = field()[0]
-    for n in powers:
-        if pow(scale, int(n * ROOT), p) == ratio:
-            return n
-    return None
-
-
-def quotient(a: int, b: int) -> int:
-    """a / b in the field."""
-    p = field()[0]
-    return a * pow(b, -1, p) % p
+    return nmod_poly([terms.get(n, 0) for n in range(max(terms, default=0) + 1)], field()[0])

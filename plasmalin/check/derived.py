@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, replace
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
@@ -76,9 +76,13 @@ class Derived:
 
     def rational(self, expr: Expr) -> Expr:
         """An expression with the conditions used, angles by their half tangents, |k| for k > 0."""
+        return without_angles(self.using(expr))
+
+    def using(self, expr: Expr) -> Expr:
+        """An expression with the conditions of the background used."""
         for c in self.conditions:
             expr = expr.xreplace({c.symbol: c.value})
-        return without_angles(expr)
+        return expr
 
     def numerator(self, expr: Expr) -> tuple[ExactPolynomial, int]:
         """The zeros of an expression as a polynomial without powers of ω or content, and its sheets."""
@@ -102,6 +106,7 @@ def derive(
     constants: Iterable[Symbol],
     *,
     conditions: bool = True,
+    values: Mapping[Symbol, Expr] | None = None,
 ) -> Derived:
     """The relation of a wave for a claim in certain symbols.
 
@@ -114,15 +119,19 @@ def derive(
         The claim's and the model's symbols for c, epsilon_0 and mu_0, related by c² ε_0 μ_0 = 1.
     conditions : bool, default True
         Whether to use the conditions of the background.
+    values : mapping of Symbol to Expr, optional
+        Put in for wave numbers, angles and parameters.
     """
     raw = wave.relation.exact
     equations = [*wave.linear.conditions, *_light(constants)] if conditions else []
     used = solve_conditions(equations, set(symbols), set(raw.generators))
-    made = raw.substitute(
-        {**{a: without_angles(a) for a in raw.generators if a != without_angles(a)}}
-    )
+    given = dict(values or {})
+    images = {a: without_angles(a.xreplace(given)) for a in raw.generators}
+    made = raw.substitute({a: image for a, image in images.items() if a != image})
     for c in used:
         made = made.substitute({c.symbol: c.value})
+    if given:
+        made = made.substitute({s: without_angles(v) for s, v in given.items()})
     waves = {s for c in wave.k for s in c.free_symbols}
     waves |= {half_tangent(s) for s in waves}
     return Derived(bare(made), tuple(used), Add(*(c**2 for c in wave.k)), frozenset(waves))
@@ -149,7 +158,7 @@ def without_angles(expr: Expr) -> Expr:
 
 def half_tangent(angle: Expr) -> Symbol:
     """The symbol that stands for tan(angle/2)."""
-    return Symbol(f"tan_half_{angle}", real=True)
+    return Symbol(f"tan({angle}/2)", real=True)
 
 
 def _by_half(f: Expr) -> Expr:
@@ -175,7 +184,13 @@ def solve_conditions(
             residual = residual.xreplace({c.symbol: c.value})
         order = sorted(
             residual.free_symbols,
-            key=lambda s: (s in claimed, s.name == "c", s.name not in ("mu_0", "mu0"), s.name),
+            key=lambda s: (
+                s in claimed,
+                s.name == "c",
+                s.name not in ("mu_0", "mu0"),
+                s.name[0] in "Zz",  # a charge number is known sooner than a density
+                s.name,
+            ),
         )
         for symbol in order:
             value = linear_solution(residual, symbol)

@@ -5,25 +5,27 @@ from __future__ import annotations
 import time
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field, replace
-from functools import cached_property
+from functools import cached_property, partial
+from math import isclose
 from typing import TYPE_CHECKING, Any
 
-from sympy import S, Symbol, cancel
+from sympy import Expr, S, Symbol, cancel
 
 from ..declare.notation import paper
 from ..errors import NonPolynomialError
 from ..waves.coefficients import normalized_coefficients
 from .claim import Claim, WaveNames, make_claim
 from .compare import compare, covered
-from .convention import Convention, in_si, under_other_conventions
+from .convention import Convention, in_si, to_si, under_other_conventions
 from .derived import Derived, derive
 from .limit import LimitFound, find_limits, verify_limit
+from .monomials import number_of
 from .roles import Roles, roles
 from .series import series_order
 from .slips import Repair, repairs, repairs_as_limit
 from .special import special_values
 from .stated import Stated, read_stated
-from .verdict import Verdict
+from .verdict import Verdict, shown_conditions
 
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
@@ -53,6 +55,8 @@ class Case:
         On the monotonic clock.
     reasons : list of str
         Why the author's own conditions do not make the claim right.
+    put_in : mapping of Symbol to Expr
+        Stated values that are put into the claim and the relation.
     """
 
     wave: WaveMatrix
@@ -64,6 +68,7 @@ class Case:
     values: Mapping[str, Any]
     deadline: float
     reasons: list[str] = field(default_factory=list)
+    put_in: Mapping[Symbol, Expr] = field(default_factory=dict)
 
     def as_stated(self) -> Case:
         """With the values that the author states put into the claim and the relation."""
@@ -71,9 +76,7 @@ class Case:
         if not values:
             return self
         claim = self.claim.mapped(lambda e: e.xreplace(values))
-        made = replace(self, claim=claim)
-        made.__dict__["derived"] = self.derived.substituted(values)
-        return made
+        return replace(self, claim=claim, put_in=values)
 
     @property
     def time(self) -> float:
@@ -91,14 +94,42 @@ class Case:
         return self._derived(True)
 
     def _derived(self, conditions: bool) -> Derived:
-        claimed = self.claim.residual.free_symbols
-        return derive(self.wave, claimed, self.roles.constants, conditions=conditions)
+        claimed = {s for e in (self.claim.residual, *self.stated.ratios) for s in e.free_symbols}
+        constants, given = self.roles.constants, self.put_in
+        return derive(self.wave, claimed, constants, conditions=conditions, values=given)
 
     @property
     def used(self) -> tuple[str, ...]:
         """The conditions of the background that were used, in words."""
         conditions = self.derived.conditions
         return tuple(f"using {paper(c.symbol)} = {paper(c.value)}" for c in conditions)
+
+    @property
+    def unused(self) -> tuple[str, ...]:
+        """That a claim which is right as it stands needs no conditions."""
+        return ("right without the stated conditions",) if self.stated else ()
+
+    def extra_zeros(self, derived: Derived) -> tuple[str, ...]:
+        """That the claim has ω = 0 more often than the laws."""
+        found, sheets = derived.with_zeros(self.claim.residual)
+        laws = self.wave.relation.zero_modes
+        if sheets > 1 or found.lowest <= laws:
+            return ()
+        return (f"ω = 0 is {found.lowest}-fold in the claim, {laws}-fold in the laws",)
+
+    def contradicted(self, stated: Mapping[str, Expr]) -> tuple[str, ...]:
+        """Where the given values are not those for which the claim is right."""
+        found = []
+        for name, value in stated.items():
+            needed = number_of(value, self.values, self.claim)
+            given = number_of(Symbol(name), self.values, self.claim)
+            if (
+                needed is not None
+                and given is not None
+                and not isclose(needed, given, rel_tol=1e-9)
+            ):
+                found.append(f"at the given values {name} = {given:.6g}, not {needed:.6g}")
+        return tuple(found)
 
     def verdict(self, kind: str, proof: str, *, agrees: bool = False, **more: Any) -> Verdict:
         return Verdict(kind, agrees, proof, self.written.reading, **more)
@@ -116,8 +147,10 @@ def judge(
     """Judge a claimed relation; see `WaveMatrix.check`."""
     deadline = time.monotonic() + budget_s
     written = make_claim(wave, claim, where or {})
-    stated = read_stated(WaveNames(wave, where or {}), under)
     convention, model = convention or Convention(), roles(wave)
+    held = written.residual.free_symbols
+    meant = partial(to_si, convention=convention, found=model)
+    stated = read_stated(WaveNames(wave, where or {}), under, held, meant)
     numbers = {**wave.linear.defaults, **{str(n): v for n, v in (values or {}).items()}}
     made = in_si(written, convention, model)
     case = Case(wave, written, made, stated, convention, model, numbers, deadline)
@@ -133,11 +166,11 @@ def _answer(case: Case) -> Verdict:
         if found is not None:
             return found
     case = case.as_stated()
-    somewhere = _other_convention(case) or _special(case) or _series(case) or _limit(case)
+    somewhere = _other_convention(case) or _where(case)
     repaired = _repairs(case, somewhere)
     slips = tuple(s for repair in repaired for s in repair.slips)
     notes = (*case.reasons, *case.used)
-    if somewhere is not None and not (slips and somewhere.doubtful):
+    if somewhere is not None and not (slips and _doubtful(somewhere, repaired)):
         return case.verdict(
             somewhere.kind,
             somewhere.proof,
@@ -154,6 +187,24 @@ def _answer(case: Case) -> Verdict:
     return case.verdict("differs", proof, notes=(*notes, *side_by_side(case)))
 
 
+def _where(case: Case) -> Somewhere | None:
+    """Where the claim is right; a limit rather than several special values."""
+    special = _special(case)
+    if special is not None and len(special.conditions) == 1:
+        return special
+    limit = None if special is None else _limit(case)
+    if limit is not None and not limit.doubtful:
+        return limit
+    return special or _series(case) or _limit(case)
+
+
+def _doubtful(somewhere: Somewhere, repaired: list[Repair]) -> bool:
+    """Whether a slip is the better answer: a sign or a number in one place makes the claim exact, as no truncation is."""
+    numbers = (r.slips[0].multiplier for r in repaired if len(r.slips) == 1)
+    exact = any(n.is_number and n not in (0, 1) for n in numbers)
+    return somewhere.doubtful or (exact and somewhere.kind != "convention")
+
+
 def _repairs(case: Case, somewhere: Somewhere | None) -> list[Repair]:
     found = repairs(case.claim, case.derived, case.time / 2)
     if found or (somewhere is not None and not somewhere.doubtful):
@@ -165,11 +216,13 @@ def _same(case: Case) -> Verdict | None:
     """Identical, a factor or a branch, with the conditions of the background where they are needed."""
     found = compare(case.claim, case.plain)
     if found is not None:
-        return case.verdict(found.kind, found.proof, agrees=True)
+        notes = (*case.extra_zeros(case.plain), *case.unused)
+        return case.verdict(found.kind, found.proof, agrees=True, notes=notes)
     if case.derived.conditions:
         found = compare(case.claim, case.derived)
         if found is not None:
-            return case.verdict(found.kind, found.proof, agrees=True, notes=case.used)
+            notes = (*case.used, *case.extra_zeros(case.derived), *case.unused)
+            return case.verdict(found.kind, found.proof, agrees=True, notes=notes)
     return None
 
 
@@ -181,10 +234,12 @@ def _as_stated(case: Case) -> Verdict | None:
     if values:
         found = compare(stated.claim, stated.derived)
         if found is not None:
-            return case.verdict("special", found.proof, agrees=True, conditions=named)
+            notes = (*stated.used, *case.contradicted(named))
+            return case.verdict("special", found.proof, agrees=True, conditions=named, notes=notes)
     if not ratios:
         return None
     also = tuple(f"with {name} = {paper(value)}" for name, value in named.items())
+    also = (*also, *stated.used, *case.contradicted(named))
     limit = verify_limit(stated.claim, stated.derived, ratios, case.values, case.time / 3)
     if not isinstance(limit, str):
         notes = (*also, *_limit_notes(limit))
@@ -226,7 +281,11 @@ class Somewhere:
     doubtful: bool = False
 
     def as_notes(self) -> tuple[str, ...]:
-        return (f"right in part or nowhere in nature: {', '.join(map(str, self.conditions))}",)
+        where = shown_conditions(self.conditions)
+        doubt = (
+            "right in part or nowhere in nature" if self.doubtful else f"{self.kind} as well, where"
+        )
+        return (f"{doubt}: {', '.join(where)}",)
 
 
 def _other_convention(case: Case) -> Somewhere | None:
@@ -242,7 +301,7 @@ def _special(case: Case) -> Somewhere | None:
     for values in special_values(case.claim, case.derived, case.time / 5):
         named = {s.name: v for s, v in values.items()}
         proof = "with these values the claim divides the derived relation exactly"
-        return Somewhere("special", proof, named, case.used)
+        return Somewhere("special", proof, named, (*case.used, *case.contradicted(named)))
     return None
 
 

@@ -78,7 +78,8 @@ class Small:
         return None if self.value is None else abs(self.value) < 0.1
 
     def __str__(self) -> str:
-        number = "" if self.value is None else f" (here {self.value:.3g})"
+        large = "" if self.holds else ", not small"
+        number = "" if self.value is None else f" (here {self.value:.3g}{large})"
         return f"{paper(self.group)} ≪ 1{number}" + (
             "" if self.physical else ", an unphysical ordering"
         )
@@ -115,14 +116,8 @@ class Verdict:
     slips: tuple[Slip, ...] = ()
     notes: tuple[str, ...] = field(default=())
 
-    def _conditions(self) -> list[str]:
-        if isinstance(self.conditions, Mapping):
-            return [f"{name} = {value}" for name, value in self.conditions.items()]
-        given = self.conditions if isinstance(self.conditions, tuple) else (self.conditions,)
-        return [str(c) for c in given]
-
     def _lines(self) -> list[str]:
-        shown = self._conditions()
+        shown = shown_conditions(self.conditions)
         lines = [f"{self.kind}: {WORDS[self.kind]}{':' if shown else '.'}"]
         lines += [f"  {c}" for c in shown]
         lines += [f"  {UNSTATED}"] if self.kind in STATED and not self.agrees else []
@@ -147,6 +142,14 @@ class Verdict:
         items = "".join(f"<li>{line}</li>" for line in rest)
         claim = f"$\\displaystyle {html.escape(self.reading)}$"
         return f"<p>{claim}</p><p><b>{head}</b></p><ul>{items}</ul>"
+
+
+def shown_conditions(conditions: Any) -> list[str]:
+    """The conditions of a verdict, one text for each."""
+    if isinstance(conditions, Mapping):
+        return [f"{name} = {value}" for name, value in conditions.items()]
+    given = conditions if isinstance(conditions, tuple) else (conditions,)
+    return [str(c) for c in given]
 
 
 def _repair(slip: Slip) -> str:

@@ -29,7 +29,6 @@ from .names import Names
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
 
-DEEPEST = 30
 RATE_NAMES = ("gamma", "Imomega")
 
 
@@ -59,11 +58,23 @@ class Claim:
 
     def written_out(self, expr: Expr) -> Expr:
         """An expression with the shorthands replaced by what they stand for."""
-        for _ in range(DEEPEST):
-            if not expr.free_symbols & set(self.definitions):
-                break
-            expr = expr.xreplace(dict(self.definitions))
-        return expr
+        return expr.xreplace(self._meanings)
+
+    @cached_property
+    def _meanings(self) -> dict[Symbol, Expr]:
+        """Every shorthand written out, each once; within itself, as a tried repair may put it, it stays."""
+        found: dict[Symbol, Expr] = {}
+
+        def meaning(symbol: Symbol) -> Expr:
+            if symbol not in found:
+                own = found[symbol] = self.definitions[symbol]
+                used = own.free_symbols & set(self.definitions)
+                found[symbol] = own.xreplace({s: meaning(s) for s in used})
+            return found[symbol]
+
+        for symbol in self.definitions:
+            meaning(symbol)
+        return found
 
     def mapped(self, change: Any) -> Claim:
         """The claim with a function applied to both sides and to every definition."""
@@ -141,7 +152,7 @@ class WaveNames(Names):
         if isinstance(claim, str):
             if "[[" in claim.replace(" ", ""):
                 return _determinant(self.read(read_matrix, claim, "claim")), sympify(0)
-            both = self.read(read_claim, claim, "claim", derivatives(self.wave))
+            both = self.read(read_claim, claim, "claim", self._of_fields())
             return self._without_field(*both)
         if isinstance(claim, MatrixBase | list | tuple):
             rows = claim.tolist() if isinstance(claim, MatrixBase) else claim
@@ -151,6 +162,11 @@ class WaveNames(Names):
             return self.expression(claim.lhs, "claim"), self.expression(claim.rhs, "claim")
         return self.expression(claim, "claim"), sympify(0)
 
+    def _of_fields(self) -> dict[str, Any]:
+        """Amplitudes and derivatives; a shorthand of the author goes before an amplitude of its name."""
+        known = derivatives(self.wave).items()
+        return {n: meaning for n, meaning in known if Symbol(n) not in self.definitions}
+
     def _without_field(self, left: Expr, right: Expr) -> tuple[Expr, Expr]:
         """A wave equation for one field is divided by that field's amplitude."""
         fields = {s for s in (left - right).free_symbols if s in set(self.wave.amplitudes)}
@@ -159,7 +175,8 @@ class WaveNames(Names):
             return left, right
         if len(fields) > 1:
             raise DeclarationError(
-                f"claim: a wave equation is for one field; it holds {', '.join(sorted(map(str, fields)))}"
+                f"claim: a wave equation is for one field; it holds {', '.join(sorted(map(str, fields)))}; "
+                "say in where=... what a name stands for that is meant as no field"
             )
         (field,) = fields
         parts = [(e.diff(field), e.xreplace({field: sympify(0)})) for e in (left, right)]

@@ -8,6 +8,7 @@ from sympy import Add, Expr, Mul, Pow
 
 from ..declare.notation import paper
 from ..declare.operators import omega
+from ..exact.finite import may_divide
 from ..exact.polynomial import ExactPolynomial
 from .claim import Claim
 from .derived import Derived, bare
@@ -81,9 +82,9 @@ def _loses(claim: Claim, polynomial: ExactPolynomial, derived: Derived) -> bool:
 
 
 def loses_a_mode(claim: Claim) -> bool:
-    """Whether the claim is a product with a factor, a sum that holds no ω, which then is no wave."""
+    """Whether the claim is a product with a factor, a sum that holds no ω and may vanish, which then is no wave."""
     factors = (claim.written_out(f) for f in Mul.make_args(claim.left - claim.right))
-    return any(isinstance(f, Add) and not f.has(omega) for f in factors)
+    return any(isinstance(f, Add) and not f.has(omega) and not f.is_nonzero for f in factors)
 
 
 def match(
@@ -108,15 +109,14 @@ def match(
 
 
 def covered(part: ExactPolynomial, whole: ExactPolynomial) -> bool:
-    """Whether `part` divides `whole`, factors free of ω aside."""
-    return part.gcd(whole).degree == part.degree
+    """Whether `part` divides `whole`, factors free of ω aside; what does not at one point needs no common divisor."""
+    return may_divide(part, whole) and part.gcd(whole).degree == part.degree
 
 
 def has_partner(part: ExactPolynomial, whole: ExactPolynomial, solved: bool) -> bool:
     """Whether the claim is one sheet of a pair: with one symbol's sign changed it is another divisor of `whole`."""
     if not solved and part.degree > 1:
-        turned = part.turned_sign(part.main)
-        return not covered(part, turned) and covered(turned, whole)
+        return False
     for symbol in (part.main, *part.generators):
         turned = part.turned_sign(symbol)
         if not covered(part, turned) and covered(turned, whole):

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field, replace
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
@@ -75,9 +75,13 @@ class Derived:
 
     def rational(self, expr: Expr) -> Expr:
         """An expression with the conditions used, angles made rational, |k| for k > 0."""
+        return self.angles.rational(self.using(expr))
+
+    def using(self, expr: Expr) -> Expr:
+        """An expression with the conditions of the background used."""
         for c in self.conditions:
             expr = expr.xreplace({c.symbol: c.value})
-        return self.angles.rational(expr)
+        return expr
 
     def numerator(self, expr: Expr) -> tuple[ExactPolynomial, int]:
         """The zeros of an expression as a polynomial without powers of ω or content, and its sheets."""
@@ -101,6 +105,7 @@ def derive(
     constants: Iterable[Symbol],
     *,
     conditions: bool = True,
+    values: Mapping[Symbol, Expr] | None = None,
 ) -> Derived:
     """The relation of a wave for a claim in certain symbols.
 
@@ -113,15 +118,20 @@ def derive(
         The claim's and the model's symbols for c, epsilon_0 and mu_0, related by c² ε_0 μ_0 = 1.
     conditions : bool, default True
         Whether to use the conditions of the background.
+    values : mapping of Symbol to Expr, optional
+        Put in for wave numbers, angles and parameters.
     """
     raw = wave.relation.exact
     equations = [*wave.linear.conditions, *_light(constants)] if conditions else []
     used = solve_conditions(equations, set(symbols), set(raw.generators))
+    given = dict(values or {})
     angles = angles_of(raw)
-    images = {a: angles.rational(a) for a in raw.generators}
+    images = {a: angles.rational(a.xreplace(given)) for a in raw.generators}
     made = raw.substitute({a: image for a, image in images.items() if a != image})
     for c in used:
         made = made.substitute({c.symbol: c.value})
+    if given:
+        made = made.substitute({s: angles.rational(v) for s, v in given.items()})
     waves = angles.symbols.union(*(c.free_symbols for c in wave.k))
     return Derived(bare(made), tuple(used), Add(*(c**2 for c in wave.k)), waves, angles)
 
@@ -150,7 +160,13 @@ def solve_conditions(
             residual = residual.xreplace({c.symbol: c.value})
         order = sorted(
             residual.free_symbols,
-            key=lambda s: (s in claimed, s.name == "c", s.name not in ("mu_0", "mu0"), s.name),
+            key=lambda s: (
+                s in claimed,
+                s.name == "c",
+                s.name not in ("mu_0", "mu0"),
+                s.name[0] in "Zz",  # a charge number is known sooner than a density
+                s.name,
+            ),
         )
         for symbol in order:
             value = linear_solution(residual, symbol)

@@ -5,26 +5,28 @@ from __future__ import annotations
 import time
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field, replace
-from functools import cached_property
+from functools import cached_property, partial
+from math import isclose
 from typing import TYPE_CHECKING, Any
 
-from sympy import Add, Rational, S, Symbol, cancel, factor, sqrt
+from sympy import Add, Expr, Rational, S, Symbol, cancel, factor, sqrt
 
 from ..declare.notation import paper
 from ..errors import NonPolynomialError
 from ..waves.coefficients import normalized_coefficients
 from .claim import Claim, WaveNames, make_claim, make_rate
 from .compare import compare, covered
-from .convention import Convention, in_si, under_other_conventions
+from .convention import Convention, in_si, to_si, under_other_conventions
 from .derived import Derived, derive
 from .limit import LimitFound, find_limits, verify_limit
+from .monomials import number_of
 from .rates import rate_order
 from .roles import Roles, roles
 from .series import series_order, series_slip
 from .slips import leading_parts, repairs, repairs_as_limit
 from .special import special_values
 from .stated import Stated, read_stated
-from .verdict import Slip, Verdict
+from .verdict import Slip, Verdict, shown_conditions
 
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
@@ -58,6 +60,8 @@ class Case:
         On the monotonic clock.
     reasons : list of str
         Why the author's own conditions do not make the claim right.
+    put_in : mapping of Symbol to Expr
+        Stated values that are put into the claim and the relation.
     """
 
     wave: WaveMatrix
@@ -70,6 +74,7 @@ class Case:
     values: Mapping[str, Any]
     deadline: float
     reasons: list[str] = field(default_factory=list)
+    put_in: Mapping[Symbol, Expr] = field(default_factory=dict)
 
     def as_stated(self) -> Case:
         """With the values that the author states put into the claim and the relation."""
@@ -77,9 +82,7 @@ class Case:
         if not values:
             return self
         claim, whole = (c.mapped(lambda e: e.xreplace(values)) for c in (self.claim, self.whole))
-        made = replace(self, claim=claim, whole=whole)
-        made.__dict__["derived"] = self.derived.substituted(values)
-        return made
+        return replace(self, claim=claim, whole=whole, put_in=values)
 
     @property
     def time(self) -> float:
@@ -97,7 +100,8 @@ class Case:
         return self._derived(True)
 
     def _derived(self, conditions: bool) -> Derived:
-        return derive(self.wave, self._claimed, self.roles.constants, conditions=conditions)
+        constants, given = self.roles.constants, self.put_in
+        return derive(self.wave, self._claimed, constants, conditions=conditions, values=given)
 
     @property
     def fitting(self) -> Derived:
@@ -107,13 +111,40 @@ class Case:
 
     @property
     def _claimed(self) -> set[Symbol]:
-        found: set[Symbol] = self.claim.residual.free_symbols
-        return found
+        ratios = (self.whole.written_out(r) for r in self.stated.ratios)
+        return {s for e in (self.claim.residual, *ratios) for s in e.free_symbols}
 
     @property
     def used(self) -> tuple[str, ...]:
         """The conditions of the background that were used, in words."""
         return in_words(self.fitting)
+
+    @property
+    def unused(self) -> tuple[str, ...]:
+        """That a claim which is right as it stands needs no conditions."""
+        return ("right without the stated conditions",) if self.stated else ()
+
+    def extra_zeros(self, derived: Derived) -> tuple[str, ...]:
+        """That the claim has ω = 0 more often than the laws."""
+        found, sheets = derived.with_zeros(self.claim.residual)
+        laws = self.wave.relation.zero_modes
+        if sheets > 1 or found.lowest <= laws:
+            return ()
+        return (f"ω = 0 is {found.lowest}-fold in the claim, {laws}-fold in the laws",)
+
+    def contradicted(self, stated: Mapping[str, Expr]) -> tuple[str, ...]:
+        """Where the given values are not those for which the claim is right."""
+        found = []
+        for name, value in stated.items():
+            needed = number_of(value, self.values, self.claim)
+            given = number_of(Symbol(name), self.values, self.claim)
+            if (
+                needed is not None
+                and given is not None
+                and not isclose(needed, given, rel_tol=1e-9)
+            ):
+                found.append(f"at the given values {name} = {given:.6g}, not {needed:.6g}")
+        return tuple(found)
 
     def verdict(self, kind: str, proof: str, *, agrees: bool = False, **more: Any) -> Verdict:
         return Verdict(kind, agrees, proof, self.written.reading, **more)
@@ -138,8 +169,10 @@ def judge(
     names = WaveNames(wave, where or {})
     rate = make_rate(names, claim)
     written = rate or make_claim(wave, claim, where or {})
-    stated = read_stated(names, under)
     convention, model = convention or Convention(), roles(wave)
+    held = written.residual.free_symbols
+    meant = partial(to_si, convention=convention, found=model)
+    stated = read_stated(WaveNames(wave, where or {}), under, held, meant)
     numbers = {**wave.linear.defaults, **{str(n): v for n, v in (values or {}).items()}}
     made, whole = (
         in_si(c, convention, model)
@@ -159,9 +192,12 @@ def _answer(case: Case) -> Verdict:
             return found
     case = case.as_stated()
     somewhere = _other_convention(case) or _where_right(case)
-    slips = _slips(case, somewhere)
+    slips, exact = _slips(case, somewhere)
     notes = (*case.reasons, *case.used)
-    if somewhere is not None and not (slips and somewhere.doubtful):
+    doubtful = somewhere is not None and (
+        somewhere.doubtful or (exact and somewhere.kind != "convention")
+    )
+    if somewhere is not None and not (slips and doubtful):
         return case.verdict(
             somewhere.kind,
             somewhere.proof,
@@ -178,18 +214,23 @@ def _answer(case: Case) -> Verdict:
     return case.verdict("differs", proof, notes=(*notes, *side_by_side(case)))
 
 
-def _slips(case: Case, somewhere: Somewhere | None) -> tuple[Slip, ...]:
-    """Repairs of the relation, of an expansion's later term, or of a leading part."""
+def _slips(case: Case, somewhere: Somewhere | None) -> tuple[tuple[Slip, ...], bool]:
+    """Repairs of the relation, of an expansion's later term, or of a leading part.
+
+    The second tells that a sign or a number in one place makes the claim exact, as no truncation is mended.
+    """
     if case.claim.solved and somewhere is None and (later := _later_term(case)):
-        return later
+        return later, False
     answered = somewhere is not None and not somewhere.doubtful
     budget = min(case.time / 2, ASIDE) if answered else case.time / 2
     found = repairs(case.claim, case.fitting, budget)
+    numbers = (r.slips[0].multiplier for r in found if len(r.slips) == 1)
+    exact = any(n.is_number and n not in (0, 1) for n in numbers)
     if not found and (somewhere is None or somewhere.doubtful):
         found = repairs_as_limit(case.claim, case.fitting, case.time / 2)
     if not found and not case.claim.solved:
-        return _later_term(case)
-    return tuple(s for repair in found for s in repair.slips)
+        return _later_term(case), False
+    return tuple(s for repair in found for s in repair.slips), exact
 
 
 def _later_term(case: Case) -> tuple[Slip, ...]:
@@ -213,7 +254,7 @@ def _rate(case: Case) -> Verdict:
     found = rate_order(value, stated.whole, stated.derived, ratios, case.values, case.time / 2)
     if found is not None:
         notes = (*_values_in_words(case), *case.used)
-        stated_so = bool(case.stated)
+        stated_so = ratios is not None
         return case.verdict(
             "series", found.proof, agrees=stated_so, conditions=found.groups, notes=notes
         )
@@ -238,12 +279,13 @@ def _same(case: Case) -> Verdict | None:
     """Identical, a factor or a branch, with the conditions of the background where they are needed."""
     found = compare(case.claim, case.plain)
     if found is not None:
-        return case.verdict(found.kind, found.proof, agrees=True)
+        notes = (*case.extra_zeros(case.plain), *case.unused)
+        return case.verdict(found.kind, found.proof, agrees=True, notes=notes)
     if case.derived.conditions:
         found = compare(case.claim, case.derived)
         if found is not None:
-            words = in_words(case.derived)
-            return case.verdict(found.kind, found.proof, agrees=True, notes=words)
+            notes = (*in_words(case.derived), *case.extra_zeros(case.derived), *case.unused)
+            return case.verdict(found.kind, found.proof, agrees=True, notes=notes)
     return None
 
 
@@ -255,10 +297,11 @@ def _as_stated(case: Case) -> Verdict | None:
     if values:
         found = compare(stated.claim, stated.derived)
         if found is not None:
-            return case.verdict("special", found.proof, agrees=True, conditions=named)
+            notes = (*stated.used, *case.contradicted(named))
+            return case.verdict("special", found.proof, agrees=True, conditions=named, notes=notes)
     if not ratios:
         return None
-    also = _values_in_words(case)
+    also = (*_values_in_words(case), *stated.used, *case.contradicted(named))
     limit = verify_limit(stated.whole, stated.derived, ratios, case.values, case.time / 3)
     if not isinstance(limit, str):
         notes = (*also, *_limit_notes(limit))
@@ -311,7 +354,11 @@ class Somewhere:
         return sum(1 if value.is_number else 2 for value in self.conditions.values())
 
     def as_notes(self) -> tuple[str, ...]:
-        return (f"right in part or nowhere in nature: {', '.join(map(str, self.conditions))}",)
+        where = shown_conditions(self.conditions)
+        doubt = (
+            "right in part or nowhere in nature" if self.doubtful else f"{self.kind} as well, where"
+        )
+        return (f"{doubt}: {', '.join(where)}",)
 
 
 def _other_convention(case: Case) -> Somewhere | None:
@@ -351,7 +398,7 @@ def _special(case: Case) -> Somewhere | None:
     for values in special_values(case.claim, case.derived, case.time / 5):
         named = {s.name: v for s, v in values.items()}
         proof = "with these values the claim divides the derived relation exactly"
-        return Somewhere("special", proof, named, case.used)
+        return Somewhere("special", proof, named, (*case.used, *case.contradicted(named)))
     return None
 
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import time
-from collections.abc import Mapping, Sequence
+from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass
 
 from sympy import Expr, Symbol
@@ -66,14 +66,19 @@ class Question:
         return Small(group, number_of(group, self.values, self.claim), physical)
 
 
-def question(claim: Claim, derived: Derived, values: Mapping[str, float] | None) -> Question:
-    """What is asked of a claim and a relation."""
+def question(
+    claim: Claim,
+    derived: Derived,
+    values: Mapping[str, float] | None,
+    of_order_one: Collection[Symbol] = (),
+) -> Question:
+    """What is asked of a claim and a relation; symbols may be taken to be of order one."""
     polynomial, _ = derived.numerator(claim.residual)
     factors = tuple(f for f, _ in derived.factors)
     rest = polynomial.exact_div(polynomial.gcd(derived.polynomial))
     parts = tuple(f for f, _ in rest.factor()[1])
     used = {s for d in claim.definitions.values() for s in d.free_symbols} & derived.symbols
-    space = space_of([*parts, *factors], used)
+    space = space_of([*parts, *factors], used, of_order_one)
     wording = Wording(space, claim, CODATA)
     return Question(claim, parts, factors, space, wording, derived.wave_symbols, values or {})
 

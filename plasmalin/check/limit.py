@@ -9,15 +9,17 @@ from __future__ import annotations
 
 import time
 from collections.abc import Iterable, Mapping
+from dataclasses import replace
 from itertools import product
 
 from sympy import Expr, S
 
+from ..declare.notation import paper
 from .claim import Claim
 from .cones import weights
 from .derived import Derived
-from .leading import LimitFound, apart, best_of, question
-from .monomials import conditions
+from .leading import LimitFound, Question, apart, best_of, question
+from .monomials import CHARGE_NUMBER, conditions
 from .orderings import find_limits
 
 __all__ = ["LimitFound", "find_limits", "verify_limit"]
@@ -41,15 +43,27 @@ def verify_limit(
     values, budget
         As for `find_limits`.
     """
-    asked = question(claim, derived, values)
-    given = list(ratios)
-    cones = conditions(claim, asked.space, given)
+    given, end = list(ratios), time.monotonic() + budget
+    found = _verified(question(claim, derived, values), derived, given, end)
+    charges = sorted(
+        (s for s in derived.symbols if CHARGE_NUMBER.match(s.name)), key=lambda s: s.name
+    )
+    if not isinstance(found, str) or not charges:
+        return found
+    wider = _verified(question(claim, derived, values, charges), derived, given, end)
+    if isinstance(wider, str):
+        return found
+    return replace(wider, notes=(*wider.notes, f"with {', '.join(map(paper, charges))} of order 1"))
+
+
+def _verified(asked: Question, derived: Derived, given: list[Expr], end: float) -> LimitFound | str:
+    claim = asked.claim
+    cones = conditions(claim, asked.space, [derived.using(claim.written_out(r)) for r in given])
     if isinstance(cones, str):
         return cones
     cones = [c for c in cones if weights(asked.space.sized, c) is not None]
     if not cones:
         return "the stated conditions contradict each other"
-    end = time.monotonic() + budget
     notes: list[str] = []
     left_out: list[Expr] = []
     for part, cone in product(asked.parts, cones):

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Iterable, Mapping
+from collections.abc import Collection, Iterable, Mapping
 from dataclasses import dataclass, field
 from fractions import Fraction
 from typing import TypeAlias
@@ -32,6 +32,7 @@ Coefficient: TypeAlias = tuple[int, int]
 Terms: TypeAlias = dict[Vector, Coefficient]
 
 PURE_NUMBER = re.compile(r"gamma(_?\w+)?$|g[a-z]$|gamma")
+CHARGE_NUMBER = re.compile(r"[Zz](_?\w+)?$")
 ELECTRON_MASS = ("m_e", "me", "m_electron")
 MASS = re.compile(r"(m|M)(_?(?!u\d?_?)\w+)?$")
 ORDINARY, NATURE, SHORTHAND = 1.0, 1.05, 1.1
@@ -106,14 +107,18 @@ def base_and_power(generator: Expr) -> tuple[Expr, Fraction]:
     return generator, Fraction(1)
 
 
-def space_of(polynomials: Iterable[ExactPolynomial], more: Iterable[Symbol] = ()) -> Space:
+def space_of(
+    polynomials: Iterable[ExactPolynomial],
+    more: Iterable[Symbol] = (),
+    of_order_one: Collection[Symbol] = (),
+) -> Space:
     """The columns of several polynomials; numbers such as π and dimensionless adiabatic exponents come last."""
     made = list(polynomials)
     bases = {base_and_power(g)[0] for p in made for g in p.generators} | set(more)
     bases -= {omega}
     ordered = sorted(bases, key=str)
     whole = Space((omega, *ordered), len(ordered) + 1)
-    pure = {c for c in ordered if not c.free_symbols} | _pure(whole, made)
+    pure = {c for c in ordered if not c.free_symbols or c in of_order_one} | _pure(whole, made)
     sized = [c for c in ordered if c not in pure]
     return Space((omega, *sized, *(c for c in ordered if c in pure)), len(sized) + 1)
 

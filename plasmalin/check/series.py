@@ -169,7 +169,7 @@ def _searched(
         return None
     end = time.monotonic() + budget
     slips: list[SeriesSlip] = []
-    given = None if ratios is None else [claim.written_out(r) for r in ratios]
+    given = None if ratios is None else [derived.using(claim.written_out(r)) for r in ratios]
     for weights in paths(expansion.terms, expansion.symbols, derived, given):
         here: list[SeriesSlip] = []
         for f in expansion.factors:

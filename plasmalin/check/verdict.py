@@ -116,17 +116,10 @@ class Verdict:
     slips: tuple[Slip, ...] = ()
     notes: tuple[str, ...] = field(default=())
 
-    def _conditions(self) -> list[str]:
-        if isinstance(self.conditions, Mapping):
-            return [f"{name} = {value}" for name, value in self.conditions.items()]
-        given = self.conditions if isinstance(self.conditions, tuple) else (self.conditions,)
-        return [str(c) for c in given]
-
     def _lines(self) -> list[str]:
-        shown = self._conditions()
-        lines = [
-            f"{self.kind}: {WORDS[self.kind].removesuffix('' if shown else ' where')}{':' if shown else '.'}"
-        ]
+        shown = shown_conditions(self.conditions)
+        words = WORDS[self.kind] if shown else WORDS[self.kind].removesuffix(" where")
+        lines = [f"{self.kind}: {words}{':' if shown else '.'}"]
         lines += [f"  {c}" for c in shown]
         lines += [f"  {UNSTATED}"] if self.kind in STATED and not self.agrees else []
         lines += [f"  repair: {s}" for s in self.slips]
@@ -150,6 +143,14 @@ class Verdict:
         items = "".join(f"<li>{line}</li>" for line in rest)
         claim = f"$\\displaystyle {html.escape(self.reading)}$"
         return f"<p>{claim}</p><p><b>{head}</b></p><ul>{items}</ul>"
+
+
+def shown_conditions(conditions: Any) -> list[str]:
+    """The conditions of a verdict, one text for each."""
+    if isinstance(conditions, Mapping):
+        return [f"{name} = {value}" for name, value in conditions.items()]
+    given = conditions if isinstance(conditions, tuple) else (conditions,)
+    return [str(c) for c in given]
 
 
 def _repair(slip: Slip) -> str:

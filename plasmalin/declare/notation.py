@@ -96,8 +96,9 @@ def _primitive(entries: list[Any]) -> tuple[Any, list[Any]]:
 
 
 def name_text(name: str) -> str:
-    """A name with its Greek letters: omega_pe becomes ω_pe, and khat becomes k̂."""
-    return "_".join(_letter(part) for part in name.split("_"))
+    """A name with its Greek letters: omega_pe becomes ω_pe, and khat becomes k̂; ω_pi is of plasma ions."""
+    first, *more = name.split("_")
+    return "_".join([_letter(first), *(p if p == "pi" else _letter(p) for p in more)])
 
 
 def _letter(part: str) -> str:

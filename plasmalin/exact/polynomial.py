@@ -115,6 +115,10 @@ class ExactPolynomial:
         return isinstance(other, ExactPolynomial) and self._key() == other._key()
 
     def __hash__(self) -> int:
+        return self._hash
+
+    @cached_property
+    def _hash(self) -> int:
         return hash(self._key())
 
     def __reduce__(self) -> tuple[Any, ...]:

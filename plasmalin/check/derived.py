@@ -127,11 +127,14 @@ def derive(
     given = dict(values or {})
     angles = angles_of(raw)
     images = {a: angles.rational(a.xreplace(given)) for a in raw.generators}
-    made = raw.substitute({a: image for a, image in images.items() if a != image})
-    for c in used:
-        made = made.substitute({c.symbol: c.value})
-    if given:
-        made = made.substitute({s: angles.rational(v) for s, v in given.items()})
+    changes: list[dict[Any, Expr]] = [
+        {a: image for a, image in images.items() if a != image},
+        *({c.symbol: c.value} for c in used),
+        {s: angles.rational(v) for s, v in given.items()},
+    ]
+    made = raw
+    for change in changes:
+        made = made.substitute(change) if change else made
     waves = angles.symbols.union(*(c.free_symbols for c in wave.k))
     return Derived(bare(made), tuple(used), Add(*(c**2 for c in wave.k)), waves, angles)
 

@@ -14,6 +14,7 @@ from sympy import Add, Expr, Rational, S, Symbol, cancel, factor, sqrt
 from ..declare.notation import paper
 from ..errors import NonPolynomialError
 from ..waves.coefficients import normalized_coefficients
+from .balances import leading_parts
 from .claim import Claim, WaveNames, make_claim, make_rate
 from .compare import compare, covered
 from .convention import Convention, in_si, to_si, under_other_conventions
@@ -23,7 +24,7 @@ from .monomials import number_of
 from .rates import rate_order
 from .roles import Roles, roles
 from .series import series_order, series_slip
-from .slips import leading_parts, repairs, repairs_as_limit
+from .slips import repairs, repairs_as_limit
 from .special import special_values
 from .stated import Stated, read_stated
 from .verdict import Slip, Verdict, shown_conditions
@@ -31,6 +32,10 @@ from .verdict import Slip, Verdict, shown_conditions
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
 
+SHOWN = 150
+"""Terms of a relation whose coefficients are shown side by side."""
+LONG = 800
+"""Terms of a relation in which special values and orderings are searched for."""
 ASIDE = 4.0
 """Seconds for the slips of a claim that is right somewhere."""
 LONGEST = 400
@@ -372,6 +377,12 @@ def _other_convention(case: Case) -> Somewhere | None:
 
 def _where_right(case: Case) -> Somewhere | None:
     """The values or the ordering that asks least; values stand first where both ask as much."""
+    if len(case.derived.polynomial) > LONG:
+        case.reasons.append(
+            f"the derived relation has {len(case.derived.polynomial)} terms: "
+            "special values and orderings were not searched for"
+        )
+        return None
     orders = (_series, _limit) if case.claim.solved else (_limit, _series)
     ordered = (answer for question in orders if (answer := question(case)) is not None)
     found = [s for s in (_special(case), next(ordered, None)) if s is not None]
@@ -382,7 +393,7 @@ def _special_limit(case: Case) -> Somewhere | None:
     """Values of parameters and an ordering together."""
     degree = case.derived.numerator(case.claim.residual)[0].degree
     end = time.monotonic() + case.time / 4
-    for part in leading_parts(case.derived, degree):
+    for part in leading_parts(case.derived, degree, end):
         if time.monotonic() > end:
             return None
         for values in special_values(case.claim, replace(case.derived, polynomial=part), 1.0):
@@ -422,6 +433,9 @@ def side_by_side(case: Case) -> Iterator[str]:
     claimed, _ = case.derived.numerator(case.claim.residual)
     factors = [f for f, _ in case.derived.factors if not covered(f, claimed)]
     same = [f for f in factors if f.degree == claimed.degree] or [case.derived.polynomial]
+    if max(len(same[0]), len(claimed)) > SHOWN:
+        yield f"the derived relation has {len(same[0])} terms, the claim {len(claimed)}"
+        return
     right, theirs = (normalized_coefficients(p) for p in (same[0], claimed))
     yield "coefficients of the powers of ω that differ, derived | claimed:"
     for power in sorted({*right, *theirs}, reverse=True):

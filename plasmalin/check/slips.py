@@ -5,7 +5,6 @@ from __future__ import annotations
 import time
 from collections.abc import Iterable, Iterator
 from dataclasses import dataclass, replace
-from fractions import Fraction
 from itertools import combinations, product
 from typing import Any
 
@@ -15,11 +14,10 @@ from ..declare.notation import paper
 from ..declare.operators import omega
 from ..errors import PlasmalinError
 from ..exact.polynomial import ExactPolynomial
-from ..exact.polynomial import polynomial as read_exact
-from ..waves.ordering import leading_balances
+from .balances import leading_parts
 from .claim import Claim
 from .compare import Match, compare, covered
-from .derived import Derived, bare
+from .derived import Derived
 from .missing import Shapes, missing
 from .places import (
     Changes,
@@ -37,8 +35,6 @@ from .search import Search, second, solve_one, solve_two, unknown
 from .telling import cost, is_idle, shortened, told
 from .verdict import Slip
 
-MOST_PARTS = 40
-"""Leading parts of the derived relation that are tried."""
 MOST = 6
 """Repairs that are listed."""
 DIVISIONS = ("over", "over twice", "more")
@@ -96,29 +92,13 @@ def repairs_as_limit(claim: Claim, derived: Derived, budget: float) -> list[Repa
     deadline = time.monotonic() + budget
     polynomial, _ = derived.numerator(claim.residual)
     shared: dict[Any, Any] = {}
-    for target in leading_parts(derived, polynomial.degree):
+    for target in leading_parts(derived, polynomial.degree, deadline):
         part = replace(derived, polynomial=target)
         search = Search(claim, part, target, deadline, shared)
         found = [*_single(search), *_divided(search)]
         if found or search.late:
             return sorted(found, key=lambda r: r.cost)[:MOST]
     return []
-
-
-def leading_parts(derived: Derived, degree: int) -> list[ExactPolynomial]:
-    """The leading balances of a degree in ω under one symbol, or two, becoming small or large."""
-    found: dict[Expr, ExactPolynomial] = {}
-    for factor, _ in derived.factors:
-        if factor.degree <= degree:
-            continue
-        plain = [g for g in factor.generators if g.is_Symbol]
-        single = [{g: Fraction(w)} for g in plain for w in (1, -1)]
-        double = [{**a, **b} for a, b in combinations(single, 2) if set(a) != set(b)]
-        for weights in (*single, *double):
-            for balance in leading_balances(factor, weights, None):
-                if balance.roots == degree and balance.expr not in found:
-                    found[balance.expr] = bare(read_exact(balance.expr, omega))
-    return sorted(found.values(), key=lambda p: -len(p))[:MOST_PARTS]
 
 
 def _whole(claim: Claim, derived: Derived, deadline: float) -> list[Repair]:

@@ -46,9 +46,9 @@ def leading_balances(
     The slope of an edge is minus the scaling of omega, its length the number of roots (Newton; Puiseux 1850,
     J. Math. Pures Appl. 15, 365; from memory).
     """
-    orders = [weights.get(g, Fraction(0)) for g in polynomial.generators]
+    places = [(1 + i, weights[g]) for i, g in enumerate(polynomial.generators) if g in weights]
     terms = [
-        (e[0], sum((w * n for w, n in zip(orders, e[1:], strict=True)), Fraction(0)), e, re, im)
+        (e[0], sum((w * e[i] for i, w in places), Fraction(0)), e, re, im)
         for e, re, im in polynomial.terms()
     ]
     if fixed is not None:

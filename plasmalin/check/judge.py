@@ -18,9 +18,10 @@ from .compare import compare, covered
 from .convention import Convention, in_si, under_other_conventions
 from .derived import Derived, derive
 from .limit import LimitFound, find_limits, verify_limit
+from .questions import Repair
 from .roles import Roles, roles
 from .series import series_order
-from .slips import Repair, repairs, repairs_as_limit
+from .slips import repairs, repairs_as_limit
 from .special import special_values
 from .stated import Stated, read_stated
 from .verdict import Verdict

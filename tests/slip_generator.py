@@ -107,6 +107,8 @@ def _power_of_a_sum(expr, rng):
         return None
     path, node = rng.choice(found)
     powers = [-node.exp, node.exp / 2 if abs(node.exp) > 1 else 2 * node.exp]
+    if path and isinstance(parent(expr, path), Add):
+        powers = [p for p in powers if p != 1]  # a sum in a sum is no longer seen as one
     return put(expr, path, node.base ** rng.choice(powers))
 
 

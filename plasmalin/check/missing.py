@@ -230,7 +230,8 @@ def collected(value: Expr) -> Expr:
     top, bottom = made.as_numer_denom()
     if isinstance(top, Pow) and isinstance(top.base, Add):
         return expand(top.base / bottom ** (1 / top.exp)) ** top.exp
-    return made if made.count_ops() < value.count_ops() else value
+    plain = any(t.is_number for t in Add.make_args(value))  # 1 + a + b reads best as it is
+    return made if not plain and made.count_ops() < value.count_ops() else value
 
 
 def _sum(search: Search, value: ValueAt) -> Expr | None:

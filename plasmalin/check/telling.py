@@ -17,7 +17,9 @@ KIND_COST = {
 
 
 DEPENDS = 3.0
-"""More for a factor that depends on ω."""
+"""More for a factor that depends on ω, and twice for one that holds a sum."""
+RESONANCE = 2.0
+"""For a denominator that vanishes at a frequency, which terms of a dispersion relation have."""
 
 
 def told(edit: Edit, value: Expr) -> Slip:
@@ -125,7 +127,8 @@ def cost(edit: Edit, value: Expr) -> float:
     """How far a repair is from what a referee would write: a number, a sign, one symbol, at the term itself."""
     terms = Add.make_args(value)
     size = 1.0 if is_power(edit, value) else len(terms) - 1 + sum(map(_size, terms))
-    size += DEPENDS if edit.kind == "times" and value.has(omega) else 0.0
+    if edit.kind == "times" and value.has(omega):
+        size += DEPENDS * (2 if value.atoms(Add) else 1)
     return size + _place_cost(edit, value) + KIND_COST[edit.kind] + 0.01 * len(str(edit.term))
 
 
@@ -145,11 +148,17 @@ def _weight(factor: Expr) -> float:
     if factor == 1:
         return 0.0
     base = _base(factor)
+    if isinstance(base, Add) and _is_resonance(base, _power(factor)):
+        return RESONANCE
     if isinstance(base, Add):
         return max(3.5, len(base.args) - 1 + sum(map(_size, base.args)))
     depends = 1.5 if factor.has(omega) else 0.0
     high = 0.4 if abs(_power(factor)) > 1 else 0.0
     return 1.0 + depends + high + (not _power(factor).is_Integer)
+
+
+def _is_resonance(base: Expr, power: Expr) -> bool:
+    return bool(power.is_negative) and base.has(omega) and len(base.args) == 2
 
 
 def _place_cost(edit: Edit, value: Expr) -> float:

@@ -9,21 +9,21 @@ from functools import cached_property, partial
 from math import isclose
 from typing import TYPE_CHECKING, Any
 
-from sympy import Expr, S, Symbol, cancel
+from sympy import Add, Expr, Pow, S, Symbol, cancel, expand, pi
 
 from ..declare.notation import paper
 from ..errors import NonPolynomialError
 from ..waves.coefficients import normalized_coefficients
 from .claim import Claim, WaveNames, make_claim
-from .compare import compare, covered
+from .compare import compare, covered, has_only_roots_of
 from .convention import Convention, in_si, to_si, under_other_conventions
-from .derived import Derived, derive
+from .derived import Derived, derive, half_tangent
 from .limit import LimitFound, find_limits, verify_limit
 from .monomials import number_of
 from .roles import Roles, roles
 from .series import series_order
 from .slips import Repair, repairs, repairs_as_limit
-from .special import special_values
+from .special import MOST_TERMS, special_values
 from .stated import Stated, read_stated
 from .verdict import Verdict, shown_conditions
 
@@ -32,6 +32,9 @@ if TYPE_CHECKING:
 
 LONGEST = 400
 """Characters of a coefficient that is shown."""
+
+SIDE_BY_SIDE = 300
+"""Terms of two relations whose coefficients are compared one by one."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -183,8 +186,19 @@ def _answer(case: Case) -> Verdict:
         doubt = () if somewhere is None else somewhere.as_notes()
         return case.verdict("differs", proof, slips=slips, notes=(*notes, *doubt))
     late = " within the time given" if case.time == 0 else ""
+    if len(case.derived.polynomial) > MOST_TERMS:
+        late += "; the relation is too long to be searched for special values and expansions"
     proof = f"no common divisor takes up the claim; no single repair was found{late}"
-    return case.verdict("differs", proof, notes=(*notes, *side_by_side(case)))
+    return case.verdict("differs", proof, notes=(*notes, *(_almost(case) or side_by_side(case))))
+
+
+def _almost(case: Case) -> tuple[str, ...]:
+    """What is wrong with a claim that is wrong though all its roots are right."""
+    if not has_only_roots_of(case.claim, case.derived):
+        return ()
+    return (
+        "its roots are roots of the laws, but not as often, or with ω = 0 or no wave where the laws have one",
+    )
 
 
 def _where(case: Case) -> Somewhere | None:
@@ -192,6 +206,9 @@ def _where(case: Case) -> Somewhere | None:
     special = _special(case)
     if special is not None and len(special.conditions) == 1:
         return special
+    along = _direction(case)
+    if along is not None:
+        return along
     limit = None if special is None else _limit(case)
     if limit is not None and not limit.doubtful:
         return limit
@@ -207,7 +224,7 @@ def _doubtful(somewhere: Somewhere, repaired: list[Repair]) -> bool:
 
 def _repairs(case: Case, somewhere: Somewhere | None) -> list[Repair]:
     found = repairs(case.claim, case.derived, case.time / 2)
-    if found or (somewhere is not None and not somewhere.doubtful):
+    if found or case.time == 0 or (somewhere is not None and not somewhere.doubtful):
         return found
     return repairs_as_limit(case.claim, case.derived, case.time)
 
@@ -241,6 +258,8 @@ def _as_stated(case: Case) -> Verdict | None:
     also = tuple(f"with {name} = {paper(value)}" for name, value in named.items())
     also = (*also, *stated.used, *case.contradicted(named))
     limit = verify_limit(stated.claim, stated.derived, ratios, case.values, case.time / 3)
+    if not isinstance(limit, str) and any("confirmed" in n and "tan(" in n for n in limit.notes):
+        limit = "a term that the claim keeps is right in one direction only"
     if not isinstance(limit, str):
         notes = (*also, *_limit_notes(limit))
         return case.verdict("limit", LEADING, agrees=True, conditions=limit.groups, notes=notes)
@@ -305,7 +324,24 @@ def _special(case: Case) -> Somewhere | None:
     return None
 
 
+def _direction(case: Case) -> Somewhere | None:
+    """The direction of the wave, of which the claim says nothing, along or across an axis."""
+    waves = case.wave.wave_symbols
+    held = case.claim.residual.free_symbols
+    for s in (s for s in waves if s not in held and len(waves) > 1):
+        angle = half_tangent(s) in case.derived.symbols
+        for value in (S.Zero, pi / 2) if angle else (S.Zero,):
+            there = replace(case, put_in={**case.put_in, s: value})
+            found = compare(case.claim, there.derived)
+            if found is not None:
+                return Somewhere("special", found.proof, {s.name: value}, there.used)
+    return None
+
+
 def _limit(case: Case) -> Somewhere | None:
+    claimed, _ = case.derived.numerator(case.claim.residual)
+    if len(claimed) > len(case.derived.polynomial):
+        return None  # a leading part is shorter than the whole
     for limit in find_limits(case.claim, case.derived, case.values, case.time / 3):
         in_part = any("confirmed" in note for note in limit.notes)
         doubtful = in_part or not limit.physical
@@ -314,10 +350,18 @@ def _limit(case: Case) -> Somewhere | None:
 
 
 def _series(case: Case) -> Somewhere | None:
+    if _has_long_roots(case.claim) or len(case.derived.polynomial) > MOST_TERMS:
+        return None
     found = series_order(case.claim, case.derived, None, case.values, case.time / 4)
     if found is None:
         return None
     return Somewhere("series", found.proof, found.groups, found.notes)
+
+
+def _has_long_roots(claim: Claim) -> bool:
+    """Whether roots of long sums stand in a claim: no truncated expansion, and slow to expand."""
+    roots = (p for p in claim.residual.atoms(Pow) if not p.exp.is_Integer)
+    return any(len(Add.make_args(expand(p.base))) > 3 for p in roots)
 
 
 def side_by_side(case: Case) -> Iterator[str]:
@@ -325,6 +369,9 @@ def side_by_side(case: Case) -> Iterator[str]:
     claimed, _ = case.derived.numerator(case.claim.residual)
     factors = [f for f, _ in case.derived.factors if not covered(f, claimed)]
     same = [f for f in factors if f.degree == claimed.degree] or [case.derived.polynomial]
+    if len(same[0]) + len(claimed) > SIDE_BY_SIDE:
+        yield f"of degree {same[0].degree} | {claimed.degree} in ω, too long to be shown side by side"
+        return
     right, theirs = (normalized_coefficients(p) for p in (same[0], claimed))
     yield "coefficients of the powers of ω that differ, derived | claimed:"
     for power in sorted({*right, *theirs}, reverse=True):

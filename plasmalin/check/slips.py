@@ -91,7 +91,7 @@ def repairs_as_limit(claim: Claim, derived: Derived, budget: float) -> list[Repa
     """Repairs after which the claim is a leading part of the derived relation, one or two symbols scaling."""
     deadline = time.monotonic() + budget
     polynomial, _ = derived.numerator(claim.residual)
-    for target in leading_parts(derived, polynomial.degree):
+    for target in leading_parts(derived, polynomial.degree, deadline):
         part = replace(derived, polynomial=target)
         search = Search(claim, part, target, deadline)
         found = [*_single(search), *_divided(search)]
@@ -100,7 +100,7 @@ def repairs_as_limit(claim: Claim, derived: Derived, budget: float) -> list[Repa
     return []
 
 
-def leading_parts(derived: Derived, degree: int) -> list[ExactPolynomial]:
+def leading_parts(derived: Derived, degree: int, deadline: float) -> list[ExactPolynomial]:
     """The leading balances of a degree in ω under one symbol, or two, becoming small or large."""
     found: dict[Expr, ExactPolynomial] = {}
     for factor, _ in derived.factors:
@@ -110,6 +110,8 @@ def leading_parts(derived: Derived, degree: int) -> list[ExactPolynomial]:
         single = [{g: Fraction(w)} for g in plain for w in (1, -1)]
         double = [{**a, **b} for a, b in combinations(single, 2) if set(a) != set(b)]
         for weights in (*single, *double):
+            if time.monotonic() > deadline:
+                return []
             for balance in leading_balances(factor, weights, None):
                 if balance.roots == degree and balance.expr not in found:
                     found[balance.expr] = bare(read_exact(balance.expr, omega))

@@ -129,7 +129,6 @@ WRONG = [
     ("ion_acoustic", "omega = k c_s/sqrt(1 + k^2 lambda_De^2)", ION, None, "special"),
     ("ion_acoustic", "omega^2 = k^2 c_s^2/(1 - k^2 lambda_De^2) + gamma_i k^2 T_i/m_i", ION, None, "differs"),
     ("cold_along", "n^2 = R", COLD | {"R": "1 - omega_pe^2/(omega (omega + Omega_e)) - omega_pi^2/(omega (omega + Omega_i))"}, None, "differs"),
-    ("light", "(1 - c^2 k^2/omega_pe^2)(omega^2 - omega_pe^2 - c^2 k^2) = 0", PE, None, "differs"),
     ("mhd", "omega^2 = k^2 v_A^2 sin^2 theta", MHD, None, "differs"),
     ("mhd", "omega^2 = k^2 (c_s^2 + v_A^2)", MHD, None, "special"),
     ("mhd", FAST.format("+").replace("cos", "sin"), MHD, None, "differs"),

@@ -16,7 +16,6 @@ from ..exact.polynomial import ExactPolynomial
 from .claim import Claim
 from .derived import Derived, bare
 
-
 LONGEST = 1000
 """Terms of a claim freed of its roots that is searched for repeated factors."""
 

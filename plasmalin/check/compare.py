@@ -3,15 +3,21 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import reduce
+from operator import mul
 
 from sympy import Add, Expr, Mul, Pow
 
 from ..declare.notation import paper
 from ..declare.operators import omega
+from ..errors import DeclarationError
 from ..exact.finite import may_divide
 from ..exact.polynomial import ExactPolynomial
 from .claim import Claim
 from .derived import Derived, bare
+
+LONGEST = 1000
+"""Terms of a claim freed of its roots that is searched for repeated factors."""
 
 
 @dataclass(frozen=True)
@@ -31,9 +37,19 @@ class Match:
 
 
 def compare(claim: Claim, derived: Derived) -> Match | None:
-    """How a claim agrees with the derived relation, or None where it does not."""
+    """How a claim agrees with the derived relation, or None where it does not.
+
+    Raises
+    ------
+    DeclarationError
+        When both sides of the claim are the same.
+    """
     found, sheets = derived.with_zeros(claim.residual)
+    if found.degree < 0:
+        raise DeclarationError("claim: both sides are the same, so it says nothing of a wave")
     polynomial, extraneous = without_poles(found, claim, derived)
+    if sheets > 1 and len(polynomial) < LONGEST:
+        polynomial = without_repeats(polynomial)
     made = match(bare(polynomial), sheets, derived, claim.solved)
     if made is None or (made.kind != "identical" and _loses(claim, polynomial, derived)):
         return None
@@ -67,6 +83,14 @@ def without_poles(
     return polynomial, taken
 
 
+def without_repeats(polynomial: ExactPolynomial) -> ExactPolynomial:
+    """Every factor once: the sheets of several roots may meet."""
+    factors = polynomial.factor()[1]
+    if all(n == 1 for _, n in factors):
+        return polynomial
+    return reduce(mul, (f for f, _ in factors))
+
+
 def _expressions(claim: Claim) -> list[Expr]:
     return [claim.written_out(e) for e in (claim.left, claim.right)]
 
@@ -85,6 +109,12 @@ def loses_a_mode(claim: Claim) -> bool:
     """Whether the claim is a product with a factor, a sum that holds no ω and may vanish, which then is no wave."""
     factors = (claim.written_out(f) for f in Mul.make_args(claim.left - claim.right))
     return any(isinstance(f, Add) and not f.has(omega) and not f.is_nonzero for f in factors)
+
+
+def has_only_roots_of(claim: Claim, derived: Derived) -> bool:
+    """Whether every root of a claim but ω = 0 is one of the derived relation, however often."""
+    factors = derived.numerator(claim.residual)[0].factor()[1]
+    return bool(factors) and all(covered(f, derived.polynomial) for f, _ in factors)
 
 
 def match(

@@ -90,7 +90,8 @@ class Derived:
 
     def with_zeros(self, expr: Expr) -> tuple[ExactPolynomial, int]:
         """As `numerator`, powers of ω kept."""
-        found, sheets = rational_numerator(self.rational(expr), omega)
+        own = any(g.is_number and g.is_algebraic for g in self.polynomial.generators)
+        found, sheets = rational_numerator(self.rational(expr), omega, numbers=not own)
         return found.primitive()[1], sheets
 
     def substituted(self, values: dict[Any, Any]) -> Derived:

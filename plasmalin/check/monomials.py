@@ -147,7 +147,8 @@ class Wording:
         self.shorthands: list[tuple[Symbol, Vector]] = []
         for symbol in claim.definitions:
             meaning = claim.written_out(symbol)
-            v = space.exponents(_one_monomial(meaning)) if meaning != symbol else None
+            single = meaning != symbol and not meaning.has(Add)
+            v = space.exponents(_one_monomial(meaning)) if single else None
             if v is not None and any(space.order(v)):
                 self.shorthands.append((symbol, space.order(v)))
         fixed = set(nature)

@@ -43,6 +43,8 @@ Values = dict[Symbol, Expr]
 
 MOST_VALUES = 4
 MOST_UNKNOWNS = 12
+MOST_TERMS = 1000
+"""Of the relation or the claim; longer ones are not searched for values, as the remainders take too long."""
 FIRST_PRIME = 30
 LARGEST_NUMBER = 100
 SAMPLES = 8
@@ -67,7 +69,8 @@ def special_values(claim: Claim, derived: Derived, budget: float = 3.0) -> list[
         the claim is right for no such values. Values that change the number of modes are no values but limits.
     """
     polynomial, _ = derived.numerator(claim.residual)
-    if polynomial.degree < 1 or loses_a_mode(claim):
+    long = max(map(len, (polynomial, derived.polynomial))) > MOST_TERMS
+    if polynomial.degree < 1 or loses_a_mode(claim) or long:
         return []
     end = time.monotonic() + budget
     unknown = _unknown(polynomial, derived)

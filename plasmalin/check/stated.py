@@ -70,7 +70,7 @@ def read_stated(
                 continue
             symbol, value = found
             values = {s: v.xreplace({symbol: value}) for s, v in values.items()} | {symbol: value}
-    return Stated(values, tuple(ratios))
+    return Stated(values, tuple(r.xreplace(values) for r in ratios))
 
 
 def _each(names: WaveNames, under: Any, held: Collection[Symbol]) -> list[tuple[Expr, Expr, bool]]:
@@ -128,7 +128,9 @@ def _solved(names: WaveNames, left: Expr, right: Expr, shown: str) -> tuple[Symb
         value = linear_solution(residual, symbol)
         if value is not None and not value.has(omega):
             return symbol, _possible(symbol, value)
-    raise DeclarationError(f"under: {shown} cannot be solved for a symbol of the model")
+    raise DeclarationError(
+        f"under: {shown} cannot be solved for a parameter or a wave number; write it so that one stands alone"
+    )
 
 
 def _possible(symbol: Symbol, value: Expr) -> Expr:

@@ -28,10 +28,12 @@ class Radical:
     base: sp.Expr
 
 
-def isolated(expr: sp.Expr, *mains: sp.Symbol) -> tuple[sp.Expr, list[Radical]]:
+def isolated(
+    expr: sp.Expr, *mains: sp.Symbol, numbers: bool = False
+) -> tuple[sp.Expr, list[Radical]]:
     """The expression with compound radicals, roots of `mains`, and absolute values as symbols.
 
-    Roots of other symbols and of numbers stay: they are generators of a ring as they are.
+    Roots of other symbols and, unless asked for, of numbers stay: they are generators of a ring as they are.
     """
     found: dict[tuple[sp.Expr, int], Radical] = {}
     seen: dict[sp.Expr, sp.Expr] = {}
@@ -53,7 +55,8 @@ def isolated(expr: sp.Expr, *mains: sp.Symbol) -> tuple[sp.Expr, list[Radical]]:
         if isinstance(node, sp.Abs):
             return symbol(visit(node.args[0]) ** 2, 2)
         if isinstance(node, sp.Pow) and node.exp.is_Rational and not node.exp.is_Integer:
-            if node.base in mains or not (node.base.is_Symbol or node.base.is_number):
+            number = node.base.is_number and not numbers
+            if node.base in mains or not (node.base.is_Symbol or number):
                 power, index = int(node.exp.p), int(node.exp.q)
                 base, whole = visit(node.base), int(power / index)
                 return base**whole * symbol(base, index) ** (power - whole * index)
@@ -68,8 +71,10 @@ def isolated(expr: sp.Expr, *mains: sp.Symbol) -> tuple[sp.Expr, list[Radical]]:
     return plain, list(found.values())
 
 
-def rational_numerator(expr: sp.Expr, main: sp.Symbol) -> tuple[ExactPolynomial, int]:
-    """The numerator of an expression with roots, freed of them, and on how many sheets the result stands.
+def rational_numerator(
+    expr: sp.Expr, main: sp.Symbol, numbers: bool = False
+) -> tuple[ExactPolynomial, int]:
+    """The numerator of an expression with roots, also of numbers if asked, freed of them, and on how many sheets it stands.
 
     Returns
     -------
@@ -78,7 +83,7 @@ def rational_numerator(expr: sp.Expr, main: sp.Symbol) -> tuple[ExactPolynomial,
     sheets : int
         1 where no root had to be removed.
     """
-    plain, radicals = isolated(expr, main)
+    plain, radicals = isolated(expr, main, numbers=numbers)
     ring = ring_of([plain, *(r.base for r in radicals)], main)
     reader = Reader(ring)
     value = reader.ratio(plain).lowest().top

@@ -5,6 +5,7 @@ from __future__ import annotations
 import difflib
 import math
 import os
+import re
 import tempfile
 import tomllib
 from collections.abc import Callable, Iterable, Mapping
@@ -22,12 +23,15 @@ from .model import FluidModel
 from .units import Unit, read_unit
 
 LARGEST = 1_000_000
+NAME = re.compile(r"[^\W\d]\w*")
+MISTAKABLE = {"u", "h", "G", "R"}
+"""Constants of nature that a file names in [model] constants: their letters mean other things as well."""
 
 KEYS: dict[str, set[str]] = {
     "file": {"model", "scalar", "vector", "tensor", "parameters", "vector_parameter", "law", "constraint", "wave", "sweep", "claim"},
     "[model]": {"title", "axes", "constants", "assume"},
-    "[[scalar]]": {"name", "background", "unit", "latex"},
-    "[[vector]]": {"name", "background", "unit", "latex"},
+    "[[scalar]]": {"name", "background", "gradient", "unit", "latex"},
+    "[[vector]]": {"name", "background", "gradient", "unit", "latex"},
     "[[tensor]]": {"name", "background", "unit", "latex", "symmetric"},
     "[[vector_parameter]]": {"name", "entries", "unit"},
     "[[law]]": {"name", "text"},
@@ -185,7 +189,7 @@ def _built(data: dict[str, Any]) -> ModelFile:
     head = _table(data, "model")
     _known(head, "[model]")
     model = FluidModel(_text(head, "title", "[model]"), axes=_text(head, "axes", "[model]", "xyz"))
-    _parameters(model, head, _table(data, "parameters"))
+    _parameters(model, head, _table(data, "parameters"), _constants_in_laws(data))
     for kind in ("scalar", "vector", "tensor"):
         for entry in _list(data, kind):
             _field(model, kind, entry)
@@ -252,10 +256,25 @@ def _plain(value: Any) -> Any:
     return tuple(_plain(v) for v in value) if isinstance(value, list) else value
 
 
-def _parameters(model: FluidModel, head: Mapping[str, Any], table: Mapping[str, Any]) -> None:
+def _constants_in_laws(data: Mapping[str, Any]) -> list[str]:
+    """Constants of nature that the laws name and nothing in the file declares, in the order of `CODATA`."""
+    told = [entry.get("text") for kind in ("law", "constraint") for entry in _list(data, kind)]
+    used = {name for text in told if isinstance(text, str) for name in NAME.findall(text)}
+    kinds = ("scalar", "vector", "tensor", "vector_parameter")
+    entries = [entry for kind in kinds for entry in _list(data, kind)]
+    declared = {*_table(data, "parameters"), *(str(entry.get("name")) for entry in entries)}
+    given = [entry.get(key) for entry in entries for key in ("background", "gradient", "entries")]
+    declared |= {n for x in _flat(_plain(given)) if isinstance(x, str) for n in NAME.findall(x)}
+    return [name for name in CODATA if name in used - declared - MISTAKABLE]
+
+
+def _parameters(
+    model: FluidModel, head: Mapping[str, Any], table: Mapping[str, Any], implied: list[str]
+) -> None:
     constants = head.get("constants", [])
     if not isinstance(constants, list) or any(not isinstance(n, str) for n in constants):
         raise ModelFileError("[model] constants: give a list of names")
+    constants = [*constants, *implied]
     if constants:
         model.constants(constants)
     for name, given in table.items():
@@ -284,16 +303,17 @@ def _field(model: FluidModel, kind: str, entry: Mapping[str, Any]) -> None:
     section = f"[[{kind}]]"
     _known(entry, section)
     name = _text(entry, "name", section)
-    options = {key: entry[key] for key in ("latex", "symmetric") if key in entry}
+    options: dict[str, Any] = {key: entry[key] for key in ("latex", "symmetric") if key in entry}
     options["unit"] = _unit(entry, f"{section} {name}")
     declare: Callable[..., Field] = getattr(model, kind)
-    background = _plain(entry.get("background", 0))
-    for x in _flat(background):
-        if not isinstance(x, str | int | float) or isinstance(x, bool):
-            raise ModelFileError(
-                f"{section} {name}: the background {x!r} is not a number or a text"
-            )
-    declare(name, background, **options)
+    for key in ("background", "gradient"):
+        if key not in entry:
+            continue
+        options[key] = _plain(entry[key])
+        for x in _flat(options[key]):
+            if not isinstance(x, str | int | float) or isinstance(x, bool):
+                raise ModelFileError(f"{section} {name}: the {key} {x!r} is not a number or a text")
+    declare(name, **options)
 
 
 def _flat(value: Any) -> list[Any]:
@@ -407,6 +427,8 @@ def model_text(model: FluidModel) -> str:
                 f"name = {_quoted(field.name)}",
                 f"background = {_value(field.background, model.units.get(field.name))}",
             ]
+            if field.gradient != 0:
+                lines.append(f"gradient = {_value(field.gradient, model.units.get(field.name))}")
             lines += [f"unit = {_quoted(units[field.name])}"] if field.name in units else []
             lines += [f"latex = {_quoted(field.latex_name)}"] if field.latex_name else []
             lines += ["symmetric = false"] if field.rank == 2 and not field.symmetric else []

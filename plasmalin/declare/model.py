@@ -8,15 +8,26 @@ from dataclasses import dataclass, replace
 from fractions import Fraction
 from typing import TYPE_CHECKING, Any
 
-from sympy import Add, Expr, Float, Rational, S, Symbol, Tuple, expand
+import numpy as np
+from sympy import Add, Equality, Expr, Float, Rational, S, Symbol, Tuple, expand
 
 from ..errors import DeclarationError, RankError, UnitError
 from .constants import UNITS, codata
 from .dimensions import Dimensions
 from .fields import AXES, Components, Field, FieldAtom, components, exact
 from .forms import has_dimension, of_dimension, per_length, requirements
-from .notation import law_text
-from .operators import OPERATORS, WAVE_SYMBOLS, WORDS, Cross, Curl, Multiplier, identity, rank_of
+from .notation import equation_table, latex, law_text, paper
+from .operators import (
+    OPERATORS,
+    WAVE_SYMBOLS,
+    WORDS,
+    Cross,
+    Curl,
+    Multiplier,
+    Operator,
+    identity,
+    rank_of,
+)
 from .quantities import plain_number
 from .reader import read_expression, read_law
 from .role import Role
@@ -45,6 +56,17 @@ class Law:
 
     def __str__(self) -> str:
         return f"{law_text(self.lhs)} = {law_text(self.rhs)}"
+
+    def paper(self, axes: str = "") -> str:
+        """The law on one line, as a paper prints it."""
+        return f"{paper(self.lhs, axes)} = {paper(self.rhs, axes)}"
+
+    def latex(self, axes: str = "") -> str:
+        """The law in LaTeX, without dollar signs."""
+        return f"{latex(self.lhs, axes)} = {latex(self.rhs, axes)}"
+
+    def _repr_latex_(self) -> str:
+        return f"$\\displaystyle {self.latex()}$"
 
 
 @dataclass(frozen=True)
@@ -95,6 +117,18 @@ class FluidModel:
         self._constraints: dict[str, Law] = {}
         self._units: dict[str, Unit] = {}
         self._dimensions = Dimensions({})
+
+    def __str__(self) -> str:
+        laws, redundant = self.laws, self.constraints
+        lines = [self.title, *(f"  {n}: {law.paper(self.axes)}" for n, law in laws.items())]
+        lines += [f"  {n}: {law.paper(self.axes)}  (constraint)" for n, law in redundant.items()]
+        return "\n".join(lines)
+
+    def _repr_html_(self) -> str:
+        return equation_table(
+            self.title,
+            {n: law.latex(self.axes) for n, law in {**self.laws, **self.constraints}.items()},
+        )
 
     def __repr__(self) -> str:
         return (
@@ -154,8 +188,7 @@ class FluidModel:
         self,
         name: str,
         background: Any = 0,
-        *,
-        gradient: Any = 0,
+        gradient: Any = None,
         unit: str | None = None,
         latex: str | None = None,
     ) -> Field:
@@ -167,7 +200,7 @@ class FluidModel:
             Any identifier; E, N, S, I, beta, gamma, lambda are ordinary names.
         background : 0, str or expression, default 0
             The zeroth-order value. A name that is not yet a parameter becomes one.
-        gradient : 0 or tuple, default 0
+        gradient : tuple, optional
             The uniform gradient of the background in the local approximation, one entry per axis. What such terms
             give depends on the chosen variables at order 1/kL: with log n as the field an exponential profile is exact.
         unit : str, optional
@@ -196,8 +229,7 @@ class FluidModel:
         self,
         name: str,
         background: Any = 0,
-        *,
-        gradient: Any = 0,
+        gradient: Any = None,
         unit: str | None = None,
         latex: str | None = None,
     ) -> Field:
@@ -208,7 +240,7 @@ class FluidModel:
         name : str
         background : 0 or tuple, default 0
             One entry per axis of the model, each 0, a name or an expression in parameters.
-        gradient : 0 or tuple of tuples, default 0
+        gradient : tuple of tuples, optional
             The uniform gradient d_i v_j of the background: one row per direction i of change. A wave for which the
             flow along k changes does not exist; `plane_wave` refuses it.
         unit : str, optional
@@ -355,9 +387,8 @@ class FluidModel:
         return value
 
     def _vector(self, name: str, given: Any) -> Expr:
-        if isinstance(given, Components):
-            given = given.args
-        if not isinstance(given, str) and not _sequence(given) and given == 0:
+        given = given.args if isinstance(given, Components) else _listed(given)
+        if _nothing(given):
             return S.Zero
         if not _sequence(given) or len(given) != len(self.axes):
             raise DeclarationError(
@@ -367,9 +398,10 @@ class FluidModel:
         return components(*(self._value(entry) for entry in given))
 
     def _tensor(self, name: str, given: Any) -> Expr:
-        if isinstance(given, Components):
+        if isinstance(given, Components) and given.rank == 2:
             given = tuple(row.args for row in given.args)
-        if not isinstance(given, str) and not _sequence(given) and given == 0:
+        given = _listed(given)
+        if _nothing(given):
             return S.Zero
         size = len(self.axes)
         if not _sequence(given) or [len(r) if _sequence(r) else 0 for r in given] != [size] * size:
@@ -384,7 +416,6 @@ class FluidModel:
     def parameter(
         self,
         name: str,
-        *,
         positive: bool = False,
         unit: str | None = None,
         value: Any = None,
@@ -450,7 +481,7 @@ class FluidModel:
             raise UnitError(f"'{name}' is in {before} already, and {unit} is another dimension")
 
     def parameters(
-        self, names: str | Iterable[str], *, positive: bool = False, unit: str | None = None
+        self, names: str | Iterable[str], positive: bool = False, unit: str | None = None
     ) -> Any:
         """Declare several parameters: ``n0, T = model.parameters("n_0 T_e", positive=True)``.
 
@@ -558,7 +589,7 @@ class FluidModel:
         ----------
         name : str
             What the law is called in the ledger and in messages.
-        lhs, rhs : expressions, or one string for `lhs`
+        lhs, rhs : expressions, or one string or SymPy equation for `lhs`
             A string holds the whole law, "partial_t(n_e) + div(n_e*v_e) = 0"; its names are looked up among
             what is declared, ``^`` and ``**`` both mean power, nothing is evaluated as code.
 
@@ -641,6 +672,8 @@ class FluidModel:
                     f"{kind} '{name}': as text, give the whole of it as one string"
                 )
             left, right = read_law(lhs, self._names())
+        elif isinstance(lhs, Equality) and rhs == 0:
+            left, right = lhs.args
         else:
             left, right = exact(lhs), exact(rhs)
         left, right = (self._checked(f"{kind} '{name}'", side) for side in (left, right))
@@ -765,7 +798,7 @@ class FluidModel:
 
         Parameters
         ----------
-        assume : iterable of str, optional
+        assume : str or iterable of str, optional
             Names of laws that a fixed external source balances, as typed.
 
         Returns
@@ -791,7 +824,7 @@ class FluidModel:
         """
         from ..linearize.linearized import linearize
 
-        return linearize(self, tuple(assume))
+        return linearize(self, (assume,) if isinstance(assume, str) else tuple(assume))
 
     def save(self, path: Any) -> None:
         """Write the model as a TOML file that `plasmalin.load` reads back.
@@ -828,6 +861,15 @@ def _sequence(given: Any) -> bool:
     return isinstance(given, tuple | list)
 
 
+def _listed(given: Any) -> Any:
+    """An array as a list of numbers, everything else as it is."""
+    return given.tolist() if isinstance(given, np.ndarray) else given
+
+
+def _nothing(given: Any) -> bool:
+    return given is None or (not isinstance(given, str) and not _sequence(given) and given == 0)
+
+
 def _common_rank(left: Expr, right: Expr) -> int:
     ranks = {rank_of(side) for side in (left, right) if side != 0}
     if len(ranks) == 2:
@@ -839,9 +881,12 @@ def _common_rank(left: Expr, right: Expr) -> int:
 
 
 def _same(law: Law, other: Law) -> bool:
-    """Whether two laws differ by a number at most."""
+    """Whether two laws differ by a constant factor at most."""
     if law.rank != other.rank or law.residual.atoms(Field) != other.residual.atoms(Field):
         return False
     mine, theirs = expand(law.residual), expand(other.residual)
-    ratio = mine.as_ordered_terms()[0] / theirs.as_ordered_terms()[0]
-    return bool(ratio.is_number) and expand(mine - ratio * theirs) == 0
+    ratios = (Add.make_args(mine)[0] / term for term in Add.make_args(theirs))
+    return any(
+        not r.has(FieldAtom, Operator, Components) and expand(mine - r * theirs) == 0
+        for r in ratios
+    )

@@ -5,7 +5,9 @@ Plain ``str`` gives the grammar that laws are read in; `paper` gives what a pers
 
 from __future__ import annotations
 
+import html
 import unicodedata
+from collections.abc import Mapping
 from typing import Any, cast
 
 from sympy import Add, Expr, Integer, Mul, Pow, Rational, Symbol, cancel, gcd_list
@@ -59,6 +61,17 @@ def paper(expr: Any, axes: str = "") -> str:
 def latex(expr: Any, axes: str = "") -> str:
     """An expression in LaTeX, time derivatives first."""
     return cast(str, PaperLatex(axes).doprint(by_dyads(expr)))
+
+
+def equation_table(title: str, equations: Mapping[str, str]) -> str:
+    """Named equations in LaTeX as a table in HTML, for a notebook."""
+    cell = '<td style="text-align:left">'
+    rows = "".join(
+        f"<tr>{cell}{html.escape(name)}</td>{cell}$\\displaystyle {html.escape(text)}$</td></tr>"
+        for name, text in equations.items()
+    )
+    head = f"<p>{html.escape(title)}</p>" if title else ""
+    return f"{head}<table>{rows}</table>"
 
 
 def by_dyads(expr: Any) -> Any:

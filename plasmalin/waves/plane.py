@@ -6,13 +6,14 @@ from collections.abc import Mapping
 from dataclasses import replace
 from typing import Any
 
-from sympy import Expr, Symbol, cos, expand, sin
+import numpy as np
+from sympy import Expr, Float, Rational, Symbol, cos, expand, sin
 
-from ..declare.fields import Field
+from ..declare.fields import Components, Field, FieldAtom, exact
 from ..declare.model import Law
 from ..declare.operators import WAVE_SYMBOLS, Advect, Div
 from ..declare.reader import read_expression
-from ..errors import BackgroundError, DeclarationError, UndeterminedError
+from ..errors import BackgroundError, DeclarationError, RankError, UndeterminedError
 from ..linearize.ledger import KEPT
 from ..linearize.linearized import LinearizedModel, symmetric_law
 from .constraints import preserved
@@ -20,7 +21,7 @@ from .lowering import Index, Wave, indices, lower
 from .matrix import Amplitude, Row, WaveMatrix
 
 
-def plane_wave(linear: LinearizedModel, direction: Any, angle: str | None) -> WaveMatrix:
+def plane_wave(linear: LinearizedModel, direction: Any, angle: Any) -> WaveMatrix:
     """Lower a linearized model for a wave vector; see `LinearizedModel.plane_wave`."""
     k = wave_vector(linear, direction, angle)
     _refuse_sheared_flow(linear, k)
@@ -98,7 +99,7 @@ def _equations(linear: LinearizedModel, laws: Mapping[str, Law], wave: Wave) -> 
                 yield Row(law.name, component), form.get(index, {})
 
 
-def wave_vector(linear: LinearizedModel, direction: Any, angle: str | None) -> tuple[Expr, ...]:
+def wave_vector(linear: LinearizedModel, direction: Any, angle: Any) -> tuple[Expr, ...]:
     """The wave vector's components along the model's axes."""
     axes = linear.axes
     if (direction is None) == (angle is None):
@@ -108,7 +109,8 @@ def wave_vector(linear: LinearizedModel, direction: Any, angle: str | None) -> t
     if angle is not None:
         if not {"x", "z"} <= set(axes):
             raise DeclarationError(f"angle= needs the axes x and z; the model has '{axes}'")
-        k, theta = _wave_symbol(linear, "k"), _wave_symbol(linear, angle)
+        k = _wave_symbol(linear, "k")
+        theta = _wave_symbol(linear, angle) if isinstance(angle, str) else _entry(linear, angle)
         along = {"x": k * sin(theta), "y": 0 * k, "z": k * cos(theta)}
         return tuple(along[a] for a in axes)
     if isinstance(direction, str):
@@ -118,6 +120,8 @@ def wave_vector(linear: LinearizedModel, direction: Any, angle: str | None) -> t
             )
         k = _wave_symbol(linear, "k")
         return tuple(k if a == direction else 0 * k for a in axes)
+    if isinstance(direction, np.ndarray):
+        direction = direction.tolist()
     if not isinstance(direction, tuple | list) or len(direction) != len(axes):
         raise DeclarationError(
             f"direction {direction!r} does not fit the axes '{axes}'; give one entry per axis"
@@ -129,16 +133,25 @@ def wave_vector(linear: LinearizedModel, direction: Any, angle: str | None) -> t
 
 
 def _entry(linear: LinearizedModel, entry: Any) -> Expr:
-    from sympy import Expr as AnyExpr
-    from sympy import sympify
-
     names: dict[str, Any] = {**linear.symbols, **{s.name: s for s in WAVE_SYMBOLS}}
     if isinstance(entry, str):
         return read_expression(entry, names, unknown=lambda name: Symbol(name, real=True))
-    made = sympify(entry, strict=True)
-    if not isinstance(made, AnyExpr):
-        raise DeclarationError(f"{entry!r} is not a component of a wave vector")
-    return made
+    try:
+        made = exact(entry)
+    except RankError:
+        raise _no_component(entry) from None
+    made = made.xreplace({x: Rational(repr(float(x))) for x in made.atoms(Float)})
+    if made.atoms(FieldAtom, Components) or (made.is_number and not made.is_finite):
+        raise _no_component(entry)
+    return made.xreplace(
+        {s: names.get(s.name, Symbol(s.name, real=True)) for s in made.free_symbols}
+    )
+
+
+def _no_component(entry: Any) -> DeclarationError:
+    return DeclarationError(
+        f"{entry!r} is not a component of a wave vector; give names, finite numbers or scalar expressions"
+    )
 
 
 def _wave_symbol(linear: LinearizedModel, name: str) -> Symbol:

@@ -8,7 +8,7 @@ from fractions import Fraction
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
-from sympy import Add, Expr, Float, Poly, Rational, Symbol, latex, sympify
+from sympy import Add, Expr, Float, Poly, Rational, Symbol, sympify
 
 from ..declare.dimensions import Dimensions
 from ..declare.notation import paper
@@ -16,7 +16,7 @@ from ..errors import DeclarationError, UndeterminedError
 from ..exact.determinant import determinant, underdetermined_block
 from ..exact.polynomial import ExactPolynomial
 from ..exact.rational import exact_rational
-from .coefficients import by_powers, normalized_coefficients, printed_coefficients
+from .coefficients import by_powers, latex_by_powers, normalized_coefficients
 from .labels import Modes
 from .ordering import LeadingBalance, leading_balances
 
@@ -27,7 +27,7 @@ if TYPE_CHECKING:
 LONGEST_LATEX = 4000
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, repr=False)
 class Factor:
     """An irreducible factor of the relation, with the modes of one label that it holds.
 
@@ -49,6 +49,12 @@ class Factor:
     @property
     def expr(self) -> Expr:
         return self.polynomial.as_expr()
+
+    def __repr__(self) -> str:
+        return f"<Factor: {self}>"
+
+    def _repr_latex_(self) -> str:
+        return f"$\\displaystyle {latex_by_powers(self.polynomial)} = 0$"
 
     @property
     def degree(self) -> int:
@@ -310,12 +316,14 @@ class Relation:
 
     def latex(self) -> str:
         """The relation as a product of its factors, set equal to zero."""
+        shown = [(p, m - (self.forbidden_modes if p.lowest else 0)) for p, m in self._irreducible]
+        shown = [(p, m) for p, m in shown if m]
+        bare = len(shown) == 1 and shown[0][1] == 1
         parts = []
-        for p, whole in self._irreducible:
-            m = whole - (self.forbidden_modes if p.lowest else 0)
+        for p, m in shown:
             power = f"^{{{m}}}" if m > 1 else ""
-            body = latex(_by_printed_powers(p))
-            parts += [f"{body}{power}" if p.lowest else rf"\left({body}\right){power}"] if m else []
+            body = latex_by_powers(p)
+            parts.append(f"{body}{power}" if p.lowest or bare else rf"\left({body}\right){power}")
         return " ".join(parts) + " = 0"
 
     def _repr_latex_(self) -> str | None:
@@ -323,10 +331,6 @@ class Relation:
             return None
         text = self.latex()
         return f"$\\displaystyle {text}$" if len(text) < LONGEST_LATEX else None
-
-
-def _by_printed_powers(polynomial: ExactPolynomial) -> Expr:
-    return Add(*(c * polynomial.main**p for p, c in printed_coefficients(polynomial).items()))
 
 
 def _in_rationals(value: Any) -> Expr:

@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING
 
 from sympy import Expr, ImmutableDenseMatrix, Symbol
 
+from ..declare.notation import paper
 from ..errors import UndeterminedError
 from ..exact.determinant import eliminate
 from ..exact.matching import maximum_matching
@@ -46,6 +47,15 @@ class Reduced:
 
         text = latex(self.matrix)
         return f"$\\displaystyle {text}$" if len(text) < 4000 else None
+
+    def __str__(self) -> str:
+        size = range(len(self.amplitudes))
+        lines = []
+        for i in size:
+            row = ((self.entries.get((i, j)), self.amplitudes[j]) for j in size)
+            shown = " + ".join(f"[{paper(c)}] {s.name}" for c, s in row if c)
+            lines.append(f"{self.laws[i]}: {shown or 0} = 0")
+        return "\n".join(lines)
 
     def __repr__(self) -> str:
         names = ", ".join(s.name for s in self.amplitudes)

@@ -474,6 +474,15 @@ def _quoted(text: str) -> str:
 def write_whole(path: str | os.PathLike[str], content: bytes) -> None:
     """Write a file by way of a temporary one beside it, so that it appears whole or not at all."""
     target = Path(path)
+    try:
+        _write_whole(target, content)
+    except OSError as error:  # it names the temporary file
+        if error.errno is None:
+            raise
+        raise type(error)(error.errno, error.strerror, str(target)) from None
+
+
+def _write_whole(target: Path, content: bytes) -> None:
     handle, temporary = tempfile.mkstemp(dir=target.parent, prefix=".", suffix=target.suffix)
     try:
         with os.fdopen(handle, "wb") as file:

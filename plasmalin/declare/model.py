@@ -105,6 +105,9 @@ class FluidModel:
     """
 
     def __init__(self, title: str, axes: str = "xyz") -> None:
+        described: tuple[Any, Any] = (title, axes)
+        if not all(isinstance(text, str) for text in described):
+            raise DeclarationError(f"title={title!r} and axes={axes!r} are to be texts")
         if not axes or "".join(a for a in AXES if a in axes) != axes:
             raise DeclarationError(
                 f"axes={axes!r}: give 'x', 'xz', 'xyz' or another selection of x, y, z in order"
@@ -222,7 +225,7 @@ class FluidModel:
             When the unit cannot be read, or the background has another.
         """
         name = self._new_name(name)
-        value, slope = self._value(background), self._vector(name, gradient)
+        value, slope = self._value(background), self._vector(name, gradient, "gradient")
         return self._declare(Field(name, 0, value, slope, latex_name=latex), unit)
 
     def vector(
@@ -260,7 +263,7 @@ class FluidModel:
             As in `scalar`.
         """
         name = self._new_name(name)
-        value, slope = self._vector(name, background), self._tensor(name, gradient)
+        value, slope = self._vector(name, background), self._tensor(name, gradient, "gradient")
         return self._declare(Field(name, 1, value, slope, latex_name=latex), unit)
 
     def tensor(
@@ -305,6 +308,8 @@ class FluidModel:
         return self._declare(Field(name, 2, value, symmetric=symmetric, latex_name=latex), unit)
 
     def _declare(self, field: Field, unit: str | None) -> Field:
+        if not isinstance(field.latex_name, str | None):
+            raise DeclarationError(f"'{field.name}': latex={field.latex_name!r} is not a text")
         with self._units_as_before():
             if unit is not None:
                 field = self._in_unit(field, read_unit(unit))
@@ -362,8 +367,8 @@ class FluidModel:
         self._dimensions = self._dimensions.declare(name, unit.dimension, check=check)
         self._units[name] = unit
 
-    def _new_name(self, name: str) -> str:
-        if not str(name).isidentifier() or name.startswith("_"):
+    def _new_name(self, name: Any) -> str:
+        if not isinstance(name, str) or not name.isidentifier() or name.startswith("_"):
             raise DeclarationError(
                 f"{name!r} is not a name: use letters, digits and _, starting with a letter"
             )
@@ -386,18 +391,18 @@ class FluidModel:
             raise RankError(f"the background '{value}' is not a scalar; give one entry per axis")
         return value
 
-    def _vector(self, name: str, given: Any) -> Expr:
+    def _vector(self, name: str, given: Any, what: str = "background") -> Expr:
         given = given.args if isinstance(given, Components) else _listed(given)
         if _nothing(given):
             return S.Zero
         if not _sequence(given) or len(given) != len(self.axes):
             raise DeclarationError(
-                f"'{name}': the background {given!r} does not fit the axes '{self.axes}'; "
+                f"'{name}': the {what} {given!r} does not fit the axes '{self.axes}'; "
                 f"give 0 or a tuple with {len(self.axes)} entries"
             )
         return components(*(self._value(entry) for entry in given))
 
-    def _tensor(self, name: str, given: Any) -> Expr:
+    def _tensor(self, name: str, given: Any, what: str = "background") -> Expr:
         if isinstance(given, Components) and given.rank == 2:
             given = tuple(row.args for row in given.args)
         given = _listed(given)
@@ -406,7 +411,7 @@ class FluidModel:
         size = len(self.axes)
         if not _sequence(given) or [len(r) if _sequence(r) else 0 for r in given] != [size] * size:
             raise DeclarationError(
-                f"'{name}': the background {given!r} does not fit the axes '{self.axes}'; "
+                f"'{name}': the {what} {given!r} does not fit the axes '{self.axes}'; "
                 f"give 0 or {size} rows of {size} entries"
             )
         return components(*(tuple(self._value(entry) for entry in row) for row in given))
@@ -443,6 +448,8 @@ class FluidModel:
             When the name is taken by a field or by a parameter declared otherwise.
         UnitError
             When the unit cannot be read, or contradicts another unit or a law.
+        ValuesError
+            When the default is not a finite real number, or not positive although declared so.
 
         Examples
         --------
@@ -453,6 +460,11 @@ class FluidModel:
         {'T_e': 2.0}
         """
         made = None if unit is None else read_unit(unit)
+        if not isinstance(positive, bool):
+            raise DeclarationError(
+                f"'{name}': positive={positive!r} is neither True nor False; a number is given as value=..., "
+                "a unit as unit=..."
+            )
         known = self._parameters.get(name)
         if known is None:
             self._new_name(name)
@@ -460,7 +472,7 @@ class FluidModel:
             raise DeclarationError(f"the parameter '{name}' is declared already, otherwise")
         symbol = Symbol(name, positive=True) if positive else Symbol(name, real=True)
         own = made or self._units.get(name)
-        number = None if value is None else plain_number(name, value, own)
+        number = None if value is None else plain_number(name, value, own, positive=positive)
         if value is None and known:
             number = self._moved(name, known.value, made)
         if made is not None:
@@ -503,7 +515,7 @@ class FluidModel:
         DeclarationError
             As `parameter`.
         """
-        listed = names.replace(",", " ").split() if isinstance(names, str) else list(names)
+        listed = _listed_names(names)
         made = tuple(self.parameter(name, positive=positive, unit=unit) for name in listed)
         return made[0] if len(made) == 1 else made
 
@@ -524,7 +536,7 @@ class FluidModel:
         DeclarationError
             When a name is not a known constant.
         """
-        listed = names.replace(",", " ").split() if isinstance(names, str) else list(names)
+        listed = _listed_names(names)
         made = tuple(self._constant(name) for name in listed)
         return made[0] if len(made) == 1 else made
 
@@ -561,7 +573,7 @@ class FluidModel:
             When the unit cannot be read, or an entry has another.
         """
         name = self._new_name(name)
-        vector = self._vector(name, entries)
+        vector = self._vector(name, entries, "vector")
         if unit is not None:
             made = read_unit(unit)
             form = of_dimension(made.dimension)
@@ -651,7 +663,9 @@ class FluidModel:
         self._constraints[name] = self._new_law(name, lhs, rhs, "constraint")
         return self._constraints[name]
 
-    def _new_law(self, name: str, lhs: Any, rhs: Any, kind: str) -> Law:
+    def _new_law(self, name: Any, lhs: Any, rhs: Any, kind: str) -> Law:
+        if not isinstance(name, str) or not name.strip():
+            raise DeclarationError(f"{name!r} is not a name for a {kind}; give a text")
         for known, others in (("law", self._laws), ("constraint", self._constraints)):
             if name in others:
                 raise DeclarationError(
@@ -811,6 +825,8 @@ class FluidModel:
             When a law contradicts the background.
         UndeterminedError
             When laws and unknowns do not match in number, naming what is undetermined.
+        DeclarationError
+            When `assume` names no law.
 
         Examples
         --------
@@ -824,7 +840,10 @@ class FluidModel:
         """
         from ..linearize.linearized import linearize
 
-        return linearize(self, (assume,) if isinstance(assume, str) else tuple(assume))
+        given: Any = (assume,) if isinstance(assume, str) else assume
+        if not isinstance(given, Iterable):
+            raise DeclarationError(f"assume={assume!r}: give the name of a law, or a list of names")
+        return linearize(self, tuple(given))
 
     def save(self, path: Any) -> None:
         """Write the model as a TOML file that `plasmalin.load` reads back.
@@ -859,6 +878,14 @@ def _refuse_numbers(name: str, vector: Expr, unit: Unit) -> None:
 
 def _sequence(given: Any) -> bool:
     return isinstance(given, tuple | list)
+
+
+def _listed_names(names: Any) -> list[Any]:
+    """Names separated by spaces or commas, or in an iterable."""
+    found = names.replace(",", " ").split() if isinstance(names, str) else names
+    if not isinstance(found, Iterable) or not (listed := list(found)):
+        raise DeclarationError(f'{names!r} holds no names; give them as text, "n_0 T_e", or a list')
+    return listed
 
 
 def _listed(given: Any) -> Any:

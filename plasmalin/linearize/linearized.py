@@ -204,6 +204,13 @@ class LinearizedModel:
         -------
         Audit
             Prints as a table; ``.passed`` tells the outcome.
+
+        Raises
+        ------
+        ValuesError
+            When the seed is not a whole number from 0.
+        BackgroundError
+            When a background has a gradient.
         """
         from .audit import audit
 
@@ -237,6 +244,8 @@ class LinearizedModel:
 def linearize(model: FluidModel, assume: tuple[str, ...] = ()) -> LinearizedModel:
     """Linearize a model; see `FluidModel.linearize`."""
     laws, redundant = model.laws, model.constraints
+    if not laws:
+        raise UndeterminedError("the model has no laws; add them with model.law(name, lhs, rhs)")
     for name in assume:
         if name not in laws and name not in redundant:
             raise DeclarationError(

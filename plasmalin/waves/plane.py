@@ -20,6 +20,8 @@ from .constraints import preserved
 from .lowering import Index, Wave, indices, lower
 from .matrix import Amplitude, Row, WaveMatrix
 
+NOT_A_NAME = {"omega", "k_abs"}
+
 
 def plane_wave(linear: LinearizedModel, direction: Any, angle: Any) -> WaveMatrix:
     """Lower a linearized model for a wave vector; see `LinearizedModel.plane_wave`."""
@@ -111,6 +113,10 @@ def wave_vector(linear: LinearizedModel, direction: Any, angle: Any) -> tuple[Ex
             raise DeclarationError(f"angle= needs the axes x and z; the model has '{axes}'")
         k = _wave_symbol(linear, "k")
         theta = _wave_symbol(linear, angle) if isinstance(angle, str) else _entry(linear, angle)
+        if theta == k:
+            raise DeclarationError(
+                "the angle cannot be named k, which is the wave number; name it theta"
+            )
         along = {"x": k * sin(theta), "y": 0 * k, "z": k * cos(theta)}
         return tuple(along[a] for a in axes)
     if isinstance(direction, str):
@@ -134,14 +140,16 @@ def wave_vector(linear: LinearizedModel, direction: Any, angle: Any) -> tuple[Ex
 
 def _entry(linear: LinearizedModel, entry: Any) -> Expr:
     names: dict[str, Any] = {**linear.symbols, **{s.name: s for s in WAVE_SYMBOLS}}
-    if isinstance(entry, str):
-        return read_expression(entry, names, unknown=lambda name: Symbol(name, real=True))
     try:
-        made = exact(entry)
-    except RankError:
+        made = (
+            read_expression(entry, names, unknown=lambda name: Symbol(name, real=True))
+            if isinstance(entry, str)
+            else exact(entry)
+        )
+    except (RankError, DeclarationError):
         raise _no_component(entry) from None
     made = made.xreplace({x: Rational(repr(float(x))) for x in made.atoms(Float)})
-    if made.atoms(FieldAtom, Components) or (made.is_number and not made.is_finite):
+    if made.atoms(FieldAtom, Components) or {s.name for s in made.free_symbols} & NOT_A_NAME:
         raise _no_component(entry)
     return made.xreplace(
         {s: names.get(s.name, Symbol(s.name, real=True)) for s in made.free_symbols}
@@ -155,8 +163,8 @@ def _no_component(entry: Any) -> DeclarationError:
 
 
 def _wave_symbol(linear: LinearizedModel, name: str) -> Symbol:
-    if name in linear.symbols or not name.isidentifier():
+    if name in linear.symbols or not name.isidentifier() or name in NOT_A_NAME:
         raise DeclarationError(
-            f"'{name}' is a parameter or not a name; name the wave number otherwise, e.g. plane_wave(('q', 0, 0))"
+            f"'{name}' is a parameter or has another meaning; name the wave number otherwise, e.g. plane_wave(('q', 0, 0))"
         )
     return Symbol(name, real=True)

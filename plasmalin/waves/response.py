@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING
 from sympy import Expr, ImmutableDenseMatrix, Symbol
 
 from ..declare.notation import paper
-from ..errors import UndeterminedError
+from ..errors import DeclarationError, UndeterminedError
 from ..exact.determinant import eliminate
 from ..exact.matching import maximum_matching
 
@@ -64,6 +64,8 @@ class Reduced:
 
 def reduced(wave: WaveMatrix, fields: tuple[str, ...]) -> Reduced:
     """The Schur complement on the named fields; see `WaveMatrix.reduce`."""
+    if not fields:
+        raise DeclarationError('name the fields that stay, as in reduce("E")')
     columns = list(dict.fromkeys(j for name in fields for j in wave.column(name)))
     rows = rows_that_stay(wave, columns)
     entries = eliminate_for(wave, wave.entries, rows, columns)

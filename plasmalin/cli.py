@@ -171,7 +171,16 @@ def _source(name: str) -> Path:
 
 
 def _swept(wave: WaveMatrix, file: ModelFile) -> Branches | None:
-    return None if file.sweep is None else wave.branches(file.sweep.name, _points(file.sweep))
+    if file.sweep is None:
+        return None
+    fixed = {name: x for name, x in file.numbers.items() if name != file.sweep.name}
+    absent = {s.name for s in wave.wave_symbols} - {file.sweep.name, *fixed}
+    if absent:
+        names = ", ".join(sorted(absent))
+        raise ModelFileError(
+            f"[sweep] {file.sweep.name}: no value for {names}; give it as a number in [wave]"
+        )
+    return wave.branches(file.sweep.name, _points(file.sweep), **fixed)
 
 
 def _points(sweep: Sweep) -> NDArray[np.float64]:

@@ -6,6 +6,7 @@ import sympy
 
 import plasmalin as plin
 from plasmalin import advect, div, dot, grad, partial_t
+from plasmalin.cli import main
 
 
 def test_arguments_by_place():
@@ -153,3 +154,24 @@ def test_letters_that_mean_other_things_are_no_constants(tmp_path):
     (tmp_path / "a.toml").write_text(text, encoding="utf-8")
     with pytest.raises(plin.ModelFileError, match="'u' is not declared"):
         plin.load(tmp_path / "a.toml")
+
+
+def test_a_sweep_at_an_angle(tmp_path, capsys):
+    model = plin.FluidModel("sound", axes="xz")
+    rho, v = model.scalar("rho", background="rho_0"), model.vector("v")
+    c = model.parameter("c", positive=True, value=340.0)
+    model.parameter("rho_0", positive=True, value=1.2, unit="kg/m**3")
+    plin.laws.continuity(model, rho, v)
+    plin.laws.momentum(model, rho, v, mass=1, pressure=c**2 * rho)
+    file = tmp_path / "sound.toml"
+    model.save(file)
+    text = file.read_text(encoding="utf-8")
+    sweep = "[sweep]\nk = { from = 1.0, to = 2.0, points = 3 }\n"
+    for wave in ('angle = "theta"\ntheta = 0.4', "angle = 0.4", 'direction = ["k", "q"]\nq = 0.5'):
+        file.write_text(f"{text}\n[wave]\n{wave}\n{sweep}", encoding="utf-8")
+        assert main(["derive", str(file), "--out", str(tmp_path / "out")]) == 0
+    assert "1.2 kg/m**3" in (tmp_path / "out" / "derivation.md").read_text(encoding="utf-8")
+    for wave, says in (('angle = "theta"', "no value for theta"), ('angel = "theta"', "'angle'?")):
+        file.write_text(f"{text}\n[wave]\n{wave}\n{sweep}", encoding="utf-8")
+        assert main(["derive", str(file)]) == 1
+        assert says in capsys.readouterr().err

@@ -88,6 +88,8 @@ class ModelFile:
         With the file's numbers as defaults.
     wave : dict
         Keyword arguments of `LinearizedModel.plane_wave`.
+    numbers : dict of str to float
+        Wave numbers and angles that do not vary, rad/m and rad.
     sweep : Sweep or None
     assume : tuple of str
         Laws that an external source balances.
@@ -97,6 +99,7 @@ class ModelFile:
 
     model: FluidModel
     wave: Mapping[str, Any]
+    numbers: Mapping[str, float]
     sweep: Sweep | None
     assume: tuple[str, ...]
     claims: tuple[StatedClaim, ...]
@@ -206,7 +209,7 @@ def _built(data: dict[str, Any]) -> ModelFile:
         raise ModelFileError("[model] assume: give a list of law names")
     return ModelFile(
         model,
-        _wave(_table(data, "wave")),
+        *_wave(_table(data, "wave")),
         _sweep(_table(data, "sweep")),
         tuple(assume),
         tuple(_claim(entry, number) for number, entry in enumerate(_list(data, "claim"), 1)),
@@ -320,9 +323,12 @@ def _flat(value: Any) -> list[Any]:
     return [x for v in value for x in _flat(v)] if isinstance(value, tuple) else [value]
 
 
-def _wave(table: Mapping[str, Any]) -> dict[str, Any]:
-    _known(table, "[wave]")
-    return {key: _plain(value) for key, value in table.items()}
+def _wave(table: Mapping[str, Any]) -> tuple[dict[str, Any], dict[str, float]]:
+    """What `plane_wave` takes, and the numbers that are given for names in it."""
+    made = {key: _plain(value) for key, value in table.items() if key in KEYS["[wave]"]}
+    numbers = {key: value for key, value in table.items() if key not in made}
+    _known({k: v for k, v in numbers.items() if not isinstance(v, int | float)}, "[wave]")
+    return made, {key: _number(value, f"[wave] {key}") for key, value in numbers.items()}
 
 
 def _sweep(table: Mapping[str, Any]) -> Sweep | None:

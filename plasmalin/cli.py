@@ -9,6 +9,7 @@ import io
 import sys
 from collections.abc import Sequence
 from pathlib import Path
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -173,7 +174,7 @@ def _source(name: str) -> Path:
 def _swept(wave: WaveMatrix, file: ModelFile) -> Branches | None:
     if file.sweep is None:
         return None
-    fixed = {name: x for name, x in file.numbers.items() if name != file.sweep.name}
+    fixed: dict[str, Any] = {name: x for name, x in file.numbers.items() if name != file.sweep.name}
     absent = {s.name for s in wave.wave_symbols} - {file.sweep.name, *fixed}
     if absent:
         names = ", ".join(sorted(absent))

@@ -5,7 +5,7 @@ import pytest
 import sympy
 
 import plasmalin as plin
-from plasmalin import advect, div, dot, grad, partial_t
+from plasmalin import advect, div, dot, grad, laplacian, partial_t
 from plasmalin.cli import main
 
 
@@ -175,3 +175,26 @@ def test_a_sweep_at_an_angle(tmp_path, capsys):
         file.write_text(f"{text}\n[wave]\n{wave}\n{sweep}", encoding="utf-8")
         assert main(["derive", str(file)]) == 1
         assert says in capsys.readouterr().err
+
+
+def test_a_scale_that_holds_a_charge_number():
+    """The friction of dust in units of the dust plasma frequency, Z_d in it, is one group; nothing is approximated."""
+    model = plin.FluidModel("dust", axes="x")
+    e, eps0 = model.constants("e epsilon_0")
+    n0, m = model.parameter("n_d0", True, "m**-3"), model.parameter("m_d", True, "kg")
+    z, nu = model.parameter("Z_d", True, "1"), model.parameter("nu", True, "1/s")
+    lam = model.parameter("lambda_D", True, "m")
+    n, v = model.scalar("n_d", n0, unit="m**-3"), model.vector("v_d", unit="m/s")
+    phi = model.scalar("phi", unit="V")
+    plin.laws.continuity(model, n, v)
+    force = plin.laws.lorentz_force(n, -z * e, potential=phi)
+    force += plin.laws.neutral_friction(n, v, m, nu)
+    plin.laws.momentum(model, n, v, mass=m, force=force)
+    model.law("Poisson", eps0 * laplacian(phi), eps0 * phi / lam**2 + z * e * (n - n0))
+    relation = model.linearize().plane_wave("x").relation
+    where = {"omega_pd": "sqrt(n_d0*Z_d^2*e^2/(epsilon_0*m_d))"}
+    scaled = relation.normalise(time="1/omega_pd", length="lambda_D", where=where)
+    (group,) = scaled.groups.values()
+    assert sympy.simplify(group - nu * sympy.sqrt(eps0 * m / n0) / (z * e)) == 0
+    made = sympy.Poly(scaled.restore(), plin.omega).monic()
+    assert sympy.simplify((made - relation.polynomial.monic()).as_expr()) == 0

@@ -24,8 +24,8 @@ from .declare.files import (
     example_names,
     example_path,
     read_model_file,
-    write_whole,
 )
+from .declare.writing import write_whole
 from .errors import ModelFileError, PlasmalinError
 from .linearize.linearized import LinearizedModel
 from .present.archive import csv_text, save_branches

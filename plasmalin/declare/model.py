@@ -852,7 +852,7 @@ class FluidModel:
         ----------
         path : path-like
         """
-        from .files import save_model
+        from .writing import save_model
 
         save_model(self, path)
 

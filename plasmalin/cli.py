@@ -9,6 +9,7 @@ import io
 import sys
 from collections.abc import Sequence
 from pathlib import Path
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -23,8 +24,8 @@ from .declare.files import (
     example_names,
     example_path,
     read_model_file,
-    write_whole,
 )
+from .declare.writing import write_whole
 from .errors import ModelFileError, PlasmalinError
 from .linearize.linearized import LinearizedModel
 from .present.archive import csv_text, save_branches
@@ -171,7 +172,16 @@ def _source(name: str) -> Path:
 
 
 def _swept(wave: WaveMatrix, file: ModelFile) -> Branches | None:
-    return None if file.sweep is None else wave.branches(file.sweep.name, _points(file.sweep))
+    if file.sweep is None:
+        return None
+    fixed: dict[str, Any] = {name: x for name, x in file.numbers.items() if name != file.sweep.name}
+    absent = {s.name for s in wave.wave_symbols} - {file.sweep.name, *fixed}
+    if absent:
+        names = ", ".join(sorted(absent))
+        raise ModelFileError(
+            f"[sweep] {file.sweep.name}: no value for {names}; give it as a number in [wave]"
+        )
+    return wave.branches(file.sweep.name, _points(file.sweep), **fixed)
 
 
 def _points(sweep: Sweep) -> NDArray[np.float64]:

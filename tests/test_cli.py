@@ -8,7 +8,8 @@ import pytest
 
 import plasmalin as plin
 from plasmalin.cli import main
-from plasmalin.declare.files import example_names, example_path, read_model_file, write_whole
+from plasmalin.declare.files import example_names, example_path, read_model_file
+from plasmalin.declare.writing import write_whole
 
 MODEL = """
 [model]
@@ -340,7 +341,7 @@ def test_no_claims(file, capsys):
 
 
 def test_claims_are_saved(file, tmp_path):
-    from plasmalin.declare.files import save_model
+    from plasmalin.declare.writing import save_model
 
     stated = 'under = { p_0 = 3 }\nphase = "exp(-i omega t)"\n'
     more = SOUND + 'under = ["k*L << 1", "p_0 = 1"]\nunits = "gaussian"\n' + EULER

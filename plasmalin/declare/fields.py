@@ -8,7 +8,7 @@ from sympy import AtomicExpr, Expr, S, Tuple
 from sympy.printing.latex import LatexPrinter
 from sympy.printing.printer import Printer
 
-from ..errors import RankError
+from ..errors import DeclarationError, RankError
 
 AXES = "xyz"
 
@@ -117,6 +117,8 @@ def exact(value: Any) -> Expr:
         raise RankError(f"{value!r} is not a SymPy expression or a number") from None
     if not isinstance(made, Expr):
         raise RankError(f"{value!r} is not a scalar or vector expression")
+    if made.has(S.NaN, S.Infinity, S.NegativeInfinity, S.ComplexInfinity):
+        raise DeclarationError(f"{value!r} holds a number that is not finite")
     return made
 
 

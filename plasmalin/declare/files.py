@@ -1,33 +1,34 @@
-"""Model files: a FluidModel, its numbers, a wave and a sweep as TOML."""
+"""Model files read: a FluidModel, its numbers, a wave and a sweep as TOML (`writing` writes them)."""
 
 from __future__ import annotations
 
 import difflib
 import math
 import os
-import tempfile
+import re
 import tomllib
-from collections.abc import Callable, Iterable, Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from importlib import resources
 from pathlib import Path
 from typing import Any
 
-from sympy import Rational, Tuple
-
-from ..errors import DeclarationError, ModelFileError, PlasmalinError, UnitError
-from .constants import CODATA, codata
-from .fields import Components, Field
+from ..errors import ModelFileError, PlasmalinError, UnitError
+from .constants import CODATA
+from .fields import Field
 from .model import FluidModel
-from .units import Unit, read_unit
+from .units import read_unit
 
 LARGEST = 1_000_000
+NAME = re.compile(r"[^\W\d]\w*")
+MISTAKABLE = {"u", "h", "G", "R"}
+"""Constants of nature that a file names in [model] constants: their letters mean other things as well."""
 
 KEYS: dict[str, set[str]] = {
     "file": {"model", "scalar", "vector", "tensor", "parameters", "vector_parameter", "law", "constraint", "wave", "sweep", "claim"},
     "[model]": {"title", "axes", "constants", "assume"},
-    "[[scalar]]": {"name", "background", "unit", "latex"},
-    "[[vector]]": {"name", "background", "unit", "latex"},
+    "[[scalar]]": {"name", "background", "gradient", "unit", "latex"},
+    "[[vector]]": {"name", "background", "gradient", "unit", "latex"},
     "[[tensor]]": {"name", "background", "unit", "latex", "symmetric"},
     "[[vector_parameter]]": {"name", "entries", "unit"},
     "[[law]]": {"name", "text"},
@@ -84,6 +85,8 @@ class ModelFile:
         With the file's numbers as defaults.
     wave : dict
         Keyword arguments of `LinearizedModel.plane_wave`.
+    numbers : dict of str to float
+        Wave numbers and angles that do not vary, rad/m and rad.
     sweep : Sweep or None
     assume : tuple of str
         Laws that an external source balances.
@@ -93,6 +96,7 @@ class ModelFile:
 
     model: FluidModel
     wave: Mapping[str, Any]
+    numbers: Mapping[str, float]
     sweep: Sweep | None
     assume: tuple[str, ...]
     claims: tuple[StatedClaim, ...]
@@ -185,7 +189,7 @@ def _built(data: dict[str, Any]) -> ModelFile:
     head = _table(data, "model")
     _known(head, "[model]")
     model = FluidModel(_text(head, "title", "[model]"), axes=_text(head, "axes", "[model]", "xyz"))
-    _parameters(model, head, _table(data, "parameters"))
+    _parameters(model, head, _table(data, "parameters"), _constants_in_laws(data))
     for kind in ("scalar", "vector", "tensor"):
         for entry in _list(data, kind):
             _field(model, kind, entry)
@@ -202,7 +206,7 @@ def _built(data: dict[str, Any]) -> ModelFile:
         raise ModelFileError("[model] assume: give a list of law names")
     return ModelFile(
         model,
-        _wave(_table(data, "wave")),
+        *_wave(_table(data, "wave")),
         _sweep(_table(data, "sweep")),
         tuple(assume),
         tuple(_claim(entry, number) for number, entry in enumerate(_list(data, "claim"), 1)),
@@ -252,10 +256,25 @@ def _plain(value: Any) -> Any:
     return tuple(_plain(v) for v in value) if isinstance(value, list) else value
 
 
-def _parameters(model: FluidModel, head: Mapping[str, Any], table: Mapping[str, Any]) -> None:
+def _constants_in_laws(data: Mapping[str, Any]) -> list[str]:
+    """Constants of nature that the laws name and nothing in the file declares, in the order of `CODATA`."""
+    told = [entry.get("text") for kind in ("law", "constraint") for entry in _list(data, kind)]
+    used = {name for text in told if isinstance(text, str) for name in NAME.findall(text)}
+    kinds = ("scalar", "vector", "tensor", "vector_parameter")
+    entries = [entry for kind in kinds for entry in _list(data, kind)]
+    declared = {*_table(data, "parameters"), *(str(entry.get("name")) for entry in entries)}
+    given = [entry.get(key) for entry in entries for key in ("background", "gradient", "entries")]
+    declared |= {n for x in _flat(_plain(given)) if isinstance(x, str) for n in NAME.findall(x)}
+    return [name for name in CODATA if name in used - declared - MISTAKABLE]
+
+
+def _parameters(
+    model: FluidModel, head: Mapping[str, Any], table: Mapping[str, Any], implied: list[str]
+) -> None:
     constants = head.get("constants", [])
     if not isinstance(constants, list) or any(not isinstance(n, str) for n in constants):
         raise ModelFileError("[model] constants: give a list of names")
+    constants = [*constants, *implied]
     if constants:
         model.constants(constants)
     for name, given in table.items():
@@ -284,25 +303,29 @@ def _field(model: FluidModel, kind: str, entry: Mapping[str, Any]) -> None:
     section = f"[[{kind}]]"
     _known(entry, section)
     name = _text(entry, "name", section)
-    options = {key: entry[key] for key in ("latex", "symmetric") if key in entry}
+    options: dict[str, Any] = {key: entry[key] for key in ("latex", "symmetric") if key in entry}
     options["unit"] = _unit(entry, f"{section} {name}")
     declare: Callable[..., Field] = getattr(model, kind)
-    background = _plain(entry.get("background", 0))
-    for x in _flat(background):
-        if not isinstance(x, str | int | float) or isinstance(x, bool):
-            raise ModelFileError(
-                f"{section} {name}: the background {x!r} is not a number or a text"
-            )
-    declare(name, background, **options)
+    for key in ("background", "gradient"):
+        if key not in entry:
+            continue
+        options[key] = _plain(entry[key])
+        for x in _flat(options[key]):
+            if not isinstance(x, str | int | float) or isinstance(x, bool):
+                raise ModelFileError(f"{section} {name}: the {key} {x!r} is not a number or a text")
+    declare(name, **options)
 
 
 def _flat(value: Any) -> list[Any]:
     return [x for v in value for x in _flat(v)] if isinstance(value, tuple) else [value]
 
 
-def _wave(table: Mapping[str, Any]) -> dict[str, Any]:
-    _known(table, "[wave]")
-    return {key: _plain(value) for key, value in table.items()}
+def _wave(table: Mapping[str, Any]) -> tuple[dict[str, Any], dict[str, float]]:
+    """What `plane_wave` takes, and the numbers that are given for names in it."""
+    made = {key: _plain(value) for key, value in table.items() if key in KEYS["[wave]"]}
+    numbers = {key: value for key, value in table.items() if key not in made}
+    _known({k: v for k, v in numbers.items() if not isinstance(v, int | float)}, "[wave]")
+    return made, {key: _number(value, f"[wave] {key}") for key, value in numbers.items()}
 
 
 def _sweep(table: Mapping[str, Any]) -> Sweep | None:
@@ -353,111 +376,3 @@ def _meanings(given: Any, place: str) -> Mapping[str, Any]:
         if not isinstance(value, str):
             _number(value, f"{place} {name}")
     return given
-
-
-# Writing ---------------------------------------------------------------------------------------
-
-
-def save_model(
-    model: FluidModel, path: str | os.PathLike[str], claims: Iterable[StatedClaim] = ()
-) -> None:
-    """Write a model, and claims on it, as a TOML file; it appears whole or not at all."""
-    text = model_text(model) + "".join(f"\n{claim_text(c)}\n" for c in claims)
-    write_whole(path, text.encode())
-
-
-def claim_text(claim: StatedClaim) -> str:
-    """A claim as a section of a TOML file."""
-    lines = ["[[claim]]", f"text = {_quoted(claim.text)}"]
-    lines += [f"law = {_quoted(claim.law)}"] if claim.law is not None else []
-    lines += [f"where = {_inline(claim.where)}"] if claim.where else []
-    if isinstance(claim.under, Mapping):
-        lines.append(f"under = {_inline(claim.under)}")
-    elif claim.under is not None:
-        lines.append(f"under = [{', '.join(map(_quoted, claim.under))}]")
-    return "\n".join([*lines, *(f"{k} = {_quoted(v)}" for k, v in claim.convention.items())])
-
-
-def _inline(table: Mapping[str, Any]) -> str:
-    shown = (
-        f"{_quoted(n)} = {_quoted(v) if isinstance(v, str) else repr(v)}" for n, v in table.items()
-    )
-    return f"{{ {', '.join(shown)} }}"
-
-
-def model_text(model: FluidModel) -> str:
-    """A model as the text of a TOML file."""
-    constants = [n for n, value in model.values.items() if n in CODATA and value == codata(n)]
-    units = {name: unit.text for name, unit in model.units.items()}
-    lines = ["[model]", f"title = {_quoted(model.title)}", f"axes = {_quoted(model.axes)}"]
-    if constants:
-        lines.append(f"constants = [{', '.join(map(_quoted, constants))}]")
-    lines += ["", "[parameters]"]
-    for name, symbol in model.symbols.items():
-        if name not in constants:
-            value = f"value = {model.values[name]!r}, " if name in model.values else ""
-            unit = f"unit = {_quoted(units[name])}, " if name in units else ""
-            positive = str(bool(symbol.is_positive)).lower()
-            lines.append(f"{name} = {{ {value}{unit}positive = {positive} }}")
-    for kind, fields in _by_kind(model).items():
-        for field in fields:
-            lines += [
-                "",
-                f"[[{kind}]]",
-                f"name = {_quoted(field.name)}",
-                f"background = {_value(field.background, model.units.get(field.name))}",
-            ]
-            lines += [f"unit = {_quoted(units[field.name])}"] if field.name in units else []
-            lines += [f"latex = {_quoted(field.latex_name)}"] if field.latex_name else []
-            lines += ["symmetric = false"] if field.rank == 2 and not field.symmetric else []
-    for name, vector in model.vector_parameters.items():
-        lines += [
-            "",
-            "[[vector_parameter]]",
-            f"name = {_quoted(name)}",
-            f"entries = {_value(vector)}",
-        ]
-    for kind, laws in (("law", model.laws), ("constraint", model.constraints)):
-        for law in laws.values():
-            lines += ["", f"[[{kind}]]", f"name = {_quoted(law.name)}"]
-            lines += [f"text = {_quoted(str(law))}"]
-    return "\n".join(lines) + "\n"
-
-
-def _by_kind(model: FluidModel) -> dict[str, list[Field]]:
-    kinds = {"scalar": 0, "vector": 1, "tensor": 2}
-    return {kind: [f for f in model.fields.values() if f.rank == r] for kind, r in kinds.items()}
-
-
-def _value(value: Any, unit: Unit | None = None) -> str:
-    """A background or vector; a bare number is written in the field's unit, in which it is read back."""
-    if isinstance(value, Components | Tuple):
-        return f"[{', '.join(_value(a, unit) for a in value.args)}]"
-    if value.is_number and unit is not None:
-        value = value * Rational(unit.scale.denominator, unit.scale.numerator)
-    return "0" if value == 0 else _quoted(str(value))
-
-
-def _quoted(text: str) -> str:
-    escaped = (
-        text.replace("\\", "\\\\").replace('"', '\\"').replace("\n", "\\n").replace("\t", "\\t")
-    )
-    if any(ord(c) < 32 for c in escaped):
-        raise DeclarationError(
-            f"{text!r} holds a control character and cannot be written to a file"
-        )
-    return f'"{escaped}"'
-
-
-def write_whole(path: str | os.PathLike[str], content: bytes) -> None:
-    """Write a file by way of a temporary one beside it, so that it appears whole or not at all."""
-    target = Path(path)
-    handle, temporary = tempfile.mkstemp(dir=target.parent, prefix=".", suffix=target.suffix)
-    try:
-        with os.fdopen(handle, "wb") as file:
-            file.write(content)
-        Path(temporary).chmod(0o644)
-        Path(temporary).replace(target)
-    except BaseException:
-        Path(temporary).unlink(missing_ok=True)
-        raise

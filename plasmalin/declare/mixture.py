@@ -5,8 +5,10 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
+from numbers import Real
 from typing import Any
 
+import numpy as np
 from sympy import Expr, S, Symbol
 
 from ..errors import BackgroundError, DeclarationError
@@ -55,8 +57,10 @@ class Species:
     magnetised: bool = True
 
     def __post_init__(self) -> None:
-        if not self.name.isidentifier():
+        name: Any = self.name
+        if not isinstance(name, str) or not name.isidentifier():
             raise DeclarationError(f"species {self.name!r}: the name must be an identifier")
+        object.__setattr__(self, "drift", _listed(self.drift))
         for what, least, strict in (
             ("mass", 0.0, True),
             ("density", 0.0, True),
@@ -127,9 +131,8 @@ def mixture(
     >>> plasma.linearize().plane_wave("x").roots(k=1e3).shape
     (4,)
     """
-    setting = _Setting(
-        tuple(species), field, axes, magnetic_field, electric_field, neutral_velocity
-    )
+    vectors = (_listed(v) for v in (magnetic_field, electric_field, neutral_velocity))
+    setting = _Setting(tuple(species), field, axes, *vectors)
     setting.check()
     names = ", ".join(s.name for s in species)
     return setting.build(title or f"{field} mixture of {names}")
@@ -151,11 +154,15 @@ class _Setting:
             raise DeclarationError(f"field={self.field!r}; give one of {', '.join(FIELDS)}")
         if not self.species:
             raise DeclarationError("a mixture needs at least one species")
+        for s in self.species:
+            if not isinstance(s, Species):
+                raise DeclarationError(f"{s!r} is not a species; give plin.Species(name, ...)")
         names = [s.name for s in self.species]
         if len(set(names)) < len(names):
             raise DeclarationError(f"species names must differ; given are {', '.join(names)}")
-        for what in ("magnetic", "electric", "neutral"):
-            self._fits(what, getattr(self, what))
+        self._fits("magnetic_field", self.magnetic)
+        self._fits("electric_field", self.electric)
+        self._fits("neutral_velocity", self.neutral)
         if self.field == "electromagnetic" and self.axes != "xyz":
             raise DeclarationError("field='electromagnetic' needs axes='xyz'")
         if any(self.magnetic) and self.axes != "xyz":
@@ -170,7 +177,8 @@ class _Setting:
             self._check_current()
 
     def _fits(self, what: str, given: Sequence[float]) -> None:
-        if given and (len(given) != len(self.axes) or not all(_finite(x) for x in given)):
+        fits = isinstance(given, tuple | list) and len(given) in (0, len(self.axes))
+        if not fits or not all(_finite(x) for x in given):
             raise DeclarationError(
                 f"{what} = {given!r}: give one finite number per axis of '{self.axes}'"
             )
@@ -344,7 +352,14 @@ class _Setting:
 
 
 def _finite(x: Any) -> bool:
-    return isinstance(x, int | float) and not isinstance(x, bool) and math.isfinite(x)
+    return not isinstance(x, bool) and isinstance(x, Real) and math.isfinite(x)
+
+
+def _listed(given: Any) -> Any:
+    """A vector as a tuple: of an array, of one number, of None (no entries)."""
+    if given is None or isinstance(given, Real):
+        return () if given is None else (given,)
+    return tuple(given.tolist()) if isinstance(given, np.ndarray) and given.ndim == 1 else given
 
 
 def _cross(a: Sequence[float], b: Sequence[float]) -> list[float]:

@@ -8,15 +8,26 @@ from dataclasses import dataclass, replace
 from fractions import Fraction
 from typing import TYPE_CHECKING, Any
 
-from sympy import Add, Expr, Float, Rational, S, Symbol, Tuple, expand
+import numpy as np
+from sympy import Add, Equality, Expr, Float, Rational, S, Symbol, Tuple, expand
 
 from ..errors import DeclarationError, RankError, UnitError
 from .constants import UNITS, codata
 from .dimensions import Dimensions
 from .fields import AXES, Components, Field, FieldAtom, components, exact
 from .forms import has_dimension, of_dimension, per_length, requirements
-from .notation import law_text
-from .operators import OPERATORS, WAVE_SYMBOLS, WORDS, Cross, Curl, Multiplier, identity, rank_of
+from .notation import equation_table, latex, law_text, paper
+from .operators import (
+    OPERATORS,
+    WAVE_SYMBOLS,
+    WORDS,
+    Cross,
+    Curl,
+    Multiplier,
+    Operator,
+    identity,
+    rank_of,
+)
 from .quantities import plain_number
 from .reader import read_expression, read_law
 from .role import Role
@@ -45,6 +56,17 @@ class Law:
 
     def __str__(self) -> str:
         return f"{law_text(self.lhs)} = {law_text(self.rhs)}"
+
+    def paper(self, axes: str = "") -> str:
+        """The law on one line, as a paper prints it."""
+        return f"{paper(self.lhs, axes)} = {paper(self.rhs, axes)}"
+
+    def latex(self, axes: str = "") -> str:
+        """The law in LaTeX, without dollar signs."""
+        return f"{latex(self.lhs, axes)} = {latex(self.rhs, axes)}"
+
+    def _repr_latex_(self) -> str:
+        return f"$\\displaystyle {self.latex()}$"
 
 
 @dataclass(frozen=True)
@@ -83,6 +105,9 @@ class FluidModel:
     """
 
     def __init__(self, title: str, axes: str = "xyz") -> None:
+        described: tuple[Any, Any] = (title, axes)
+        if not all(isinstance(text, str) for text in described):
+            raise DeclarationError(f"title={title!r} and axes={axes!r} are to be texts")
         if not axes or "".join(a for a in AXES if a in axes) != axes:
             raise DeclarationError(
                 f"axes={axes!r}: give 'x', 'xz', 'xyz' or another selection of x, y, z in order"
@@ -95,6 +120,18 @@ class FluidModel:
         self._constraints: dict[str, Law] = {}
         self._units: dict[str, Unit] = {}
         self._dimensions = Dimensions({})
+
+    def __str__(self) -> str:
+        laws, redundant = self.laws, self.constraints
+        lines = [self.title, *(f"  {n}: {law.paper(self.axes)}" for n, law in laws.items())]
+        lines += [f"  {n}: {law.paper(self.axes)}  (constraint)" for n, law in redundant.items()]
+        return "\n".join(lines)
+
+    def _repr_html_(self) -> str:
+        return equation_table(
+            self.title,
+            {n: law.latex(self.axes) for n, law in {**self.laws, **self.constraints}.items()},
+        )
 
     def __repr__(self) -> str:
         return (
@@ -154,8 +191,7 @@ class FluidModel:
         self,
         name: str,
         background: Any = 0,
-        *,
-        gradient: Any = 0,
+        gradient: Any = None,
         unit: str | None = None,
         latex: str | None = None,
     ) -> Field:
@@ -167,7 +203,7 @@ class FluidModel:
             Any identifier; E, N, S, I, beta, gamma, lambda are ordinary names.
         background : 0, str or expression, default 0
             The zeroth-order value. A name that is not yet a parameter becomes one.
-        gradient : 0 or tuple, default 0
+        gradient : tuple, optional
             The uniform gradient of the background in the local approximation, one entry per axis. What such terms
             give depends on the chosen variables at order 1/kL: with log n as the field an exponential profile is exact.
         unit : str, optional
@@ -189,15 +225,14 @@ class FluidModel:
             When the unit cannot be read, or the background has another.
         """
         name = self._new_name(name)
-        value, slope = self._value(background), self._vector(name, gradient)
+        value, slope = self._value(background), self._vector(name, gradient, "gradient")
         return self._declare(Field(name, 0, value, slope, latex_name=latex), unit)
 
     def vector(
         self,
         name: str,
         background: Any = 0,
-        *,
-        gradient: Any = 0,
+        gradient: Any = None,
         unit: str | None = None,
         latex: str | None = None,
     ) -> Field:
@@ -208,7 +243,7 @@ class FluidModel:
         name : str
         background : 0 or tuple, default 0
             One entry per axis of the model, each 0, a name or an expression in parameters.
-        gradient : 0 or tuple of tuples, default 0
+        gradient : tuple of tuples, optional
             The uniform gradient d_i v_j of the background: one row per direction i of change. A wave for which the
             flow along k changes does not exist; `plane_wave` refuses it.
         unit : str, optional
@@ -228,7 +263,7 @@ class FluidModel:
             As in `scalar`.
         """
         name = self._new_name(name)
-        value, slope = self._vector(name, background), self._tensor(name, gradient)
+        value, slope = self._vector(name, background), self._tensor(name, gradient, "gradient")
         return self._declare(Field(name, 1, value, slope, latex_name=latex), unit)
 
     def tensor(
@@ -273,6 +308,8 @@ class FluidModel:
         return self._declare(Field(name, 2, value, symmetric=symmetric, latex_name=latex), unit)
 
     def _declare(self, field: Field, unit: str | None) -> Field:
+        if not isinstance(field.latex_name, str | None):
+            raise DeclarationError(f"'{field.name}': latex={field.latex_name!r} is not a text")
         with self._units_as_before():
             if unit is not None:
                 field = self._in_unit(field, read_unit(unit))
@@ -330,8 +367,8 @@ class FluidModel:
         self._dimensions = self._dimensions.declare(name, unit.dimension, check=check)
         self._units[name] = unit
 
-    def _new_name(self, name: str) -> str:
-        if not str(name).isidentifier() or name.startswith("_"):
+    def _new_name(self, name: Any) -> str:
+        if not isinstance(name, str) or not name.isidentifier() or name.startswith("_"):
             raise DeclarationError(
                 f"{name!r} is not a name: use letters, digits and _, starting with a letter"
             )
@@ -354,27 +391,27 @@ class FluidModel:
             raise RankError(f"the background '{value}' is not a scalar; give one entry per axis")
         return value
 
-    def _vector(self, name: str, given: Any) -> Expr:
-        if isinstance(given, Components):
-            given = given.args
-        if not isinstance(given, str) and not _sequence(given) and given == 0:
+    def _vector(self, name: str, given: Any, what: str = "background") -> Expr:
+        given = given.args if isinstance(given, Components) else _listed(given)
+        if _nothing(given):
             return S.Zero
         if not _sequence(given) or len(given) != len(self.axes):
             raise DeclarationError(
-                f"'{name}': the background {given!r} does not fit the axes '{self.axes}'; "
+                f"'{name}': the {what} {given!r} does not fit the axes '{self.axes}'; "
                 f"give 0 or a tuple with {len(self.axes)} entries"
             )
         return components(*(self._value(entry) for entry in given))
 
-    def _tensor(self, name: str, given: Any) -> Expr:
-        if isinstance(given, Components):
+    def _tensor(self, name: str, given: Any, what: str = "background") -> Expr:
+        if isinstance(given, Components) and given.rank == 2:
             given = tuple(row.args for row in given.args)
-        if not isinstance(given, str) and not _sequence(given) and given == 0:
+        given = _listed(given)
+        if _nothing(given):
             return S.Zero
         size = len(self.axes)
         if not _sequence(given) or [len(r) if _sequence(r) else 0 for r in given] != [size] * size:
             raise DeclarationError(
-                f"'{name}': the background {given!r} does not fit the axes '{self.axes}'; "
+                f"'{name}': the {what} {given!r} does not fit the axes '{self.axes}'; "
                 f"give 0 or {size} rows of {size} entries"
             )
         return components(*(tuple(self._value(entry) for entry in row) for row in given))
@@ -384,7 +421,6 @@ class FluidModel:
     def parameter(
         self,
         name: str,
-        *,
         positive: bool = False,
         unit: str | None = None,
         value: Any = None,
@@ -412,6 +448,8 @@ class FluidModel:
             When the name is taken by a field or by a parameter declared otherwise.
         UnitError
             When the unit cannot be read, or contradicts another unit or a law.
+        ValuesError
+            When the default is not a finite real number, or not positive although declared so.
 
         Examples
         --------
@@ -422,6 +460,11 @@ class FluidModel:
         {'T_e': 2.0}
         """
         made = None if unit is None else read_unit(unit)
+        if not isinstance(positive, bool):
+            raise DeclarationError(
+                f"'{name}': positive={positive!r} is neither True nor False; a number is given as value=..., "
+                "a unit as unit=..."
+            )
         known = self._parameters.get(name)
         if known is None:
             self._new_name(name)
@@ -429,7 +472,7 @@ class FluidModel:
             raise DeclarationError(f"the parameter '{name}' is declared already, otherwise")
         symbol = Symbol(name, positive=True) if positive else Symbol(name, real=True)
         own = made or self._units.get(name)
-        number = None if value is None else plain_number(name, value, own)
+        number = None if value is None else plain_number(name, value, own, positive=positive)
         if value is None and known:
             number = self._moved(name, known.value, made)
         if made is not None:
@@ -450,7 +493,7 @@ class FluidModel:
             raise UnitError(f"'{name}' is in {before} already, and {unit} is another dimension")
 
     def parameters(
-        self, names: str | Iterable[str], *, positive: bool = False, unit: str | None = None
+        self, names: str | Iterable[str], positive: bool = False, unit: str | None = None
     ) -> Any:
         """Declare several parameters: ``n0, T = model.parameters("n_0 T_e", positive=True)``.
 
@@ -472,7 +515,7 @@ class FluidModel:
         DeclarationError
             As `parameter`.
         """
-        listed = names.replace(",", " ").split() if isinstance(names, str) else list(names)
+        listed = _listed_names(names)
         made = tuple(self.parameter(name, positive=positive, unit=unit) for name in listed)
         return made[0] if len(made) == 1 else made
 
@@ -493,7 +536,7 @@ class FluidModel:
         DeclarationError
             When a name is not a known constant.
         """
-        listed = names.replace(",", " ").split() if isinstance(names, str) else list(names)
+        listed = _listed_names(names)
         made = tuple(self._constant(name) for name in listed)
         return made[0] if len(made) == 1 else made
 
@@ -530,7 +573,7 @@ class FluidModel:
             When the unit cannot be read, or an entry has another.
         """
         name = self._new_name(name)
-        vector = self._vector(name, entries)
+        vector = self._vector(name, entries, "vector")
         if unit is not None:
             made = read_unit(unit)
             form = of_dimension(made.dimension)
@@ -558,7 +601,7 @@ class FluidModel:
         ----------
         name : str
             What the law is called in the ledger and in messages.
-        lhs, rhs : expressions, or one string for `lhs`
+        lhs, rhs : expressions, or one string or SymPy equation for `lhs`
             A string holds the whole law, "partial_t(n_e) + div(n_e*v_e) = 0"; its names are looked up among
             what is declared, ``^`` and ``**`` both mean power, nothing is evaluated as code.
 
@@ -620,7 +663,9 @@ class FluidModel:
         self._constraints[name] = self._new_law(name, lhs, rhs, "constraint")
         return self._constraints[name]
 
-    def _new_law(self, name: str, lhs: Any, rhs: Any, kind: str) -> Law:
+    def _new_law(self, name: Any, lhs: Any, rhs: Any, kind: str) -> Law:
+        if not isinstance(name, str) or not name.strip():
+            raise DeclarationError(f"{name!r} is not a name for a {kind}; give a text")
         for known, others in (("law", self._laws), ("constraint", self._constraints)):
             if name in others:
                 raise DeclarationError(
@@ -641,6 +686,8 @@ class FluidModel:
                     f"{kind} '{name}': as text, give the whole of it as one string"
                 )
             left, right = read_law(lhs, self._names())
+        elif isinstance(lhs, Equality) and rhs == 0:
+            left, right = lhs.args
         else:
             left, right = exact(lhs), exact(rhs)
         left, right = (self._checked(f"{kind} '{name}'", side) for side in (left, right))
@@ -765,7 +812,7 @@ class FluidModel:
 
         Parameters
         ----------
-        assume : iterable of str, optional
+        assume : str or iterable of str, optional
             Names of laws that a fixed external source balances, as typed.
 
         Returns
@@ -778,6 +825,8 @@ class FluidModel:
             When a law contradicts the background.
         UndeterminedError
             When laws and unknowns do not match in number, naming what is undetermined.
+        DeclarationError
+            When `assume` names no law.
 
         Examples
         --------
@@ -791,7 +840,10 @@ class FluidModel:
         """
         from ..linearize.linearized import linearize
 
-        return linearize(self, tuple(assume))
+        given: Any = (assume,) if isinstance(assume, str) else assume
+        if not isinstance(given, Iterable):
+            raise DeclarationError(f"assume={assume!r}: give the name of a law, or a list of names")
+        return linearize(self, tuple(given))
 
     def save(self, path: Any) -> None:
         """Write the model as a TOML file that `plasmalin.load` reads back.
@@ -800,7 +852,7 @@ class FluidModel:
         ----------
         path : path-like
         """
-        from .files import save_model
+        from .writing import save_model
 
         save_model(self, path)
 
@@ -828,6 +880,23 @@ def _sequence(given: Any) -> bool:
     return isinstance(given, tuple | list)
 
 
+def _listed_names(names: Any) -> list[Any]:
+    """Names separated by spaces or commas, or in an iterable."""
+    found = names.replace(",", " ").split() if isinstance(names, str) else names
+    if not isinstance(found, Iterable) or not (listed := list(found)):
+        raise DeclarationError(f'{names!r} holds no names; give them as text, "n_0 T_e", or a list')
+    return listed
+
+
+def _listed(given: Any) -> Any:
+    """An array as a list of numbers, everything else as it is."""
+    return given.tolist() if isinstance(given, np.ndarray) else given
+
+
+def _nothing(given: Any) -> bool:
+    return given is None or (not isinstance(given, str) and not _sequence(given) and given == 0)
+
+
 def _common_rank(left: Expr, right: Expr) -> int:
     ranks = {rank_of(side) for side in (left, right) if side != 0}
     if len(ranks) == 2:
@@ -839,9 +908,12 @@ def _common_rank(left: Expr, right: Expr) -> int:
 
 
 def _same(law: Law, other: Law) -> bool:
-    """Whether two laws differ by a number at most."""
+    """Whether two laws differ by a constant factor at most."""
     if law.rank != other.rank or law.residual.atoms(Field) != other.residual.atoms(Field):
         return False
     mine, theirs = expand(law.residual), expand(other.residual)
-    ratio = mine.as_ordered_terms()[0] / theirs.as_ordered_terms()[0]
-    return bool(ratio.is_number) and expand(mine - ratio * theirs) == 0
+    ratios = (Add.make_args(mine)[0] / term for term in Add.make_args(theirs))
+    return any(
+        not r.has(FieldAtom, Operator, Components) and expand(mine - r * theirs) == 0
+        for r in ratios
+    )

@@ -5,7 +5,9 @@ Plain ``str`` gives the grammar that laws are read in; `paper` gives what a pers
 
 from __future__ import annotations
 
+import html
 import unicodedata
+from collections.abc import Iterable, Mapping
 from typing import Any, cast
 
 from sympy import Add, Expr, Integer, Mul, Pow, Rational, Symbol, cancel, gcd_list
@@ -26,6 +28,7 @@ from .operators import (
     Operator,
     Outer,
     PartialT,
+    k_abs,
 )
 
 SUPERSCRIPT = str.maketrans("0123456789-", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻")
@@ -59,6 +62,17 @@ def paper(expr: Any, axes: str = "") -> str:
 def latex(expr: Any, axes: str = "") -> str:
     """An expression in LaTeX, time derivatives first."""
     return cast(str, PaperLatex(axes).doprint(by_dyads(expr)))
+
+
+def equation_table(title: str, equations: Mapping[str, str]) -> str:
+    """Named equations in LaTeX as a table in HTML, for a notebook."""
+    cell = '<td style="text-align:left">'
+    rows = "".join(
+        f"<tr>{cell}{html.escape(name)}</td>{cell}$\\displaystyle {html.escape(text)}$</td></tr>"
+        for name, text in equations.items()
+    )
+    head = f"<p>{html.escape(title)}</p>" if title else ""
+    return f"{head}<table>{rows}</table>"
 
 
 def by_dyads(expr: Any) -> Any:
@@ -97,6 +111,8 @@ def _primitive(entries: list[Any]) -> tuple[Any, list[Any]]:
 
 def name_text(name: str) -> str:
     """A name with its Greek letters: omega_pe becomes ω_pe, and khat becomes k̂; ω_pi is of plasma ions."""
+    if name == k_abs.name:
+        return "|k|"
     first, *more = name.split("_")
     return "_".join([_letter(first), *(p if p == "pi" else _letter(p) for p in more)])
 
@@ -111,6 +127,17 @@ def _letter(part: str) -> str:
 def term_order(term: Expr) -> tuple[int, str]:
     """Sort key of the terms of a sum: time derivatives first, then as SymPy prints them."""
     return (0 if term.atoms(PartialT) else 1, str(term).lstrip("-"))
+
+
+def in_order(terms: Iterable[Expr]) -> list[Expr]:
+    """The terms of a sum as they are printed: γ − 1 rather than −1 + γ."""
+    found = sorted(terms, key=term_order)
+    first = found[0]
+    positive = next((t for t in found if not t.could_extract_minus_sign()), None)
+    if first.is_number and first.could_extract_minus_sign() and positive is not None:
+        found.remove(positive)
+        found.insert(0, positive)
+    return found
 
 
 class TextPrinter:
@@ -159,7 +186,7 @@ class TextPrinter:
 
     def _sum(self, expr: Add) -> str:
         out = ""
-        for term in sorted(expr.args, key=term_order):
+        for term in in_order(expr.args):
             text = self.show(term, 0)
             negative = text.startswith("−")
             joint = (" − " if negative else " + ") if out else ("−" if negative else "")
@@ -260,7 +287,7 @@ def _fraction(expr: Any) -> tuple[list[Any], list[Any]]:
             below.append(Pow(f.base, -f.exp))
         else:
             above.append(f)
-    above.sort(key=lambda f: (_place(f), isinstance(f, Add), str(f)))
+    above.sort(key=lambda f: (_place(f), not f.is_number, isinstance(f, Add), str(f)))
     return [f for f in above if f != 1], sorted(below, key=str)
 
 
@@ -282,8 +309,11 @@ class PaperLatex(LatexPrinter):  # type: ignore[misc]
         super().__init__({"mul_symbol": r"\,"})
         self.axes = axes
 
+    def _print_Symbol(self, expr: Any, style: str = "plain") -> str:
+        return r"\left|k\right|" if expr == k_abs else cast(str, super()._print_Symbol(expr, style))
+
     def _as_ordered_terms(self, expr: Any, order: Any = None) -> list[Any]:
-        return sorted(Add.make_args(expr), key=term_order)
+        return in_order(Add.make_args(expr))
 
 
 class LawPrinter(StrPrinter):  # type: ignore[misc]

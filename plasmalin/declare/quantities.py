@@ -6,10 +6,13 @@ and ``unit``; ``in_mks()`` with ``value`` and ``units``. The unit that is then l
 
 from __future__ import annotations
 
+import math
 from fractions import Fraction
+from numbers import Real
 from typing import Any
 
 import numpy as np
+from sympy import Float, Rational
 
 from ..errors import UnitError, ValuesError
 from .dimensions import kelvin_hint
@@ -54,7 +57,7 @@ def in_si(
     return number, given.scale
 
 
-def plain_number(name: str, value: Any, unit: Unit | None) -> Any:
+def plain_number(name: str, value: Any, unit: Unit | None, *, positive: bool = False) -> Any:
     """A default value as a number in the unit that its parameter declares.
 
     Raises
@@ -62,10 +65,22 @@ def plain_number(name: str, value: Any, unit: Unit | None) -> Any:
     UnitError
         As `in_si`.
     ValuesError
-        When a quantity is not a single number.
+        When it is not a single finite real number, or not positive where it must be.
     """
+    made = _default(name, value, unit)
+    if isinstance(made, bool) or not isinstance(made, Real) or not math.isfinite(made):
+        raise ValuesError(f"the default of '{name}' is {value!r}; give a finite real number")
+    if positive and made <= 0:
+        raise ValuesError(
+            f"'{name}' is declared positive and its default is {value!r}; give a positive number, or declare it "
+            "without positive=True"
+        )
+    return made
+
+
+def _default(name: str, value: Any, unit: Unit | None) -> Any:
     if _split(value) is None:
-        return value
+        return float(value) if isinstance(value, Rational | Float) else value
     number, scale = in_si(name, value, unit)
     if np.ndim(number):
         raise ValuesError(f"the default of '{name}' is an array; give a single number")

@@ -5,7 +5,8 @@
     product    = unary { ("*" | "/") unary }
     unary      = ("+" | "-") unary | power
     power      = operand [ ("^" | "**") unary ]
-    operand    = number | name | name "(" sum { "," sum } ")" | "(" sum ")"
+    operand    = number | name | name "(" argument { "," argument } ")" | "(" sum ")"
+    argument   = sum | "(" sum "," sum { "," sum } ")", a row of a tensor's components
 
 Names are looked up among what was declared, so E, N, S, I, beta, gamma and lambda are ordinary names.
 Length, nesting and numeric powers are bounded, so that hostile text fails at once.
@@ -23,6 +24,7 @@ import sympy
 from sympy import Add, Expr, Integer, Mul, Rational, S, cosh, exp, log, sinh, sqrt
 
 from ..errors import RankError, ReadError
+from .fields import components
 from .operators import OPERATORS, Operator, rank_of
 
 LONGEST = 20_000
@@ -278,7 +280,7 @@ class Reader:
                 f"'{token.text}' is a field or a parameter; write {token.text}*(...) for a product",
                 token.position,
             )
-        arguments = self._arguments()
+        arguments = self._arguments(rows=function is components)
         self.bounded(function, arguments, token)
         try:
             return self.finite(function(*arguments), token)
@@ -287,11 +289,23 @@ class Reader:
         except TypeError:
             self.fail(f"{token.text}() does not take {len(arguments)} arguments", token.position)
 
-    def _arguments(self) -> list[Expr]:
+    def _arguments(self, *, rows: bool = False) -> list[Any]:
+        """What stands in parentheses, between commas; of a tensor's components the rows in parentheses of their own."""
         self.expect("(")
-        found = [self.sum()]
-        while self.peek().text == ",":
-            self.take()
-            found.append(self.sum())
+        found: list[Any] = []
+        while not found or self.peek().text == ",":
+            if found:
+                self.take()
+            row = rows and self._row_begins()
+            found.append(tuple(self._arguments()) if row else self.sum())
         self.expect(")")
         return found
+
+    def _row_begins(self) -> bool:
+        """Whether the parenthesis that opens here holds a comma of its own."""
+        depth = 0
+        for token in self.tokens[self.place :]:
+            depth += (token.text == "(") - (token.text == ")")
+            if depth == 0 or (depth == 1 and token.text == ","):
+                return depth == 1
+        return False

@@ -20,7 +20,7 @@ from sympy import Add, Dummy, Expr, Matrix, Mul, Pow, lambdify
 
 from ..declare.fields import Components, Field
 from ..declare.operators import Identity, Multiplier, Operator, k_abs, k_x, k_y, k_z, omega
-from ..errors import BackgroundError
+from ..errors import BackgroundError, ValuesError
 from .exchange import Exchange, exchanges
 
 if TYPE_CHECKING:
@@ -154,8 +154,10 @@ class Expected:
     size: float
 
 
-def audit(linear: LinearizedModel, *, seed: int = 0) -> Audit:
+def audit(linear: LinearizedModel, *, seed: Any = 0) -> Audit:
     """Compare the nonlinear laws with the wave matrix; see `LinearizedModel.audit`."""
+    if not isinstance(seed, int | np.integer) or seed < 0:
+        raise ValuesError(f"seed={seed!r} is not a whole number from 0")
     sloped = [f.name for f in linear.fields.values() if f.gradient != 0]
     if sloped:
         raise BackgroundError(
@@ -163,6 +165,7 @@ def audit(linear: LinearizedModel, *, seed: int = 0) -> Audit:
             "audit the model without gradient="
         )
     wave = linear.plane_wave(tuple(f"k_{axis}" for axis in linear.axes))
+    seed = int(seed)
     random = np.random.default_rng(seed)
     balance, predict = _balance(linear), _predict(wave)
     best = -1

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import html
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from functools import cached_property
@@ -63,6 +64,8 @@ class Equilibrium:
     balances : tuple of Balance
     fields : dict of str to Expr
         The backgrounds that are not zero.
+    gradients : dict of str to Expr
+        Their uniform local gradients that are not zero.
     sources : tuple of Source
         Net charge and current, as the laws of the fields have them.
     drifts : dict of Symbol to Expr
@@ -78,10 +81,12 @@ class Equilibrium:
     ) -> None:
         self.balances, self._axes, self._laws = balances, axes, laws or {}
         self.fields = {n: f.background for n, f in fields.items() if f.background != 0}
+        self.gradients = {n: f.gradient for n, f in fields.items() if f.gradient != 0}
 
     def __str__(self) -> str:
         shown = ((name_text(n), paper(value, self._axes)) for n, value in self.fields.items())
-        named = (f"{name} = {value}" for name, value in shown)
+        named = [f"{name} = {value}" for name, value in shown]
+        named += [f"∇{name_text(n)} = {paper(g, self._axes)}" for n, g in self.gradients.items()]
         lines = ["Background: " + (", ".join(named) or "everything is zero")]
         lines += [f"  {b.text(self._axes)}" for b in self.balances]
         lines += [f"  {text}" for text in (*self._drift_texts(), *self._source_texts())]
@@ -121,6 +126,9 @@ class Equilibrium:
 
     def __repr__(self) -> str:
         return str(self)
+
+    def _repr_html_(self) -> str:
+        return f"<pre>{html.escape(str(self))}</pre>"
 
 
 def balance(law: Law, ledger: Ledger, assumed: bool, size: int, kind: str = "law") -> Balance:

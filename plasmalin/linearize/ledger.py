@@ -16,7 +16,7 @@ from ..declare.fields import Background, Perturbation
 from ..declare.model import Law
 from ..declare.notation import latex, paper, term_order
 from ..declare.operators import Norm, Operator
-from ..errors import BackgroundError
+from ..errors import BackgroundError, DeclarationError
 from .settle import settle
 from .split import Remainder, first_order_factors, split, terms
 
@@ -24,6 +24,7 @@ KEPT = "kept"
 DROPPED = "dropped"
 VANISHES = "vanishes"
 BALANCE = "balance"
+FATES = (KEPT, DROPPED, VANISHES, BALANCE)
 ZERO_BACKGROUND = "the background is zero"
 
 
@@ -100,10 +101,14 @@ class Ledger(Sequence[Piece]):
 
     def of(self, law: str) -> Ledger:
         """The part of the ledger that belongs to one law."""
+        if law not in (known := {p.law: None for p in self._pieces}):
+            raise DeclarationError(f"no law {law!r} in this ledger; there are: {', '.join(known)}")
         return Ledger([p for p in self._pieces if p.law == law], self._axes)
 
     def with_fate(self, fate: str) -> Ledger:
         """The pieces of one fate: "kept", "dropped", "vanishes" or "balance"."""
+        if fate not in FATES:
+            raise DeclarationError(f"no fate {fate!r}; there are: {', '.join(FATES)}")
         return Ledger([p for p in self._pieces if p.fate == fate], self._axes)
 
     def _groups(self) -> Iterator[tuple[str, Expr, list[Piece]]]:
@@ -177,6 +182,11 @@ def _judged(
         yield Piece(law, side, term, raw, raw, order, fate, reason)
         return
     value = settle(raw)
+    if value.has(S.NaN, S.Infinity, S.NegativeInfinity, S.ComplexInfinity):
+        raise BackgroundError(
+            f"law '{law}': {paper(term)} has no finite value or slope on the background; "
+            "give the field in it a background that is not zero"
+        )
     added = _from_gradients(raw, value)
     if value == 0 and added == 0:
         yield Piece(law, side, term, raw, value, order, VANISHES, _why_nothing(raw))

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import html
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 from functools import cached_property
@@ -13,7 +12,7 @@ from sympy import Add, Eq, Expr, Symbol
 from ..declare.dimensions import Dimensions
 from ..declare.fields import Field, Perturbation
 from ..declare.model import FluidModel, Law
-from ..declare.notation import latex, paper
+from ..declare.notation import equation_table, latex, paper
 from ..declare.units import Unit
 from ..errors import DeclarationError, UndeterminedError
 from ..exact.matching import maximum_matching
@@ -45,12 +44,7 @@ class Equations(dict[str, Eq]):
         return f"{latex(self[name].lhs, self._axes)} = {latex(self[name].rhs, self._axes)}"
 
     def _repr_html_(self) -> str:
-        rows = "".join(
-            f'<tr><td style="text-align:left">{html.escape(name)}</td>'
-            f'<td style="text-align:left">$\\displaystyle {html.escape(self.latex(name))}$</td></tr>'
-            for name in self
-        )
-        return f"<table>{rows}</table>"
+        return equation_table("", {name: self.latex(name) for name in self})
 
 
 @dataclass(frozen=True, eq=False)
@@ -118,7 +112,7 @@ class LinearizedModel:
         """What the background must satisfy, e.g. ``Eq(e*(n_e0 - n_i0), 0)``."""
         return conditions(self.background.balances)
 
-    def plane_wave(self, direction: Any = None, *, angle: str | None = None) -> WaveMatrix:
+    def plane_wave(self, direction: Any = None, *, angle: Any = None) -> WaveMatrix:
         """Put in plane waves exp[i(k.x − omega t)].
 
         Parameters
@@ -126,8 +120,9 @@ class LinearizedModel:
         direction : str or tuple
             An axis ("x": wave number k along it), or one entry per axis: names, numbers or expressions,
             ``("k_x", 0, "k_z")``.
-        angle : str, optional
-            Instead of `direction`: the name of the angle θ from z in the x-z plane, k (sin θ, 0, cos θ).
+        angle : str, number or expression, optional
+            Instead of `direction`: the angle θ from z in the x-z plane, k (sin θ, 0, cos θ), by name ("theta") or by
+            value, rad.
 
         Returns
         -------
@@ -209,6 +204,13 @@ class LinearizedModel:
         -------
         Audit
             Prints as a table; ``.passed`` tells the outcome.
+
+        Raises
+        ------
+        ValuesError
+            When the seed is not a whole number from 0.
+        BackgroundError
+            When a background has a gradient.
         """
         from .audit import audit
 
@@ -236,12 +238,14 @@ class LinearizedModel:
         return f"<LinearizedModel {self.title!r}: {len(self.laws)} laws, {len(self.fields)} fields>"
 
     def _repr_html_(self) -> str:
-        return f"<p>{html.escape(self.title)}</p>{self.equations._repr_html_()}"
+        return equation_table(self.title, {n: self.equations.latex(n) for n in self.equations})
 
 
 def linearize(model: FluidModel, assume: tuple[str, ...] = ()) -> LinearizedModel:
     """Linearize a model; see `FluidModel.linearize`."""
     laws, redundant = model.laws, model.constraints
+    if not laws:
+        raise UndeterminedError("the model has no laws; add them with model.law(name, lhs, rhs)")
     for name in assume:
         if name not in laws and name not in redundant:
             raise DeclarationError(

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from ..declare.files import write_whole
+from ..declare.writing import write_whole
 from .labels import CONVENTION, columns, rows
 
 if TYPE_CHECKING:

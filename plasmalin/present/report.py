@@ -13,6 +13,7 @@ from ..roots.solve import general_degree
 if TYPE_CHECKING:
     from ..check.verdict import Verdict
     from ..declare.files import StatedClaim
+    from ..linearize.linearized import LinearizedModel
     from ..roots.branches import Branches
     from ..waves.matrix import WaveMatrix
 
@@ -78,6 +79,16 @@ def growth_text(branches: Branches) -> str:
     )
 
 
+def values_table(linear: LinearizedModel) -> str:
+    """The default numbers, each in the unit that its parameter declares (SI without one)."""
+    width = max(map(len, linear.defaults))
+    units = {name: unit.text for name, unit in linear.units.items() if unit.text != "1"}
+    return "\n".join(
+        f"{name:<{width}} = {number!r} {units.get(name, '')}".rstrip()
+        for name, number in linear.defaults.items()
+    )
+
+
 def derivation(wave: WaveMatrix, branches: Branches | None) -> str:
     """The whole derivation in Markdown: laws, background, every term's fate, relation, branches."""
     linear = wave.linear
@@ -96,6 +107,8 @@ def derivation(wave: WaveMatrix, branches: Branches | None) -> str:
     if linear.conditions:
         parts += ["Conditions:", ""]
         parts += [f"- ${latex(c.lhs, linear.axes)} = 0$" for c in linear.conditions] + [""]
+    if linear.defaults:
+        parts += ["## Numbers", "", "```text", values_table(linear), "```", ""]
     parts += ["## Linearized laws", ""]
     parts += [f"- {name}: ${linear.equations.latex(name)}$" for name in linear.equations]
     if linear.redundant:

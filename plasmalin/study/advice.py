@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterable, Iterator, Mapping
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
@@ -21,13 +21,18 @@ def advise(wave: WaveMatrix, values: Mapping[Any, Any], waves: Mapping[str, Any]
     """All remarks on one wave; see `WaveMatrix.advice`."""
     with np.errstate(all="ignore"):
         plasma = measure(wave, values, waves)
-        return _apply(plasma)
+        sloped = (name for name, f in wave.linear.fields.items() if f.gradient != 0)
+        return _apply(plasma, [name for name in sloped if name not in plasma.gradients])
 
 
-def _apply(plasma: Plasma) -> Advice:
+def _apply(plasma: Plasma, without_length: Iterable[str]) -> Advice:
     remarks: list[Remark] = []
     looked: dict[str, list[str]] = {}
     lacking: dict[str, list[str]] = {reason: [] for reason in _unseen(plasma)}
+    for name in without_length:
+        lacking[
+            f"the gradient of {name} has no length: its background is zero or has no number"
+        ] = []
     for rule in (*WAVE_RULES, *SPECIES_RULES):
         for kind in plasma.kinds:
             lack = rule.lack(kind, plasma)

@@ -58,7 +58,7 @@ class Plasma:
     screened : tuple of array
         Debye lengths of those that follow a potential without inertia, m.
     gradients : dict of str to array
-        Per field with a background gradient its length, value over gradient, m.
+        Per field with a background and its gradient their length, value over gradient, m.
     """
 
     kinds: tuple[Kind, ...]
@@ -139,5 +139,5 @@ def _gradients(wave: WaveMatrix, value: Values) -> Iterator[tuple[str, Array]]:
         base = f.background.args if f.rank else (f.background,)
         entries = f.gradient.args if f.rank == 0 else [x for row in f.gradient.args for x in row]
         size, slope = value.vector(base or (f.background,)), value.vector(entries)
-        if size is not None and slope is not None:
+        if size is not None and slope is not None and np.all(length(size) > 0):
             yield name, length(size) / length(slope)

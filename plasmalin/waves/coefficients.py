@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 
-from sympy import Add, Expr, S, Symbol
+from sympy import Add, Expr, S, Symbol, latex
 
 from ..declare.notation import paper
 from ..exact.polynomial import ExactPolynomial
@@ -57,6 +57,17 @@ def by_powers(polynomial: ExactPolynomial) -> str:
             else ("−" if term.startswith("−") else "")
         )
         out += joint + term.removeprefix("−")
+    return out
+
+
+def latex_by_powers(polynomial: ExactPolynomial) -> str:
+    """LaTeX with the highest power of omega first."""
+    out = ""
+    for power, c in printed_coefficients(polynomial).items():
+        unit = latex(polynomial.main**power)
+        whole = rf"\left({latex(c)}\right) {unit}"
+        term = whole if power and isinstance(c, Add) else latex(c * polynomial.main**power)
+        out += term if not out else (f" {term}" if term.startswith("-") else f" + {term}")
     return out
 
 

@@ -33,7 +33,7 @@ LETTERS = {
 
 @dataclass(frozen=True)
 class Scales:
-    """The monomials of the time and length scale, and their numbers (None where they are not monomials)."""
+    """The monomials of the time and length scale, and their dimensionless factors (None where they are not monomials)."""
 
     time: Monomial
     length: Monomial

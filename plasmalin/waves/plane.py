@@ -6,21 +6,24 @@ from collections.abc import Mapping
 from dataclasses import replace
 from typing import Any
 
-from sympy import Expr, Symbol, cos, expand, sin
+import numpy as np
+from sympy import Expr, Float, Rational, Symbol, cos, expand, sin
 
-from ..declare.fields import Field
+from ..declare.fields import Components, Field, FieldAtom, exact
 from ..declare.model import Law
 from ..declare.operators import WAVE_SYMBOLS, Advect, Div
 from ..declare.reader import read_expression
-from ..errors import BackgroundError, DeclarationError, UndeterminedError
+from ..errors import BackgroundError, DeclarationError, RankError, UndeterminedError
 from ..linearize.ledger import KEPT
 from ..linearize.linearized import LinearizedModel, symmetric_law
 from .constraints import preserved
 from .lowering import Index, Wave, indices, lower
 from .matrix import Amplitude, Row, WaveMatrix
 
+NOT_A_NAME = {"omega", "k_abs"}
 
-def plane_wave(linear: LinearizedModel, direction: Any, angle: str | None) -> WaveMatrix:
+
+def plane_wave(linear: LinearizedModel, direction: Any, angle: Any) -> WaveMatrix:
     """Lower a linearized model for a wave vector; see `LinearizedModel.plane_wave`."""
     k = wave_vector(linear, direction, angle)
     _refuse_sheared_flow(linear, k)
@@ -98,7 +101,7 @@ def _equations(linear: LinearizedModel, laws: Mapping[str, Law], wave: Wave) -> 
                 yield Row(law.name, component), form.get(index, {})
 
 
-def wave_vector(linear: LinearizedModel, direction: Any, angle: str | None) -> tuple[Expr, ...]:
+def wave_vector(linear: LinearizedModel, direction: Any, angle: Any) -> tuple[Expr, ...]:
     """The wave vector's components along the model's axes."""
     axes = linear.axes
     if (direction is None) == (angle is None):
@@ -108,7 +111,12 @@ def wave_vector(linear: LinearizedModel, direction: Any, angle: str | None) -> t
     if angle is not None:
         if not {"x", "z"} <= set(axes):
             raise DeclarationError(f"angle= needs the axes x and z; the model has '{axes}'")
-        k, theta = _wave_symbol(linear, "k"), _wave_symbol(linear, angle)
+        k = _wave_symbol(linear, "k")
+        theta = _wave_symbol(linear, angle) if isinstance(angle, str) else _entry(linear, angle)
+        if theta == k:
+            raise DeclarationError(
+                "the angle cannot be named k, which is the wave number; name it theta"
+            )
         along = {"x": k * sin(theta), "y": 0 * k, "z": k * cos(theta)}
         return tuple(along[a] for a in axes)
     if isinstance(direction, str):
@@ -118,6 +126,8 @@ def wave_vector(linear: LinearizedModel, direction: Any, angle: str | None) -> t
             )
         k = _wave_symbol(linear, "k")
         return tuple(k if a == direction else 0 * k for a in axes)
+    if isinstance(direction, np.ndarray):
+        direction = direction.tolist()
     if not isinstance(direction, tuple | list) or len(direction) != len(axes):
         raise DeclarationError(
             f"direction {direction!r} does not fit the axes '{axes}'; give one entry per axis"
@@ -129,21 +139,32 @@ def wave_vector(linear: LinearizedModel, direction: Any, angle: str | None) -> t
 
 
 def _entry(linear: LinearizedModel, entry: Any) -> Expr:
-    from sympy import Expr as AnyExpr
-    from sympy import sympify
-
     names: dict[str, Any] = {**linear.symbols, **{s.name: s for s in WAVE_SYMBOLS}}
-    if isinstance(entry, str):
-        return read_expression(entry, names, unknown=lambda name: Symbol(name, real=True))
-    made = sympify(entry, strict=True)
-    if not isinstance(made, AnyExpr):
-        raise DeclarationError(f"{entry!r} is not a component of a wave vector")
-    return made
+    try:
+        made = (
+            read_expression(entry, names, unknown=lambda name: Symbol(name, real=True))
+            if isinstance(entry, str)
+            else exact(entry)
+        )
+    except (RankError, DeclarationError):
+        raise _no_component(entry) from None
+    made = made.xreplace({x: Rational(repr(float(x))) for x in made.atoms(Float)})
+    if made.atoms(FieldAtom, Components) or {s.name for s in made.free_symbols} & NOT_A_NAME:
+        raise _no_component(entry)
+    return made.xreplace(
+        {s: names.get(s.name, Symbol(s.name, real=True)) for s in made.free_symbols}
+    )
+
+
+def _no_component(entry: Any) -> DeclarationError:
+    return DeclarationError(
+        f"{entry!r} is not a component of a wave vector; give names, finite numbers or scalar expressions"
+    )
 
 
 def _wave_symbol(linear: LinearizedModel, name: str) -> Symbol:
-    if name in linear.symbols or not name.isidentifier():
+    if name in linear.symbols or not name.isidentifier() or name in NOT_A_NAME:
         raise DeclarationError(
-            f"'{name}' is a parameter or not a name; name the wave number otherwise, e.g. plane_wave(('q', 0, 0))"
+            f"'{name}' is a parameter or has another meaning; name the wave number otherwise, e.g. plane_wave(('q', 0, 0))"
         )
     return Symbol(name, real=True)

@@ -8,15 +8,16 @@ from fractions import Fraction
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
-from sympy import Add, Expr, Float, Poly, Rational, Symbol, latex, sympify
+from sympy import Add, Expr, Float, Poly, Rational, Symbol, SympifyError, sympify
 
 from ..declare.dimensions import Dimensions
 from ..declare.notation import paper
-from ..errors import DeclarationError, UndeterminedError
+from ..declare.reader import read_expression
+from ..errors import DeclarationError, UndeterminedError, ValuesError
 from ..exact.determinant import determinant, underdetermined_block
 from ..exact.polynomial import ExactPolynomial
 from ..exact.rational import exact_rational
-from .coefficients import by_powers, normalized_coefficients, printed_coefficients
+from .coefficients import by_powers, latex_by_powers, normalized_coefficients
 from .labels import Modes
 from .ordering import LeadingBalance, leading_balances
 
@@ -27,7 +28,7 @@ if TYPE_CHECKING:
 LONGEST_LATEX = 4000
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, repr=False)
 class Factor:
     """An irreducible factor of the relation, with the modes of one label that it holds.
 
@@ -49,6 +50,12 @@ class Factor:
     @property
     def expr(self) -> Expr:
         return self.polynomial.as_expr()
+
+    def __repr__(self) -> str:
+        return f"<Factor: {self}>"
+
+    def _repr_latex_(self) -> str:
+        return f"$\\displaystyle {latex_by_powers(self.polynomial)} = 0$"
 
     @property
     def degree(self) -> int:
@@ -150,7 +157,8 @@ class Relation:
         Parameters
         ----------
         values : mapping
-            From symbols or names to numbers (floats are the exact rationals that they are) or expressions.
+            From symbols or names to numbers (floats are the exact rationals that they are), expressions or texts,
+            ``{"n_e0": "Z*n_i0"}``.
 
         Returns
         -------
@@ -160,23 +168,42 @@ class Relation:
         ------
         DeclarationError
             When a name is not in the relation's model.
+        ReadError
+            When a text cannot be read.
+        ValuesError
+            When a value is neither a finite number nor an expression.
         UndeterminedError
             When nothing of the relation is left.
         """
-        made = {self._symbol(key): _in_rationals(value) for key, value in values.items()}
+        made = {
+            self._symbol(key): self._meant(key, value)
+            for key, value in named_pairs(values, "values").items()
+        }
         replaced = self.exact.substitute(made)
         if replaced.degree < 0:
             raise UndeterminedError("with these values the relation vanishes identically")
         earlier = {s: x.xreplace(made) for s, x in self._values.items()}
         return Relation(replaced.primitive()[1], self._symbols, self._wave, {**made, **earlier})
 
+    @property
+    def _known(self) -> dict[str, Symbol]:
+        held = {s.name: s for g in self.exact.generators for s in g.free_symbols}
+        return {**held, **self._symbols}
+
+    def _meant(self, key: Any, value: Any) -> Expr:
+        if isinstance(value, str):
+            return read_expression(value, self._known)
+        try:
+            return _in_rationals(value)
+        except SympifyError:
+            raise ValuesError(
+                f"'{key}' = {value!r} is neither a number nor an expression"
+            ) from None
+
     def _symbol(self, key: Any) -> Any:
-        if not isinstance(key, str):
+        if isinstance(key, Expr):
             return key
-        known = {
-            **{s.name: s for g in self.exact.generators for s in g.free_symbols},
-            **self._symbols,
-        }
+        known = self._known
         if key not in known:
             raise DeclarationError(
                 f"'{key}' is not in the relation; it holds {', '.join(sorted(known))}"
@@ -201,7 +228,7 @@ class Relation:
         DeclarationError
             When a factor has no closed form: degree above 4, or above 2 in the square.
         """
-        target = self.exact.main if name == "omega" else self._symbol(name)
+        target = self.exact.main if name in ("omega", self.exact.main) else self._symbol(name)
         found: list[Expr] = []
         for polynomial, multiplicity in self._irreducible:
             if target is self.exact.main and polynomial.lowest > 0:
@@ -242,7 +269,7 @@ class Relation:
         """
         fixed = None
         weights: dict[Expr, Fraction] = {}
-        for key, order in orders.items():
+        for key, order in named_pairs(orders, "orders").items():
             if key in ("omega", self.exact.main):
                 fixed = exact_rational(order)
             else:
@@ -287,7 +314,9 @@ class Relation:
         """
         from .scales import normalized
 
-        return normalized(self, self._symbols, self._dimensions, time, length, where or {})
+        return normalized(
+            self, self._symbols, self._dimensions, time, length, named_pairs(where or {}, "where")
+        )
 
     def __str__(self) -> str:
         lines = [str(f) for f in self.factors if f.polynomial.lowest == 0]
@@ -298,7 +327,7 @@ class Relation:
             lines.append(
                 f"left out: {_counted(self.forbidden_modes, {})} that a constraint forbids"
             )
-        return "\n".join(lines)
+        return "\n".join(lines) or "ω does not occur: there is no wave"
 
     @property
     def _allowed_labels(self) -> dict[str, int]:
@@ -310,12 +339,14 @@ class Relation:
 
     def latex(self) -> str:
         """The relation as a product of its factors, set equal to zero."""
+        shown = [(p, m - (self.forbidden_modes if p.lowest else 0)) for p, m in self._irreducible]
+        shown = [(p, m) for p, m in shown if m]
+        bare = len(shown) == 1 and shown[0][1] == 1
         parts = []
-        for p, whole in self._irreducible:
-            m = whole - (self.forbidden_modes if p.lowest else 0)
+        for p, m in shown:
             power = f"^{{{m}}}" if m > 1 else ""
-            body = latex(_by_printed_powers(p))
-            parts += [f"{body}{power}" if p.lowest else rf"\left({body}\right){power}"] if m else []
+            body = latex_by_powers(p)
+            parts.append(f"{body}{power}" if p.lowest or bare else rf"\left({body}\right){power}")
         return " ".join(parts) + " = 0"
 
     def _repr_latex_(self) -> str | None:
@@ -325,8 +356,11 @@ class Relation:
         return f"$\\displaystyle {text}$" if len(text) < LONGEST_LATEX else None
 
 
-def _by_printed_powers(polynomial: ExactPolynomial) -> Expr:
-    return Add(*(c * polynomial.main**p for p, c in printed_coefficients(polynomial).items()))
+def named_pairs(given: Any, what: str) -> Mapping[Any, Any]:
+    """What must be a mapping from names."""
+    if not isinstance(given, Mapping):
+        raise DeclarationError(f"{what} must be a mapping from names, not {given!r}")
+    return given
 
 
 def _in_rationals(value: Any) -> Expr:

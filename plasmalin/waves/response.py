@@ -9,7 +9,8 @@ from typing import TYPE_CHECKING
 
 from sympy import Expr, ImmutableDenseMatrix, Symbol
 
-from ..errors import UndeterminedError
+from ..declare.notation import paper
+from ..errors import DeclarationError, UndeterminedError
 from ..exact.determinant import eliminate
 from ..exact.matching import maximum_matching
 
@@ -47,6 +48,15 @@ class Reduced:
         text = latex(self.matrix)
         return f"$\\displaystyle {text}$" if len(text) < 4000 else None
 
+    def __str__(self) -> str:
+        size = range(len(self.amplitudes))
+        lines = []
+        for i in size:
+            row = ((self.entries.get((i, j)), self.amplitudes[j]) for j in size)
+            shown = " + ".join(f"[{paper(c)}] {s.name}" for c, s in row if c)
+            lines.append(f"{self.laws[i]}: {shown or 0} = 0")
+        return "\n".join(lines)
+
     def __repr__(self) -> str:
         names = ", ".join(s.name for s in self.amplitudes)
         return f"<Reduced to {names}: rows {'; '.join(self.laws)}>"
@@ -54,6 +64,8 @@ class Reduced:
 
 def reduced(wave: WaveMatrix, fields: tuple[str, ...]) -> Reduced:
     """The Schur complement on the named fields; see `WaveMatrix.reduce`."""
+    if not fields:
+        raise DeclarationError('name the fields that stay, as in reduce("E")')
     columns = list(dict.fromkeys(j for name in fields for j in wave.column(name)))
     rows = rows_that_stay(wave, columns)
     entries = eliminate_for(wave, wave.entries, rows, columns)

@@ -81,7 +81,10 @@ class Splitter:
 
     @property
     def scales(self) -> Scales:
-        numbers = (f if f.is_number else None for _, f in (self.time, self.length))
+        rests = (f for _, f in (self.time, self.length))
+        numbers = (
+            f if f.is_number or (f.is_positive and not f.atoms(Dummy)) else None for f in rests
+        )
         return Scales(self.time[0], self.length[0], *numbers)
 
     def images(self, groups: list[Group]) -> dict[Any, Expr]:

@@ -4,9 +4,10 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from sympy import together
+from sympy import S
 
 from ..errors import DeclarationError
+from ..exact.determinant import eliminate
 from .response import Reduced, eliminate_for, rows_taken, rows_that_stay
 
 if TYPE_CHECKING:
@@ -31,11 +32,13 @@ def susceptibility(wave: WaveMatrix, species: str, fields: tuple[str, ...]) -> R
         }
         parts.append(eliminate_for(wave, entries, rows, columns))
     with_it, without = parts
-    found = {ij: together(with_it.get(ij, 0) - without.get(ij, 0)) for ij in {*with_it, *without}}
+    found = {ij: with_it.get(ij, S.Zero) - without.get(ij, S.Zero) for ij in {*with_it, *without}}
+    size = range(len(columns))
+    found = eliminate(found, wave.omega, len(columns), size, size)  # in lowest terms
     return Reduced(
         tuple(wave.amplitudes[j] for j in columns),
         tuple(str(wave.rows[i]) for i in rows),
-        {ij: c for ij, c in found.items() if c != 0},
+        found,
     )
 
 

@@ -23,6 +23,9 @@ from .verdict import Verdict
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
 
+LONGEST = 10_000
+"""Terms of a relation that the conditions of the background are put into."""
+
 
 @dataclass(frozen=True, eq=False)
 class Case:
@@ -83,7 +86,12 @@ class Case:
 
     @cached_property
     def derived(self) -> Derived:
-        """The derived relation with the conditions of the background used."""
+        """The derived relation with the conditions of the background used, unless it is too long for that."""
+        if len(self.wave.relation.exact) > LONGEST:
+            self.reasons.append(
+                "the relation is too long for the background's conditions to be used"
+            )
+            return self.plain
         return self._derived(True)
 
     def _derived(self, conditions: bool) -> Derived:

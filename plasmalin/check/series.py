@@ -164,25 +164,36 @@ def _searched(
     ratios: Iterable[Expr] | None,
     budget: float,
 ) -> SeriesFound | SeriesSlip | None:
-    """The first scaling under which the claim is right, else the first that shows a slip."""
+    """The first scaling under which the claim is right, else the first that shows a slip.
+
+    An author's ratios may be small in several ways; then the claim must be wrong in none of them.
+    """
     if expansion is None or len(expansion.terms) < 2:
         return None
     end = time.monotonic() + budget
     slips: list[SeriesSlip] = []
+    right: SeriesFound | None = None
     given = None if ratios is None else [derived.using(claim.written_out(r)) for r in ratios]
     for weights in paths(expansion.terms, expansion.symbols, derived, given):
         here: list[SeriesSlip] = []
         for f in expansion.factors:
             found = _judged(expansion, f, weights, end)
             if isinstance(found, SeriesFound):
-                return found
+                right = right or found
+                break
             here += [] if found is None else [found]
+        else:
+            stated_slip = bool(here) and given is not None
+            if stated_slip:
+                return max(here, key=lambda s: s.order)
+        if right is not None and given is None:
+            return right
         if here and not slips:
             end = min(end, time.monotonic() + SECOND_THOUGHTS)
         slips += [max(here, key=lambda s: s.order)] if here else []
         if time.monotonic() > end:
             break
-    return slips[0] if slips else None
+    return right if right is not None else slips[0] if slips else None
 
 
 # The claim ---------------------------------------------------------------------------------------

@@ -6,7 +6,7 @@ from dataclasses import dataclass
 from functools import reduce
 from operator import mul
 
-from sympy import Add, Expr, Mul, Pow
+from sympy import Add, Expr, Mul, Pow, S, cancel
 
 from ..declare.notation import paper
 from ..declare.operators import omega
@@ -97,18 +97,26 @@ def _expressions(claim: Claim) -> list[Expr]:
 
 def _loses(claim: Claim, polynomial: ExactPolynomial, derived: Derived) -> bool:
     """Whether the claim has no wave, or zero frequency, where the laws have a wave."""
-    if loses_a_mode(claim):
-        return True
+    lacking = [f for f, _ in derived.factors if not covered(f, polynomial)]
     zeros = polynomial.lowest
-    return zeros > 0 and any(
-        f.degree == zeros and not covered(f, polynomial) for f, _ in derived.factors
+    if zeros > 0 and any(f.degree == zeros for f in lacking):
+        return True
+    return any(
+        not f.is_nonzero or any(_is_rest_of(derived.rational(f), p) for p in lacking)
+        for f in still_factors(claim)
     )
 
 
-def loses_a_mode(claim: Claim) -> bool:
-    """Whether the claim is a product with a factor, a sum that holds no ω and may vanish, which then is no wave."""
+def still_factors(claim: Claim) -> list[Expr]:
+    """The sums without ω that a claim, a product, has as factors."""
     factors = (claim.written_out(f) for f in Mul.make_args(claim.left - claim.right))
-    return any(isinstance(f, Add) and not f.has(omega) and not f.is_nonzero for f in factors)
+    return [f for f in factors if isinstance(f, Add) and not f.has(omega)]
+
+
+def _is_rest_of(still: Expr, factor: ExactPolynomial) -> bool:
+    """Whether a sum is what a factor of the relation leaves without its powers of ω."""
+    rest = factor.coefficients().get(0, S.Zero)
+    return rest != 0 and len(factor) < LONGEST and not cancel(rest / still).has(Add)
 
 
 def has_only_roots_of(claim: Claim, derived: Derived) -> bool:

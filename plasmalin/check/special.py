@@ -35,7 +35,7 @@ from ..declare.operators import omega
 from ..errors import PlasmalinError
 from ..exact.polynomial import ExactPolynomial
 from .claim import Claim
-from .compare import Match, compare, covered, loses_a_mode
+from .compare import Match, compare, covered, still_factors
 from .derived import Derived
 from .monomials import MASS, PURE_NUMBER, base_and_power
 
@@ -70,7 +70,7 @@ def special_values(claim: Claim, derived: Derived, budget: float = 3.0) -> list[
     """
     polynomial, _ = derived.numerator(claim.residual)
     long = max(map(len, (polynomial, derived.polynomial))) > MOST_TERMS
-    if polynomial.degree < 1 or loses_a_mode(claim) or long:
+    if polynomial.degree < 1 or still_factors(claim) or long:
         return []
     end = time.monotonic() + budget
     unknown = _unknown(polynomial, derived)

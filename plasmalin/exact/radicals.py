@@ -102,8 +102,8 @@ def _norm(value: Gaussian, variable: int, index: int, base: Ratio, ring: Ring) -
     """The product over the conjugates, with common factors of the parts taken out first."""
     parts = _lowered(_slices(value, variable, ring), index, base)
     parts = {j: p for j, p in parts.items() if p}
-    if list(parts) == [0]:
-        return parts[0]
+    if set(parts) <= {0}:
+        return parts.get(0, ring.constant(0))
     common = ring.constant(0)
     for p in parts.values():
         common = gcd(common, p)

@@ -323,12 +323,12 @@ SLIPS = {
             "B0**2*e**2/me**2",
             "-1",
         ),  # sign of Omega_e**2 in the upper hybrid denominator; right is omega**2 - wp**2 - We**2
-        ("differs", "", ""),  # magnetic force dropped in one component: X mode collapses onto O
+        ("limit", "", ""),  # magnetic force dropped in one component: X mode collapses onto O
     ),
     "pair-plasma-electrostatic": (
         ("differs", "-wp**2", "2"),  # one species only; right multiplier of wp**2 is 2
         (
-            "differs",
+            "limit",
             "-2*wp**2",
             "1",
         ),  # charges of both species given the same sign in Poisson: fields cancel

@@ -31,6 +31,8 @@ if TYPE_CHECKING:
 
 SHOWN = 150
 """Terms of a relation whose coefficients are shown side by side."""
+SEARCHED = 20_000
+"""Terms of a relation in which slips are searched for."""
 ASIDE = 4.0
 """Seconds for the slips of a claim that is right somewhere."""
 LONGEST = 400
@@ -101,6 +103,8 @@ def _answer(case: Case) -> Verdict:
 
 def _almost(case: Case) -> tuple[str, ...]:
     """What is wrong with a claim that is wrong though all its roots are right."""
+    if len(case.derived.polynomial) > SEARCHED:
+        return (f"the derived relation has {len(case.derived.polynomial)} terms",)
     if not has_only_roots_of(case.claim, case.derived):
         return ()
     return (
@@ -113,6 +117,9 @@ def _slips(case: Case, somewhere: Somewhere | None) -> tuple[tuple[Slip, ...], b
 
     The second tells that a sign or a number in one place makes the claim exact, as no truncation is mended.
     """
+    if len(case.derived.polynomial) > SEARCHED:
+        case.reasons.append("the relation is too long to be searched for slips")
+        return (), False
     if case.claim.solved and somewhere is None and (later := _later_term(case)):
         return later, False
     answered = somewhere is not None and not somewhere.doubtful

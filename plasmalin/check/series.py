@@ -166,7 +166,8 @@ def _searched(
 ) -> SeriesFound | SeriesSlip | None:
     """The first scaling under which the claim is right, else the first that shows a slip.
 
-    An author's ratios may be small in several ways; then the claim must be wrong in none of them.
+    An author's ratios may be small in several ways; then no term of the claim may be wrong in any of them. Where
+    only a term is missing that another ratio makes larger, two small quantities compete, and that is no slip.
     """
     if expansion is None or len(expansion.terms) < 2:
         return None
@@ -183,9 +184,9 @@ def _searched(
                 break
             here += [] if found is None else [found]
         else:
-            stated_slip = bool(here) and given is not None
-            if stated_slip:
-                return max(here, key=lambda s: s.order)
+            last = max(here, key=lambda s: s.order, default=None)
+            if last is not None and last.term != 0 and given is not None:
+                return last
         if right is not None and given is None:
             return right
         if here and not slips:

@@ -172,8 +172,9 @@ def _values(curve: list[Any], span: NDArray[np.int64], t: Array) -> NDArray[Any]
 
 
 def _fill(made: Sheet, points: NDArray[np.int64], real: int, z: NDArray[Any]) -> None:
-    """Starts that are distinct and, where real, in order; others are not carried."""
+    """Starts; real ones that overtook each other, as they do near where roots avoid each other, in order again."""
     rows = len(z)
     made.re[:rows, points], made.im[real:rows, points] = z.real, z[real:].imag
-    disordered = (np.diff(z.real[:real], axis=0) <= 0).any(axis=0)
-    made.real[points[disordered]] = UNKNOWN
+    disordered = points[(np.diff(z.real[:real], axis=0) <= 0).any(axis=0)]
+    if len(disordered):
+        made.re[:real, disordered] = np.sort(made.re[:real, disordered], axis=0)

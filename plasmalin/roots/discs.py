@@ -24,8 +24,10 @@ FAIR, SHARP = 2.0**-53, 2.0**-56
 """Radii relative to a root that are good enough, and that leave it right to the last digit."""
 LEAST = 1.25
 """A radius of so many times what the error of the coefficients makes it cannot become much smaller."""
-ROUGH_STEPS, SHORT = 2, 2.0**-20
-"""Steps in working precision at most, and the relative length of one after which they end."""
+ROUGH_STEPS, LONGEST = 6, 0.4
+"""Steps in working precision at most, and the share of the distance to the nearest other root that one may take."""
+SHORT, NOISE = 2.0**-18, 2.0**-32
+"""Steps end when they are this short against that distance, or against the root: then rounding may be most of them."""
 SMALLEST_PART = 2.0**-24
 """Real and imaginary part are made right one by one down to this share of the root."""
 LEADING = 2.0**-150, 2.0**200
@@ -264,29 +266,34 @@ def _part(z: NDArray[np.complex128]) -> Array:
 
 
 def settled(c: Coefficients, guess: Guess) -> Guess:
-    """After simultaneous steps in working precision, kept well inside the gaps, until they are short."""
+    """After simultaneous steps in working precision, kept inside the gaps; points whose steps are short drop out."""
+    plain, x, z = c.plain, guess.x.copy(), guess.z.copy()
+    active = np.arange(c.points)
     for _ in range(ROUGH_STEPS):
-        apart, longest = spread(guess), 1 / (8 * guess.degree)
-        x, x_step = _stepped(c, guess.x, apart.x_product, apart.x_gap * longest)
-        z, z_step = _stepped(c, guess.z, apart.z_product, apart.z_gap * longest)
-        guess = Guess(x, z, guess.mirrored)
-        if all((s <= SHORT * np.abs(r)).all() for s, r in ((x_step, x), (z_step, z))):
+        here = guess if len(active) == c.points else Guess(x[:, active], z[:, active], guess.mirrored)
+        apart = spread(here)
+        x[:, active], x_short = _stepped(plain, here.x, apart.x_product, apart.x_gap)
+        z[:, active], z_short = _stepped(plain, here.z, apart.z_product, apart.z_gap)
+        going = ~(x_short & z_short)
+        active, plain = active[going], plain[:, going]
+        if not len(active):
             break
-    return guess
+    return Guess(x, z, guess.mirrored)
 
 
-def _stepped(c: Coefficients, z: NDArray[Any], product: NDArray[Any], longest: Array) -> Any:
-    """The next numbers, and how far they are."""
+def _stepped(
+    plain: NDArray[Any], z: NDArray[Any], product: NDArray[Any], gap: Array
+) -> tuple[NDArray[Any], NDArray[np.bool_]]:
+    """The next numbers, and at which points the square of every step is out of sight."""
     if not len(z):
-        return z, z.real
-    step = _plain(c, z) / (c.plain[-1] * product)
-    length = np.abs(step)
-    step = np.where(length <= longest, step, step * (longest / length))
-    return z - step, np.abs(step)
+        return z, np.ones(z.shape[1], bool)
+    step = _plain(plain, z) / (plain[-1] * product)
+    length, longest = np.abs(step), LONGEST * gap
+    short = _within(length, np.maximum(SHORT * gap, NOISE * np.abs(z)))
+    return z - np.where(length <= longest, step, step * (longest / length)), short
 
 
-def _plain(c: Coefficients, z: NDArray[Any]) -> NDArray[Any]:
-    plain = c.plain
+def _plain(plain: NDArray[Any], z: NDArray[Any]) -> NDArray[Any]:
     value = np.empty(z.shape, np.result_type(plain, z))
     value[...] = plain[-1]
     for row in plain[-2::-1]:

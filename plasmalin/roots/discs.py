@@ -270,7 +270,9 @@ def settled(c: Coefficients, guess: Guess) -> Guess:
     plain, x, z = c.plain, guess.x.copy(), guess.z.copy()
     active = np.arange(c.points)
     for _ in range(ROUGH_STEPS):
-        here = guess if len(active) == c.points else Guess(x[:, active], z[:, active], guess.mirrored)
+        here = (
+            guess if len(active) == c.points else Guess(x[:, active], z[:, active], guess.mirrored)
+        )
         apart = spread(here)
         x[:, active], x_short = _stepped(plain, here.x, apart.x_product, apart.x_gap)
         z[:, active], z_short = _stepped(plain, here.z, apart.z_product, apart.z_gap)

@@ -116,9 +116,9 @@ def horner(
     reached = reached or [slice(None)] * len(coefficients)
     value, low = np.zeros(shape), np.zeros(shape)
     work = [np.empty(shape) for _ in range(5)]
-    parts = [np.broadcast_to(part, shape) for part in (x, *split(x))]
-    if x_low is not None:
-        parts.append(np.broadcast_to(x_low, shape))
+    parts = [x, *split(x)] if x_low is None else [x, *split(x), x_low]
+    if x.shape != shape:
+        parts = [np.broadcast_to(part, shape) for part in parts]
     value[reached[0]], low[reached[0]] = coefficients[0]
     for rows, pair in zip(reached[1:], coefficients[1:], strict=True):
         here = [part[rows] for part in parts]

@@ -16,6 +16,7 @@ from .doubledouble import Array
 from .path import Path
 from .scaling import Scaled
 from .sheets import UNKNOWN, Sheet
+from .slopes import power_table
 
 
 @dataclass(frozen=True)
@@ -70,7 +71,7 @@ def _rows(degree: int, real: int, mirrored: bool) -> int:
 def _slopes(scaled: Scaled, nodes: NDArray[np.int64], z: NDArray[Any]) -> NDArray[Any]:
     """d root / d quantity = -p_g / p_z in working precision, shape (G, degree, nodes)."""
     powers = [
-        _power_table(hi[nodes], e)
+        power_table(hi[nodes], e)
         for (hi, _), e in zip(scaled.columns, scaled.exponents.T, strict=True)
     ]
     plain = _polynomials(scaled, np.prod([part for part, _ in powers], axis=0), len(z))
@@ -86,14 +87,6 @@ def _slopes(scaled: Scaled, nodes: NDArray[np.int64], z: NDArray[Any]) -> NDArra
             value = value * z + row
         rates[i] = -value / slope
     return rates
-
-
-def _power_table(x: Array, exponents: NDArray[np.int64]) -> tuple[Array, Array]:
-    """x to all exponents, and the derivatives, shape (terms, nodes) each."""
-    table = np.ones((int(exponents.max()) + 1, len(x)))
-    for n in range(len(table) - 1):
-        np.multiply(table[n], x, out=table[n + 1])
-    return table[exponents], exponents[:, None] * table[np.maximum(exponents - 1, 0)]
 
 
 def _polynomials(scaled: Scaled, monomials: Array, degree: int) -> NDArray[Any]:

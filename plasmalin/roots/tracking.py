@@ -62,6 +62,11 @@ class Ends:
     def at(self, which: Any) -> Ends:
         return Ends(self.s[which], self.omega[which], self.slope[which])
 
+    @property
+    def real(self) -> bool:
+        """Whether all roots and slopes are."""
+        return not (self.omega.imag.any() or self.slope.imag.any())
+
     def and_then(self, other: Ends) -> Ends:
         return Ends(
             np.concatenate([self.s, other.s]),
@@ -97,6 +102,9 @@ def track(
     order = np.empty((n, d), np.int64)
     points, meeting = Ends(s, omega, slope), _coincide(omega)
     meeting &= not meeting.all()
+    if not meeting.any():
+        order, events = _through(solve, points)
+        return order, _distinct(events)
     kept = np.flatnonzero(~meeting)
     order[kept], events = _through(solve, points.at(kept))
     for i in np.flatnonzero(meeting):
@@ -143,20 +151,38 @@ def _unmoved(points: Ends) -> NDArray[np.bool_]:
 
 def _pairwise_clear(left: Ends, right: Ends) -> NDArray[np.bool_]:
     """The clear intervals among those where the matching would change nothing."""
-    ahead, back = (np.ascontiguousarray(a.T) for a in _to_the_middle(left, right))
-    if not (ahead.imag.any() or back.imag.any()):
-        ahead, back = ahead.real.copy(), back.real.copy()
+    real = left.real and right.real
+    ahead, back = (
+        np.ascontiguousarray((a.real if real else a).T) for a in _to_the_middle(left, right)
+    )
     with np.errstate(invalid="ignore", over="ignore"):
-        nearest = np.full((2, *ahead.shape), np.inf)
-        for i in range(len(ahead)):
-            square = _square(ahead[i] - back)
-            square[i] = np.inf
-            square.min(axis=0, out=nearest[0, i])
-            np.minimum(nearest[1], square, out=nearest[1])
-        own = _square(ahead - back)
+        own, nearest = (_real_distances if real else _distances)(ahead, back)
         clear = (own <= CLEAR**2 * nearest[0]) & (own < nearest[1])
         clear &= nearest[0] > COINCIDE**2 * _square(ahead)
     return np.asarray(clear.all(axis=0) & ~_ranks_change(left, right))
+
+
+def _distances(ahead: NDArray[Any], back: NDArray[Any]) -> tuple[NDArray[Any], NDArray[Any]]:
+    """Squares of the distances to the partner in the same place, and to the nearest other on either side."""
+    nearest = np.full((2, *ahead.shape), np.inf)
+    for i in range(len(ahead)):
+        square = _square(ahead[i] - back)
+        square[i] = np.inf
+        square.min(axis=0, out=nearest[0, i])
+        np.minimum(nearest[1], square, out=nearest[1])
+    return _square(ahead - back), nearest
+
+
+def _real_distances(ahead: NDArray[Any], back: NDArray[Any]) -> tuple[NDArray[Any], NDArray[Any]]:
+    """The same for real numbers, whose nearest others come next in order; where they are out of order, zero."""
+    nearest = np.full((2, *ahead.shape), np.inf)
+    up, down = _square(ahead[1:] - back[:-1]), _square(back[1:] - ahead[:-1])
+    nearest[0, 1:], nearest[1, :-1] = up, up
+    np.minimum(nearest[0, :-1], down, out=nearest[0, :-1])
+    np.minimum(nearest[1, 1:], down, out=nearest[1, 1:])
+    ordered = (ahead[1:] >= ahead[:-1]) & (back[1:] >= back[:-1])
+    nearest[:, :, ~ordered.all(axis=0)] = 0.0
+    return _square(ahead - back), nearest
 
 
 def _to_the_middle(left: Ends, right: Ends) -> tuple[NDArray[Any], NDArray[Any]]:

@@ -118,12 +118,11 @@ def loops(case):
     coefficients = []
     for family, _ in case.problem.factors:
         scaled = ScaledFamily(family, omega, [hi for hi, _ in case.grid])
-        terms, _ = scaled._by_power_of_omega(
+        terms, _ = scaled.polynomials(
             [hi[sample] for hi, _ in case.grid], [0.0 * sample] * len(case.grid)
         )
         table = np.zeros((family.degree + 1, SAMPLE), complex)
-        for power, values in terms.items():
-            table[family.degree - power] = values
+        table[:: scaled.terms.step] = terms[::-1]
         coefficients.append(table.T)
     user = seconds(lambda: [np.roots(c) for table in coefficients for c in table])
     pairs = list(zip(constant, -linear, strict=True))

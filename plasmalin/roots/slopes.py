@@ -68,7 +68,7 @@ class ScaledFamily:
         scale = terms.exponents + powers[:, None] + terms.monomials @ np.array(self.scales[1:], int)
         largest = int(scale[terms.parts != 0].max())
         re, im = np.ldexp(terms.parts, np.maximum(scale - largest, -2000))
-        return re + 1j * im if im.any() else re
+        return np.asarray(re + 1j * im if im.any() else re)
 
     def slope(
         self, omega: NDArray[np.complex128], grid: list[NDArray[Any]], rates: list[NDArray[Any]]

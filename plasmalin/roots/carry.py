@@ -47,10 +47,11 @@ class Carrier:
         made.real[:] = np.where(alike, known[:-1], UNKNOWN)[interval]
         for real in made.kinds:
             chosen = np.flatnonzero(made.real == real)
-            first, last = interval[chosen[0]], interval[chosen[-1]]
-            spans, span = np.arange(first, last + 1), interval[chosen] - first
-            left, right = s[nodes[spans]], s[nodes[spans + 1]]
-            length = np.where(right > left, right - left, 1.0)
+            mine = interval[chosen]
+            spans, span = np.arange(mine[0], mine[-1] + 1), mine - mine[0]
+            left = s[nodes[spans]]
+            length = s[nodes[spans + 1]] - left
+            length[length <= 0] = 1.0
             t = (s[points[chosen]] - left[span]) / length[span]
             curve = _quintic(self, real, spans, self._third(spans, alike), length)
             _fill(made, chosen, real, _values(curve, span, t))

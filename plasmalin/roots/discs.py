@@ -26,8 +26,8 @@ LEAST = 1.25
 """A radius of so many times what the error of the coefficients makes it cannot become much smaller."""
 ROUGH_STEPS, LONGEST = 6, 0.4
 """Steps in working precision at most, and the share of the distance to the nearest other root that one may take."""
-SHORT, NOISE = 2.0**-18, 2.0**-32
-"""Steps end when they are this short against that distance, or against the root: then rounding may be most of them."""
+SHORT = 2.0**-18
+"""Steps end when they are this short against that distance: the square of one is out of sight."""
 SMALLEST_PART = 2.0**-24
 """Real and imaginary part are made right one by one down to this share of the root."""
 LEADING = 2.0**-150, 2.0**200
@@ -266,33 +266,38 @@ def _part(z: NDArray[np.complex128]) -> Array:
 
 
 def settled(c: Coefficients, guess: Guess) -> Guess:
-    """After simultaneous steps in working precision, kept inside the gaps; points whose steps are short drop out."""
+    """After simultaneous steps in working precision, kept inside the gaps.
+
+    Points drop out once their steps are short or, because of rounding, do not become shorter.
+    """
     plain, x, z = c.plain, guess.x.copy(), guess.z.copy()
-    active = np.arange(c.points)
+    active, before = np.arange(c.points), np.full(c.points, np.inf)
     for _ in range(ROUGH_STEPS):
-        here = (
-            guess if len(active) == c.points else Guess(x[:, active], z[:, active], guess.mirrored)
-        )
+        everything = len(active) == c.points
+        here = guess if everything else Guess(x[:, active], z[:, active], guess.mirrored)
         apart = spread(here)
-        x[:, active], x_short = _stepped(plain, here.x, apart.x_product, apart.x_gap)
-        z[:, active], z_short = _stepped(plain, here.z, apart.z_product, apart.z_gap)
-        going = ~(x_short & z_short)
-        active, plain = active[going], plain[:, going]
+        x[:, active], x_share = _stepped(plain, here.x, apart.x_product, apart.x_gap)
+        z[:, active], z_share = _stepped(plain, here.z, apart.z_product, apart.z_gap)
+        share = np.maximum(x_share, z_share)
+        going = (share > SHORT) & ((share < 0.5 * before) | (share > LONGEST))
+        active, plain, before = active[going], plain[:, going], share[going]
         if not len(active):
             break
+        guess = Guess(x, z, guess.mirrored)
     return Guess(x, z, guess.mirrored)
 
 
 def _stepped(
     plain: NDArray[Any], z: NDArray[Any], product: NDArray[Any], gap: Array
-) -> tuple[NDArray[Any], NDArray[np.bool_]]:
-    """The next numbers, and at which points the square of every step is out of sight."""
+) -> tuple[NDArray[Any], Array]:
+    """The next numbers, and the largest step at every point as a share of the gap."""
     if not len(z):
-        return z, np.ones(z.shape[1], bool)
+        return z, np.zeros(z.shape[1])
     step = _plain(plain, z) / (plain[-1] * product)
-    length, longest = np.abs(step), LONGEST * gap
-    short = _within(length, np.maximum(SHORT * gap, NOISE * np.abs(z)))
-    return z - np.where(length <= longest, step, step * (longest / length)), short
+    share = np.abs(step) / gap
+    if share.max(initial=0.0) > LONGEST:
+        step = np.where(share <= LONGEST, step, step * (LONGEST / share))
+    return z - step, _largest(share)
 
 
 def _plain(plain: NDArray[Any], z: NDArray[Any]) -> NDArray[Any]:

@@ -94,10 +94,12 @@ def proven(c: Coefficients, start: Sheet, rough: bool = False) -> Sheet:
 
 
 def from_nothing(c: Coefficients) -> Sheet:
-    """The same without starts: from eigenvalues where they are good enough, else from the slower `cold_starts`."""
+    """The same without starts: from eigenvalues where all are real, which is cheap, else from `cold_starts`."""
     if c.high_imag is not None:
         return proven(c, _free(cold_starts(c)))
-    made = proven(c, _canonical(_free(eigenvalues(c))), True)
+    start = _canonical(_free(eigenvalues(c)))
+    start.real[start.real < c.degree] = UNKNOWN
+    made = proven(c, start, True)
     for again in (_mirrored, _without_symmetry):
         left = made.real == UNKNOWN
         if left.any():

@@ -162,6 +162,13 @@ def show_tracking(case):
     )
 
 
+def show_polarization(points=267):
+    wave = electromagnetic(2).linearize().plane_wave(angle="theta")
+    branches = wave.branches("k", np.geomspace(*RANGE, points), numbers(2), theta=0.5)
+    took = each(lambda: branches.amplitudes("E", per="E_x"))
+    print(f"amplitudes: {took / branches.omega.size * 1e3:.2f} ms a root, {took:.2f} s")
+
+
 def show_accuracy(case):
     """The dusty plasma: every root against exact arithmetic at a sample of points."""
     sample = np.linspace(0, case.points - 1, 25).astype(int)
@@ -222,6 +229,7 @@ def main():
         if name == "warm, ray":
             warm = case
     show_tracking(warm)
+    show_polarization()
     show_accuracy(Case(electromagnetic(3).linearize(), dusty_numbers(), 2000))
 
 

@@ -9,8 +9,9 @@ import numpy as np
 from numpy.typing import NDArray
 
 from .coefficients import Coefficients
-from .discs import Discs, Guess, discs, settled
+from .discs import Discs, Guess, discs
 from .doubledouble import Array
+from .settling import settled
 from .starts import cold_starts, eigenvalues
 
 ATTEMPTS = 6

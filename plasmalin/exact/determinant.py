@@ -139,6 +139,14 @@ def _parity(order: list[int]) -> int:
     return sign
 
 
+def polynomial_rows(entries: Entries, main: sp.Symbol) -> dict[tuple[int, int], ExactPolynomial]:
+    """The matrix with every row times its common denominator, which leaves the null vectors as they are."""
+    ring = ring_of(entries.values(), main)
+    reader = Reader(ring)
+    table, _ = _without_denominators({ij: reader.ratio(c) for ij, c in entries.items()}, ring)
+    return {ij: ExactPolynomial(ring, p) for ij, p in table.items()}
+
+
 def _cleared(entries: Entries, ring: Ring) -> Cleared:
     """The matrix without denominators, real if main = omega or main = i s allows."""
     first = None

@@ -63,8 +63,10 @@ def _sheets(near: Scaled, degree: int, dense: bool) -> Iterator[tuple[NDArray[np
     rest = [np.arange(points)]
     if stride > 1 and points > ALONE:
         carrier = _carrier(ordered, path, path.nodes(stride), degree)
+        yield path.order[carrier.nodes], carrier.sheet
         rest.clear()
-        for chosen in _batches(np.arange(points), max(64, WORK // degree)):
+        between = np.delete(np.arange(points), carrier.nodes)
+        for chosen in _batches(between, max(64, WORK // degree)):
             sheet = proven(coefficients(ordered, degree, chosen), carrier.starts(chosen), rough)
             known = sheet.real != UNKNOWN
             rest.append(chosen[~known])

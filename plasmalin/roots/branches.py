@@ -20,6 +20,7 @@ from .meetings import placed
 from .polarization import null_vectors
 from .slopes import ScaledFamily
 from .solve import Problem, grid_of, pose, rates_of
+from .solved import Status, joined
 from .tracking import Event, track
 from .values import Numbers, gather, left_out, scaled, to_si, with_defaults
 
@@ -246,6 +247,16 @@ def _complex_scalars(numbers: Numbers, name: str) -> int:
     return sum(s.name != name and bool((a == a.flat[0]).all()) for s, a in numbers.swept.items())
 
 
+def _placed(
+    array: NDArray[Any], place: NDArray[np.int64], first: NDArray[np.int64]
+) -> NDArray[Any]:
+    """Points and branches in another order, shape (branch, n); where the order stays nothing is gathered."""
+    for axis, order in ((0, place), (1, first)):
+        if not np.array_equal(order, np.arange(array.shape[axis])):
+            array = array.take(order, axis=axis)
+    return array.T.copy()
+
+
 class Sweep:
     """Solves and tracks every factor along one quantity."""
 
@@ -272,19 +283,13 @@ class Sweep:
         tracks.append(Enclosure.empty(len(s), zeros, ZERO))
         slopes.append(np.zeros((len(s), zeros), complex))
         factor += [-1] * zeros
-        arrays = [
-            np.concatenate([getattr(t, n) for t in tracks], axis=1)
-            for n in ("omega", "radius", "status")
-        ]
-        arrays.append(np.concatenate(slopes, axis=1))
-        first = (
-            np.lexsort((arrays[0][0].imag, arrays[0][0].real)) if len(s) else np.arange(len(factor))
-        )
-        omega, radius, status, slope = (a[place][:, first].T for a in arrays)
-        omega, radius = omega.copy(), radius.copy()
+        omega, radius, _, state = joined([t.arrays() for t in tracks], 1)
+        first = np.lexsort((omega[0].imag, omega[0].real)) if len(s) else np.arange(len(factor))
+        arrays = omega, radius, state, np.concatenate(slopes, axis=1)
+        omega, radius, state, slope = (_placed(a, place, first) for a in arrays)
         omega[:, ~np.isfinite(points)], radius[:, ~np.isfinite(points)] = np.nan, np.inf
         return Branches(
-            self.wave, self.numbers, self.name, points, omega, radius, status, slope,
+            self.wave, self.numbers, self.name, points, omega, radius, Status.words()[state], slope,
             tuple(factor[b] for b in first), tuple(sorted(events, key=lambda e: e.at)),
             tracks[0].method, self.problem.polynomials,
         )  # fmt: skip
@@ -295,7 +300,9 @@ class Sweep:
         if events and self.problem.generators == (self.symbol,):
             largest = float(np.abs(found.omega[np.isfinite(found.omega)]).max())
             events = placed(family, events, (largest, float(np.abs(s).max())))
-        return found.reordered(order), np.take_along_axis(slope, order, axis=1), events
+        if not (order == np.arange(order.shape[1])).all():
+            found, slope = found.reordered(order), np.take_along_axis(slope, order, axis=1)
+        return found, slope, events
 
     def tracked(
         self, family: Family, s: NDArray[np.float64], omega: NDArray[np.complex128]

@@ -16,6 +16,7 @@ from .doubledouble import Array
 from .path import Path
 from .scaling import Scaled
 from .sheets import UNKNOWN, Sheet
+from .slopes import power_table
 
 
 @dataclass(frozen=True)
@@ -46,10 +47,11 @@ class Carrier:
         made.real[:] = np.where(alike, known[:-1], UNKNOWN)[interval]
         for real in made.kinds:
             chosen = np.flatnonzero(made.real == real)
-            first, last = interval[chosen[0]], interval[chosen[-1]]
-            spans, span = np.arange(first, last + 1), interval[chosen] - first
-            left, right = s[nodes[spans]], s[nodes[spans + 1]]
-            length = np.where(right > left, right - left, 1.0)
+            mine = interval[chosen]
+            spans, span = np.arange(mine[0], mine[-1] + 1), mine - mine[0]
+            left = s[nodes[spans]]
+            length = s[nodes[spans + 1]] - left
+            length[length <= 0] = 1.0
             t = (s[points[chosen]] - left[span]) / length[span]
             curve = _quintic(self, real, spans, self._third(spans, alike), length)
             _fill(made, chosen, real, _values(curve, span, t))
@@ -70,7 +72,7 @@ def _rows(degree: int, real: int, mirrored: bool) -> int:
 def _slopes(scaled: Scaled, nodes: NDArray[np.int64], z: NDArray[Any]) -> NDArray[Any]:
     """d root / d quantity = -p_g / p_z in working precision, shape (G, degree, nodes)."""
     powers = [
-        _power_table(hi[nodes], e)
+        power_table(hi[nodes], e)
         for (hi, _), e in zip(scaled.columns, scaled.exponents.T, strict=True)
     ]
     plain = _polynomials(scaled, np.prod([part for part, _ in powers], axis=0), len(z))
@@ -86,14 +88,6 @@ def _slopes(scaled: Scaled, nodes: NDArray[np.int64], z: NDArray[Any]) -> NDArra
             value = value * z + row
         rates[i] = -value / slope
     return rates
-
-
-def _power_table(x: Array, exponents: NDArray[np.int64]) -> tuple[Array, Array]:
-    """x to all exponents, and the derivatives, shape (terms, nodes) each."""
-    table = np.ones((int(exponents.max()) + 1, len(x)))
-    for n in range(len(table) - 1):
-        np.multiply(table[n], x, out=table[n + 1])
-    return table[exponents], exponents[:, None] * table[np.maximum(exponents - 1, 0)]
 
 
 def _polynomials(scaled: Scaled, monomials: Array, degree: int) -> NDArray[Any]:
@@ -172,8 +166,9 @@ def _values(curve: list[Any], span: NDArray[np.int64], t: Array) -> NDArray[Any]
 
 
 def _fill(made: Sheet, points: NDArray[np.int64], real: int, z: NDArray[Any]) -> None:
-    """Starts that are distinct and, where real, in order; others are not carried."""
+    """Starts; real ones that overtook each other, as they do near where roots avoid each other, in order again."""
     rows = len(z)
     made.re[:rows, points], made.im[real:rows, points] = z.real, z[real:].imag
-    disordered = (np.diff(z.real[:real], axis=0) <= 0).any(axis=0)
-    made.real[points[disordered]] = UNKNOWN
+    disordered = points[(np.diff(z.real[:real], axis=0) <= 0).any(axis=0)]
+    if len(disordered):
+        made.re[:real, disordered] = np.sort(made.re[:real, disordered], axis=0)

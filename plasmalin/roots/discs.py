@@ -24,8 +24,6 @@ FAIR, SHARP = 2.0**-53, 2.0**-56
 """Radii relative to a root that are good enough, and that leave it right to the last digit."""
 LEAST = 1.25
 """A radius of so many times what the error of the coefficients makes it cannot become much smaller."""
-ROUGH_STEPS, SHORT = 2, 2.0**-20
-"""Steps in working precision at most, and the relative length of one after which they end."""
 SMALLEST_PART = 2.0**-24
 """Real and imaginary part are made right one by one down to this share of the root."""
 LEADING = 2.0**-150, 2.0**200
@@ -261,35 +259,3 @@ def _part(z: NDArray[np.complex128]) -> Array:
     """The smaller of the two parts, but no less than a share of the whole."""
     part = np.minimum(np.abs(z.real), np.abs(z.imag))
     return np.asarray(np.maximum(part, SMALLEST_PART * np.abs(z)))
-
-
-def settled(c: Coefficients, guess: Guess) -> Guess:
-    """After simultaneous steps in working precision, kept well inside the gaps, until they are short."""
-    for _ in range(ROUGH_STEPS):
-        apart, longest = spread(guess), 1 / (8 * guess.degree)
-        x, x_step = _stepped(c, guess.x, apart.x_product, apart.x_gap * longest)
-        z, z_step = _stepped(c, guess.z, apart.z_product, apart.z_gap * longest)
-        guess = Guess(x, z, guess.mirrored)
-        if all((s <= SHORT * np.abs(r)).all() for s, r in ((x_step, x), (z_step, z))):
-            break
-    return guess
-
-
-def _stepped(c: Coefficients, z: NDArray[Any], product: NDArray[Any], longest: Array) -> Any:
-    """The next numbers, and how far they are."""
-    if not len(z):
-        return z, z.real
-    step = _plain(c, z) / (c.plain[-1] * product)
-    length = np.abs(step)
-    step = np.where(length <= longest, step, step * (longest / length))
-    return z - step, np.abs(step)
-
-
-def _plain(c: Coefficients, z: NDArray[Any]) -> NDArray[Any]:
-    plain = c.plain
-    value = np.empty(z.shape, np.result_type(plain, z))
-    value[...] = plain[-1]
-    for row in plain[-2::-1]:
-        value *= z
-        value += row
-    return value

@@ -66,6 +66,20 @@ def times(x: Pair, y: Pair) -> tuple[Array, Array]:
     return two_sum(product, error + (x[0] * y[1] + x[1] * y[0]))
 
 
+def plus(x: Pair, y: Pair) -> tuple[Any, Any]:
+    """A sum to 4 UNIT^2 (|x| + |y|); also for complex numbers, part by part."""
+    total, error = two_sum(x[0], y[0])
+    return two_sum(total, error + (x[1] + y[1]))
+
+
+def complex_times(x: Pair, y: Pair) -> tuple[Any, Any]:
+    """A product of complex numbers, each part to 20 UNIT^2 |x| |y|."""
+    (a, b), (c, d) = (((p[0].real, p[1].real), (p[0].imag, p[1].imag)) for p in (x, y))
+    minus_b = -b[0], -b[1]
+    re, im = plus(times(a, c), times(minus_b, d)), plus(times(a, d), times(b, c))
+    return re[0] + 1j * im[0], re[1] + 1j * im[1]
+
+
 def power(x: Pair, n: int) -> tuple[Array, Array]:
     """x^n for n >= 1, to a relative 8 (n - 1) UNIT^2."""
     result = x
@@ -116,9 +130,9 @@ def horner(
     reached = reached or [slice(None)] * len(coefficients)
     value, low = np.zeros(shape), np.zeros(shape)
     work = [np.empty(shape) for _ in range(5)]
-    parts = [np.broadcast_to(part, shape) for part in (x, *split(x))]
-    if x_low is not None:
-        parts.append(np.broadcast_to(x_low, shape))
+    parts = [x, *split(x)] if x_low is None else [x, *split(x), x_low]
+    if x.shape != shape:
+        parts = [np.broadcast_to(part, shape) for part in parts]
     value[reached[0]], low[reached[0]] = coefficients[0]
     for rows, pair in zip(reached[1:], coefficients[1:], strict=True):
         here = [part[rows] for part in parts]

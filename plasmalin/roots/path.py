@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import cached_property
 from typing import TypeAlias
 
 import numpy as np
@@ -38,11 +39,15 @@ class Path:
 
     def stride(self, far: float) -> int:
         """How many points lie within a factor exp(far) of s, as a power of two."""
-        steps = np.abs(np.diff(np.log(np.abs(self.s))))[~self.breaks[1:]]
-        steps = steps[np.isfinite(steps)]
-        middle = float(np.median(steps)) if len(steps) else 0.0
-        within = far / middle if middle * FARTHEST > far else FARTHEST
+        within = far / self._step if self._step * FARTHEST > far else FARTHEST
         return int(2 ** np.floor(np.log2(max(within, 1.0))))
+
+    @cached_property
+    def _step(self) -> float:
+        """The median of log s from point to point."""
+        steps = np.abs(np.diff(np.log(np.abs(self.s))))
+        steps = steps[np.isfinite(steps) & ~self.breaks[1:]]
+        return float(np.median(steps)) if len(steps) else 0.0
 
     def nodes(self, stride: int) -> NDArray[np.int64]:
         """Every stride-th point, and both ends of every stretch without a jump."""

@@ -120,7 +120,7 @@ def _table(family: Family, complex_places: tuple[int, ...]) -> Table:
             shown = (value[0] or value[1],) if structure.real else value
             for part, number in enumerate(shown):
                 place = t, j + part * (degree + 1)
-                high[place], low[place], binary[place] = _binary(number)
+                high[place], low[place], binary[place] = in_binary(number)
     places = np.array(list(gathered), np.int64).reshape(len(gathered), -1)
     return Table(structure, degree, places, high, low, binary)
 
@@ -142,7 +142,7 @@ def _in_real_quantities(
     return terms
 
 
-def _binary(number: Fraction) -> tuple[float, float, int]:
+def in_binary(number: Fraction) -> tuple[float, float, int]:
     """number = (high + low) 2^binary, high between 1/2 and 2; int / int rounds correctly."""
     above, below = number.numerator, number.denominator
     exponent = abs(above).bit_length() - below.bit_length()

@@ -9,9 +9,10 @@ import numpy as np
 from numpy.typing import NDArray
 
 from .coefficients import Coefficients
-from .discs import Discs, Guess, discs, settled
+from .discs import Discs, Guess, discs
 from .doubledouble import Array
-from .starts import cold_starts
+from .settling import settled
+from .starts import cold_starts, eigenvalues
 
 ATTEMPTS = 6
 PATIENCE = 3
@@ -94,22 +95,32 @@ def proven(c: Coefficients, start: Sheet, rough: bool = False) -> Sheet:
 
 
 def from_nothing(c: Coefficients) -> Sheet:
-    """The same without starts."""
-    z = cold_starts(c)
-    free = Sheet(z.real.copy(), z.imag.copy(), NEARLY_REAL * np.abs(z), np.zeros(c.points, int))
+    """The same without starts: from eigenvalues where all are real, which is cheap, else from `cold_starts`."""
     if c.high_imag is not None:
-        return proven(c, free)
-    made = proven(c, _canonical(free))
-    left = made.real == UNKNOWN
-    if left.any():
-        made.copy_from(_without_symmetry(c.at(left), free.at(left)), left)
+        return proven(c, _free(cold_starts(c)))
+    start = _canonical(_free(eigenvalues(c)))
+    start.real[start.real < c.degree] = UNKNOWN
+    made = proven(c, start, True)
+    for again in (_mirrored, _without_symmetry):
+        left = made.real == UNKNOWN
+        if left.any():
+            made.copy_from(again(c.at(left)), left)
     return made
 
 
-def _without_symmetry(c: Coefficients, free: Sheet) -> Sheet:
+def _free(z: NDArray[np.complex128]) -> Sheet:
+    return Sheet(z.real.copy(), z.imag.copy(), NEARLY_REAL * np.abs(z), np.zeros(z.shape[1], int))
+
+
+def _mirrored(c: Coefficients) -> Sheet:
+    """From cold starts, those that are nearly real taken as real."""
+    return proven(c, _canonical(_free(cold_starts(c))))
+
+
+def _without_symmetry(c: Coefficients) -> Sheet:
     """Proven as if the coefficients were complex first, which tells close real roots from a pair."""
     apart = Sheet.unknown(c.degree, c.points)
-    _prove(c, free, False, apart, False)
+    _prove(c, _free(cold_starts(c)), False, apart, False)
     return proven(c, _canonical(apart))
 
 

@@ -92,7 +92,7 @@ def _posed(
     swept = tuple(g for g in whole.generators if g.free_symbols)
     parts = whole.factor()[1] if whole.has_real_form else whole.squarefree()[1]
     kept = [(p, m) for p, m in parts if p.lowest == 0]
-    factors = tuple((_family(p, swept), m) for p, m in kept)
+    factors = tuple((family_of(p, swept), m) for p, m in kept)
     zeros, allowed = whole.lowest - zero_modes, zero_modes - wave.forbidden_modes
     return Problem(factors, swept, zeros, degree, allowed, tuple(p for p, _ in kept))
 
@@ -127,7 +127,7 @@ def _on_circle(function: Expr) -> Rational:
 
 def grid_of(problem: Problem, numbers: Numbers) -> Grid:
     """The swept quantities over the flattened grid, in double-double."""
-    return [_grid(g, numbers) for g in problem.generators]
+    return [swept_values(g, numbers) for g in problem.generators]
 
 
 @lru_cache(maxsize=64)
@@ -158,7 +158,7 @@ def general_degree(wave: WaveMatrix) -> tuple[int, int]:
     return sample.degree - sample.lowest, sample.lowest
 
 
-def _family(polynomial: ExactPolynomial, swept: tuple[Expr, ...]) -> Family:
+def family_of(polynomial: ExactPolynomial, swept: tuple[Expr, ...]) -> Family:
     """Numbers such as pi or sqrt(2) are folded into the coefficients; the swept stay."""
     places = [
         polynomial.generators.index(g) + 1 if g in polynomial.generators else None for g in swept
@@ -190,7 +190,7 @@ def _fraction(value: Any) -> Fraction:
     return Fraction(-int(mantissa) if sign else int(mantissa)) * Fraction(2) ** int(exponent)
 
 
-def _grid(generator: Expr, numbers: Numbers) -> tuple[NDArray[Any], NDArray[Any]]:
+def swept_values(generator: Expr, numbers: Numbers) -> tuple[NDArray[Any], NDArray[Any]]:
     """A swept quantity over the flattened grid: plain arrays exactly, functions of them in double-double."""
     size = int(np.prod(numbers.shape, dtype=np.int64))
     if isinstance(generator, Symbol):

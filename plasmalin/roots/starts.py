@@ -31,6 +31,11 @@ def cold_starts(c: Coefficients) -> Complex:
     return _aberth(np.asarray(c.plain, np.complex128))
 
 
+def eigenvalues(c: Coefficients) -> Complex:
+    """Of the companion matrices, shape (degree, points); NaN where there are none. Small ones may be lost."""
+    return _eigenvalues(np.asarray(c.plain, np.complex128))
+
+
 def _polygon_radii(c: Complex) -> Array:
     """Sizes of the roots: slopes of the least concave majorant of log2 |c_j|, shape (degree, points)."""
     n = len(c) - 1

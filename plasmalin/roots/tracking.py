@@ -9,19 +9,16 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
-from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
-CLEAR = 0.1
-"""A match is clear when it is this much nearer than the next one."""
+from .matching import Ends, coincide, matched, pairwise_clear
+
 DEEPEST = 44
 """Halvings of an interval before two branches count as meeting."""
 UNEVEN = 0.4871
 """Where an interval is halved: off its middle, since meetings like to sit on round numbers."""
-COINCIDE = 2.0**-44
-"""Relative distance of two roots below which rounding decides which is which."""
 BATCH = 512
 
 Solve = Callable[[NDArray[np.float64]], tuple[NDArray[np.complex128], NDArray[np.complex128]]]
@@ -51,25 +48,6 @@ class Event:
     radius: float = np.inf
 
 
-@dataclass(frozen=True)
-class Ends:
-    """Roots and slopes at one end of some intervals: s of shape (m,), the others (m, roots)."""
-
-    s: NDArray[np.float64]
-    omega: NDArray[np.complex128]
-    slope: NDArray[np.complex128]
-
-    def at(self, which: Any) -> Ends:
-        return Ends(self.s[which], self.omega[which], self.slope[which])
-
-    def and_then(self, other: Ends) -> Ends:
-        return Ends(
-            np.concatenate([self.s, other.s]),
-            np.concatenate([self.omega, other.omega]),
-            np.concatenate([self.slope, other.slope]),
-        )
-
-
 def track(
     solve: Solve,
     s: NDArray[np.float64],
@@ -95,8 +73,11 @@ def track(
     """
     n, d = omega.shape
     order = np.empty((n, d), np.int64)
-    points, meeting = Ends(s, omega, slope), _coincide(omega)
+    points, meeting = Ends(s, omega, slope), coincide(omega)
     meeting &= not meeting.all()
+    if not meeting.any():
+        order, events = _through(solve, points)
+        return order, _distinct(events)
     kept = np.flatnonzero(~meeting)
     order[kept], events = _through(solve, points.at(kept))
     for i in np.flatnonzero(meeting):
@@ -123,13 +104,6 @@ def _through(solve: Solve, points: Ends) -> tuple[NDArray[np.int64], list[Event]
     return order, events
 
 
-def _coincide(omega: NDArray[np.complex128]) -> NDArray[np.bool_]:
-    """Whether two roots of a point are the same within rounding; they come sorted."""
-    with np.errstate(invalid="ignore"):
-        square = _square(omega[:, 1:] - omega[:, :-1])
-        return np.asarray((square <= COINCIDE**2 * _square(omega[:, 1:])).any(axis=1))
-
-
 def _unmoved(points: Ends) -> NDArray[np.bool_]:
     """Whether, from each point to the next, every root clearly goes on as the one in the same place."""
     intervals = max(len(points.s) - 1, 0)
@@ -137,48 +111,8 @@ def _unmoved(points: Ends) -> NDArray[np.bool_]:
     for first in range(0, intervals, BATCH):
         part = slice(first, min(first + BATCH, intervals))
         left, right = points.at(part), points.at(slice(part.start + 1, part.stop + 1))
-        clear[part] = _pairwise_clear(left, right)
+        clear[part] = pairwise_clear(left, right)
     return clear
-
-
-def _pairwise_clear(left: Ends, right: Ends) -> NDArray[np.bool_]:
-    """The clear intervals among those where the matching would change nothing."""
-    ahead, back = (np.ascontiguousarray(a.T) for a in _to_the_middle(left, right))
-    if not (ahead.imag.any() or back.imag.any()):
-        ahead, back = ahead.real.copy(), back.real.copy()
-    with np.errstate(invalid="ignore", over="ignore"):
-        nearest = np.full((2, *ahead.shape), np.inf)
-        for i in range(len(ahead)):
-            square = _square(ahead[i] - back)
-            square[i] = np.inf
-            square.min(axis=0, out=nearest[0, i])
-            np.minimum(nearest[1], square, out=nearest[1])
-        own = _square(ahead - back)
-        clear = (own <= CLEAR**2 * nearest[0]) & (own < nearest[1])
-        clear &= nearest[0] > COINCIDE**2 * _square(ahead)
-    return np.asarray(clear.all(axis=0) & ~_ranks_change(left, right))
-
-
-def _to_the_middle(left: Ends, right: Ends) -> tuple[NDArray[Any], NDArray[Any]]:
-    half = 0.5 * (right.s - left.s)[:, None]
-    return left.omega + half * left.slope, right.omega - half * right.slope
-
-
-def _square(z: NDArray[Any]) -> NDArray[np.float64]:
-    return np.asarray(z.real**2 + z.imag**2 if np.iscomplexobj(z) else z * z)
-
-
-def _ranks_change(
-    left: Ends, right: Ends, step: NDArray[np.int64] | None = None
-) -> NDArray[np.bool_]:
-    """Whether branches that are real at both ends swap their order across an interval."""
-    after = right.omega if step is None else np.take_along_axis(right.omega, step, axis=1)
-    real = (left.omega.imag == 0) & (after.imag == 0)
-    before, behind = (np.where(real, w.real, np.inf) for w in (left.omega, after))
-    if all((w[:, 1:] >= w[:, :-1]).all() for w in (before, behind)):
-        return np.zeros(len(real), bool)
-    ranks = (np.argsort(np.argsort(w, axis=1), axis=1) for w in (before, behind))
-    return np.asarray((real & (next(ranks) != next(ranks))).any(axis=1))
 
 
 def _followed(solve: Solve, left: Ends, right: Ends) -> tuple[list[NDArray[np.int64]], list[Event]]:
@@ -187,12 +121,12 @@ def _followed(solve: Solve, left: Ends, right: Ends) -> tuple[list[NDArray[np.in
     pieces: list[list[tuple[float, NDArray[np.int64]]]] = [[] for _ in left.s]
     owner = np.arange(len(left.s))
     for depth in range(DEEPEST + 1):
-        step, clear = _matched(left, right)
+        step, clear = matched(left, right)
         doubtful = np.flatnonzero(~clear)
         s = left.s[doubtful] + UNEVEN * (right.s - left.s)[doubtful]
         between = Ends(s, *solve(s))
         inside = (left.s[doubtful] < s) & (s < right.s[doubtful]) & (depth < DEEPEST)
-        inside &= ~_coincide(between.omega)
+        inside &= ~coincide(between.omega)
         for i in doubtful[~inside]:
             step[i] = _met(left.at(i), right.at(i), events)
         go_on = doubtful[inside]
@@ -211,21 +145,6 @@ def _composed(pieces: list[tuple[float, NDArray[np.int64]]]) -> NDArray[np.int64
     for _, step in others:
         whole = step[whole]
     return whole
-
-
-def _matched(left: Ends, right: Ends) -> tuple[NDArray[np.int64], NDArray[np.bool_]]:
-    """For each interval the nearest partners, and whether they are clear."""
-    ahead, back = _to_the_middle(left, right)
-    gap = np.abs(ahead[:, :, None] - back[:, None, :])
-    gap = np.where(np.isfinite(gap), gap, np.inf)
-    gap[~np.isfinite(left.omega)[:, :, None] & ~np.isfinite(right.omega)[:, None, :]] = 0.0
-    step, from_right = gap.argmin(axis=2), gap.argmin(axis=1)
-    mutual = np.take_along_axis(from_right, step, axis=1) == np.arange(gap.shape[1])
-    best = np.take_along_axis(gap, step[:, :, None], axis=2)[:, :, 0]
-    np.put_along_axis(gap, step[:, :, None], np.inf, axis=2)
-    rest = gap.min(axis=2, initial=np.inf)
-    clear = mutual & (best <= CLEAR * rest) & ~(rest <= COINCIDE * np.abs(left.omega))
-    return step, clear.all(axis=1) & ~_ranks_change(left, right, step)
 
 
 def _met(left: Ends, right: Ends, events: list[Event]) -> NDArray[np.int64]:

@@ -118,12 +118,11 @@ def loops(case):
     coefficients = []
     for family, _ in case.problem.factors:
         scaled = ScaledFamily(family, omega, [hi for hi, _ in case.grid])
-        terms, _ = scaled._by_power_of_omega(
+        terms, _ = scaled.polynomials(
             [hi[sample] for hi, _ in case.grid], [0.0 * sample] * len(case.grid)
         )
         table = np.zeros((family.degree + 1, SAMPLE), complex)
-        for power, values in terms.items():
-            table[family.degree - power] = values
+        table[:: scaled.terms.step] = terms[::-1]
         coefficients.append(table.T)
     user = seconds(lambda: [np.roots(c) for table in coefficients for c in table])
     pairs = list(zip(constant, -linear, strict=True))
@@ -161,6 +160,13 @@ def show_tracking(case):
         f"tracking (slopes and matching): {extra / case.points * 1e6:.2f} us a point, "
         f"{extra / solve:.2f} of the solve"
     )
+
+
+def show_polarization(points=267):
+    wave = electromagnetic(2).linearize().plane_wave(angle="theta")
+    branches = wave.branches("k", np.geomspace(*RANGE, points), numbers(2), theta=0.5)
+    took = each(lambda: branches.amplitudes("E", per="E_x"))
+    print(f"amplitudes: {took / branches.omega.size * 1e3:.2f} ms a root, {took:.2f} s")
 
 
 def show_accuracy(case):
@@ -223,6 +229,7 @@ def main():
         if name == "warm, ray":
             warm = case
     show_tracking(warm)
+    show_polarization()
     show_accuracy(Case(electromagnetic(3).linearize(), dusty_numbers(), 2000))
 
 

@@ -129,7 +129,7 @@ def _slips(case: Case, somewhere: Somewhere | None) -> tuple[tuple[Slip, ...], b
     exact = any(n.is_number and n not in (0, 1) for n in numbers)
     if not found and case.time > 0 and not answered:
         found = repairs_as_limit(case.claim, case.fitting, case.time / 2)
-    if not found and not case.claim.solved:
+    if not found and not answered and not case.claim.solved:
         return _later_term(case), False
     return tuple(s for repair in found for s in repair.slips), exact
 

@@ -59,7 +59,7 @@ def judge(
     convention, model = convention or Convention(), roles(wave)
     held = written.residual.free_symbols
     meant = partial(to_si, convention=convention, found=model)
-    stated = read_stated(WaveNames(wave, where or {}), under, held, meant)
+    stated = read_stated(names, under, held, meant)
     numbers = {**wave.linear.defaults, **{str(n): v for n, v in (values or {}).items()}}
     made, whole = (
         in_si(c, convention, model)
@@ -199,7 +199,8 @@ def _as_stated(case: Case) -> Verdict | None:
         return None
     also = (*case.stated_values, *stated.used, *case.contradicted(named))
     limit = verify_limit(stated.whole, stated.derived, ratios, case.values, case.time / 3)
-    if not isinstance(limit, str) and any("confirmed" in n and "tan(" in n for n in limit.notes):
+    angles = stated.derived.angles.symbols
+    if not isinstance(limit, str) and any(g.free_symbols & angles for g in limit.besides):
         limit = "a term that the claim keeps is right in one direction only"
     if not isinstance(limit, str):
         notes = (*also, *limit_notes(limit))

@@ -31,11 +31,14 @@ class LimitFound:
         The relative size of the largest term left out; 0 where none is.
     notes : tuple of str
         Where two small groups compete, the ratio that decides.
+    besides : tuple of Expr
+        What must be small as well for terms of the claim beyond the leading order to stand.
     """
 
     groups: tuple[Small, ...]
     neglected: Expr
     notes: tuple[str, ...] = ()
+    besides: tuple[Expr, ...] = ()
 
     @property
     def proof(self) -> str:
@@ -88,6 +91,7 @@ class Checked:
     """A part that is leading under the conditions, where what is needed besides is small as well."""
 
     notes: tuple[str, ...]
+    besides: tuple[Expr, ...]
     neglected: tuple[Expr, ...]
     needed: tuple[Vector, ...]
     reason: str
@@ -119,6 +123,7 @@ def verified(
     space = asked.space
     faces = Faces(space, space.terms(part), space.terms(factor), cone, end)
     notes: list[str] = []
+    besides: list[Expr] = []
     neglected: list[Expr] = []
     needed: list[Vector] = []
     led: list[tuple[Face, Leading]] = []
@@ -139,8 +144,13 @@ def verified(
             graded = faces.correction(r, face, answer)
             if graded is None:
                 return _unconfirmed(asked, faces, r)
-            notes += competing(asked, faces, r, graded, face.zeros)
-    return Checked(tuple(notes), tuple(neglected), tuple(needed), reason, faces, tuple(led))
+            groups = competing(asked, graded, face.zeros)
+            besides += groups
+            shown = paper(space.term(r, faces.claimed[r]))
+            notes += [f"the term {shown} is confirmed where also {paper(g)} ≪ 1" for g in groups]
+    return Checked(
+        tuple(notes), tuple(besides), tuple(neglected), tuple(needed), reason, faces, tuple(led)
+    )
 
 
 def _needed(
@@ -165,17 +175,9 @@ def _unconfirmed(asked: Question, faces: Faces, term: Vector) -> str:
     return f"beyond the leading order, the term {shown} is not in the derived relation in this form"
 
 
-def competing(
-    asked: Question,
-    faces: Faces,
-    term: Vector,
-    ratios: Sequence[Vector],
-    zeros: Sequence[Vector],
-) -> list[str]:
-    """A correction stands only where the terms left out are smaller still."""
-    groups = dict.fromkeys(asked.wording.group(v, zeros) for v in ratios)
-    shown = paper(asked.space.term(term, faces.claimed[term]))
-    return [f"the term {shown} is confirmed where also {paper(g)} ≪ 1" for g in groups]
+def competing(asked: Question, ratios: Sequence[Vector], zeros: Sequence[Vector]) -> list[Expr]:
+    """A correction stands only where these are small: the terms left out are smaller still."""
+    return list(dict.fromkeys(asked.wording.group(v, zeros) for v in ratios))
 
 
 def largest(groups: Sequence[Small]) -> Expr:

@@ -65,6 +65,7 @@ def _verified(asked: Question, derived: Derived, given: list[Expr], end: float) 
     if not cones:
         return "the stated conditions contradict each other"
     notes: list[str] = []
+    besides: list[Expr] = []
     left_out: list[Expr] = []
     for part, cone in product(asked.parts, cones):
         answer = best_of(asked, part, cone, end)
@@ -73,8 +74,9 @@ def _verified(asked: Question, derived: Derived, given: list[Expr], end: float) 
         if answer.needed:
             return answer.reason
         notes += answer.notes
+        besides += answer.besides
         notes += apart(asked, answer)
         left_out += answer.neglected
     groups = tuple(asked.small(r) for r in given)
     neglected = left_out[0] if left_out else S.Zero
-    return LimitFound(groups, neglected, tuple(dict.fromkeys(notes)))
+    return LimitFound(groups, neglected, tuple(dict.fromkeys(notes)), tuple(besides))

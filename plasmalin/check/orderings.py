@@ -79,7 +79,8 @@ def _noted(asked: Question, found: LimitFound, end: float) -> LimitFound:
     answers = [best_of(asked, p, cone, end) for p in asked.parts] if cone else []
     checked = [a for a in answers if isinstance(a, Checked)]
     notes = [n for c in checked for n in (*c.notes, *apart(asked, c))]
-    return replace(found, notes=tuple(dict.fromkeys((*found.notes, *notes))))
+    besides = (*found.besides, *(g for c in checked for g in c.besides))
+    return replace(found, notes=tuple(dict.fromkeys((*found.notes, *notes))), besides=besides)
 
 
 def _simplicity(found: LimitFound) -> tuple[bool, int, int]:
@@ -224,7 +225,8 @@ def _searched(asked: Question, end: float) -> Iterator[LimitFound]:
         groups = [asked.wording.group(x, ()) for x in vectors]
         made = tuple(asked.small(g, _physical(asked.space, ordering, g)) for g in groups)
         notes = dict.fromkeys(n for c in checked for n in c.notes)
-        yield LimitFound(made, largest(made), tuple(notes))
+        besides = tuple(g for c in checked for g in c.besides)
+        yield LimitFound(made, largest(made), tuple(notes), besides)
 
 
 def _checked(

@@ -137,8 +137,7 @@ def _limit(case: Case) -> Somewhere | None:
     if len(claimed) > len(case.derived.polynomial):
         return None  # a leading part is shorter than the whole
     for limit in find_limits(case.whole, case.derived, case.values, case.time / 3):
-        in_part = any("confirmed" in note for note in limit.notes)
-        doubtful = in_part or not limit.physical
+        doubtful = bool(limit.besides) or not limit.physical  # right in part only, or nowhere
         return Somewhere("limit", LEADING, limit.groups, limit_notes(limit), doubtful)
     return None
 

@@ -16,7 +16,6 @@ from ..declare.words import GREEK_NAME
 KINDS = (
     "identical", "factor", "branch", "special", "limit", "series", "convention", "differs", "undecided",
 )  # fmt: skip
-ALWAYS = ("identical", "factor", "branch")
 STATED = ("special", "limit", "series")
 WORDS = {
     "identical": "the claim is right; the laws give the same",

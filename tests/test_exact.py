@@ -308,6 +308,14 @@ def test_powers_with_doubles_as_exponents():
     assert q.degree == 1
 
 
+def test_roots_of_large_numbers_come_apart_the_same_every_time():
+    """1 - (0.9 c)^2 / c^2 in binary: a limited search finds the two large primes of its cofactor now and then."""
+    root = sympy.sqrt(sympy.Integer(4806564767067018911565418111959))
+    entries = {(0, 0): w - root * a, (0, 1): root, (1, 0): root, (1, 1): w}
+    found = determinant(entries, 2, w).reduced().as_expr()
+    assert same_up_to_unit(found, w**2 - root * a * w - root**2)
+
+
 def test_discriminant_with_complex_coefficients():
     """b² − 4ac holds over the Gaussian integers too; the imaginary part is not left out."""
     found = polynomial(w**2 + sympy.I * b * w + (a + sympy.I * k), w).discriminant().as_expr()

@@ -72,5 +72,26 @@ def _primes(base: sp.Expr) -> Iterator[tuple[sp.Expr, int]]:
         yield base, 1
         return
     for number, sign in ((base.p, 1), (base.q, -1)):
-        for prime, power in sp.factorint(number, limit=SMALL_PRIMES).items():
-            yield sp.Integer(prime), sign * power
+        for piece, power in _split_off(int(number)):
+            yield sp.Integer(piece), sign * power
+
+
+def _split_off(number: int) -> Iterator[tuple[int, int]]:
+    """The small primes of a positive number with their powers, and what is left.
+
+    Factoring routines with a limit find larger primes now and then; the same number must always come apart the same.
+    """
+    for prime in _small_primes():
+        power = 0
+        while number % prime == 0:
+            number, power = number // prime, power + 1
+        if power:
+            yield prime, power
+        if number == 1:
+            return
+    yield number, 1
+
+
+@lru_cache(maxsize=1)
+def _small_primes() -> tuple[int, ...]:
+    return tuple(sp.primerange(SMALL_PRIMES))

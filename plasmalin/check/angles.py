@@ -1,4 +1,5 @@
-"""Sines and cosines of the wave's angles made rational, so that polynomials compare without relations between them."""
+"""Sines and cosines of the wave's angles, and roots of 1 ± (s/a)², made rational, so that polynomials compare without
+relations between them."""
 
 from __future__ import annotations
 
@@ -10,6 +11,7 @@ from sympy import Abs, Expr, Symbol, cos, expand_trig, sin, sqrt
 from sympy import tan as tangent
 
 from ..exact.polynomial import ExactPolynomial
+from .conics import Conic, conics_of
 
 
 @dataclass(frozen=True)
@@ -21,12 +23,15 @@ class Angles:
     forms : mapping of Expr to str
         "cos" or "sin" where a relation holds even powers of the other one only, which then is a square root; "half",
         the tangent of the half angle, where it is even in neither.
+    conics : tuple of Conic
+        For the relation's square roots, such as Lorentz factors.
     """
 
     forms: Mapping[Expr, str]
+    conics: tuple[Conic, ...] = ()
 
     def rational(self, expr: Expr) -> Expr:
-        """An expression with every angle in its form; |k| as k, which is positive."""
+        """An expression with every angle and root in its form; |k| as k, which is positive."""
         if expr.atoms(tangent):
             expr = expr.replace(tangent, lambda a: sin(a) / cos(a))
         replaced: dict[Any, Any] = {}
@@ -35,7 +40,16 @@ class Angles:
             replaced[f] = plain.xreplace({g: self._image(g) for g in plain.atoms(sin, cos)})
         for a in expr.atoms(Abs):
             replaced[a] = a.args[0] if a.args[0].is_Symbol else a
-        return expr.xreplace(replaced) if replaced else expr
+        made = expr.xreplace(replaced) if replaced else expr
+        for conic in self.conics:
+            made = conic.rational(made)
+        return made
+
+    def restored(self, ratio: Expr) -> Expr:
+        """A ratio of polynomials with its square roots written as such again; angles stay."""
+        for conic in reversed(self.conics):
+            ratio = conic.restored(ratio)
+        return ratio
 
     def _image(self, function: Expr) -> Expr:
         angle = function.args[0]
@@ -55,7 +69,8 @@ class Angles:
 def angles_of(polynomial: ExactPolynomial) -> Angles:
     """The forms in which a relation is rational in its angles with the fewest terms."""
     angles = {g.args[0] for g in polynomial.generators if isinstance(g, sin | cos)}
-    return Angles({a: _form(polynomial.reduced(), a) for a in angles}) if angles else Angles({})
+    forms = {a: _form(polynomial.reduced(), a) for a in angles} if angles else {}
+    return Angles(forms, conics_of(polynomial.generators))
 
 
 def _form(reduced: ExactPolynomial, angle: Expr) -> str:

@@ -8,15 +8,17 @@ from dataclasses import replace
 from functools import partial
 from typing import TYPE_CHECKING, Any
 
-from sympy import Add, Rational, S, Symbol, cancel, factor, sqrt
+from sympy import Add, Expr, Rational, S, Symbol, cancel, expand, factor, sqrt
 
 from ..declare.notation import paper
 from ..errors import NonPolynomialError
+from ..exact.polynomial import ExactPolynomial
 from ..waves.coefficients import normalized_coefficients
 from .case import Case, in_words
 from .claim import WaveNames, make_claim, make_rate
 from .compare import compare, covered, has_only_roots_of
 from .convention import Convention, in_si, to_si
+from .derived import Derived
 from .limit import verify_limit
 from .rates import rate_order
 from .roles import roles
@@ -215,6 +217,15 @@ def _as_stated(case: Case) -> Verdict | None:
     return None
 
 
+def _shown(polynomial: ExactPolynomial, derived: Derived) -> dict[int, Expr]:
+    """Normalized coefficients in the symbols of the laws."""
+    if not derived.angles.conics:
+        return normalized_coefficients(polynomial)
+    powers = polynomial.coefficients()
+    lead = powers[max(powers)]
+    return {n: expand(derived.angles.restored(cancel(c / lead))) for n, c in powers.items()}
+
+
 def side_by_side(case: Case) -> Iterator[str]:
     """The coefficients of every power of ω that differ, both normalized by the highest."""
     claimed, _ = case.derived.numerator(case.claim.residual)
@@ -223,7 +234,7 @@ def side_by_side(case: Case) -> Iterator[str]:
     if max(len(same[0]), len(claimed)) > SHOWN:
         yield f"the derived relation has {len(same[0])} terms, the claim {len(claimed)}"
         return
-    right, theirs = (normalized_coefficients(p) for p in (same[0], claimed))
+    right, theirs = (_shown(p, case.derived) for p in (same[0], claimed))
     yield "coefficients of the powers of ω that differ, derived | claimed:"
     for power in sorted({*right, *theirs}, reverse=True):
         a, b = right.get(power, S.Zero), theirs.get(power, S.Zero)

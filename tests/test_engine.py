@@ -329,3 +329,12 @@ def test_coarse_and_scattered_points():
         found = enclose(polynomial, grid, points=300)
         assert (found.status == "certified").all()
         check(polynomial, grid, found, range(0, 300, 37))
+
+
+def test_pairs_of_points_that_jump_from_each_other():
+    """Where both ends of every stretch are nodes nothing lies between, and the nodes are not solved by themselves."""
+    near, far = np.repeat(np.linspace(1.0, 2.0, 60), 2), np.tile([1.0, 1.0001], 60)
+    found = family(OMEGA**3 - (1 + K**2 + Q) * OMEGA + K * Q, K, Q)
+    made = enclose(found, plain(near, far), points=120)
+    assert (made.status == "certified").all()
+    assert np.abs(made.omega.sum(axis=1)).max() < 1e-15  # no square term

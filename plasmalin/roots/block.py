@@ -61,8 +61,9 @@ def _sheets(near: Scaled, degree: int, dense: bool) -> Iterator[tuple[NDArray[np
     if rough:
         stride = path.stride(FAR)
     rest = [np.arange(points)]
-    if stride > 1 and points > ALONE:
-        carrier = _carrier(ordered, path, path.nodes(stride), degree)
+    nodes = path.nodes(stride)
+    if points > ALONE and 2 * len(nodes) <= points:  # jumps everywhere leave nothing between nodes
+        carrier = _carrier(ordered, path, nodes, degree)
         yield path.order[carrier.nodes], carrier.sheet
         rest.clear()
         between = np.delete(np.arange(points), carrier.nodes)

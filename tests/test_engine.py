@@ -333,8 +333,9 @@ def test_coarse_and_scattered_points():
 
 def test_pairs_of_points_that_jump_from_each_other():
     """Where both ends of every stretch are nodes nothing lies between, and the nodes are not solved by themselves."""
-    near, far = np.repeat(np.linspace(1.0, 2.0, 60), 2), np.tile([1.0, 1.0001], 60)
+    pairs = np.linspace(1.0, 2.0, 60)
+    falling = np.stack([3 - pairs, 3.0001 - pairs], axis=1).ravel()
     found = family(OMEGA**3 - (1 + K**2 + Q) * OMEGA + K * Q, K, Q)
-    made = enclose(found, plain(near, far), points=120)
+    made = enclose(found, plain(np.repeat(pairs, 2), falling), points=120)
     assert (made.status == "certified").all()
     assert np.abs(made.omega.sum(axis=1)).max() < 1e-15  # no square term

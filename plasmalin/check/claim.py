@@ -21,6 +21,7 @@ from sympy import (
     sympify,
 )
 
+from ..declare.latex import typed_text
 from ..declare.operators import omega
 from ..declare.typed import latex_reading, read_claim, read_matrix
 from ..errors import DeclarationError
@@ -127,7 +128,7 @@ def make_rate(names: WaveNames, claim: Any) -> Claim | None:
     if isinstance(claim, Eq) and isinstance(claim.lhs, Symbol):
         left, value = claim.lhs.name, claim.rhs
     elif isinstance(claim, str) and claim.count("=") == 1:
-        left, value = (part.strip() for part in claim.split("="))
+        left, value = (part.strip() for part in typed_text(claim).split("="))
     else:
         return None
     plain = re.sub(r"[\s()*]", "", left).replace("ω", "omega").replace("γ", "gamma")

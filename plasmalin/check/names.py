@@ -10,6 +10,7 @@ from sympy import Expr, I, MatrixBase, Symbol, expand_trig, sympify
 from sympy.core.function import AppliedUndef
 
 from ..declare.constants import CODATA
+from ..declare.latex import typed_text
 from ..declare.typed import read_typed
 from ..errors import DeclarationError, ReadError
 from .roles import SPELLINGS, constant
@@ -126,4 +127,4 @@ class Names:
 
 
 def _name(key: Any) -> str:
-    return key.name if isinstance(key, Symbol) else str(key)
+    return key.name if isinstance(key, Symbol) else typed_text(str(key))

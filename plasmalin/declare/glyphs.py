@@ -90,8 +90,6 @@ def unknown_character(character: str) -> str:
     """What is said of a character that no token begins with."""
     if character == "∂":
         return "∂ stands alone; write ∂_t n, ∂_x² n or ∂²n/∂t²"
-    if character == "\\":
-        return "LaTeX commands are not read; write omega, sqrt(x), a/b"
     return f"the character {character!r} has no meaning here"
 
 

@@ -10,6 +10,7 @@ belong to the argument of a function without parentheses.
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from typing import NoReturn, cast
 
 import sympy
@@ -18,12 +19,18 @@ from sympy import Expr
 from .applied import OPENING, Bare, WordReader, shown
 from .fields import FieldAtom
 from .glyphs import CLOSING, OPERAND_KINDS, Mark
+from .latex import typed_text
 from .operators import Operator, rank_of
-from .words import SIDE_BY_SIDE, SIGN_ADVICE
+from .words import SIDE_BY_SIDE, SIGN_ADVICE, Names
 
 
 class TypedReader(WordReader):
     """The reader of laws with implicit products, glyphs, |...| and functions without parentheses."""
+
+    def __init__(
+        self, text: str, names: Names, unknown: Callable[[str], Expr] | None = None
+    ) -> None:
+        super().__init__(typed_text(text), names, unknown)
 
     def finish(self) -> None:
         token = self.peek()

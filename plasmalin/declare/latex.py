@@ -55,7 +55,7 @@ def typed_text(text: str) -> str:
     Examples
     --------
     >>> typed_text(r"\omega^2 = \omega_{pe}^2 + 3 k^2 \frac{T_e}{m_e}")
-    'omega^2 = omega_pe^2 + 3 k^2 (T_e)/(m_e)'
+    'omega^2 = omega_pe^2 + 3 k^2 ((T_e)/(m_e))'
     >>> typed_text("omega^2 = 3 k^2")
     'omega^2 = 3 k^2'
     """

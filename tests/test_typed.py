@@ -153,6 +153,8 @@ AMBIGUOUS = [
     ("ln |a| b", "ln(|a| b)", "ln(|a|) b"),
     ("|a|b|c|", "abs(a) b abs(c)", "abs(a abs(b) c)"),
     ("| a | b | c |", "abs( a ) b abs( c )", "abs( a abs( b ) c )"),
+    ("omega(k)", "omega*k", "omega"),
+    ("a = ω(k)^2", "ω*k", "ω"),
     ("v 2", "v^2", "v*2"),
     ("2E0^2", "2*10^0", "2*E0"),
 ]

@@ -89,6 +89,8 @@ class WordReader(Reader):
     def _word(self, token: Mark) -> Expr:
         found = self._find(token)
         if isinstance(found, Expr):
+            if words.plain(token.text) == "omega":
+                self._not_a_function(token)
             return found
         steps = [found] if callable(found) else words.derivatives(token.text, self.names)
         if steps:
@@ -96,6 +98,19 @@ class WordReader(Reader):
         if token.text in TYPED_FUNCTIONS:
             return self._applied(token, [TYPED_FUNCTIONS[token.text]])
         return self._unfound(token)
+
+    def _not_a_function(self, token: Mark) -> None:
+        """Refuse ω(k), which says that ω depends on k as likely as it is a product."""
+        bracket, name, closing = (self.tokens[self.place :] + [token] * 3)[:3]
+        if (
+            bracket.text == "("
+            and not bracket.spaced
+            and name.kind == "name"
+            and closing.text == ")"
+        ):
+            readings = (f"{token.text}*{name.text}", token.text)
+            typed = self.typed(token.position, closing.end)
+            self.ambiguous(f"what {typed} says", token.position, *readings)
 
     def _find(self, token: Token) -> Any:
         """What a name stands for, by any of its spellings; None where nothing does."""

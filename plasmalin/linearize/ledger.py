@@ -13,7 +13,7 @@ from typing import Any, overload
 from sympy import Expr, S, expand
 
 from ..declare.fields import Background, Perturbation
-from ..declare.model import Law
+from ..declare.law import Law
 from ..declare.notation import latex, paper, term_order
 from ..declare.operators import Norm, Operator
 from ..errors import BackgroundError, DeclarationError

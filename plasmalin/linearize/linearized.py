@@ -11,7 +11,8 @@ from sympy import Add, Eq, Expr, Symbol
 
 from ..declare.dimensions import Dimensions
 from ..declare.fields import Field, Perturbation
-from ..declare.model import FluidModel, Law
+from ..declare.law import Law
+from ..declare.model import FluidModel
 from ..declare.notation import equation_table, latex, paper
 from ..declare.units import Unit
 from ..errors import DeclarationError, UndeterminedError

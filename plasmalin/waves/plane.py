@@ -10,7 +10,7 @@ import numpy as np
 from sympy import Expr, Float, Rational, Symbol, cos, expand, sin
 
 from ..declare.fields import Components, Field, FieldAtom, exact
-from ..declare.model import Law
+from ..declare.law import Law
 from ..declare.operators import WAVE_SYMBOLS, Advect, Div
 from ..declare.reader import read_expression
 from ..errors import BackgroundError, DeclarationError, RankError, UndeterminedError

@@ -6,7 +6,8 @@ from typing import Any
 
 from sympy import Expr, S
 
-from ..model import FluidModel, Law
+from ..law import Law
+from ..model import FluidModel
 from ..operators import cross, curl, div, dot, grad, partial_t
 from ..role import Role
 from .closures import declared, named, ready_law

@@ -8,7 +8,8 @@ from sympy import Expr, pi, sqrt
 
 from ...errors import DeclarationError
 from ..fields import FieldAtom, exact
-from ..model import FluidModel, Law
+from ..law import Law
+from ..model import FluidModel
 from ..operators import (
     advect,
     div,

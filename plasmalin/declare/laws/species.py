@@ -8,7 +8,8 @@ from sympy import Expr, S, sqrt
 
 from ...errors import DeclarationError
 from ..fields import exact
-from ..model import FluidModel, Law
+from ..law import Law
+from ..model import FluidModel
 from ..operators import advect, cross, div, dot, grad, laplacian, partial_t, rank_of
 from ..role import Role
 from .closures import declared, named, ready_law

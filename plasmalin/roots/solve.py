@@ -19,9 +19,9 @@ from numpy.typing import NDArray
 from sympy import Abs, Dummy, Expr, Rational, Symbol, cos, lambdify, sin, sqrt
 
 from ..errors import UndeterminedError
-from ..exact.circle import on_circle
 from ..exact.determinant import determinant
 from ..exact.polynomial import ExactPolynomial
+from ..exact.sines import on_circle
 from .family import Family, Grid
 from .values import high_precision
 

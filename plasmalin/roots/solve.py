@@ -152,7 +152,7 @@ def general_degree(wave: WaveMatrix) -> tuple[int, int]:
     }
     sample = determinant(wave.entries, len(wave.rows), wave.omega, values=values)
     if sample.degree < 0:
-        from ..waves.relation import undetermined_message
+        from ..waves.derive import undetermined_message
 
         raise UndeterminedError(undetermined_message(wave))
     return sample.degree - sample.lowest, sample.lowest

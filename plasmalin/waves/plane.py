@@ -16,9 +16,10 @@ from ..declare.reader import read_expression
 from ..errors import BackgroundError, DeclarationError, RankError, UndeterminedError
 from ..linearize.ledger import KEPT
 from ..linearize.linearized import LinearizedModel, symmetric_law
+from .amplitudes import Amplitude, Row
 from .constraints import preserved
 from .lowering import Index, Wave, indices, lower
-from .matrix import Amplitude, Row, WaveMatrix
+from .matrix import WaveMatrix
 
 NOT_A_NAME = {"omega", "k_abs"}
 

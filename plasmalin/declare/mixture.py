@@ -16,15 +16,29 @@ from . import laws
 from .constants import codata
 from .fields import Field, components
 from .model import FluidModel
+from .quantities import in_unit
+from .units import read_unit
 
 FIELDS = ("electrostatic", "electromagnetic", "quasineutral")
 BREACH = 1e-6
 """Largest net charge, current or force, relative to its largest term, that counts as rounding of the given numbers."""
 
 
+UNITS = {
+    "charge_number": "1",
+    "mass": "kg",
+    "density": "m**-3",
+    "temperature_eV": "eV",
+    "gamma": "1",
+    "drift": "m/s",
+    "collision_frequency": "1/s",
+}
+"""The units of a species' numbers."""
+
+
 @dataclass(frozen=True)
 class Species:
-    """One species by its numbers.
+    """One species by its numbers, each plain in the unit given here or a quantity object with a unit.
 
     Parameters
     ----------
@@ -44,6 +58,13 @@ class Species:
         With the neutrals.
     magnetised : bool, default True
         Whether the magnetic force acts on it.
+
+    Raises
+    ------
+    DeclarationError
+        When the name is not an identifier, or a number cannot be meant.
+    UnitError
+        When a quantity object has another dimension.
     """
 
     name: str
@@ -60,7 +81,9 @@ class Species:
         name: Any = self.name
         if not isinstance(name, str) or not name.isidentifier():
             raise DeclarationError(f"species {self.name!r}: the name must be an identifier")
-        object.__setattr__(self, "drift", _listed(self.drift))
+        for what, unit in UNITS.items():
+            given = in_unit(f"{what} of {self.name}", getattr(self, what), read_unit(unit))
+            object.__setattr__(self, what, _listed(given) if what == "drift" else given)
         for what, least, strict in (
             ("mass", 0.0, True),
             ("density", 0.0, True),
@@ -116,6 +139,8 @@ def mixture(
     ------
     DeclarationError
         For numbers that cannot be meant, or shapes that do not fit the axes.
+    UnitError
+        When a quantity object has another dimension.
     BackgroundError
         When charge, current (with Ampere's law) or the force on a drifting species does not balance, with the size
         of the breach and the ways out.
@@ -131,7 +156,14 @@ def mixture(
     >>> plasma.linearize().plane_wave("x").roots(k=1e3).shape
     (4,)
     """
-    vectors = (_listed(v) for v in (magnetic_field, electric_field, neutral_velocity))
+    vectors = (
+        _listed(in_unit(name, given, read_unit(unit)))
+        for name, given, unit in (
+            ("magnetic_field", magnetic_field, "T"),
+            ("electric_field", electric_field, "V/m"),
+            ("neutral_velocity", neutral_velocity, "m/s"),
+        )
+    )
     setting = _Setting(tuple(species), field, axes, *vectors)
     setting.check()
     names = ", ".join(s.name for s in species)

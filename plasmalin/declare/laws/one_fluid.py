@@ -47,7 +47,7 @@ def induction(
     hall: Any = 0,
     name: str = "induction",
 ) -> Law:
-    """d_t B = curl(v x B − eta curl B / mu_0 − hall), T/s.
+    """d_t B = curl(v x B − eta curl B / mu_0 − hall), T/s (Landau and Lifshitz, Electrodynamics of Continuous Media, sec. 65).
 
     Parameters
     ----------
@@ -63,10 +63,6 @@ def induction(
     Returns
     -------
     Law
-
-    Notes
-    -----
-    Landau and Lifshitz, Electrodynamics of Continuous Media, sec. 65.
     """
     magnetic, v = declared(model, magnetic, 1, "induction"), named(model, v, 1, "induction")
     electric = cross(v, magnetic) - resistivity / mu_0 * curl(magnetic) - hall

@@ -10,7 +10,6 @@ from .declare import laws as laws
 from .declare.fields import components as components
 from .declare.files import load as load
 from .declare.files import load_example as load_example
-from .declare.mixture import Species as Species
 from .declare.mixture import mixture as mixture
 from .declare.model import FluidModel as FluidModel
 from .declare.operators import advect as advect
@@ -33,6 +32,7 @@ from .declare.operators import outer as outer
 from .declare.operators import partial_t as partial_t
 from .declare.operators import trace as trace
 from .declare.operators import transpose as transpose
+from .declare.species import Species as Species
 from .errors import AmbiguousText as AmbiguousText
 from .errors import BackgroundError as BackgroundError
 from .errors import ConstraintError as ConstraintError

@@ -38,7 +38,6 @@ def rayleigh_taylor():
         values,
         k,
         [[1, 0, 9.0 / 0.5 - alfven], [1, 0, -alfven]],
-        sloped=True,
     )
 
 
@@ -56,9 +55,7 @@ def toomre():
     model.law("thin disk", psi, multiplier(sigma - sigma0, -2 * sympy.pi * big_g / k_abs))
     p, k = {"G": 1.0, "Sigma_0": 0.3, "c": 0.5, "Omega": 1.0, "S": -1.5}, 2.2
     square = 2 * (2 - 1.5) - 2 * np.pi * 0.3 * k + (0.5 * k) ** 2
-    return Case(
-        model.linearize().plane_wave(("k", 0, 0)), p, {"k": k}, [[1, 0, -square]], sloped=True
-    )
+    return Case(model.linearize().plane_wave(("k", 0, 0)), p, {"k": k}, [[1, 0, -square]])
 
 
 def rotating_jeans():
@@ -146,7 +143,7 @@ def magnetorotational():
     values, k = {"rho_0": 1.0, "mu_0": 1.0, "Omega": 1.0, "B_0": 1.0, "S": -1.5}, 0.9
     w = k**2
     polynomial = [1, 0, -(2 * 0.5 + 2 * w), 0, w * (w - 3.0)]
-    return Case(model.linearize().plane_wave("z"), values, {"k": k}, [polynomial], sloped=True)
+    return Case(model.linearize().plane_wave("z"), values, {"k": k}, [polynomial])
 
 
 def thermal_instability():

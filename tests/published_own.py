@@ -27,13 +27,12 @@ from plasmalin import (
 
 @dataclass
 class Case:
-    """A wave, the numbers to put in, the published polynomials, and whether the background has a gradient (no audit then)."""
+    """A wave, the numbers to put in, and the published polynomials."""
 
     wave: object
     values: dict
     k: dict
     polynomials: list
-    sloped: bool = False
 
 
 def farley_buneman():
@@ -101,9 +100,7 @@ def hasegawa_wakatani():
     a, square = p["C"] * kz**2, kx**2 + ky**2
     polynomial = [1, 1j * a * (1 + square) / square, -1j * a * p["kappa"] * ky / square]
     k = {"k_x": kx, "k_y": ky, "k_z": kz}
-    return Case(
-        model.linearize().plane_wave(("k_x", "k_y", "k_z")), p, k, [polynomial], sloped=True
-    )
+    return Case(model.linearize().plane_wave(("k_x", "k_y", "k_z")), p, k, [polynomial])
 
 
 def simon_hoh():
@@ -129,7 +126,7 @@ def simon_hoh():
         -k * p["E_0"] / p["B_0"],
     )  # n~_e/n_0 = omega_* phi/(omega − omega_0)
     polynomial = [star, -(k**2) / p["m_i"], k**2 / p["m_i"] * rest]
-    return Case(model.linearize().plane_wave((0, "k", 0)), p, {"k": k}, [polynomial], sloped=True)
+    return Case(model.linearize().plane_wave((0, "k", 0)), p, {"k": k}, [polynomial])
 
 
 def ion_ion_streaming():

@@ -355,7 +355,7 @@ def inertia_gravity_waves():
     k = {"k_x": 1.1, "k_z": 0.4}
     square = (0.9**2 * 1.1**2 + 0.2**2 * 0.4**2) / (1.1**2 + 0.4**2)
     wave = model.linearize().plane_wave(("k_x", 0, "k_z"))
-    return Case(wave, {"N": 0.9, "f": 0.2}, k, [[1, 0, -square]], sloped=True)
+    return Case(wave, {"N": 0.9, "f": 0.2}, k, [[1, 0, -square]])
 
 
 def salt_fingers():
@@ -380,7 +380,7 @@ def salt_fingers():
     cubic = rates * (-1j) ** np.arange(3, -1, -1)
     shear = [1, 1j * k**2]
     wave = model.linearize().plane_wave("x")
-    return Case(wave, values, {"k": k}, [cubic, shear], sloped=True)
+    return Case(wave, values, {"k": k}, [cubic, shear])
 
 
 def cairns_ions():

@@ -12,7 +12,6 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 import plasmalin as plin
-from plasmalin.exact.circle import on_circle
 from plasmalin.exact.combination import power_below, row_combination
 from plasmalin.exact.determinant import determinant, eliminate, underdetermined_block
 from plasmalin.exact.factoring import is_irreducible
@@ -20,6 +19,7 @@ from plasmalin.exact.matching import diagonal_blocks, maximum_matching
 from plasmalin.exact.polynomial import numerator, polynomial
 from plasmalin.exact.rational import exact_rational
 from plasmalin.exact.sample import holds_off_zero, modes_off_zero, shared_modes
+from plasmalin.exact.sines import on_circle
 from plasmalin.exact.univariate import complex_roots
 
 w = sympy.Symbol("omega")

@@ -1,5 +1,7 @@
 """Local gradients of the background, against published drift waves and the stratified gas."""
 
+import dataclasses
+
 import numpy as np
 import pytest
 import sympy
@@ -7,6 +9,7 @@ from published import read
 
 import plasmalin as plin
 from plasmalin import advect, cross, curl, div, dot, grad, laplacian, laws, partial_t
+from plasmalin.linearize.ledger import Ledger
 
 
 def drift_wave():
@@ -39,9 +42,8 @@ def test_gradient_terms_have_their_own_fate():
     assert "kept: background gradient, O(1/kL)" in str(ledger)
 
 
-def test_product_rules():
-    """Every operator on a product against SymPy's own derivatives of the affine background."""
-    x, y, z = sympy.symbols("x y z")
+def product_rules():
+    """Every operator on a product of backgrounds that change along two axes."""
     model = plin.FluidModel("product rules")
     a = model.scalar("a", background="a_0", gradient=("a_1", "a_2", 0))
     s, t = model.scalar("s"), model.scalar("t")
@@ -52,7 +54,13 @@ def test_product_rules():
     model.law("r", partial_t(r), grad(a * s) + curl(a * r) + advect(r, v) + curl(s * v))
     model.law("a", partial_t(a), t)
     model.law("v", partial_t(v), r)
-    linear = model.linearize(assume=["s", "t", "r"])
+    return model.linearize(assume=["s", "t", "r"])
+
+
+def test_product_rules():
+    """Against SymPy's own derivatives of the affine background."""
+    x, y, z = sympy.symbols("x y z")
+    linear = product_rules()
     wave = linear.plane_wave(("k_x", 0, "k_z"))
     kx, kz = wave.wave_symbols
     p = linear.symbols
@@ -158,6 +166,49 @@ def test_chosen_variables_matter_at_that_order():
         assert 0 < error < 1.0 / (kappa * 8000.0)
 
 
-def test_audit_says_that_it_needs_periodic_backgrounds():
-    with pytest.raises(plin.BackgroundError, match="audit takes periodic backgrounds"):
-        drift_wave().linearize().audit()
+def curved():
+    """Smooth functions of backgrounds that change along two axes, and of a flow that changes across itself."""
+    model = plin.FluidModel("curved", axes="xz")
+    n = model.scalar("n", background="n_0", gradient=("a", "b"))
+    v = model.vector("v", background=(0, "w"), gradient=((0, "s"), (0, 0)))
+    model.parameters("n_0", positive=True)
+    model.law("n", partial_t(n), laplacian(sympy.exp(-n) + sympy.sqrt(n)) + div(n**3 * v))
+    model.law("v", partial_t(v), advect(v, v) + grad(laplacian(n**2)) / n + plin.norm(v) * v)
+    return model.linearize(assume=["n", "v"])
+
+
+LOCAL = {
+    "drift wave": lambda: drift_wave().linearize(),
+    "stratified": lambda: stratified(False),
+    "logarithmic": lambda: stratified(True),
+    "product rules": product_rules,
+    "curved": curved,
+}
+
+
+@pytest.mark.parametrize("build", LOCAL.values(), ids=list(LOCAL))
+def test_right_linearizations_pass_the_audit(build):
+    for seed in range(2):
+        audit = build().audit(seed=seed)
+        assert audit.passed, str(audit)
+
+
+@pytest.mark.parametrize("build", LOCAL.values(), ids=list(LOCAL))
+def test_the_audit_finds_a_spoilt_gradient(build):
+    linear = build()
+    local = [p for p in linear.ledger if p.reason == "background gradient, O(1/kL)"]
+    assert local
+    for piece in local:
+        wrong = dataclasses.replace(piece, value=sympy.Rational(1001, 1000) * piece.value)
+        pieces = [wrong if p is piece else p for p in linear.ledger]
+        audit = dataclasses.replace(linear, ledger=Ledger(pieces, linear.axes)).audit()
+        assert {r.law for r in audit.rows if not r.passed} == {piece.law}, f"{piece}\n{audit}"
+
+
+def test_no_audit_where_there_is_no_plane_wave():
+    model = plin.FluidModel("flow that widens", axes="z")
+    n, v = model.scalar("n", background="n_0"), model.vector("v", gradient=(("s",),))
+    laws.continuity(model, n, v)
+    model.law("v", partial_t(v) + advect(v, v), -grad(n))
+    with pytest.raises(plin.BackgroundError, match="flow 'v' along k changes with position"):
+        model.linearize(assume=["n continuity", "v"]).audit()

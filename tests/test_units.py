@@ -451,14 +451,21 @@ class Mks(np.ndarray):
 
 
 ENERGY, PER_METER, KELVIN, DENSITY = (read_unit(x).dimension for x in ("J", "1/m", "K", "m^-3"))
+MASS, SPEED, RATE, FIELD = (read_unit(x).dimension for x in ("kg", "m/s", "1/s", "T"))
 LONG = {
     ENERGY: "kilogram * meter ** 2 / second ** 2",
     PER_METER: "1 / meter",
     KELVIN: "kelvin",
     DENSITY: "1 / meter ** 3",
+    MASS: "kilogram",
+    SPEED: "meter / second",
+    RATE: "1 / second",
+    FIELD: "kilogram / ampere / second ** 2",
 }
 SHORT = {ENERGY: "kg m2 / s2", PER_METER: "1 / m", KELVIN: "K", DENSITY: "1 / m3"}
+SHORT |= {MASS: "kg", SPEED: "m / s", RATE: "1 / s", FIELD: "kg / (A s2)"}
 STARS = {ENERGY: "kg*m**2/s**2", PER_METER: "m**(-1)", KELVIN: "K", DENSITY: "m**(-3)"}
+STARS |= {MASS: "kg", SPEED: "m/s", RATE: "s**(-1)", FIELD: "kg/(A*s**2)"}
 
 
 @pytest.mark.parametrize("kind", [Magnitude, Si, Mks])
@@ -498,6 +505,51 @@ def test_a_quantity_as_default(model):
         model.parameter("T_j", unit="eV", value=Si(300.0, "K"))
     with pytest.raises(plin.ValuesError, match="single number"):
         model.parameter("T_j", unit="eV", value=Si(np.ones(2), "eV"))
+
+
+@pytest.mark.parametrize("kind", [Magnitude, Si, Mks])
+def test_a_mixture_of_quantities(kind):
+    """The same plasma by quantity objects and by plain numbers in the documented units."""
+    shared = {"axes": "xyz", "field": "electrostatic"}
+    plain = plin.mixture(
+        [
+            plin.Species("e", -1, 9e-31, 2e16, 3.0, drift=(0, 0, 1e5)),
+            plin.Species("i", 1, 6e-26, 2e16, 0.1, collision_frequency=2e3),
+        ],
+        magnetic_field=(0, 0, 0.02),
+        **shared,
+    )
+    drift = [kind(x, "km/s") for x in (0.0, 0.0, 100.0)]
+    given = plin.mixture(
+        [
+            plin.Species(
+                "e", -1, kind(9e-28, "g"), kind(2e10, "cm^-3"), kind(3.0, "eV"), drift=drift
+            ),
+            plin.Species(
+                "i",
+                1,
+                kind(6e-26, "kg"),
+                kind(2e16, "m^-3"),
+                kind(1e-4, "keV"),
+                collision_frequency=kind(2.0, "kHz"),
+            ),
+        ],
+        magnetic_field=kind(np.array([0.0, 0.0, 200.0]), "gauss"),
+        **shared,
+    )
+    assert given.values == pytest.approx(plain.values, rel=1e-14)
+    assert type(given.values["m_e"]) is float
+
+
+def test_a_mixture_of_the_wrong_quantities():
+    with pytest.raises(plin.UnitError, match=r"temperature_eV of e' is in K.*is an energy"):
+        plin.Species("e", -1, 9e-31, 1e16, Si(300.0, "K"))
+    with pytest.raises(plin.UnitError, match=r"mass of e' is in kg m\^2"):
+        plin.Species("e", -1, Si(5.0, "keV"), 1e16)
+    with pytest.raises(plin.DeclarationError, match=r"density = .*give a finite positive number"):
+        plin.Species("e", -1, 9e-31, Si(np.ones(2), "m^-3"))
+    with pytest.raises(plin.UnitError, match="value of 'magnetic_field' is in K"):
+        plin.mixture([plin.Species("e", 1, 9e-31, 1e16)], magnetic_field=Si(np.ones(3), "K"))
 
 
 def test_a_foreign_unit_that_is_not_understood(wave):

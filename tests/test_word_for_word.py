@@ -144,6 +144,7 @@ def test_a_file_knows_constants_of_nature_and_gradients(tmp_path):
     model = plin.load(tmp_path / "a.toml")
     assert model.values["m_e"] == plin.constants.m_e
     assert set(model.symbols) == {"e", "epsilon_0", "m_e", "n_0", "T_e", "L"}
+    assert (model.values["T_e"], model.units["T_e"].text) == (2.0, "eV")
     assert str(model.fields["n_e"].gradient) == "components(n_0/L)"
     model.save(tmp_path / "b.toml")
     assert str(plin.load(tmp_path / "b.toml").fields["n_e"].gradient) == "components(n_0/L)"

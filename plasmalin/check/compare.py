@@ -11,7 +11,7 @@ from sympy import Add, Expr, Mul, Pow, S, cancel
 from ..declare.notation import paper
 from ..declare.operators import omega
 from ..errors import DeclarationError
-from ..exact.finite import may_divide
+from ..exact.divisibility import may_divide
 from ..exact.polynomial import ExactPolynomial
 from .claim import Claim
 from .derived import Derived, bare

@@ -18,7 +18,7 @@ from ..declare.operators import omega
 from ..errors import PlasmalinError
 from ..exact.field import power_of_scale, quotient
 from ..exact.finite import common_zeros, univariate
-from ..exact.residue import divided_out, inverted, linear_root, reconstructed
+from ..exact.modulo import divided_out, inverted, linear_root, reconstructed
 from ..exact.sparse import bases_of, weights_of
 from .places import Edit, nodes, parts
 from .search import POWERS, Search, product, unknown

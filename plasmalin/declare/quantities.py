@@ -78,13 +78,28 @@ def plain_number(name: str, value: Any, unit: Unit | None, *, positive: bool = F
     return made
 
 
-def _default(name: str, value: Any, unit: Unit | None) -> Any:
-    if _split(value) is None:
-        return float(value) if isinstance(value, Rational | Float) else value
+def in_unit(name: str, value: Any, unit: Unit | None) -> Any:
+    """A quantity, or a list of them, as numbers in a unit; what carries no unit as it is.
+
+    Raises
+    ------
+    UnitError
+        As `in_si`.
+    """
+    if _split(value) is None and not isinstance(value, list | tuple):
+        return value
     number, scale = in_si(name, value, unit)
-    if np.ndim(number):
+    if number is value:
+        return value
+    factor = scale / (unit.scale if unit else 1)
+    return number * float(factor) if np.ndim(number) else float(Fraction(float(number)) * factor)
+
+
+def _default(name: str, value: Any, unit: Unit | None) -> Any:
+    number = in_unit(name, value, unit)
+    if number is not value and np.ndim(number):
         raise ValuesError(f"the default of '{name}' is an array; give a single number")
-    return float(Fraction(float(number)) * scale / (unit.scale if unit else 1))
+    return float(number) if isinstance(number, Rational | Float) else number
 
 
 def _split(value: Any) -> tuple[Any, str] | None:

@@ -1,4 +1,4 @@
-"""Numbers of a large prime field, and the small numbers and powers that they stand for."""
+"""The prime field in which unknowns are looked for: its prime, and the small numbers and powers that its numbers stand for."""
 
 from __future__ import annotations
 

@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
 from functools import reduce
+from typing import Any
 
 from flint import Ordering, fmpz_mpoly, fmpz_mpoly_ctx
 
-from .residues import gaussian_gcd, integer_gcd
+from .divisors import gaussian_gcd, integer_gcd
 
 
 @dataclass(frozen=True, slots=True)
@@ -48,6 +49,33 @@ class Gaussian:
 
     def __bool__(self) -> bool:
         return bool(self.re) or bool(self.im)
+
+    def __len__(self) -> int:
+        """The number of terms."""
+        if not self.im:
+            return len(self.re)
+        return len(set(self.re.monoms()) | set(self.im.monoms()))
+
+    def terms(self) -> Iterator[tuple[tuple[int, ...], int, int]]:
+        """Exponents, real and imaginary coefficient."""
+        if not self.im:
+            yield from ((tuple(map(int, e)), int(c), 0) for e, c in self.re.terms())
+            return
+        both: dict[Any, list[int]] = {}
+        for place, part in enumerate((self.re, self.im)):
+            for e, c in part.terms():
+                both.setdefault(e, [0, 0])[place] = int(c)
+        yield from ((tuple(map(int, e)), c[0], c[1]) for e, c in both.items())
+
+    def by_power(self, variable: int) -> dict[int, Gaussian]:
+        """The coefficient of every power of a variable, in the same ring."""
+        found: dict[int, tuple[dict[Any, Any], dict[Any, Any]]] = {}
+        for place, part in enumerate((self.re, self.im)):
+            for e, c in part.terms():
+                rest = (*e[:variable], 0, *e[variable + 1 :])
+                found.setdefault(int(e[variable]), ({}, {}))[place][rest] = c
+        make = self.re.context().from_dict
+        return {power: Gaussian(make(a), make(b)) for power, (a, b) in found.items()}
 
     @property
     def is_constant(self) -> bool:
@@ -112,18 +140,23 @@ class Gaussian:
         return quotient
 
 
+def real(p: fmpz_mpoly) -> Gaussian:
+    """A polynomial without an imaginary part."""
+    return Gaussian(p, p.context().constant(0))
+
+
 def gcd(p: Gaussian, q: Gaussian) -> Gaussian:
     """A greatest common divisor over the Gaussian rationals, normalized."""
     if not p or not q:
         return (p if p else q).normalized()
     if p.phase is not None and q.phase is not None:
-        return _real(p.part.gcd(q.part))
+        return real(p.part.gcd(q.part)).normalized()
     if (
         any(x.phase is not None and len(x.part) == 1 for x in (p, q))
         or p.is_constant
         or q.is_constant
     ):
-        return _real(reduce(lambda a, b: a.gcd(b), (p.re, p.im, q.re, q.im)))
+        return real(reduce(lambda a, b: a.gcd(b), (p.re, p.im, q.re, q.im))).normalized()
     return _gaussian_gcd(p, q)
 
 
@@ -164,10 +197,6 @@ def discriminant(p: Gaussian) -> Gaussian:
         turn, rest = int(exponents[count]) % 4, exponents[:count]
         parts[turn % 2][rest] = parts[turn % 2].get(rest, 0) + int(-c if turn > 1 else c)
     return Gaussian(*map(ring.from_dict, parts))
-
-
-def _real(p: fmpz_mpoly) -> Gaussian:
-    return Gaussian(p, p.context().constant(0)).normalized()
 
 
 def _gaussian_gcd(p: Gaussian, q: Gaussian) -> Gaussian:

@@ -9,16 +9,15 @@ from typing import Any
 
 import sympy as sp
 
-from .factoring import irreducible_factors
-from .gaussian import Gaussian, discriminant, gcd, gcd_of, integer_content
-from .ratio import Ratio
+from ..errors import NonPolynomialError
+from .factors import all_factors, factors_in_main, main_turned, rest_of
+from .gaussian import Gaussian, discriminant, gcd, gcd_of, integer_content, real
+from .ratio import Ratio, composed
+from .rational import exact_rational
 from .reader import Reader, ring_of
-from .ring import Ring, transplanted
+from .ring import Ring, moved
 from .univariate import Root, complex_roots
 from .yun import squarefree_parts
-
-LONGEST_NORM = 250
-"""Terms of a Gaussian polynomial whose norm is still factored."""
 
 
 class ExactPolynomial:
@@ -49,7 +48,7 @@ class ExactPolynomial:
     @property
     def has_real_form(self) -> bool:
         """Whether it is real in main, or in s with main = i s (damping without drift)."""
-        return self.is_real or self._turned_main(1).phase is not None
+        return self.is_real or main_turned(self._value, 1).phase is not None
 
     @cached_property
     def degree(self) -> int:
@@ -64,21 +63,11 @@ class ExactPolynomial:
         return min((int(p.term_content().degrees()[0]) for p in parts), default=-1)
 
     def __len__(self) -> int:
-        if self.is_real:
-            return len(self._value.re)
-        return len(set(self._value.re.monoms()) | set(self._value.im.monoms()))
+        return len(self._value)
 
     def terms(self) -> Iterator[tuple[tuple[int, ...], int, int]]:
         """Exponents (main first, then the generators), real and imaginary coefficient."""
-        re, im = self._value.re, self._value.im
-        if not im:
-            yield from ((tuple(map(int, e)), int(c), 0) for e, c in re.terms())
-            return
-        both: dict[Any, list[int]] = {}
-        for place, part in enumerate((re, im)):
-            for e, c in part.terms():
-                both.setdefault(e, [0, 0])[place] = int(c)
-        yield from ((tuple(map(int, e)), c[0], c[1]) for e, c in both.items())
+        return self._value.terms()
 
     def coefficients(self) -> dict[int, sp.Expr]:
         """The coefficient of every power of `main` that occurs, highest first."""
@@ -131,20 +120,7 @@ class ExactPolynomial:
         if self._ring == other._ring:
             return self._ring, self._value, other._value
         ring = ring_of([*self.generators, *other.generators, self.main], self.main)
-        return ring, self._moved(ring), other._moved(ring)
-
-    def _moved(self, ring: Ring) -> Gaussian:
-        """The value in a larger ring, generators that became roots of new ones raised to their power."""
-        images = [(0, 1)]
-        for g in self.generators:
-            (family, power), *rest = _split(g)
-            if rest:
-                raise ArithmeticError(f"{g} is not a generator of one family")
-            i, root = ring.places[family]
-            images.append((i, int(power * root)))
-        return Gaussian(
-            transplanted(self._value.re, images, ring), transplanted(self._value.im, images, ring)
-        )
+        return ring, moved(self._value, self._ring, ring), moved(other._value, other._ring, ring)
 
     def __mul__(self, other: ExactPolynomial) -> ExactPolynomial:
         ring, a, b = self._joined(other)
@@ -168,7 +144,7 @@ class ExactPolynomial:
 
     def primitive(self) -> tuple[ExactPolynomial, ExactPolynomial]:
         """The content, free of `main`, and the primitive part with its sign normalized."""
-        parts = sorted(self._slices().values(), key=lambda p: len(p.re) + len(p.im))
+        parts = sorted(self._value.by_power(0).values(), key=lambda p: len(p.re) + len(p.im))
         content = gcd_of(parts, self._ring.constant(0))
         if not content:
             return self._with(self._ring.constant(1)), self
@@ -178,19 +154,10 @@ class ExactPolynomial:
             content, part = content * number, part.over(number)
         return self._with(content), self._with(part.normalized()).real_if_possible()
 
-    def _slices(self) -> dict[int, Gaussian]:
-        """The coefficient of every power of `main`, in the same ring."""
-        found: dict[int, tuple[dict[Any, Any], dict[Any, Any]]] = {}
-        for place, part in enumerate((self._value.re, self._value.im)):
-            for e, c in part.terms():
-                found.setdefault(int(e[0]), ({}, {}))[place][(0, *e[1:])] = c
-        make = self._ring.context.from_dict
-        return {power: Gaussian(make(a), make(b)) for power, (a, b) in found.items()}
-
     def without_main(self) -> ExactPolynomial:
         """Divided by the powers of `main` that it holds."""
         gen = self._ring.context.gens()[0]
-        power = self._with(_real(gen**self.lowest))
+        power = self._with(real(gen**self.lowest))
         return self.exact_div(power)
 
     def turned_sign(self, symbol: sp.Expr) -> ExactPolynomial:
@@ -217,62 +184,14 @@ class ExactPolynomial:
             self._with(Gaussian(self._value.im, self._value.re)) if self._value.phase == 1 else self
         )
 
-    def _turned_main(self, power: int) -> Gaussian:
-        """With `main` replaced by i**power times main."""
-        parts: tuple[dict[Any, Any], dict[Any, Any]] = ({}, {})
-        for e, re, im in self.terms():
-            for c, source in ((re, 0), (im, 1)):
-                turn = (source + power * e[0]) % 4
-                if c:
-                    into = parts[turn % 2]
-                    into[e] = into.get(e, 0) + (-c if turn > 1 else c)
-        make = self._ring.context.from_dict
-        return Gaussian(make(parts[0]), make(parts[1]))
-
     def factor(self) -> tuple[ExactPolynomial, tuple[tuple[ExactPolynomial, int], ...]]:
         """The content and the factors that hold `main`, irreducible over the rationals, with multiplicity.
 
-        A polynomial that is real in i times `main` (damping without drift) is factored there; one with
-        Gaussian coefficients through the factors of its norm; beyond `LONGEST_NORM` terms, whose norm would be too
-        large, its square-free parts.
+        Long polynomials with Gaussian coefficients are left in square-free parts.
         """
         content, primitive = self.primitive()
-        found = [(self._with(p)._normal(), m) for p, m in primitive._split()]
+        found = [(self._with(p)._normal(), m) for p, m in factors_in_main(primitive._value)]
         return content, tuple(sorted(found, key=_factor_order))
-
-    def _split(self) -> list[tuple[Gaussian, int]]:
-        """The factors that hold `main`, relations between generators not used."""
-        if self.degree < 1:
-            return []
-        if self.is_real:
-            return [(_real(p), m) for p, m in irreducible_factors(self._value.re) if _holds_main(p)]
-        turned = self._turned_main(1)
-        if turned.phase is not None:
-            found = [(_real(p), m) for p, m in irreducible_factors(turned.part) if _holds_main(p)]
-            return [(self._with(p)._turned_main(3), m) for p, m in found]
-        real = _real(self._value.re.gcd(self._value.im))
-        if real.holds(0):  # a divisor of both parts; the rest has no real factor
-            return [*self._with(real)._split(), *self._with(self._value.over(real))._split()]
-        if len(self) > LONGEST_NORM:
-            return squarefree_parts(self._value)
-        return self._gaussian_factors()
-
-    def _gaussian_factors(self) -> list[tuple[Gaussian, int]]:
-        rest, found = self._value, list[tuple[Gaussian, int]]()
-        for factor, _ in irreducible_factors(rest.norm()):
-            multiplicity, last = 0, None
-            while _holds_main(factor):
-                common = gcd(rest, _real(factor))
-                if not common.holds(0):
-                    break
-                rest = rest.over(common)
-                if last is not None and common != last:
-                    found.append((last, multiplicity))
-                    multiplicity = 0
-                last, multiplicity = common, multiplicity + 1
-            if last is not None:
-                found.append((last, multiplicity))
-        return found
 
     def squarefree(self) -> tuple[ExactPolynomial, tuple[tuple[ExactPolynomial, int], ...]]:
         """The content and square-free parts with their multiplicities (Yun 1976, SYMSAC).
@@ -285,22 +204,16 @@ class ExactPolynomial:
 
     def factored_expr(self) -> sp.Expr:
         """The same polynomial as an expression, written as a product of its factors."""
-        parts = self._split()
-        product = self._ring.constant(1)
-        for p, m in parts:
-            product = product * p**m
-        rest = self._with(self._value.over(product)).shorter().as_expr()
+        parts = factors_in_main(self._value)
+        rest = self._with(rest_of(self._value, parts)).shorter().as_expr()
         return sp.Mul(rest, *(self._with(p).shorter().as_expr() ** m for p, m in parts))
 
     def product_expr(self) -> sp.Expr:
         """As a product of all its factors, those without `main` too, where it is real up to a power of i."""
         if self._value.phase is None:
             return self.as_expr()
-        parts = [(_real(p), m) for p, m in irreducible_factors(self._value.part)]
-        product = self._ring.constant(1)
-        for p, m in parts:
-            product = product * p**m
-        rest = self._with(self._value.over(product)).as_expr()
+        parts = all_factors(self._value)
+        rest = self._with(rest_of(self._value, parts)).as_expr()
         return sp.Mul(rest, *(self._with(p).shorter().as_expr() ** m for p, m in parts))
 
     def _normal(self) -> ExactPolynomial:
@@ -316,21 +229,7 @@ class ExactPolynomial:
         ring = ring_of(images, self.main)
         reader = Reader(ring)
         ratios = [reader.ratio(x) for x in images]
-        return ExactPolynomial(ring, reader.reduced(self._composed(ratios, ring)))._normal()
-
-    def _composed(self, images: list[Ratio], ring: Ring) -> Gaussian:
-        """Every variable replaced by a ratio; the sum of terms over the common denominator."""
-        top = ring.constant(0)
-        highest = [0] * len(images)
-        for e, _, _ in self.terms():
-            highest = [max(a, b) for a, b in zip(highest, e, strict=True)]
-        powers = [_powers(r, n, ring) for r, n in zip(images, highest, strict=True)]
-        for e, re, im in self.terms():
-            term = ring.constant(re, im)
-            for table, n in zip(powers, e, strict=True):
-                term = term * table[n]
-            top = top + term
-        return top
+        return ExactPolynomial(ring, reader.reduced(composed(self._value, ratios, ring)))._normal()
 
     def discriminant(self) -> ExactPolynomial:
         """The discriminant with respect to `main`."""
@@ -348,7 +247,7 @@ class ExactPolynomial:
             raise ArithmeticError(
                 "complex_roots() needs numbers for all parameters; substitute them first"
             )
-        slices = self._slices()
+        slices = self._value.by_power(0)
         table = [slices.get(n, self._ring.constant(0)) for n in range(self.degree + 1)]
         return complex_roots(
             [(Fraction(int(_number(p.re))), Fraction(int(_number(p.im)))) for p in table], digits
@@ -358,27 +257,10 @@ class ExactPolynomial:
         return f"<ExactPolynomial in {self.main}: degree {self.degree}, {len(self)} terms>"
 
 
-def _real(p: Any) -> Gaussian:
-    return Gaussian(p, p.context().constant(0))
-
-
-def _holds_main(p: Any) -> bool:
-    return bool(p) and int(p.degrees()[0]) > 0
-
-
 def _factor_order(factor: tuple[ExactPolynomial, int]) -> tuple[int, int, str]:
     polynomial, _ = factor
     text = str(polynomial.as_expr()) if len(polynomial) < 50 else ""
     return polynomial.degree, len(polynomial), text
-
-
-def _powers(ratio: Ratio, highest: int, ring: Ring) -> list[Gaussian]:
-    """top**n * bottom**(highest − n) for every n."""
-    tops, bottoms = [ring.constant(1)], [ring.constant(1)]
-    for _ in range(highest):
-        tops.append(tops[-1] * ratio.top)
-        bottoms.append(bottoms[-1] * ratio.bottom)
-    return [tops[n] * bottoms[highest - n] for n in range(highest + 1)]
 
 
 def _number(p: Any) -> int:
@@ -392,16 +274,8 @@ def _exact_number(value: Any) -> Any:
             if value.atoms(sp.Float)
             else value
         )
-    from .rational import exact_rational
-
     number = exact_rational(value)
     return sp.Rational(number.numerator, number.denominator)
-
-
-def _split(generator: sp.Expr) -> Any:
-    from .powers import split_power
-
-    return split_power(generator)
 
 
 def _restored(main: sp.Symbol, generators: tuple[sp.Expr, ...], terms: Any) -> ExactPolynomial:
@@ -425,8 +299,6 @@ def polynomial(expr: sp.Expr, main: sp.Symbol) -> ExactPolynomial:
     NonPolynomialError
         When it is not a polynomial in `main`.
     """
-    from ..errors import NonPolynomialError
-
     ring = ring_of([expr], main)
     ratio = Reader(ring).ratio(expr).lowest()
     if ratio.bottom.holds(0):

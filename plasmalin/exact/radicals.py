@@ -7,7 +7,6 @@ multiplication by that polynomial on 1, r, ..., r**(q-1).
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import Any
 
 import sympy as sp
 
@@ -100,7 +99,7 @@ def rational_numerator(
 
 def _norm(value: Gaussian, variable: int, index: int, base: Ratio, ring: Ring) -> Gaussian:
     """The product over the conjugates, with common factors of the parts taken out first."""
-    parts = _lowered(_slices(value, variable, ring), index, base)
+    parts = _lowered(value.by_power(variable), index, base)
     parts = {j: p for j, p in parts.items() if p}
     if set(parts) <= {0}:
         return parts.get(0, ring.constant(0))
@@ -123,16 +122,6 @@ def _norm(value: Gaussian, variable: int, index: int, base: Ratio, ring: Ring) -
             row[at % index] = p * power if at >= index else p
         rows.append(row)
     return common * minors_determinant(rows, ring) if len(inner) > 1 else common * inner[0]
-
-
-def _slices(value: Gaussian, variable: int, ring: Ring) -> dict[int, Gaussian]:
-    parts: dict[int, tuple[dict[Any, Any], dict[Any, Any]]] = {}
-    for place, part in enumerate((value.re, value.im)):
-        for e, c in part.terms():
-            rest = (*e[:variable], 0, *e[variable + 1 :])
-            parts.setdefault(int(e[variable]), ({}, {}))[place][rest] = c
-    make = ring.context.from_dict
-    return {n: Gaussian(make(a), make(b)) for n, (a, b) in parts.items()}
 
 
 def _lowered(parts: dict[int, Gaussian], index: int, base: Ratio) -> dict[int, Gaussian]:

@@ -9,7 +9,7 @@ from functools import cached_property
 from math import lcm
 
 import sympy as sp
-from flint import Ordering, fmpz_mpoly, fmpz_mpoly_ctx
+from flint import Ordering, fmpz_mpoly_ctx
 
 from ..errors import NonPolynomialError, ValuesError
 from .gaussian import Gaussian
@@ -44,9 +44,6 @@ class Ring:
 
     def constant(self, re: int, im: int = 0) -> Gaussian:
         return Gaussian(self.context.constant(re), self.context.constant(im))
-
-    def text(self) -> tuple[str, ...]:
-        return tuple(map(str, self.generators))
 
 
 class Census:
@@ -108,9 +105,14 @@ def place(ring: Ring, family: Family, power: Fraction) -> tuple[int, int]:
     return i, int(power * root)
 
 
-def transplanted(p: fmpz_mpoly, images: list[tuple[int, int]], ring: Ring) -> fmpz_mpoly:
-    """``p`` with variable j replaced by the power ``images[j][1]`` of variable ``images[j][0]`` of ``ring``."""
-    gens = ring.context.gens()
-    return p.compose(
-        *(gens[i] ** n if n else ring.context.constant(1) for i, n in images), ctx=ring.context
-    )
+def moved(value: Gaussian, ring: Ring, into: Ring) -> Gaussian:
+    """A polynomial in a larger ring, generators that became roots of new ones raised to their power."""
+    gens = into.context.gens()
+    images = [gens[0]]
+    for g in ring.generators:
+        (piece, *rest) = split_power(g)
+        if rest:
+            raise ArithmeticError(f"{g} is not a generator of one family")
+        i, power = place(into, *piece)
+        images.append(gens[i] ** power)
+    return Gaussian(*(p.compose(*images, ctx=into.context) for p in (value.re, value.im)))

@@ -17,8 +17,8 @@ from typing import Any, TypeAlias
 import sympy as sp
 from flint import nmod_mat, nmod_poly
 
-from .dependence import in_main, random_place
 from .gaussian import Gaussian, lcm
+from .place import in_main, random_place
 from .reader import Reader, ring_of
 from .ring import Ring
 

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from typing import Any
 
+from .divisors import proven_squarefree
 from .gaussian import Gaussian, gcd
-from .residues import proven_squarefree
 
 
 def squarefree_parts(p: Gaussian) -> list[tuple[Gaussian, int]]:

@@ -11,7 +11,7 @@ from typing import Any, cast
 from sympy import Add, Eq, Expr, S, Symbol, expand, factor_terms
 
 from ..declare.fields import Components, Field, components
-from ..declare.model import Law
+from ..declare.law import Law
 from ..declare.notation import name_text, paper
 from ..declare.operators import identity
 from ..errors import BackgroundError

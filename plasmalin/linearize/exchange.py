@@ -10,7 +10,7 @@ import numpy as np
 from numpy.typing import NDArray
 from sympy import Expr
 
-from ..declare.model import Law
+from ..declare.law import Law
 from ..declare.operators import dot, rank_of
 
 CONSERVED = 1e-6

@@ -15,7 +15,7 @@ from sympy.polys.polyerrors import PolynomialError
 from sympy.solvers.solveset import NonlinearError
 
 from ..declare.fields import Background, Components, Field, components
-from ..declare.model import Law
+from ..declare.law import Law
 from ..declare.operators import Advect, Curl, Div, Grad, Laplacian, Operator, PartialT
 from .settle import _combined, settle
 from .split import terms

@@ -10,14 +10,14 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from typing import Any, overload
 
-from sympy import Expr, S, expand
+from sympy import Expr, S
 
 from ..declare.fields import Background, Perturbation
-from ..declare.model import Law
+from ..declare.law import Law
 from ..declare.notation import latex, paper, term_order
 from ..declare.operators import Norm, Operator
 from ..errors import BackgroundError, DeclarationError
-from .settle import settle
+from .settle import from_gradients, settle
 from .split import Remainder, first_order_factors, split, terms
 
 KEPT = "kept"
@@ -187,7 +187,7 @@ def _judged(
             f"law '{law}': {paper(term)} has no finite value or slope on the background; "
             "give the field in it a background that is not zero"
         )
-    added = _from_gradients(raw, value)
+    added = from_gradients(raw)
     if value == 0 and added == 0:
         yield Piece(law, side, term, raw, value, order, VANISHES, _why_nothing(raw))
     source = "by an assumed external source" if assumed else ""
@@ -197,12 +197,6 @@ def _judged(
         elif part != 0:
             _assert_linear(law, term, part)
             yield Piece(law, side, term, raw, part, order, KEPT, why)
-
-
-def _from_gradients(raw: Expr, value: Expr) -> Expr:
-    if all(b.field.gradient == 0 for b in raw.atoms(Background)):
-        return S.Zero
-    return expand(settle(raw, sloped=True)) - expand(value)
 
 
 def _holds_zero_background(raw: Expr) -> bool:

@@ -11,7 +11,8 @@ from sympy import Add, Eq, Expr, Symbol
 
 from ..declare.dimensions import Dimensions
 from ..declare.fields import Field, Perturbation
-from ..declare.model import FluidModel, Law
+from ..declare.law import Law
+from ..declare.model import FluidModel
 from ..declare.notation import equation_table, latex, paper
 from ..declare.units import Unit
 from ..errors import DeclarationError, UndeterminedError
@@ -192,8 +193,9 @@ class LinearizedModel:
     def audit(self, *, seed: int = 0) -> Audit:
         """Check the linearization by an independent numerical path.
 
-        The nonlinear laws are evaluated as declared on a periodic Fourier grid for small plane waves, and
-        compared with the wave matrix row by row; the remainder must fall as the square of the amplitude.
+        The nonlinear laws and constraints are evaluated as declared on a periodic Fourier grid for small plane waves, and
+        compared with their linear forms (the rows of the wave matrix); the remainder must fall as the square of the
+        amplitude. A background with a gradient is affine in position, and all is compared at one place.
 
         Parameters
         ----------
@@ -210,11 +212,12 @@ class LinearizedModel:
         ValuesError
             When the seed is not a whole number from 0.
         BackgroundError
-            When a background has a gradient.
+            When flows change along every axis, so that there is no plane wave.
         """
+        from ..waves.plane import lowered, wave_vector
         from .audit import audit
 
-        return audit(self, seed=seed)
+        return audit(self, lambda k: lowered(self, wave_vector(self, k, None)), seed=seed)
 
     def report(self) -> str:
         """Equations, background and ledger as plain text."""

@@ -12,7 +12,7 @@ from __future__ import annotations
 from collections.abc import Callable
 from typing import Any, cast
 
-from sympy import Add, Dummy, Expr, Mul, S, sqrt
+from sympy import Add, Dummy, Expr, Mul, S, expand, sqrt
 
 from ..declare.fields import (
     Background,
@@ -51,15 +51,22 @@ def is_uniform(expr: Expr) -> bool:
     return not expr.atoms(Perturbation)
 
 
-def settle(expr: Expr, *, sloped: bool = False) -> Expr:
+def settle(expr: Expr) -> Expr:
     """A raw piece (of order 0 or 1) with the background's values put in, as a sum of plain terms.
 
-    Without `sloped` every background counts as uniform.
+    Every background counts as uniform; `from_gradients` has the rest.
     """
-    value = _settled(expr, sloped)
-    places = value.free_symbols & ALL_POSITIONS
-    here: dict[Any, Any] = dict.fromkeys(places, S.Zero)
-    return _settled(value.xreplace(here), False) if places else value
+    return _settled(expr, False)
+
+
+def from_gradients(expr: Expr) -> Expr:
+    """What the gradients of the backgrounds in a raw piece add to it."""
+    if all(b.field.gradient == 0 for b in expr.atoms(Background)):
+        return S.Zero
+    value = _settled(expr, True)
+    here: dict[Any, Any] = dict.fromkeys(value.free_symbols & ALL_POSITIONS, S.Zero)
+    terms = Add.make_args(expand(_settled(value.xreplace(here), False)))
+    return Add(*(t for t in terms if t.has(STEEP))).xreplace({STEEP: S.One})
 
 
 def _settled(expr: Expr, sloped: bool) -> Expr:
@@ -81,12 +88,14 @@ def _settled(expr: Expr, sloped: bool) -> Expr:
 POSITIONS = {size: tuple(Dummy(axis) for axis in axis_names(size)) for size in (1, 2, 3)}
 """Position along the axes of a model with so many axes."""
 ALL_POSITIONS = {x for places in POSITIONS.values() for x in places}
+STEEP = Dummy("steep", positive=True)
+"""A factor of every gradient, by which its terms are told."""
 
 
 def _affine(field: Field) -> Expr:
     """A background with its gradient: value + x.gradient, a vector by unit vectors."""
     slope = field.gradient
-    places = POSITIONS[slope.size]
+    places = [STEEP * x for x in POSITIONS[slope.size]]
     if field.rank == 0:
         return field.background + Add(*(x * g for x, g in zip(places, slope.args, strict=True)))
     size = range(slope.size)

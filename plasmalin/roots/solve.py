@@ -19,9 +19,9 @@ from numpy.typing import NDArray
 from sympy import Abs, Dummy, Expr, Rational, Symbol, cos, lambdify, sin, sqrt
 
 from ..errors import UndeterminedError
-from ..exact.circle import on_circle
 from ..exact.determinant import determinant
 from ..exact.polynomial import ExactPolynomial
+from ..exact.sines import on_circle
 from .family import Family, Grid
 from .values import high_precision
 
@@ -152,7 +152,7 @@ def general_degree(wave: WaveMatrix) -> tuple[int, int]:
     }
     sample = determinant(wave.entries, len(wave.rows), wave.omega, values=values)
     if sample.degree < 0:
-        from ..waves.relation import undetermined_message
+        from ..waves.derive import undetermined_message
 
         raise UndeterminedError(undetermined_message(wave))
     return sample.degree - sample.lowest, sample.lowest

@@ -18,7 +18,7 @@ from ..errors import UndeterminedError
 from ..exact.combination import power_below, row_combination
 from ..exact.sample import Row, holds_off_zero, put_in
 from .breach import broken
-from .relation import undetermined_message
+from .derive import undetermined_message
 
 if TYPE_CHECKING:
     from .matrix import WaveMatrix

@@ -146,7 +146,7 @@ def moving_part(wave: WaveMatrix, column: int) -> ExactPolynomial:
     size = len(wave.rows)
     whole = determinant(wave.entries, size, wave.omega)
     if whole.degree < 0:
-        from .relation import undetermined_message
+        from .derive import undetermined_message
 
         raise UndeterminedError(undetermined_message(wave))
     point = _random_point(wave)

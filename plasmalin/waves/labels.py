@@ -31,7 +31,7 @@ from typing import TYPE_CHECKING, Any
 from sympy import Add, Expr, S, Symbol
 
 from ..declare.fields import Field
-from ..declare.model import Law
+from ..declare.law import Law
 from ..declare.operators import Advect, Div, Dot, Grad, PartialT
 from ..exact.combination import row_combination
 from ..exact.sample import Row, modes_off_zero, put_in, shared_modes

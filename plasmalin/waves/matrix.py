@@ -11,7 +11,6 @@ from typing import TYPE_CHECKING, Any, overload
 from sympy import Expr, ImmutableDenseMatrix, Symbol
 
 from ..declare.dimensions import Dimensions
-from ..declare.fields import Field, decorated
 from ..declare.forms import has_dimension, of_dimension
 from ..declare.notation import paper
 from ..declare.operators import WAVE_SYMBOLS, omega
@@ -19,10 +18,12 @@ from ..declare.units import dimension
 from ..errors import DeclarationError, UnitError
 from ..exact.sample import shared_modes
 from ..linearize.linearized import LinearizedModel
+from .amplitudes import Amplitude, Row
 from .constraints import Preserved
+from .derive import derive_relation
 from .equation import WaveEquation, wave_equation
 from .labels import Modes, modes_of
-from .relation import Relation, derive_relation
+from .relation import Relation
 from .response import Reduced, reduced
 from .susceptibility import susceptibility
 
@@ -33,33 +34,6 @@ if TYPE_CHECKING:
     from ..roots.roots import Roots
     from ..roots.surfaces import Surfaces
     from ..study.remark import Advice
-
-
-@dataclass(frozen=True)
-class Row:
-    """One component equation: the law and the component's name ("" for a scalar law)."""
-
-    law: str
-    component: str
-
-    def __str__(self) -> str:
-        return f"{self.law}, {self.component}" if self.component else self.law
-
-
-@dataclass(frozen=True)
-class Amplitude:
-    """One unknown: the field, the component's name ("" for a scalar) and its symbol."""
-
-    field: Field
-    component: str
-    symbol: Symbol
-
-    def _latex(self) -> str:
-        suffix = f",{self.component}" if self.component else ""
-        plain = decorated(Field(self.field.name, 0, self.field.background))
-        head, _, low = plain.partition("_")
-        low = low.strip("{}") + suffix
-        return rf"\hat{{{head}}}_{{{low.lstrip(',')}}}" if low else rf"\hat{{{head}}}"
 
 
 @dataclass(frozen=True, eq=False)
@@ -77,6 +51,17 @@ class WaveMatrix:
         The entries that are not zero.
     constraints : tuple of Preserved
         Every component of the model's constraints, with the proof that the laws preserve it.
+
+    Notes
+    -----
+    `roots`, `branches` and `advice` take numbers in the same way. ``values`` is a mapping from parameter names to numbers
+    or arrays: plain numbers in the unit that the parameter declares (SI without one), or quantity objects with a unit;
+    defaults and constants need not be repeated. Wave numbers are given by name, ``k=``, ``k_x=``, ``theta=`` ..., in rad/m
+    (angles in rad). All of them raise
+
+    - `ValuesError` for an unknown or missing name, a number that is not finite, shapes that do not broadcast;
+    - `UnitError` when a quantity object has another dimension than its parameter;
+    - `BackgroundError` when the values break a condition of the background.
     """
 
     linear: LinearizedModel
@@ -227,7 +212,7 @@ class WaveMatrix:
         >>> wave.susceptibility("e", "phi").matrix[0, 0]
         -e**2*n_e0/T_e
         """
-        return susceptibility(self, species, fields or _default_fields(self))
+        return susceptibility(self, species, fields)
 
     def wave_equation(self, field: str) -> WaveEquation:
         """The one constant-coefficient partial differential equation that a field obeys.
@@ -257,14 +242,13 @@ class WaveMatrix:
         Parameters
         ----------
         values : mapping of str to number or array, optional
-            Parameter values, plain numbers in the unit that the parameter declares (SI without one), or quantity
-            objects with a unit; defaults and constants need not be repeated.
+            Parameter values; see the notes of `WaveMatrix`.
         zero_modes : bool, default False
             Keyword. Whether to keep the identically zero modes.
         workers : int or map-like callable, default 1
             Keyword.
         **waves : array_like
-            The wave numbers by name (k=, k_x=, theta= ...), rad/m; everything broadcasts.
+            The wave numbers by name, rad/m; everything broadcasts.
 
         Returns
         -------
@@ -273,12 +257,8 @@ class WaveMatrix:
 
         Raises
         ------
-        ValuesError
-            For an unknown or missing name, a number that is not finite, shapes that do not broadcast.
-        UnitError
-            When a quantity object has another dimension than its parameter.
-        BackgroundError
-            When the values break a condition of the background.
+        ValuesError, UnitError, BackgroundError
+            As in the notes of `WaveMatrix`.
 
         Examples
         --------
@@ -315,8 +295,7 @@ class WaveMatrix:
         name : str, or tuple of two
             What varies: a wave number or any parameter; two of them for a grid.
         along : array_like, shape (n,), or tuple of two
-            Rad/m for a wave number; for a parameter in the unit that it declares, SI without one. For a grid both
-            increase.
+            Rad/m for a wave number, else in the unit of the parameter. For a grid both increase.
         values : mapping of str to number, optional
         **waves : number
             The other wave numbers, by name.
@@ -328,7 +307,7 @@ class WaveMatrix:
 
         Raises
         ------
-        ValuesError
+        ValuesError, UnitError, BackgroundError
             As `roots`; also when `along` is not one-dimensional.
         """
         from ..roots.branches import find_branches
@@ -358,10 +337,8 @@ class WaveMatrix:
 
         Raises
         ------
-        ValuesError
+        ValuesError, UnitError, BackgroundError
             As `roots`, but for missing wave numbers.
-        BackgroundError
-            When the values break a condition of the background.
 
         Examples
         --------
@@ -455,12 +432,3 @@ class WaveMatrix:
         names = r" \\ ".join(c._latex() for c in self.columns)
         text = rf"{latex(self.matrix)} \begin{{pmatrix}} {names} \end{{pmatrix}} = 0"
         return f"$\\displaystyle {text}$" if len(text) < 4000 else None
-
-
-def _default_fields(wave: WaveMatrix) -> tuple[str, ...]:
-    """E, or phi, or whatever single field belongs to no species."""
-    names = {c.field.name for c in wave.columns}
-    for usual in ("E", "phi"):
-        if usual in names:
-            return (usual,)
-    raise DeclarationError("name the fields of the tensor: there is neither 'E' nor 'phi'")

@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from sympy import Add, Expr, Integer, Mul, Pow, S, cancel
 
 from ..declare.fields import Background, Field, Perturbation
-from ..declare.model import Law
+from ..declare.law import Law
 from ..declare.operators import (
     Cross,
     Div,

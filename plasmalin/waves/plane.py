@@ -10,22 +10,30 @@ import numpy as np
 from sympy import Expr, Float, Rational, Symbol, cos, expand, sin
 
 from ..declare.fields import Components, Field, FieldAtom, exact
-from ..declare.model import Law
+from ..declare.law import Law
 from ..declare.operators import WAVE_SYMBOLS, Advect, Div
 from ..declare.reader import read_expression
 from ..errors import BackgroundError, DeclarationError, RankError, UndeterminedError
 from ..linearize.ledger import KEPT
 from ..linearize.linearized import LinearizedModel, symmetric_law
+from .amplitudes import Amplitude, Row
 from .constraints import preserved
 from .lowering import Index, Wave, indices, lower
-from .matrix import Amplitude, Row, WaveMatrix
+from .matrix import WaveMatrix
 
 NOT_A_NAME = {"omega", "k_abs"}
 
 
 def plane_wave(linear: LinearizedModel, direction: Any, angle: Any) -> WaveMatrix:
     """Lower a linearized model for a wave vector; see `LinearizedModel.plane_wave`."""
-    k = wave_vector(linear, direction, angle)
+    wave, constraints = lowered(linear, wave_vector(linear, direction, angle))
+    return replace(wave, constraints=preserved(wave, constraints))
+
+
+def lowered(
+    linear: LinearizedModel, k: tuple[Expr, ...]
+) -> tuple[WaveMatrix, list[tuple[Row, dict[int, Expr]]]]:
+    """The wave matrix, and every component of the constraints as a linear form that is not proved yet."""
     _refuse_sheared_flow(linear, k)
     columns = _amplitudes(linear)
     symbols = {(c.field.name, _index(c, linear.axes)): c.symbol for c in columns}
@@ -46,9 +54,7 @@ def plane_wave(linear: LinearizedModel, direction: Any, angle: Any) -> WaveMatri
     entries = {(i, j): c for i, (_, form) in enumerate(equations) for j, c in form.items()}
     made = WaveMatrix(linear, k, rows, columns, entries)
     redundant = _equations(linear, linear.redundant, wave)
-    return replace(
-        made, constraints=preserved(made, [(row, by_column(form)) for row, form in redundant])
-    )
+    return made, [(row, by_column(form)) for row, form in redundant]
 
 
 def _refuse_sheared_flow(linear: LinearizedModel, k: tuple[Expr, ...]) -> None:

@@ -3,21 +3,20 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 from fractions import Fraction
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
-from sympy import Add, Expr, Float, Poly, Rational, Symbol, SympifyError, sympify
+from sympy import Expr, Float, Poly, Rational, Symbol, SympifyError, sympify
 
 from ..declare.dimensions import Dimensions
 from ..declare.notation import paper
 from ..declare.reader import read_expression
 from ..errors import DeclarationError, UndeterminedError, ValuesError
-from ..exact.determinant import determinant, underdetermined_block
 from ..exact.polynomial import ExactPolynomial
 from ..exact.rational import exact_rational
-from .coefficients import by_powers, latex_by_powers, normalized_coefficients
+from .coefficients import latex_by_powers
+from .factor import Factor, closed_forms
 from .labels import Modes
 from .ordering import LeadingBalance, leading_balances
 
@@ -26,46 +25,6 @@ if TYPE_CHECKING:
     from .scales import NormalizedRelation
 
 LONGEST_LATEX = 4000
-
-
-@dataclass(frozen=True, repr=False)
-class Factor:
-    """An irreducible factor of the relation, with the modes of one label that it holds.
-
-    Attributes
-    ----------
-    expr : Expr
-        The factor, a polynomial in omega.
-    multiplicity : int
-    degree : int
-        In omega.
-    label : str
-        "wave", "constraint", "entropy" or "vortical"; see `plasmalin.waves.labels`.
-    """
-
-    polynomial: ExactPolynomial
-    multiplicity: int
-    label: str = "wave"
-
-    @property
-    def expr(self) -> Expr:
-        return self.polynomial.as_expr()
-
-    def __repr__(self) -> str:
-        return f"<Factor: {self}>"
-
-    def _repr_latex_(self) -> str:
-        return f"$\\displaystyle {latex_by_powers(self.polynomial)} = 0$"
-
-    @property
-    def degree(self) -> int:
-        return self.polynomial.degree
-
-    def __str__(self) -> str:
-        power = f"multiplicity {self.multiplicity}" if self.multiplicity > 1 else ""
-        label = self.label if self.label != "wave" else ""
-        said = ", ".join(x for x in (power, label) if x)
-        return f"{by_powers(self.polynomial)} = 0" + (f"  ({said})" if said else "")
 
 
 class Relation:
@@ -375,52 +334,3 @@ def _counted(count: int, labels: Mapping[str, int]) -> str:
     told = ", ".join(f"{n} {label}" for label, n in labels.items())
     plural = "" if count == 1 else "s"
     return f"{count} zero mode{plural}" + (f" ({told})" if set(labels) - {"wave"} else "")
-
-
-def collected(polynomial: ExactPolynomial) -> Expr:
-    """A polynomial by powers of omega, divided by what the leading term allows."""
-    coefficients = normalized_coefficients(polynomial)
-    return Add(*(c * polynomial.main**p for p, c in coefficients.items()))
-
-
-def closed_forms(factor: ExactPolynomial, target: Symbol) -> list[Expr]:
-    """Roots of one factor in radicals."""
-    from sympy import roots, sqrt
-
-    poly = Poly(collected(factor), target)
-    if poly.degree() == 0:
-        return []
-    even = all(m[0] % 2 == 0 for m in poly.monoms())
-    reduced = Poly({(m[0] // 2,): c for m, c in poly.terms()}, target) if even else poly
-    if reduced.degree() > (2 if even else 4):
-        raise DeclarationError(
-            f"the factor of degree {poly.degree()} in {target} has no closed form; use wave.roots(...) for numbers"
-        )
-    found = [x for x, m in roots(reduced).items() for _ in range(m)]
-    return [s * sqrt(x) for x in found for s in (1, -1)] if even else found
-
-
-def derive_relation(wave: WaveMatrix) -> Relation:
-    """The determinant of a wave matrix as a relation."""
-    size = len(wave.rows)
-    exact = determinant(wave.entries, size, wave.omega)
-    if exact.degree < 0:
-        raise UndeterminedError(undetermined_message(wave))
-    if exact.degree == 0:
-        raise UndeterminedError(
-            "no unknown changes in time: omega does not occur in the determinant; "
-            "a law with a time derivative is missing"
-        )
-    return Relation(exact.primitive()[1], wave.linear.symbols, wave)
-
-
-def undetermined_message(wave: WaveMatrix) -> str:
-    """Which laws and unknowns make the determinant vanish."""
-    rows, columns = underdetermined_block(wave.entries, len(wave.rows), wave.omega)
-    laws = ", ".join(f"'{wave.rows[i]}'" for i in rows)
-    unknowns = ", ".join(wave.columns[j].symbol.name for j in columns)
-    return (
-        f"the laws do not determine the waves for this wave vector: the determinant vanishes identically. "
-        f"The equations {laws} are dependent, and {unknowns} stay free; "
-        "replace one of these laws, or drop an unknown that nothing fixes"
-    )

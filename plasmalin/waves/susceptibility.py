@@ -20,6 +20,7 @@ def susceptibility(wave: WaveMatrix, species: str, fields: tuple[str, ...]) -> R
     The other species are cut out of the equations that stay and of the field laws; the tensor without any species is
     subtracted.
     """
+    fields = fields or _default_fields(wave)
     columns = list(dict.fromkeys(j for name in fields for j in wave.column(name)))
     own, others = species_columns(wave, species)
     rows = rows_that_stay(wave, columns)
@@ -54,3 +55,12 @@ def species_columns(wave: WaveMatrix, species: str) -> tuple[set[int], set[int]]
             f"no fields named '..._{species}'; the species are {known or 'not told apart by name'}"
         )
     return own, {j for j, c in enumerate(wave.columns) if c.field.name in tags} - own
+
+
+def _default_fields(wave: WaveMatrix) -> tuple[str, ...]:
+    """E, or phi, or whatever single field belongs to no species."""
+    names = {c.field.name for c in wave.columns}
+    for usual in ("E", "phi"):
+        if usual in names:
+            return (usual,)
+    raise DeclarationError("name the fields of the tensor: there is neither 'E' nor 'phi'")

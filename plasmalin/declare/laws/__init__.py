@@ -2,7 +2,8 @@
 
 A function that takes a model adds a law to it and returns the law; the others return terms (expressions) for the
 user's own laws. Everything is coordinate-free and in SI units, temperatures as energies (J), densities in 1/m^3.
-Where a law is about a field, the field or its name is taken.
+Where a law is about a field, the field or its name is taken; ``name=`` names the law, else it is named by its field. What is
+not declared, and a second closure of the same pressure, is a `DeclarationError`.
 
 For example:
 

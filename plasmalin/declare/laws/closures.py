@@ -9,7 +9,8 @@ from sympy import Expr, Symbol
 
 from ...errors import DeclarationError
 from ..fields import Field
-from ..model import FluidModel, Law
+from ..law import Law
+from ..model import FluidModel
 from ..role import Role
 
 MAKERS = {0: ("scalar", 'background="{}_0"'), 1: ("vector", "background=0")}

@@ -6,7 +6,8 @@ from typing import Any
 
 from sympy import Expr, exp, pi
 
-from ..model import FluidModel, Law
+from ..law import Law
+from ..model import FluidModel
 from ..operators import curl, laplacian, partial_t
 from .closures import declared
 

@@ -6,7 +6,8 @@ from typing import Any
 
 from sympy import Expr, S
 
-from ..model import FluidModel, Law
+from ..law import Law
+from ..model import FluidModel
 from ..operators import cross, curl, div, dot, grad, partial_t
 from ..role import Role
 from .closures import declared, named, ready_law
@@ -46,7 +47,7 @@ def induction(
     hall: Any = 0,
     name: str = "induction",
 ) -> Law:
-    """d_t B = curl(v x B − eta curl B / mu_0 − hall), T/s.
+    """d_t B = curl(v x B − eta curl B / mu_0 − hall), T/s (Landau and Lifshitz, Electrodynamics of Continuous Media, sec. 65).
 
     Parameters
     ----------
@@ -62,10 +63,6 @@ def induction(
     Returns
     -------
     Law
-
-    Notes
-    -----
-    Landau and Lifshitz, Electrodynamics of Continuous Media, sec. 65.
     """
     magnetic, v = declared(model, magnetic, 1, "induction"), named(model, v, 1, "induction")
     electric = cross(v, magnetic) - resistivity / mu_0 * curl(magnetic) - hall

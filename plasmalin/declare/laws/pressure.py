@@ -8,7 +8,8 @@ from sympy import Expr, pi, sqrt
 
 from ...errors import DeclarationError
 from ..fields import FieldAtom, exact
-from ..model import FluidModel, Law
+from ..law import Law
+from ..model import FluidModel
 from ..operators import (
     advect,
     div,
@@ -63,6 +64,8 @@ def adiabatic_pressure(
 ) -> Law:
     """d_t p + (v.grad) p + gamma p div v = (gamma − 1)(heating + collisions), Pa/s.
 
+    Landau and Lifshitz, Fluid Mechanics, sec. 2 and 49.
+
     Parameters
     ----------
     model : FluidModel
@@ -82,10 +85,6 @@ def adiabatic_pressure(
     ------
     DeclarationError
         When p is not declared, or the species is closed otherwise already.
-
-    Notes
-    -----
-    Landau and Lifshitz, Fluid Mechanics, sec. 2 and 49.
     """
     p = declared(model, p, 0, "adiabatic_pressure")
     v = named(model, v, 1, "adiabatic_pressure")
@@ -110,19 +109,16 @@ def energy(
 ) -> Law:
     """n/(gamma − 1) (d_t T + v.grad T) + n T div v = div(kappa grad T) + heating + collisions, W/m^3, with T an energy.
 
+    Braginskii (1965), Reviews of Plasma Physics 1, 205 (from memory).
+
     Parameters
     ----------
-    model : FluidModel
     temperature : Field or its name, J
     n : scalar expression, 1/m^3
-    v : vector expression, m/s
-    gamma : scalar expression
     conductivity : scalar or rank-2 expression, 1/(m s)
         May vary; `field_aligned` makes the tensor of a magnetized species.
-    heating : scalar expression, W/m^3
-    collisions : scalar expression, W/m^3
-        `frictional_heat` and `heat_exchange`; `audit` sums it over the species.
-    name : str, optional
+    model, v, gamma, heating, collisions, name
+        As in `adiabatic_pressure`.
 
     Returns
     -------
@@ -131,11 +127,7 @@ def energy(
     Raises
     ------
     DeclarationError
-        When T is not declared, or the species is closed otherwise already.
-
-    Notes
-    -----
-    Braginskii (1965), Reviews of Plasma Physics 1, 205 (from memory).
+        As `adiabatic_pressure`.
     """
     temperature = declared(model, temperature, 0, "energy")
     n, v = named(model, n, 0, "energy"), named(model, v, 1, "energy")

@@ -8,7 +8,8 @@ from sympy import Expr, S, sqrt
 
 from ...errors import DeclarationError
 from ..fields import exact
-from ..model import FluidModel, Law
+from ..law import Law
+from ..model import FluidModel
 from ..operators import advect, cross, div, dot, grad, laplacian, partial_t, rank_of
 from ..role import Role
 from .closures import declared, named, ready_law
@@ -17,7 +18,7 @@ from .closures import declared, named, ready_law
 def continuity(
     model: FluidModel, n: Any, v: Expr, source: Any = 0, *, name: str | None = None
 ) -> Law:
-    """Density: d_t n + div(n v) = source, 1/(m^3 s).
+    """Density: d_t n + div(n v) = source, 1/(m^3 s) (Landau and Lifshitz, Fluid Mechanics, sec. 1).
 
     Parameters
     ----------
@@ -32,10 +33,6 @@ def continuity(
     Returns
     -------
     Law
-
-    Notes
-    -----
-    Landau and Lifshitz, Fluid Mechanics, sec. 1.
     """
     n, v = declared(model, n, 0, "continuity"), named(model, v, 1, "continuity")
     return model.law(name or f"{n} continuity", partial_t(n) + div(n * v), source)
@@ -54,6 +51,8 @@ def momentum(
     name: str | None = None,
 ) -> Law:
     """Momentum: m n (d_t v + (v.grad) v) = force − grad p + collisions, N/m^3; − div P for a tensor.
+
+    Braginskii (1965), Reviews of Plasma Physics 1, 205 (from memory).
 
     Parameters
     ----------
@@ -79,10 +78,6 @@ def momentum(
     ------
     DeclarationError
         When v is not declared, or another law closes the pressure of the species otherwise.
-
-    Notes
-    -----
-    Braginskii (1965), Reviews of Plasma Physics 1, 205 (from memory).
     """
     n, v = named(model, n, 0, "momentum"), declared(model, v, 1, "momentum")
     inertia = S.Zero if massless else mass * n * (partial_t(v) + advect(v, v))

@@ -188,7 +188,11 @@ class Dot(Operator):
 
 
 class Cross(Operator):
-    word, takes = "cross", ((1,), (1,))
+    word, takes = "cross", ((1, 2), (1, 2))
+
+    @classmethod
+    def result(cls, *ranks: int) -> int:
+        return sum(ranks) - 1
 
     def latex(self, *args: str) -> str:
         return rf"{args[0]}\times {args[1]}"
@@ -310,7 +314,7 @@ def dot(a: Any, b: Any) -> Expr:
 
 
 def cross(a: Any, b: Any) -> Expr:
-    """The vector product a x b."""
+    """The vector product a x b; with a tensor (T x b)_ij = e_jkl T_ik b_l and (a x T)_ij = e_ikl a_k T_lj."""
     return cast(Expr, Cross(a, b))
 
 

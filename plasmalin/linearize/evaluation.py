@@ -33,6 +33,8 @@ HARMONICS = np.fft.fftfreq(PHASES, 1 / PHASES)
 CLEAN = 1e-14
 """Harmonics below this part of the largest are rounding, which high derivatives would amplify."""
 PLACES = 16
+LEVI_CIVITA = np.cross(np.eye(3)[:, None], np.eye(3)[None, :])
+"""The last index is that of the product."""
 POWERS = np.where(np.arange(PLACES) < 12, np.arange(PLACES), 0)
 """The powers of position by their place in the spectrum; the highest are rounding, which products would fold back."""
 CIRCLE = 0.05 * np.exp(2j * np.pi * np.arange(PLACES) / PLACES)
@@ -203,7 +205,12 @@ class Evaluation:
         return np.asarray(np.einsum(f"{left}...,{right}...->{left[:-1]}{right[1:]}...", a, b))
 
     def _cross(self, a: Array, b: Array) -> Array:
-        return np.cross(a, b, axis=0)
+        left = "ab"[: a.ndim - len(self.grid)]
+        right = "cd"[: b.ndim - len(self.grid)]
+        made = f"{left[:-1]}e{right[1:]}"
+        return np.asarray(
+            np.einsum(f"{left}...,{right}...,{left[-1]}ce->{made}...", a, b, LEVI_CIVITA)
+        )
 
     def _outer(self, a: Array, b: Array) -> Array:
         return np.asarray(a[:, None] * b[None, :])

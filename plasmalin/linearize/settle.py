@@ -9,7 +9,7 @@ then set to zero: the local approximation.
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from typing import Any, cast
 
 from sympy import Add, Dummy, Expr, Mul, S, expand, sqrt
@@ -269,10 +269,13 @@ def _scalar_out(term: Expr) -> tuple[Expr, Expr]:
 def worked_out(kind: type[Operator], a: Components, b: Components) -> Expr:
     """A product of two vectors or tensors that are known by their components."""
     size = range(a.size)
+    if kind is Cross and a.rank == 2:
+        return components(*(_turned(row.args, b.args) for row in a.args))
+    if kind is Cross and b.rank == 2:
+        columns = zip(*(row.args for row in b.args), strict=True)
+        return components(*zip(*(_turned(a.args, c) for c in columns), strict=True))
     if kind is Cross:
-        x, y = a.args, b.args
-        pairs = ((1, 2), (2, 0), (0, 1))
-        return components(*(x[i] * y[j] - x[j] * y[i] for i, j in pairs))
+        return components(*_turned(a.args, b.args))
     if kind is Outer:
         return components(*(tuple(p * q for q in b.args) for p in a.args))
     if kind is Ddot:
@@ -289,6 +292,10 @@ def worked_out(kind: type[Operator], a: Components, b: Components) -> Expr:
             for i in size
         )
     )
+
+
+def _turned(x: Sequence[Expr], y: Sequence[Expr]) -> tuple[Expr, ...]:
+    return tuple(x[i] * y[j] - x[j] * y[i] for i, j in ((1, 2), (2, 0), (0, 1)))
 
 
 def _transpose(x: Expr) -> Expr:

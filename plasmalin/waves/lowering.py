@@ -159,12 +159,16 @@ def _contracted(a: Form, b: Form) -> Form:
 
 
 def _cross(a: Form, b: Form, wave: Wave) -> Form:
+    """The last index of a and the first of b are taken together."""
+
     def parts() -> Iterator[tuple[Index, dict[Key, Expr]]]:
-        for i, j, m in CYCLIC:
-            for p, q, sign in ((j, m, 1), (m, j, -1)):
-                if (p,) in a and (q,) in b:
-                    row = _row_product(a[(p,)], b[(q,)])
-                    yield (i,), {key: sign * c for key, c in row.items()}
+        for (*before, p), x in a.items():
+            for (q, *after), y in b.items():
+                for i, j, m in CYCLIC:
+                    if {p, q} == {j, m}:
+                        sign = 1 if (p, q) == (j, m) else -1
+                        row = {key: sign * c for key, c in _row_product(x, y).items()}
+                        yield (*before, i, *after), row
 
     return _accumulate(parts())
 

@@ -50,6 +50,7 @@ from .pressure import field_aligned as field_aligned
 from .pressure import isothermal_pressure as isothermal_pressure
 from .pressure import landau_heat_loss as landau_heat_loss
 from .pressure import polytropic_pressure as polytropic_pressure
+from .pressure import pressure_tensor as pressure_tensor
 from .species import bohm_force as bohm_force
 from .species import continuity as continuity
 from .species import gravity_force as gravity_force
@@ -93,6 +94,7 @@ __all__ = [
     "field_aligned",
     "landau_heat_loss",
     "double_adiabatic",
+    "pressure_tensor",
     "boltzmann_density",
     "poisson",
     "quasineutrality",

@@ -12,6 +12,7 @@ from ..law import Law
 from ..model import FluidModel
 from ..operators import (
     advect,
+    cross,
     div,
     dot,
     grad,
@@ -22,6 +23,7 @@ from ..operators import (
     outer,
     partial_t,
     rank_of,
+    transpose,
 )
 from ..role import Role
 from .closures import declared, named, ready_law
@@ -182,3 +184,56 @@ def double_adiabatic(
         rate = partial_t(invariant) + advect(v, invariant)
         ready_law(model, f"{p} invariant", rate, 0, Role(v, closes=(p,)))
     return field_aligned(parallel, perpendicular, magnetic)
+
+
+def pressure_tensor(
+    model: FluidModel,
+    pressure: Any,
+    v: Expr,
+    magnetic: Any = 0,
+    *,
+    charge: Any = 0,
+    mass: Any = 1,
+    heat_loss: Any = 0,
+    name: str | None = None,
+) -> Law:
+    """The law of a full pressure tensor, the ten-moment closure without a heat flux:
+
+    partial_t(P) + advect(v, P) + P div(v) + S + transpose(S) = (charge/mass) (P x B + transpose(P x B)) - heat_loss,
+
+    with S = dot(P, grad(v)). H. Grad (1949), Comm. Pure Appl. Math. 2, 331, with the heat flux left out (from memory).
+
+    Parameters
+    ----------
+    pressure : field or str
+        A symmetric tensor field, Pa.
+    v, magnetic : vector expressions, m/s and T
+    charge, mass : scalar expressions, C and kg
+    heat_loss : tensor expression, Pa/s
+        The divergence of a heat flux, or what collisions take.
+    name : str, optional
+        Of the law; else ``"P pressure"`` for a tensor P.
+
+    Raises
+    ------
+    DeclarationError
+        When the model has no such tensor, or the pressure is closed already.
+
+    Examples
+    --------
+    >>> import plasmalin as plin
+    >>> model = plin.FluidModel("ten moments")
+    >>> p = model.tensor("P", background=(("p_0", 0, 0), (0, "p_0", 0), (0, 0, "p_1")))
+    >>> plin.laws.pressure_tensor(model, p, model.vector("v")).name
+    'P pressure'
+    """
+    tensor = declared(model, pressure, 2, "pressure_tensor")
+    v, magnetic = (
+        named(model, v, 1, "pressure_tensor"),
+        named(model, magnetic, 1, "pressure_tensor"),
+    )
+    strained = dot(tensor, grad(v))
+    rate = partial_t(tensor) + advect(v, tensor) + tensor * div(v) + strained + transpose(strained)
+    turned = cross(tensor, magnetic)
+    change = charge / exact(mass) * (turned + transpose(turned)) - heat_loss
+    return ready_law(model, name or f"{tensor} pressure", rate, change, Role(v, closes=(tensor,)))

@@ -97,10 +97,10 @@ def test_refused_with_the_place(model, text, message):
     ],
 )
 def test_hostile_text_fails_fast(model, text):
-    start = time.perf_counter()
+    start = time.process_time()
     with pytest.raises(plin.ReadError):
         model.law("L", text)
-    assert time.perf_counter() - start < 2.0
+    assert time.process_time() - start < 2.0
 
 
 def scalars(n, v, t, gamma):

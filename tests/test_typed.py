@@ -321,10 +321,10 @@ def test_declared_letters_come_before_numbers_and_functions():
     ],
 )
 def test_hostile_text_fails_fast(text):
-    start = time.perf_counter()
+    start = time.process_time()
     with pytest.raises(plin.ReadError):
         read_claim(text, NAMES)
-    assert time.perf_counter() - start < 2.0
+    assert time.process_time() - start < 2.0
 
 
 # Derivatives, with fields and operators of a model

@@ -254,6 +254,8 @@ def _bilinear(kind: type[Operator]) -> Callable[..., Expr]:
         (ca, ra), (cb, rb) = _scalar_out(a), _scalar_out(b)
         if isinstance(ra, Components) and isinstance(rb, Components):
             return ca * cb * worked_out(kind, ra, rb)
+        if kind is Dot and isinstance(rb, Components) and ra.rank == rb.rank == 1:
+            ra, rb = rb, ra  # so that the two parts of dot(v, v) are one
         return ca * cb * kind(ra, rb)
 
     return rule

@@ -13,7 +13,8 @@ from typing import Any, TypeAlias
 
 import flint
 
-from .univariate import fraction, real_ball
+from .clusters import fraction
+from .univariate import real_ball
 
 Term: TypeAlias = tuple[int, int, tuple[Fraction, Fraction]]
 """Powers of x and s, and an exact complex coefficient."""

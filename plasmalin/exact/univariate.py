@@ -8,11 +8,15 @@ from typing import Any, TypeAlias
 
 import flint
 
+from .clusters import Box, fraction, parted
 from .gaussian import Gaussian
 from .yun import squarefree_parts
 
 Root: TypeAlias = tuple[Fraction, Fraction, Fraction, int]
 """Real and imaginary part of the centre, radius, multiplicity."""
+
+FAR_BITS = 1024
+"""Roots that this precision does not part are a cluster."""
 
 
 def complex_roots(coefficients: list[tuple[Fraction, Fraction]], digits: int = 30) -> list[Root]:
@@ -32,23 +36,75 @@ def complex_roots(coefficients: list[tuple[Fraction, Fraction]], digits: int = 3
     Raises
     ------
     ArithmeticError
-        When the polynomial is zero.
+        When the polynomial is zero, or roots lie too close together to be told apart.
     """
     if not any(re or im for re, im in coefficients):
         raise ArithmeticError("the zero polynomial has no roots to find")
-    if any(im for _, im in coefficients):
-        return _complex_coefficients(coefficients, digits)
-    return _real_coefficients([re for re, _ in coefficients], digits)
+    for part in (0, 1):
+        if not any(c[1 - part] for c in coefficients):
+            return _real_coefficients([c[part] for c in coefficients], digits)
+    return _complex_coefficients(coefficients, digits)
 
 
 def _real_coefficients(coefficients: list[Fraction], digits: int) -> list[Root]:
     poly = _integer_poly(coefficients)
+    if _near_each_other(poly):
+        parts = _squarefree([(c, Fraction(0)) for c in coefficients])
+        if len(parts) == 1 and parts[0][1] == 1:
+            found = parted(lambda: flint.acb_poly(poly), lambda boxes: _real(boxes, digits))
+            return [(*box, 1) for box in found]
+        return [
+            (*root[:3], m)
+            for part, m in parts
+            for root in _real_coefficients([re for re, _ in part], digits)
+        ]
     before = flint.ctx.prec
     try:
         flint.ctx.prec = _bits(digits)
         return [(*_centre(z), int(m)) for z, m in poly.complex_roots()]
     finally:
         flint.ctx.prec = before
+
+
+def _near_each_other(poly: Any) -> bool:
+    """Whether roots are so close, or equal, that `complex_roots` might take ages."""
+    before, bits = flint.ctx.prec, FAR_BITS // 8
+    try:
+        while bits <= FAR_BITS:
+            flint.ctx.prec = bits
+            if _isolated(flint.acb_poly(poly)):
+                return False
+            bits *= 2
+    finally:
+        flint.ctx.prec = before
+    return True
+
+
+def _real(found: list[Box], digits: int) -> list[Box] | None:
+    """Discs of a real polynomial; the mirror image of a disc that meets no other holds the same, real root."""
+    made: list[Box] = []
+    for i, (re, im, radius) in enumerate(found):
+        others = (box for j, box in enumerate(found) if j != i)
+        real = abs(im) <= radius
+        if real and any(max(abs(re - x), abs(im + y)) <= radius + r for x, y, r in others):
+            return None
+        box = re, Fraction(0) if real else im, radius
+        if radius > _wanted(box[:2], digits):
+            return None
+        made.append(box)
+    return made or None
+
+
+def _tight(found: list[Box], digits: int) -> list[Box] | None:
+    """Discs as small as wanted, parts that they do not tell from zero as zero."""
+    if not all(radius <= _wanted((re, im), digits) for re, im, radius in found):
+        return None
+    return [_without_noise(*box) for box in found] or None
+
+
+def _without_noise(re: Fraction, im: Fraction, reach: Fraction) -> Box:
+    re, im = (x if abs(x) > reach else Fraction(0) for x in (re, im))
+    return re, im, 3 * reach
 
 
 def _integer_poly(coefficients: list[Fraction]) -> Any:
@@ -64,13 +120,6 @@ def _centre(z: Any) -> tuple[Fraction, Fraction, Fraction]:
     re, im = z.real, z.imag
     radius = fraction(re.rad()) + fraction(im.rad())
     return fraction(re.mid()), fraction(im.mid()), radius
-
-
-def fraction(exact: Any) -> Fraction:
-    mantissa, exponent = exact.man_exp()
-    return Fraction(int(mantissa)) * Fraction(
-        2 ** max(int(exponent), 0), 2 ** max(-int(exponent), 0)
-    )
 
 
 def _complex_coefficients(coefficients: list[tuple[Fraction, Fraction]], digits: int) -> list[Root]:
@@ -124,13 +173,15 @@ def _simple_roots(
 
     The disc about z of radius n |p(z) / p'(z)| holds a root (Laguerre).
     """
+
+    def polynomial() -> Any:
+        return flint.acb_poly([flint.acb(real_ball(re), real_ball(im)) for re, im in coefficients])
+
     before, bits = flint.ctx.prec, 2 * _bits(digits) + 64
     try:
-        while bits < 100_000:
+        while bits <= FAR_BITS:
             flint.ctx.prec = bits
-            poly = flint.acb_poly(
-                [flint.acb(real_ball(re), real_ball(im)) for re, im in coefficients]
-            )
+            poly = polynomial()
             boxes = _isolated(poly)
             found = [_refined(poly, boxes, i, digits) for i in range(len(boxes))]
             if len(found) == len(coefficients) - 1 and all(found):
@@ -138,12 +189,13 @@ def _simple_roots(
             bits *= 2
     finally:
         flint.ctx.prec = before
-    raise ArithmeticError("the roots could not be separated at 100,000 bits")
+    return parted(polynomial, lambda boxes: _tight(boxes, digits))
 
 
 def _isolated(poly: Any) -> list[Any]:
+    """Boxes with one root each; none where the precision that is set does not suffice."""
     try:
-        return list(poly.roots())
+        return list(poly.roots(maxprec=flint.ctx.prec))
     except ValueError:
         return []
 
@@ -168,8 +220,7 @@ def _refined(
         reach = fraction(distance.upper().mid()) + fraction(distance.rad())
         centre = fraction(z.real.mid()), fraction(z.imag.mid())
         if reach <= _wanted(centre, digits) and _meets_no_other(centre, reach, boxes, i):
-            re, im = (x if abs(x) > reach else Fraction(0) for x in centre)
-            return re, im, 3 * reach
+            return _without_noise(*centre, reach)
         z = (z - step).mid()
     return None
 

@@ -27,7 +27,7 @@ LEAST = 1.25
 SMALLEST_PART = 2.0**-24
 """Real and imaginary part are made right one by one down to this share of the root."""
 LEADING = 2.0**-150, 2.0**200
-LOWEST, BOTTOM, LARGEST, DEGREE = 2.0**-400, 2.0**-100, 2.0**500, 70
+LOWEST, BOTTOM, LARGEST, DEGREE = 2.0**-300, 2.0**-100, 2.0**500, 70
 """Bounds on c_n, size_0, c_n prod(z_i - z_j) and sum_j size_j |z|^j and n within which no underflow hides an error."""
 
 

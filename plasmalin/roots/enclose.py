@@ -101,16 +101,16 @@ def enclose(family: Family, grid: Grid, *, points: int, workers: Workers = 1) ->
     if not grid:
         one = solved_exactly(family, [], np.zeros(1, np.int64))
         repeated = each(lambda a: np.repeat(a, points, axis=0), one.arrays())
-        return Enclosure(*repeated, _method(points, points))
+        return Enclosure(*repeated, _method(points, repeated[3]))
     blocks = enclosed_blocks(family, grid, workers=workers)
     if 0 < points <= BLOCK:
         (made,) = blocks
-        return Enclosure(*made.arrays(), _method(made.exact, points))
+        return Enclosure(*made.arrays(), _method(made.exact, made.state))
     made, first, exact = Solved.empty(points, family.degree), 0, 0
     for block in blocks:
         made.put(np.arange(first, first + len(block.omega)), block)
         first, exact = first + len(block.omega), exact + block.exact
-    return Enclosure(*made.arrays(), _method(exact, points))
+    return Enclosure(*made.arrays(), _method(exact, made.state))
 
 
 def enclosed_blocks(family: Family, grid: Grid, *, workers: Workers = 1) -> Iterator[Solved]:
@@ -144,7 +144,8 @@ def _block(task: tuple[Family, Table, Grid]) -> list[NDArray[Any]]:
         points = np.flatnonzero(left.any(axis=1)) if left.any() else points[:0]
     if len(points):
         made.put(points, solved_exactly(family, grid, points))
-    return [*listed(made.arrays()), np.array(len(points))]
+    exact = int((made.state[points, 0] != Status.MASKED).sum())
+    return [*listed(made.arrays()), np.array(exact)]
 
 
 def _keep_freed_memory() -> None:
@@ -155,10 +156,14 @@ def _keep_freed_memory() -> None:
     np.empty(KEPT)
 
 
-def _method(exact: int, points: int) -> str:
+def _method(exact: int, state: NDArray[np.int8]) -> str:
+    points, masked = len(state), int((state == Status.MASKED).any(axis=1).sum())
+    failed = int((state == Status.NOT_CERTIFIED).any(axis=1).sum())
     return (
-        f"certified discs in twice the working precision at {points - exact} of {points} points, "
-        f"exact ball arithmetic at {exact}"
+        f"certified discs in twice the working precision at {points - exact - masked} of {points} "
+        f"points, exact ball arithmetic at {exact}"
+        + (f" ({failed} of them without a proof)" if failed else "")
+        + (f", {masked} left out" if masked else "")
     )
 
 

@@ -5,11 +5,17 @@ from __future__ import annotations
 from typing import NamedTuple
 
 import numpy as np
+from numpy.typing import NDArray
 
 from .doubledouble import UNIT, Array
 from .scaling import Structure
 from .sheets import UNKNOWN, Sheet
 from .solved import Solved, Status
+
+TINY, HUGE = 2.0**-800, 2.0**800
+"""Sizes of omega between which neither a part of it nor an error is lost to underflow or overflow."""
+SPREAD = 2.0**180
+"""A proven root is at most so many of its radii in size, and at least 2^53."""
 
 
 class Parts(NamedTuple):
@@ -32,7 +38,15 @@ def in_omega(sheet: Sheet, structure: Structure, unknown: int) -> Solved:
         in_order = False
         parts = Parts(-parts.im, parts.re, parts.im_error, parts.re_error)
     scale = 2.0 ** (unknown // structure.step)
-    return _assembled(parts, scale, sheet, structure.lowest, in_order)
+    lost = _lost(sheet, structure, scale)
+    return _assembled(parts, scale, lost, structure.lowest, in_order)
+
+
+def _lost(sheet: Sheet, structure: Structure, scale: float) -> NDArray[np.bool_]:
+    """Points without a proof, and those where omega comes near the ends of the range of doubles."""
+    ends = UNIT**-1 * sheet.radius.min(axis=0), SPREAD * sheet.radius.max(axis=0)
+    low, high = (scale * (np.sqrt(end) if structure.step == 2 else end) for end in ends)
+    return np.asarray((sheet.real == UNKNOWN) | ~((low >= TINY) & (high <= HUGE)))
 
 
 def _rounded(sheet: Sheet) -> Parts:
@@ -75,13 +89,17 @@ def _square_root(square: Parts) -> Parts:
     re, im = np.where(ahead, large, small), np.where(ahead, small, large)
     total = square.re_error + square.im_error
     exact = (square.im == 0) & (square.im_error == 0)
-    curved = np.where(exact, 0.0, 2 * square.re_error * total / (size * large))
-    re_error = (re * square.re_error + im * square.im_error) / size + curved + 4 * UNIT * re
-    im_error = (im * square.re_error + re * square.im_error) / size + curved + 4 * UNIT * im
+    # Quotients first: products of small numbers and errors could underflow.
+    curved = np.where(exact, 0.0, 2 * (square.re_error / size) * (total / large))
+    along, across = re / size, im / size
+    re_error = along * square.re_error + across * square.im_error + curved + 4 * UNIT * re
+    im_error = across * square.re_error + along * square.im_error + curved + 4 * UNIT * im
     return Parts(re, np.where(square.im < 0, -im, im), re_error, im_error)
 
 
-def _assembled(parts: Parts, scale: float, sheet: Sheet, zeros: int, in_order: bool) -> Solved:
+def _assembled(
+    parts: Parts, scale: float, lost: NDArray[np.bool_], zeros: int, in_order: bool
+) -> Solved:
     roots, points = parts.re.shape
     made = Solved.empty(points, zeros + roots)
     place = slice(zeros, None)
@@ -94,7 +112,7 @@ def _assembled(parts: Parts, scale: float, sheet: Sheet, zeros: int, in_order: b
     made.radius[:, :zeros], made.radius[:, place] = 0.0, grown * total.T
     made.growth_radius[:, :zeros], made.growth_radius[:, place] = 0.0, grown * parts.im_error.T
     made.state[:, :zeros], made.state[:, place] = Status.ZERO, Status.CERTIFIED
-    made.state[sheet.real == UNKNOWN] = Status.NOT_CERTIFIED
+    made.state[lost] = Status.NOT_CERTIFIED
     if not in_order or zeros:
         order = np.argsort(made.omega, axis=1, kind="stable")
         for array in (made.omega, made.radius, made.growth_radius, made.state):

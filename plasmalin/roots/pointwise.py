@@ -41,8 +41,9 @@ def _fill(made: Solved, row: int, coefficients: list[Exact]) -> None:
         made.state[row] = Status.NOT_CERTIFIED
         return
     rows = [(0j, 0.0, 0.0, Status.ZERO)] * low
+    like_real = not (any(c[0] for c in coefficients) and any(c[1] for c in coefficients))
     for root in roots:
-        rows += [_rounded(root)] * root[3]
+        rows += [_rounded(root, like_real)] * root[3]
     rows.sort(key=lambda r: (r[0].real, r[0].imag))
     rows += [(complex(np.inf, 0.0), np.inf, np.inf, Status.INFINITE)] * (
         len(coefficients) - 1 - high
@@ -51,13 +52,24 @@ def _fill(made: Solved, row: int, coefficients: list[Exact]) -> None:
         np.copyto(array[row], column)
 
 
-def _rounded(root: Root) -> tuple[complex, float, float, Status]:
+def _rounded(root: Root, like_real: bool) -> tuple[complex, float, float, Status]:
+    """As doubles. Of real coefficients an imaginary part of zero is proven; of others it is a number like any other."""
     re, im, radius, _ = root
-    omega = complex(float(re), float(im))
+    omega = complex(_double(re), _double(im))
+    if not np.isfinite(omega):
+        return omega, np.inf, np.inf, Status.NOT_CERTIFIED
     re_off, im_off = abs(Fraction(omega.real) - re), abs(Fraction(omega.imag) - im)
-    growth = im_off + radius if im else Fraction(0)
+    growth = Fraction(0) if like_real and not im else im_off + radius
     return omega, _upward(re_off + im_off + radius), _upward(growth), Status.CERTIFIED
 
 
+def _double(x: Fraction) -> float:
+    """Rounded to nearest; infinite beyond the range of doubles."""
+    try:
+        return float(x)
+    except OverflowError:
+        return np.inf if x > 0 else -np.inf
+
+
 def _upward(x: Fraction) -> float:
-    return float(np.nextafter(float(x), np.inf)) if x else 0.0
+    return float(np.nextafter(_double(x), np.inf)) if x else 0.0

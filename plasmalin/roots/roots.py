@@ -42,8 +42,8 @@ class Roots(NDArrayOperatorsMixin):
 
     @property
     def status(self) -> NDArray[np.str_]:
-        """In words, shape (..., degree): "certified"; "zero" or "at infinity" (only at this point); "not certified";
-        "masked" (an input is not finite)."""
+        """In words, shape (..., degree): "certified"; "zero" or "at infinity" (only at this point); "not certified"
+        (infinite: beyond the range of doubles; NaN: a cluster too close to part); "masked" (an input is not finite, or every coefficient vanishes)."""
         return self._found.status.reshape(self.shape)
 
     def __array__(self, dtype: Any = None, copy: bool | None = None) -> NDArray[Any]:
@@ -95,14 +95,23 @@ class Roots(NDArrayOperatorsMixin):
         Raises
         ------
         ValuesError
-            Naming the first point and root that is not certified.
+            Naming the first point and root that is not certified, and why.
         """
         status = self.status
         good = np.isin(status, ("certified", "zero", "at infinity"))
         if not good.all():
             where = tuple(int(i) for i in np.argwhere(~good)[0])
-            raise ValuesError(f"the root at index {where} is '{status[where]}', not certified")
+            raise ValuesError(f"the root at index {where} is '{status[where]}': {self._why(where)}")
         return self
+
+    def _why(self, where: tuple[int, ...]) -> str:
+        if self.status[where] == "masked":
+            return (
+                "an input there is not finite, or every coefficient vanishes; leave the point out"
+            )
+        if np.isinf(self.omega[where]):
+            return "it is beyond the range of doubles; choose larger units of time"
+        return "it has a neighbor closer than the exact way can tell; move the point a little"
 
     def __repr__(self) -> str:
         return f"Roots({self.omega!r})"

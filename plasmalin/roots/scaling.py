@@ -22,6 +22,8 @@ SMALLEST, LARGEST = -900, 600
 """Exponents of two between which scaled coefficients must lie."""
 WIDEST, FARTHEST = 300, 900
 """The largest ones of a monomial of scaled quantities, and of the scale of the unknown."""
+STEPS = 2000
+"""Steps of all Horner schemes for the coefficients, below which their rounding is as docs/certificate.md counts it."""
 
 
 @dataclass(frozen=True)
@@ -198,7 +200,8 @@ def scaled(table: Table, columns: Columns) -> Scaled | None:
     powers = np.tile(np.arange(table.degree + 1), table.high.shape[1] // (table.degree + 1))
     binary = np.where(table.high != 0, binary + unknown * powers - sizes[0], 0)
     fits = binary.min() >= SMALLEST and binary.max() <= LARGEST and abs(unknown) <= FARTHEST
-    if not fits or _span(table.exponents, near) > WIDEST:
+    highest = table.exponents.max(axis=0, initial=0)
+    if not fits or highest.sum() > STEPS or _span(highest, columns, shifts) > WIDEST:
         return None
     high, low = np.ldexp(table.high, binary), np.ldexp(table.low, binary)
     return Scaled(table.exponents, high, low, near, unknown)
@@ -210,12 +213,12 @@ def _middle(values: NDArray[np.float64]) -> int:
     return round(float(exponents.mean())) if exponents.size else 0
 
 
-def _span(exponents: NDArray[np.int64], columns: Columns) -> float:
-    """The exponent of two of the largest monomial, above or below 1."""
+def _span(highest: NDArray[np.int64], columns: Columns, shifts: NDArray[np.int64]) -> float:
+    """The exponent of two of the largest monomial, above or below 1; before scaling, which may lose a small value."""
     total = 0.0
-    for i, (hi, _) in enumerate(columns):
+    for power, (hi, _), shift in zip(highest, columns, shifts, strict=True):
         sizes = np.abs(hi[hi != 0])
         if sizes.size:
-            ends = np.log2([sizes.min(), sizes.max()])
-            total += float(exponents[:, i].max() * np.abs(ends).max())
+            ends = np.log2([sizes.min(), sizes.max()]) - shift
+            total += float(power * np.abs(ends).max())
     return total

@@ -151,7 +151,7 @@ def _polish(c: Coefficients, guess: Guess, points: NDArray[np.int64], made: Shee
 
 
 def _canonical(found: Sheet) -> Sheet:
-    """A disc that meets the real axis holds a real root: its mirror image would be a second root in it."""
+    """Starts in canonical order; where a disc meets the real axis a real root is likely, and proven or not later."""
     im = np.where(np.abs(found.im) <= found.radius, 0.0, found.im)
     half = np.sign(im) % 3
     order = np.lexsort((found.re, half), axis=0)

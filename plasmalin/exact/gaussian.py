@@ -49,6 +49,10 @@ class Gaussian:
     def __bool__(self) -> bool:
         return bool(self.re) or bool(self.im)
 
+    def __len__(self) -> int:
+        """The terms of both parts."""
+        return len(self.re) + len(self.im)
+
     @property
     def is_constant(self) -> bool:
         return self.re.is_constant() and self.im.is_constant()

@@ -24,6 +24,7 @@ LEAST = 2.0**-300
 """The smallest share of one eigenvector that is scaled for in another: far below all that occurs, but not zero."""
 CLOSE = FAIR / 4
 """Eigenvalues so near each other, relative to their size, are proven together."""
+ATTEMPTS = 2
 CONTRACTION = 0.25
 """The most that I - Y V may be."""
 
@@ -74,23 +75,33 @@ def eigen_sheet(h: Ball, places: NDArray[np.int64], size: int) -> Sheet:
 
 def _put(made: Sheet, points: NDArray[np.int64], h: Ball, places: NDArray[np.int64]) -> None:
     """Halved where LAPACK gives up on one of many matrices, which says so for all of them."""
+    matrix = np.zeros((len(h.high), len(made.re), len(made.re)), h.high.dtype)
+    matrix[:, places[:, 0], places[:, 1]] = h.high
     try:
-        found = _proven(h, places, len(made.re))
+        _prove(made, points, h, places, basis_of(matrix))
     except np.linalg.LinAlgError:
         middle = len(points) // 2
         for half in (slice(middle), slice(middle, None)) if middle else ():
             _put(made, points[half], Ball(*(part[half] for part in h)), places)
-    else:
-        made.copy_from(found, points)
 
 
-def _proven(h: Ball, places: NDArray[np.int64], size: int) -> Sheet:
-    matrix, doubt = (np.zeros((len(h.high), size, size), x.dtype) for x in (h.high, h.bound))
-    rows, columns = places.T
-    matrix[:, rows, columns], doubt[:, rows, columns] = h.high, h.bound
-    basis = basis_of(matrix)
-    rest = residual(h, places, basis, np.abs(matrix), doubt)
-    return discs_of(basis, similar(basis, rest), not np.iscomplexobj(matrix))
+def _prove(
+    made: Sheet,
+    points: NDArray[np.int64],
+    h: Ball,
+    places: NDArray[np.int64],
+    basis: Basis,
+    attempts: int = ATTEMPTS,
+) -> None:
+    """Discs from eigenvectors; points without a proof again from the eigenvectors corrected."""
+    e = similar(basis, residual(h, places, basis))
+    found = discs_of(basis, e, not np.iscomplexobj(h.high))
+    made.copy_from(found, points)
+    left = (found.real == UNKNOWN) & np.isfinite(e.bound).all(axis=(1, 2))
+    if attempts > 1 and left.any():
+        again = Basis(*(x[left] for x in basis)), Uncertain(*(x[left] for x in e))
+        rest = Ball(*(x[left] for x in h))
+        _prove(made, points[left], rest, places, corrected(*again), attempts - 1)
 
 
 def basis_of(matrix: NDArray[Any]) -> Basis:
@@ -104,9 +115,21 @@ def basis_of(matrix: NDArray[Any]) -> Basis:
     return Basis(values.real, values.imag, real, partner + np.sign(values.imag).astype(np.int64))
 
 
-def residual(
-    h: Ball, places: NDArray[np.int64], basis: Basis, matrix: Array, doubt: Array
-) -> Uncertain:
+def corrected(basis: Basis, e: Uncertain) -> Basis:
+    """Eigenvalues and eigenvectors of B + E to first order in E."""
+    v, shift = basis.vectors, np.einsum("pii->pi", e.value)
+    centre = basis.a + shift.real + 1j * (basis.b + shift.imag)
+    gap = centre[:, None, :] - centre[:, :, None]
+    share = np.where(np.abs(gap) > CLOSE * np.abs(centre[:, None, :]), e.value / gap, 0.0)
+    if not np.iscomplexobj(v):
+        other = np.take_along_axis(v, basis.partner[:, None, :], axis=2)
+        v = v + 1j * other * basis.paired[:, None, :]
+    better = v + v @ share
+    kept = better if np.iscomplexobj(basis.vectors) else better.real
+    return Basis(centre.real, centre.imag, kept, basis.partner)
+
+
+def residual(h: Ball, places: NDArray[np.int64], basis: Basis) -> Uncertain:
     """H V - V B."""
     v, a, b = basis.vectors, basis.a[:, None, :], basis.b[:, None, :]
     if np.iscomplexobj(v):
@@ -122,7 +145,9 @@ def residual(
         value = accurate([(h, v)], [(-a, v), (b, other)], places)
     terms = 2 * (1 + np.bincount(places[:, 0]).max())
     noise = 12 * (terms + 2) ** 2 * UNIT**2
-    bound = _product(doubt + noise * matrix, np.abs(v))
+    size = np.zeros(v.shape)
+    size[:, places[:, 0], places[:, 1]] = h.bound + noise * np.abs(h.high)
+    bound = _product(size, np.abs(v))
     bound += noise * (np.abs(a) + np.abs(b)) * (np.abs(v) + np.abs(other))
     return Uncertain(value, (bound + 2 * UNIT * np.abs(value)) * ABOVE)
 
@@ -209,7 +234,13 @@ def discs_of(basis: Basis, e: Uncertain, is_real: bool) -> Sheet:
     radius = np.where(together, far + reach, 0.0).max(axis=1) * ABOVE
     mine, theirs = radius[:, None, :], radius[:, :, None]
     apart = (reach <= scale * (near - mine) * (1 - 2.0**-40)) & (near > 6 * (mine + theirs))
-    good = (apart | together).all(axis=(1, 2)) & (radius <= FAIR * size).all(axis=1)
+    pair = [np.take_along_axis(x, basis.partner, axis=1) for x in (basis.a, basis.b)]
+    alike = (pair[0] == basis.a) & ((pair[1] == -basis.b) | (basis.paired == 0))
+    good = (
+        alike.all(axis=1)
+        & (apart | together).all(axis=(1, 2))
+        & (radius <= FAIR * size).all(axis=1)
+    )
     if together.sum() > together.shape[0] * together.shape[1]:
         links = together.astype(float)
         good &= ((links @ links > 0) == together).all(axis=(1, 2))

@@ -88,7 +88,7 @@ def by_blocks(
         degree,
         zero_modes - wave.forbidden_modes,
         tuple(p for p, _ in kept),
-        matrices,
+        tuple(m for m in matrices if m.degree),
         f"the determinant has more than {longest:,} terms in the "
         f"{len({s for g in swept for s in g.free_symbols})} swept quantities",
     )

@@ -18,7 +18,7 @@ from .solved import Solved, Status
 
 SAMPLES = 12
 """Points at which pivots are looked at."""
-CHUNK = 128
+CHUNK = 64
 """Matrices at a time: enough to outweigh the cost of a call, few enough to stay near in cache."""
 GOLDEN = 0.6180339887498949
 

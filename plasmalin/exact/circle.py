@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable
 
 import flint
@@ -10,7 +11,7 @@ BITS = 160
 
 
 def on_circle(function: str, angles: Iterable[float]) -> list[tuple[float, float]]:
-    """The "sin" or "cos" of every angle, as two doubles whose sum is right to their 32 digits."""
+    """The "sin" or "cos" of every angle, as two doubles whose sum is right to their 32 digits; NaN for an infinite one."""
     before = flint.ctx.prec
     try:
         flint.ctx.prec = BITS
@@ -20,5 +21,7 @@ def on_circle(function: str, angles: Iterable[float]) -> list[tuple[float, float
 
 
 def _parts(value: flint.arb) -> tuple[float, float]:
+    if not value.is_finite():
+        return math.nan, math.nan
     high = float(value.mid())
     return high, float((value - high).mid())

@@ -32,7 +32,7 @@ if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
     from .values import Numbers
 
-LONGEST = 2000
+LONGEST = 1000
 """Terms of a determinant beyond which a reduced pencil takes less time; measured in docs/speed.md."""
 VANISHES = (
     "for these values the determinant vanishes identically; a value such as a zero wave number, "

@@ -8,10 +8,12 @@ from collections.abc import Iterable
 import flint
 
 BITS = 160
+ENOUGH = 110
+"""Bits that the two doubles need; an infinite angle has none."""
 
 
 def on_circle(function: str, angles: Iterable[float]) -> list[tuple[float, float]]:
-    """The "sin" or "cos" of every angle, as two doubles whose sum is right to their 32 digits; NaN for an infinite one."""
+    """The "sin" or "cos" of every angle, as two doubles whose sum is right to their 32 digits; NaN where it is infinite."""
     before = flint.ctx.prec
     try:
         flint.ctx.prec = BITS
@@ -21,7 +23,7 @@ def on_circle(function: str, angles: Iterable[float]) -> list[tuple[float, float
 
 
 def _parts(value: flint.arb) -> tuple[float, float]:
-    if not value.is_finite():
+    if value.rel_accuracy_bits() < ENOUGH:
         return math.nan, math.nan
     high = float(value.mid())
     return high, float((value - high).mid())

@@ -59,7 +59,7 @@ def quotient(a: Ball, b: Ball) -> Ball:
     size = np.abs(b.high)
     bound = QUOTIENT_ERROR * np.abs(a.high) + a.bound + np.abs(high) * b.bound + TINY
     bound = np.where(size > 2 * b.bound, bound / (size - b.bound), np.inf)
-    return Ball(high, low, bound * ABOVE)
+    return Ball(high, low, bound * ABOVE + TINY)
 
 
 class Step(IntEnum):

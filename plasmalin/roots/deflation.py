@@ -10,18 +10,17 @@ Pivots are chosen by size at some points of the grid and by sparsity; a `Tape` r
 from __future__ import annotations
 
 from collections import defaultdict
-from collections.abc import Collection, Sequence
+from collections.abc import Collection
 from dataclasses import dataclass
-from typing import Any, TypeAlias
+from typing import TypeAlias
 
 import numpy as np
 from numpy.typing import NDArray
 
 from ..exact.pencil import Place
-from .family import Exact, Family, Grid
+from .family import Family, Grid
 from .matrixfamily import MatrixFamily
 from .replay import ONE, ZERO, Ball, Program, Tape
-from .scaling import in_binary
 
 GROWTH, LOST = 8.0, 16.0
 """A pivot is large enough if entries grow by so many bits at most, and accurate if it lost so many of its own."""
@@ -149,16 +148,17 @@ class Pencil:
                     across[i].append(register)
                     below[j].append(register)
         chosen = sorted((i, j) for i in rows for j in lines[i])
-        fill = np.array([(len(across[i]) - 1) * (len(below[j]) - 1) for i, j in chosen])
-        if not fill.all():
-            return chosen[int(fill.argmin())]
+        others = np.array([(len(across[i]) - 1, len(below[j]) - 1) for i, j in chosen])
         row = {i: self.tape.largest(across[i]) for i in rows}
         column = {j: self.tape.largest(below[j]) for _, j in chosen}
         pivots = [lines[i][j] for i, j in chosen]
         with np.errstate(invalid="ignore"):
             growth = np.array([row[i] + column[j] for i, j in chosen]) - self.tape.bits(pivots)
-        bad = _beyond(growth, GROWTH) + _beyond(self.tape.lost(pivots), LOST)
-        return chosen[int(np.lexsort((fill, np.rint(bad.mean(axis=1))))[0])]
+        bad = np.rint(
+            (_beyond(growth, GROWTH) + _beyond(self.tape.lost(pivots), LOST)).mean(axis=1)
+        )
+        bad[others[:, 1] == 0] = 0  # nothing is divided by it
+        return chosen[int(np.lexsort((others.prod(axis=1), bad))[0])]
 
 
 def _beyond(bits: NDArray[np.float64], limit: float) -> NDArray[np.float64]:
@@ -208,7 +208,7 @@ def standard(family: MatrixFamily, samples: Grid) -> Standard:
     ArithmeticError
         When the image of the result does not have the determinant of the whole.
     """
-    near, unknown = _balanced(family, [hi for hi, _ in samples])
+    near, unknown = family.balanced(samples)
     tape = Tape(family.image, family.images, family.balls(samples))
     leaves = {
         (*ij, power): register
@@ -273,38 +273,3 @@ def _linear(tape: Tape, leaves: Leaves, size: int) -> tuple[dict[int, Line], dic
     for (j, p), i in beyond.items():
         a[i], b[i] = {i: tape.number(ONE)}, {beyond.get((j, p - 1), j): tape.number(ONE)}
     return a, b
-
-
-def _balanced(
-    family: MatrixFamily, values: Sequence[NDArray[Any]]
-) -> tuple[dict[Place, Family], int]:
-    """Rows, columns and omega times powers of two that bring the entries near 1, by least squares.
-
-    Returns
-    -------
-    (entries, unknown)
-        omega is 2^unknown times what stands for it.
-    """
-    size = family.size
-    with np.errstate(divide="ignore"):
-        swept = np.array([np.log2(np.abs(v)) for v in values])
-    swept[~np.isfinite(swept)] = 0.0
-    swept = swept.mean(axis=1)
-    rows, bits = [], []
-    for (i, j), entry in family.entries.items():
-        for exponents, c in zip(entry.exponents, entry.coefficients, strict=True):
-            row = np.zeros(2 * size + 1)
-            row[i] = row[size + j] = 1
-            row[-1] = exponents[0]
-            rows.append(row)
-            bits.append(-_bits(c) - exponents[1:] @ swept)
-    shifts = np.rint(np.linalg.lstsq(np.array(rows), np.array(bits))[0]).astype(int).tolist()
-    near = {
-        (i, j): entry.scaled_by(shifts[i] + shifts[size + j], shifts[-1])
-        for (i, j), entry in family.entries.items()
-    }
-    return near, shifts[-1]
-
-
-def _bits(c: Exact) -> float:
-    return max(in_binary(abs(x))[2] for x in c if x)

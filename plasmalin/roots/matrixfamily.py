@@ -11,6 +11,7 @@ import numpy as np
 from ..exact.pencil import Image, Place, circle_point, determinant_of
 from .family import Exact, Family, Grid, exact_value, times_i
 from .replay import TINY, Ball
+from .scaling import in_binary
 
 ROUNDED = 2.0**-103
 """A sine and a cosine in high and low part are off by no more, relatively, from their point of the unit circle."""
@@ -87,3 +88,35 @@ class MatrixFamily:
             bound = ROUNDED * np.abs(hi) + TINY if place in rounded else np.zeros(hi.shape)
             made.append(Ball(hi, lo, bound))
         return made
+
+    def balanced(self, grid: Grid) -> tuple[dict[Place, Family], int]:
+        """Rows, columns and omega times powers of two that bring the entries near 1, by least squares.
+
+        Returns
+        -------
+        (entries, unknown)
+            omega is 2^unknown times what stands for it.
+        """
+        with np.errstate(divide="ignore"):
+            swept = np.log2([np.abs(hi) for hi, _ in grid])
+        swept[~np.isfinite(swept)] = 0.0
+        rows, bits = [], []
+        for (i, j), entry in self.entries.items():
+            for (power, *exponents), c in zip(entry.exponents, entry.coefficients, strict=True):
+                row = np.zeros(2 * self.size + 1)
+                row[i] = row[self.size + j] = 1
+                row[-1] = power
+                rows.append(row)
+                bits.append(-_bits(c) - float(exponents @ swept.mean(axis=1)))
+        found = np.rint(np.linalg.lstsq(np.array(rows), np.array(bits))[0])
+        *shifts, unknown = found.astype(int).tolist()
+        near = {
+            (i, j): entry.scaled_by(shifts[i] + shifts[self.size + j], unknown)
+            for (i, j), entry in self.entries.items()
+        }
+        return near, unknown
+
+
+def _bits(c: Exact) -> int:
+    """The exponent of two of the larger part."""
+    return max(in_binary(abs(x))[2] for x in c if x)

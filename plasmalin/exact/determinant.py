@@ -11,6 +11,7 @@ from dataclasses import dataclass
 from fractions import Fraction
 from functools import reduce
 from itertools import product
+from math import inf
 from typing import Any, TypeAlias
 
 import sympy as sp
@@ -19,7 +20,7 @@ from ..errors import UndeterminedError
 from .dependence import field_image, null_support
 from .gaussian import Gaussian, gcd, lcm
 from .matching import diagonal_blocks, maximum_matching
-from .minors import minors_determinant
+from .minors import TooLong, minors_determinant
 from .polynomial import ExactPolynomial, ratio_expr
 from .ratio import Ratio
 from .reader import Reader, ring_of
@@ -34,6 +35,7 @@ def determinant(
     size: int,
     main: sp.Symbol,
     values: Mapping[Any, Fraction | sp.Expr] | None = None,
+    longest: float = inf,
 ) -> ExactPolynomial:
     """The numerator of a determinant, in lowest terms, up to a unit.
 
@@ -46,6 +48,8 @@ def determinant(
         The symbol that the result is a polynomial in.
     values : mapping, optional
         Exact numbers or expressions put in first.
+    longest : float
+        How many terms a minor may have.
 
     Returns
     -------
@@ -57,10 +61,12 @@ def determinant(
     ------
     NonPolynomialError
         When `main` enters other than in polynomials and their ratios.
+    TooLong
+        When a minor or the whole has more than `longest` terms.
     """
     filled = _filled(entries, values or {})
     ring = ring_of(filled.values(), main)
-    ratio = exact_determinant(filled, range(size), range(size), ring)
+    ratio = exact_determinant(filled, range(size), range(size), ring, longest)
     top = ratio.top
     if top and ratio.bottom.holds(0):
         top = top.over(gcd(top, ratio.bottom))
@@ -97,7 +103,11 @@ class Cleared:
 
 
 def exact_determinant(
-    entries: Entries, rows: Sequence[int], columns: Sequence[int], ring: Ring
+    entries: Entries,
+    rows: Sequence[int],
+    columns: Sequence[int],
+    ring: Ring,
+    longest: float = inf,
 ) -> Ratio:
     """The determinant of a square submatrix, exactly, main written as itself."""
     zero, one = ring.constant(0), ring.constant(1)
@@ -110,13 +120,16 @@ def exact_determinant(
     matching = maximum_matching(inside, len(rows), len(columns))
     if len(matching) < len(rows):
         return Ratio(zero, one)
-    cleared = _cleared(inside, ring)
-    top = _block_determinant(cleared.table, matching, ring)
+    cleared = cleared_table(inside, ring)
+    top = block_determinant(cleared.table, matching, ring, longest)
     top = top.turned(cleared.turns)
     return Ratio(_unphased(top, cleared.phase), _unphased(cleared.bottom, cleared.phase))
 
 
-def _block_determinant(table: Table, matching: Mapping[int, int], ring: Ring) -> Gaussian:
+def block_determinant(
+    table: Table, matching: Mapping[int, int], ring: Ring, longest: float = inf
+) -> Gaussian:
+    """The determinant from those of the irreducible diagonal blocks."""
     blocks = diagonal_blocks(table, matching)
     sign = _parity([i for rows, _ in blocks for i in rows]) * _parity(
         [j for _, cs in blocks for j in cs]
@@ -124,7 +137,12 @@ def _block_determinant(table: Table, matching: Mapping[int, int], ring: Ring) ->
     result = ring.constant(sign)
     for rows, columns in blocks:
         lines = [{b: table[i, j] for b, j in enumerate(columns) if (i, j) in table} for i in rows]
-        result = result * minors_determinant(lines, ring)
+        factor = minors_determinant(lines, ring, longest)
+        if len(result) * len(factor) > longest * longest:
+            raise TooLong
+        result = result * factor
+        if len(result) > longest:
+            raise TooLong
     return result
 
 
@@ -147,7 +165,7 @@ def polynomial_rows(entries: Entries, main: sp.Symbol) -> dict[tuple[int, int], 
     return {ij: ExactPolynomial(ring, p) for ij, p in table.items()}
 
 
-def _cleared(entries: Entries, ring: Ring) -> Cleared:
+def cleared_table(entries: Entries, ring: Ring) -> Cleared:
     """The matrix without denominators, real if main = omega or main = i s allows."""
     first = None
     for phase in (0, 1):

@@ -2,15 +2,18 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable
 
 import flint
 
 BITS = 160
+ENOUGH = 110
+"""Bits that the two doubles need; an infinite angle has none."""
 
 
 def on_circle(function: str, angles: Iterable[float]) -> list[tuple[float, float]]:
-    """The "sin" or "cos" of every angle, as two doubles whose sum is right to their 32 digits."""
+    """The "sin" or "cos" of every angle, as two doubles whose sum is right to their 32 digits; NaN where it is infinite."""
     before = flint.ctx.prec
     try:
         flint.ctx.prec = BITS
@@ -20,5 +23,7 @@ def on_circle(function: str, angles: Iterable[float]) -> list[tuple[float, float
 
 
 def _parts(value: flint.arb) -> tuple[float, float]:
+    if value.rel_accuracy_bits() < ENOUGH:
+        return math.nan, math.nan
     high = float(value.mid())
     return high, float((value - high).mid())

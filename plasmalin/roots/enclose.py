@@ -1,24 +1,27 @@
 """Every root of a family at every point, with a proven radius.
 
 The grid is cut into fixed blocks, each solved on its own, so that the result does not depend on how many workers
-share them. In a block, roots are found from nothing at a few nodes, carried along the path, and proven at every
-point by the discs of `discs.py`. Points that these do not prove (multiple roots, a leading or lowest coefficient that
-vanishes) are solved exactly, one by one.
+share them. In a block of a polynomial, roots are found from nothing at a few nodes, carried along the path, and proven
+at every point by the discs of `discs.py`; in one of a matrix they are the eigenvalues of its reduced form
+(`reduced.py`). Points that these do not prove (multiple roots, a leading or lowest coefficient that vanishes) are
+solved exactly, one by one.
 """
 
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
-from typing import Any
+from typing import Any, Protocol
 
 import numpy as np
 from numpy.typing import NDArray
 
 from .block import solve_block
 from .family import Family, Grid
+from .matrixfamily import MatrixFamily
 from .parallel import Workers, mapped
 from .pointwise import solved_exactly
+from .reduced import ReducedWay
 from .scaling import Table, columns_of, table_of
 from .solved import Arrays, Solved, Status, each, joined, listed
 
@@ -80,12 +83,46 @@ class Enclosure:
         return self.reordered(np.argsort(self.omega, axis=1, kind="stable"))
 
 
-def enclose(family: Family, grid: Grid, *, points: int, workers: Workers = 1) -> Enclosure:
+class Way(Protocol):
+    """How roots are proven: points in one task, what it is called, and the work for a grid without gaps."""
+
+    @property
+    def block(self) -> int: ...
+
+    @property
+    def words(self) -> str: ...
+
+    def prove(self, grid: Grid, points: NDArray[np.int64], made: Solved) -> None:
+        """The roots at all points, put where `points` says; NOT_CERTIFIED where nothing is proven."""
+
+
+@dataclass(frozen=True)
+class PolynomialWay:
+    """Discs from the values of one polynomial."""
+
+    table: Table
+    block: int = BLOCK
+    words: str = "certified discs in twice the working precision"
+
+    def prove(self, grid: Grid, points: NDArray[np.int64], made: Solved) -> None:
+        solve_block(self.table, columns_of(grid), points, made)
+
+
+def _way(family: Family | MatrixFamily, grid: Grid) -> Way:
+    if isinstance(family, Family):
+        return PolynomialWay(table_of(family, grid))
+    points = np.flatnonzero(_usable(grid))
+    return ReducedWay.of(family, grid, points if len(points) >= FEW else points[:0])
+
+
+def enclose(
+    family: Family | MatrixFamily, grid: Grid, *, points: int, workers: Workers = 1
+) -> Enclosure:
     """All roots of one family, `family.degree` at every point, sorted by (Re, Im).
 
     Parameters
     ----------
-    family : Family
+    family : Family or MatrixFamily
         Square-free: a factor that is repeated belongs into `merge`.
     grid : sequence of (high, low)
         The swept quantities, each part of shape (points,), real or complex.
@@ -101,51 +138,61 @@ def enclose(family: Family, grid: Grid, *, points: int, workers: Workers = 1) ->
     if not grid:
         one = solved_exactly(family, [], np.zeros(1, np.int64))
         repeated = each(lambda a: np.repeat(a, points, axis=0), one.arrays())
-        return Enclosure(*repeated, _method(points, repeated[3]))
-    blocks = enclosed_blocks(family, grid, workers=workers)
-    if 0 < points <= BLOCK:
+        return Enclosure(*repeated, _method(PolynomialWay.words, points, repeated[3]))
+    way = _way(family, grid)
+    blocks = _blocks(family, way, grid, workers)
+    if 0 < points <= way.block:
         (made,) = blocks
-        return Enclosure(*made.arrays(), _method(made.exact, made.state))
+        return Enclosure(*made.arrays(), _method(way.words, made.exact, made.state))
     made, first, exact = Solved.empty(points, family.degree), 0, 0
     for block in blocks:
         made.put(np.arange(first, first + len(block.omega)), block)
         first, exact = first + len(block.omega), exact + block.exact
-    return Enclosure(*made.arrays(), _method(exact, made.state))
+    return Enclosure(*made.arrays(), _method(way.words, exact, made.state))
 
 
-def enclosed_blocks(family: Family, grid: Grid, *, workers: Workers = 1) -> Iterator[Solved]:
+def enclosed_blocks(
+    family: Family | MatrixFamily, grid: Grid, *, workers: Workers = 1
+) -> Iterator[Solved]:
     """The same, block by block in the order of the points, for grids whose roots would not fit in memory."""
-    table = table_of(family, grid)
-    points = len(grid[0][0])
+    return _blocks(family, _way(family, grid), grid, workers)
+
+
+def _blocks(
+    family: Family | MatrixFamily, way: Way, grid: Grid, workers: Workers
+) -> Iterator[Solved]:
+    points, size = len(grid[0][0]), way.block
     tasks = (
-        (family, table, [(hi[b : b + BLOCK], lo[b : b + BLOCK]) for hi, lo in grid])
-        for b in range(0, points, BLOCK)
+        (family, way, [(hi[b : b + size], lo[b : b + size]) for hi, lo in grid])
+        for b in range(0, points, size)
     )
-    for *arrays, exact in mapped(_block, tasks, workers if points > BLOCK else 1):
+    for *arrays, exact in mapped(_block, tasks, workers if points > size else 1):
         omega, radius, growth_radius, state = arrays
         yield Solved(omega, radius, growth_radius, state, int(exact))
 
 
-def _block(task: tuple[Family, Table, Grid]) -> list[NDArray[Any]]:
+def _block(task: tuple[Family | MatrixFamily, Way, Grid]) -> list[NDArray[Any]]:
     """One block: masked points left out, the rest solved; those without a proof exactly, and how many they are."""
-    family, table, grid = task
+    family, way, grid = task
     _keep_freed_memory()
-    size = len(grid[0][0])
-    made = Solved.empty(size, family.degree)
-    usable = np.ones(size, bool)
-    for hi, lo in grid:
-        usable &= np.isfinite(hi) & np.isfinite(lo)
+    made = Solved.empty(len(grid[0][0]), family.degree)
+    usable = _usable(grid)
     points = np.flatnonzero(usable)
     made.mask(np.flatnonzero(~usable))
     if len(points) >= FEW:
-        columns = columns_of([(hi[points], lo[points]) for hi, lo in grid])
-        solve_block(table, columns, points, made)
+        way.prove([(hi[points], lo[points]) for hi, lo in grid], points, made)
         left = made.state == Status.NOT_CERTIFIED
         points = np.flatnonzero(left.any(axis=1)) if left.any() else points[:0]
     if len(points):
         made.put(points, solved_exactly(family, grid, points))
     exact = int((made.state[points, 0] != Status.MASKED).sum())
     return [*listed(made.arrays()), np.array(exact)]
+
+
+def _usable(grid: Grid) -> NDArray[np.bool_]:
+    """Points at which every quantity is finite."""
+    finite = [np.isfinite(hi) & np.isfinite(lo) for hi, lo in grid]
+    return np.asarray(np.logical_and.reduce(finite))
 
 
 def _keep_freed_memory() -> None:
@@ -156,12 +203,11 @@ def _keep_freed_memory() -> None:
     np.empty(KEPT)
 
 
-def _method(exact: int, state: NDArray[np.int8]) -> str:
+def _method(words: str, exact: int, state: NDArray[np.int8]) -> str:
     points, masked = len(state), int((state == Status.MASKED).any(axis=1).sum())
     failed = int((state == Status.NOT_CERTIFIED).any(axis=1).sum())
     return (
-        f"certified discs in twice the working precision at {points - exact - masked} of {points} "
-        f"points, exact ball arithmetic at {exact}"
+        f"{words} at {points - exact - masked} of {points} points, exact ball arithmetic at {exact}"
         + (f" ({failed} of them without a proof)" if failed else "")
         + (f", {masked} left out" if masked else "")
     )

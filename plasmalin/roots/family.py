@@ -44,7 +44,16 @@ class Family:
 
     def at(self, grid: Grid, point: int) -> list[Exact]:
         """The exact coefficients at one grid point, lowest power of omega first."""
-        values = [exact_value(hi[point], lo[point]) for hi, lo in grid]
+        return self.of([exact_value(hi[point], lo[point]) for hi, lo in grid])
+
+    def scaled_by(self, binary: int, omega: int) -> Family:
+        """Times 2^binary, with 2^omega times the unknown in place of omega."""
+        factors = (Fraction(2) ** (binary + n * omega) for n in self.exponents[:, 0].tolist())
+        scaled = ((re * f, im * f) for (re, im), f in zip(self.coefficients, factors, strict=True))
+        return Family(self.exponents, tuple(scaled))
+
+    def of(self, values: Sequence[Exact]) -> list[Exact]:
+        """The exact coefficients for exact values of the swept quantities."""
         found: list[Exact] = [(Fraction(0), Fraction(0))] * (self.degree + 1)
         powers: dict[tuple[int, int], Exact] = {}
         for row, c in zip(self.exponents.tolist(), self.coefficients, strict=True):

@@ -9,12 +9,13 @@ from numpy.typing import NDArray
 
 from ..exact.univariate import Root, complex_roots
 from .family import Exact, Family, Grid
+from .matrixfamily import MatrixFamily
 from .solved import Solved, Status, listed
 
 DIGITS = 25
 
 
-def solved_exactly(family: Family, grid: Grid, points: NDArray[np.int64]) -> Solved:
+def solved_exactly(family: Family | MatrixFamily, grid: Grid, points: NDArray[np.int64]) -> Solved:
     """The roots at some points, sorted; neighbors with the same values are solved once."""
     made = Solved.empty(len(points), family.degree, exact=len(points))
     made.mask(slice(None))

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
+from dataclasses import replace
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
@@ -10,9 +11,12 @@ from numpy.lib.mixins import NDArrayOperatorsMixin
 from numpy.typing import NDArray
 
 from ..errors import ValuesError
+from .choice import chosen_problem
 from .enclose import Enclosure, enclose, merge
+from .family import Family
+from .matrixfamily import MatrixFamily
 from .parallel import Workers
-from .solve import Problem, grid_of, pose
+from .solve import Problem, grid_of
 from .values import Numbers, gather, with_defaults
 
 if TYPE_CHECKING:
@@ -121,7 +125,7 @@ def find_roots(wave: WaveMatrix, values: Mapping[Any, Any], waves: dict[str, Any
     """All roots; see `WaveMatrix.roots`."""
     zero_modes, workers = bool(waves.pop("zero_modes", False)), waves.pop("workers", 1)
     numbers = gather(wave, with_defaults(wave, values), waves)
-    problem = pose(wave, numbers)
+    problem = chosen_problem(wave, numbers)
     found = solve(problem, numbers, zero_modes, workers)
     return Roots(found, (*numbers.shape, found.omega.shape[1]))
 
@@ -132,12 +136,15 @@ def solve(
     """Every factor enclosed and merged, with the exact zeros in their place."""
     points = int(np.prod(numbers.shape, dtype=np.int64))
     grid = grid_of(problem, numbers)
-    parts = [enclose(family, grid, points=points, workers=workers) for family, _ in problem.factors]
+    families: list[Family | MatrixFamily] = [family for family, _ in problem.factors]
+    families += problem.matrices
+    parts = [enclose(family, grid, points=points, workers=workers) for family in families]
     extra = problem.zero_modes if zero_modes else 0
-    return merge(
+    found = merge(
         parts,
-        [m for _, m in problem.factors],
+        [m for _, m in problem.factors] + [1] * len(problem.matrices),
         points=points,
         zeros=problem.zeros + extra,
         degree=problem.degree + extra,
     )
+    return replace(found, method=f"{problem.choice}: {found.method}") if problem.choice else found

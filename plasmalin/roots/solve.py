@@ -10,8 +10,9 @@ from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from fractions import Fraction
 from functools import lru_cache
+from math import inf
 from random import Random
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING, Any, TypeAlias
 
 import mpmath
 import numpy as np
@@ -20,14 +21,26 @@ from sympy import Abs, Dummy, Expr, Rational, Symbol, cos, lambdify, sin, sqrt
 
 from ..errors import UndeterminedError
 from ..exact.determinant import determinant
+from ..exact.minors import TooLong
 from ..exact.polynomial import ExactPolynomial
 from ..exact.sines import on_circle
 from .family import Family, Grid
+from .matrixfamily import MatrixFamily
 from .values import high_precision
 
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
     from .values import Numbers
+
+LONGEST = 1000
+"""Terms of a determinant beyond which a reduced pencil takes less time; measured in docs/speed.md."""
+VANISHES = (
+    "for these values the determinant vanishes identically; a value such as a zero wave number, "
+    "density or mass takes a law away: change it or leave that law out"
+)
+
+Fixed: TypeAlias = frozenset[tuple[Symbol, Fraction]]
+Solved: TypeAlias = frozenset[tuple[Symbol, Expr]]
 
 DIGITS = 45
 """Decimal digits to which sin(theta), sqrt(M) and other functions of numbers are evaluated."""
@@ -51,6 +64,10 @@ class Problem:
         Those that no declared constraint forbids.
     polynomials : tuple of ExactPolynomial
         The factors as polynomials, in the order of `factors`.
+    matrices : tuple of MatrixFamily
+        Factors that are too long to be written out.
+    choice : str
+        Why they are not; empty where there are none.
     """
 
     factors: tuple[tuple[Family, int], ...]
@@ -59,42 +76,71 @@ class Problem:
     degree: int
     zero_modes: int
     polynomials: tuple[ExactPolynomial, ...]
+    matrices: tuple[MatrixFamily, ...] = ()
+    choice: str = ""
 
 
 def pose(wave: WaveMatrix, numbers: Numbers) -> Problem:
-    """The exact problem for a wave matrix and its numbers.
+    """The exact problem for a wave matrix and its numbers, its determinant written out.
 
     Raises
     ------
     UndeterminedError
         When the determinant vanishes identically, in general or for these numbers.
     """
-    return _posed(wave, frozenset(numbers.fixed.items()), frozenset(numbers.solved.items()))
+    return _posed(wave, *what_is_known(numbers))
+
+
+def what_is_known(numbers: Numbers) -> tuple[Fixed, Solved]:
+    """What a problem depends on beside the wave matrix."""
+    return frozenset(numbers.fixed.items()), frozenset(numbers.solved.items())
 
 
 @lru_cache(maxsize=16)
-def _posed(
-    wave: WaveMatrix,
-    fixed: frozenset[tuple[Symbol, Fraction]],
-    solved: frozenset[tuple[Symbol, Expr]],
-) -> Problem:
+def _posed(wave: WaveMatrix, fixed: Fixed, solved: Solved) -> Problem:
     """The same problem serves every grid, so the last few are kept."""
+    return short_problem(wave, fixed, solved) or _written_out(wave, fixed, solved, inf)
+
+
+@lru_cache(maxsize=16)
+def short_problem(wave: WaveMatrix, fixed: Fixed, solved: Solved) -> Problem | None:
+    """The problem if its determinant has at most `LONGEST` terms."""
+    try:
+        return _written_out(wave, fixed, solved, LONGEST)
+    except TooLong:
+        return None
+
+
+def _written_out(wave: WaveMatrix, fixed: Fixed, solved: Solved, longest: float) -> Problem:
     degree, zero_modes = general_degree(wave)
-    fill = _filling(dict(fixed), dict(solved))
-    filled = {ij: c for ij, e in wave.entries.items() if (c := fill(e)) != 0}
-    whole = determinant(filled, len(wave.rows), wave.omega)
-    if whole.degree < 0:
-        raise UndeterminedError(
-            "for these values the determinant vanishes identically; a value such as a zero wave number, "
-            "density or mass takes a law away: change it or leave that law out"
-        )
-    whole = whole.primitive()[1]
+    filled = filled_in(wave, fixed, solved)
+    whole = determinant(filled, len(wave.rows), wave.omega, longest=longest)
+    kept, lowest = factors_of(whole)
     swept = tuple(g for g in whole.generators if g.free_symbols)
-    parts = whole.factor()[1] if whole.has_real_form else whole.squarefree()[1]
-    kept = [(p, m) for p, m in parts if p.lowest == 0]
     factors = tuple((family_of(p, swept), m) for p, m in kept)
-    zeros, allowed = whole.lowest - zero_modes, zero_modes - wave.forbidden_modes
+    zeros, allowed = lowest - zero_modes, zero_modes - wave.forbidden_modes
     return Problem(factors, swept, zeros, degree, allowed, tuple(p for p, _ in kept))
+
+
+def filled_in(wave: WaveMatrix, fixed: Fixed, solved: Solved) -> dict[tuple[int, int], Expr]:
+    """The entries with all numbers put in, without those that vanish."""
+    fill = _filling(dict(fixed), dict(solved))
+    return {ij: c for ij, e in wave.entries.items() if (c := fill(e)) != 0}
+
+
+def factors_of(whole: ExactPolynomial) -> tuple[list[tuple[ExactPolynomial, int]], int]:
+    """The factors that hold omega other than as omega itself, and the power of that.
+
+    Raises
+    ------
+    UndeterminedError
+        When the polynomial is zero.
+    """
+    if whole.degree < 0:
+        raise UndeterminedError(VANISHES)
+    whole = whole.primitive()[1]
+    parts = whole.factor()[1] if whole.has_real_form else whole.squarefree()[1]
+    return [(p, m) for p, m in parts if p.lowest == 0], whole.lowest
 
 
 def in_numbers(numbers: Numbers) -> Callable[[Expr], Expr]:

@@ -18,9 +18,8 @@ os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
 import numpy as np
 import scipy.linalg
 import sympy as sp
-from models import electromagnetic, numbers
+from models import dusty_numbers, electromagnetic, numbers
 
-import plasmalin as plin
 from plasmalin.roots.enclose import enclose, enclosed_blocks
 from plasmalin.roots.pointwise import solved_exactly
 from plasmalin.roots.slopes import ScaledFamily
@@ -30,19 +29,6 @@ from plasmalin.roots.values import gather, with_defaults
 
 RANGE = 10.0, 2e4
 SAMPLE = 400
-
-
-def dusty_numbers():
-    """Electrons, ions and heavy grains with 10,000 charges each; invented."""
-    e, values = plin.constants.e, {"B_0": 0.01}
-    species = [
-        (-1, plin.constants.m_e, 3.0, 1, 6e14),
-        (1, 6.6335e-26, 0.03, 3, 1e15),
-        (-10000, 1e-15, 0.03, 3, 4e10),
-    ]
-    for s, (z, m, t, gamma, n) in enumerate(species):
-        values |= {f"q_{s}": z * e, f"m_{s}": m, f"T_{s}": t * e, f"gamma_{s}": gamma, f"n_{s}0": n}
-    return values
 
 
 class Case:

@@ -55,3 +55,16 @@ def numbers(count, *, drift=False, friction=False, cold=False):
         speeds[0], speeds[1] = 3e6, 3e6 / (shares[1] * species[1][0])
         values |= {f"u_{s}": u for s, u in enumerate(speeds)}
     return values
+
+
+def dusty_numbers():
+    """Electrons, ions and heavy grains with 10,000 charges each; invented."""
+    e, values = plin.constants.e, {"B_0": 0.01}
+    species = [
+        (-1, plin.constants.m_e, 3.0, 1, 6e14),
+        (1, 6.6335e-26, 0.03, 3, 1e15),
+        (-10000, 1e-15, 0.03, 3, 4e10),
+    ]
+    for s, (z, m, t, gamma, n) in enumerate(species):
+        values |= {f"q_{s}": z * e, f"m_{s}": m, f"T_{s}": t * e, f"gamma_{s}": gamma, f"n_{s}0": n}
+    return values

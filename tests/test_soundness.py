@@ -183,3 +183,27 @@ def test_equal_and_close_roots_together():
     terms = product([line(a, ZERO), line(a, ZERO), line((a[0] + F(1, 10**90), F(0)), ZERO)])
     found = complex_roots([terms[n, 0] for n in range(4)], 25)
     assert sorted(m for *_, m in found) == [1, 2]
+
+
+def test_numpy_rounds_as_the_proof_assumes():
+    """Complex product, quotient and size, and hypot, on parts of like and of very unlike size."""
+    random = np.random.default_rng(3)
+    parts = random.normal(size=(4, 1500)) * 2.0 ** random.integers(-30, 30, (4, 1500))
+    x, y = parts[0] + 1j * parts[1], parts[2] + 1j * parts[3]
+    y[:700] = x[:700].conj() * (1 + 1e-15 * random.normal(size=700))
+    square = 2.0**-106
+    for a, b, p, q, s, h in zip(
+        x, y, x * y, x / y, np.abs(x), np.hypot(x.real, x.imag), strict=True
+    ):
+        (ar, ai), (br, bi) = ((F(z.real), F(z.imag)) for z in (a, b))
+        size_a, size_b = ar**2 + ai**2, br**2 + bi**2
+        true = ar * br - ai * bi, ar * bi + ai * br
+        assert off(p, *true) <= 5 * square * size_a * size_b
+        true = (ar * br + ai * bi) / size_b, (ai * br - ar * bi) / size_b
+        assert off(q, *true) <= 49 * square * size_a / size_b
+        assert (1 - 3 * 2.0**-53) ** 2 <= F(s) ** 2 / size_a <= (1 + 3 * 2.0**-53) ** 2
+        assert (1 - 2 * 2.0**-53) ** 2 <= F(h) ** 2 / size_a <= (1 + 2 * 2.0**-53) ** 2
+
+
+def off(z, re, im):
+    return (F(z.real) - re) ** 2 + (F(z.imag) - im) ** 2

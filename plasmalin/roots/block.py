@@ -25,6 +25,8 @@ WORK = 24576
 """Numbers in one work array: enough to outweigh the cost of a call, few enough to stay near in cache."""
 COLD = 256
 """Points solved from nothing at a time."""
+TERMS = 2**21
+"""Terms times points at a time, which bounds the memory of polynomials with very many terms."""
 
 
 @np.errstate(all="ignore")
@@ -66,7 +68,8 @@ def _sheets(near: Scaled, degree: int, dense: bool) -> Iterator[tuple[NDArray[np
         yield path.order[carrier.nodes], carrier.sheet
         rest.clear()
         between = np.delete(np.arange(points), carrier.nodes)
-        for chosen in _batches(between, max(64, WORK // degree)):
+        size = max(64, min(WORK // degree, TERMS // len(near.terms.high)))
+        for chosen in _batches(between, size):
             sheet = proven(coefficients(ordered, degree, chosen), carrier.starts(chosen), rough)
             known = sheet.real != UNKNOWN
             rest.append(chosen[~known])

@@ -339,3 +339,17 @@ def test_coarse_and_scattered_points():
         found = enclose(polynomial, grid, points=300)
         assert (found.status == "certified").all()
         check(polynomial, grid, found, range(0, 300, 37))
+
+
+@pytest.mark.parametrize("friction", [0, sp.I / 9])
+def test_scattered_points_with_any_number_of_real_roots(friction):
+    """Two streams: real roots at some points, growth at others; neighbors have other kinds of roots."""
+    expression = OMEGA**2 * (OMEGA - K + friction) ** 2 - (OMEGA - K) ** 2 - Q * OMEGA**2
+    polynomial, random = family(expression, K, Q), np.random.default_rng(2)
+    grid = plain(random.uniform(0.2, 4, 900), random.uniform(0.01, 1, 900))
+    found = enclose(polynomial, grid, points=900)
+    assert (found.status == "certified").all()
+    assert (found.radius <= 1e-15 * np.abs(found.omega)).all()
+    if not friction:
+        assert len(np.unique((found.omega.imag == 0).sum(axis=1))) > 1
+    check(polynomial, grid, found, range(0, 900, 60))

@@ -10,9 +10,9 @@ from numpy.typing import NDArray
 from .carry import Carrier
 from .coefficients import coefficients
 from .omega import in_omega
-from .path import Columns, Path, path_of
+from .path import Columns, Path, nearest, path_of
 from .scaling import Scaled, Table, scaled
-from .sheets import UNKNOWN, Sheet, from_nothing, proven
+from .sheets import UNKNOWN, Sheet, from_nothing, from_similar, proven
 from .solved import Solved, Status
 
 NEAR, FAR = 0.02, 0.8
@@ -24,7 +24,7 @@ ALONE = 48
 WORK = 24576
 """Numbers in one work array: enough to outweigh the cost of a call, few enough to stay near in cache."""
 COLD = 256
-"""Points solved from nothing at a time."""
+"""So many points at most are solved from nothing; more of them start from these."""
 TERMS = 2**21
 """Terms times points at a time, which bounds the memory of polynomials with very many terms."""
 
@@ -56,6 +56,7 @@ def _sheets(near: Scaled, degree: int, dense: bool) -> Iterator[tuple[NDArray[np
     runs across.
     """
     points = len(near.columns[0][0])
+    size = max(64, min(WORK // degree, TERMS // len(near.terms.high)))
     path = path_of(near.columns)
     ordered = near.along(path)
     stride = path.stride(NEAR) if dense else 1
@@ -68,7 +69,6 @@ def _sheets(near: Scaled, degree: int, dense: bool) -> Iterator[tuple[NDArray[np
         yield path.order[carrier.nodes], carrier.sheet
         rest.clear()
         between = np.delete(np.arange(points), carrier.nodes)
-        size = max(64, min(WORK // degree, TERMS // len(near.terms.high)))
         for chosen in _batches(between, size):
             sheet = proven(coefficients(ordered, degree, chosen), carrier.starts(chosen), rough)
             known = sheet.real != UNKNOWN
@@ -77,8 +77,28 @@ def _sheets(near: Scaled, degree: int, dense: bool) -> Iterator[tuple[NDArray[np
                 yield path.order[chosen], sheet
             else:
                 yield path.order[chosen[known]], sheet.at(known)
-    for chosen in _batches(np.concatenate(rest), COLD):
-        yield path.order[chosen], from_nothing(coefficients(ordered, degree, chosen))
+    left = np.concatenate(rest)
+    if len(left):
+        for chosen, sheet in _scattered(ordered, degree, left, size):
+            yield path.order[chosen], sheet
+
+
+def _scattered(
+    near: Scaled, degree: int, points: NDArray[np.int64], size: int
+) -> Iterator[tuple[NDArray[np.int64], Sheet]]:
+    """Some points from nothing, the others from the roots of the nearest of these."""
+    every = -(-len(points) // COLD)
+    seeds = points[::every]
+    solved = from_nothing(coefficients(near, degree, seeds))
+    yield seeds, solved
+    known = np.flatnonzero(solved.real != UNKNOWN)
+    for chosen in _batches(np.delete(points, slice(None, None, every)), size):
+        c = coefficients(near, degree, chosen)
+        if len(known):
+            beside = known[nearest(near.columns, chosen, seeds[known])]
+            yield chosen, from_similar(c, solved.at(beside))
+        else:
+            yield chosen, from_nothing(c)
 
 
 def _batches(points: NDArray[np.int64], size: int) -> Iterator[NDArray[np.int64]]:

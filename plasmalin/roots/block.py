@@ -24,7 +24,7 @@ ALONE = 48
 WORK = 24576
 """Numbers in one work array: enough to outweigh the cost of a call, few enough to stay near in cache."""
 COLD = 256
-"""So many points at most are solved from nothing; more of them start from these."""
+"""So many points at least are solved from nothing before others start from these."""
 TERMS = 2**21
 """Terms times points at a time, which bounds the memory of polynomials with very many terms."""
 
@@ -38,8 +38,10 @@ def solve_block(table: Table, columns: Columns, points: NDArray[np.int64], made:
     """
     near = scaled(table, columns)
     if near is not None:
-        for chosen, sheet in _sheets(near, table.degree, True):
-            made.put(points[chosen], in_omega(sheet, table.structure, near.unknown))
+        sheet = _sheet(near, table.degree, True)
+        for chosen in _batches(np.arange(len(points)), WORK // table.degree):
+            part = sheet.at(slice(int(chosen[0]), int(chosen[-1]) + 1))
+            made.put(points[chosen], in_omega(part, table.structure, near.unknown))
     elif len(points) == 1:
         made.state[points] = Status.NOT_CERTIFIED
     else:
@@ -49,8 +51,8 @@ def solve_block(table: Table, columns: Columns, points: NDArray[np.int64], made:
             solve_block(table, half, points[part], made)
 
 
-def _sheets(near: Scaled, degree: int, dense: bool) -> Iterator[tuple[NDArray[np.int64], Sheet]]:
-    """Batch by batch the points and their roots; what cannot be carried comes again at the end, from nothing.
+def _sheet(near: Scaled, degree: int, dense: bool) -> Sheet:
+    """The roots at all points; those that cannot be carried along the path are solved at the end.
 
     The nodes of the path are solved the same way, along a path of their own: on a grid of two quantities that one
     runs across.
@@ -58,55 +60,49 @@ def _sheets(near: Scaled, degree: int, dense: bool) -> Iterator[tuple[NDArray[np
     points = len(near.columns[0][0])
     size = max(64, min(WORK // degree, TERMS // len(near.terms.high)))
     path = path_of(near.columns)
-    ordered = near.along(path)
+    ordered, made = near.along(path), Sheet.unknown(degree, points)
     stride = path.stride(NEAR) if dense else 1
     rough = stride < DENSE
     if rough:
         stride = path.stride(FAR)
-    rest = [np.arange(points)]
+    left = np.arange(points)
     if stride > 1 and points > ALONE:
-        carrier = _carrier(ordered, path, path.nodes(stride), degree)
-        yield path.order[carrier.nodes], carrier.sheet
-        rest.clear()
-        between = np.delete(np.arange(points), carrier.nodes)
-        for chosen in _batches(between, size):
-            sheet = proven(coefficients(ordered, degree, chosen), carrier.starts(chosen), rough)
-            known = sheet.real != UNKNOWN
-            rest.append(chosen[~known])
-            if known.all():
-                yield path.order[chosen], sheet
-            else:
-                yield path.order[chosen[known]], sheet.at(known)
-    left = np.concatenate(rest)
+        nodes = path.nodes(stride)
+        sheet = _sheet(ordered.at(nodes), degree, False)
+        made.copy_from(sheet, path.order[nodes])
+        carrier = Carrier.of(ordered, path, nodes, sheet)
+        for chosen in _batches(np.delete(left, nodes), size):
+            c = coefficients(ordered, degree, chosen)
+            made.copy_from(proven(c, carrier.starts(chosen), rough), path.order[chosen])
+        left = np.flatnonzero(made.real[path.order] == UNKNOWN)
     if len(left):
-        for chosen, sheet in _scattered(ordered, degree, left, size):
-            yield path.order[chosen], sheet
+        _scattered(ordered, degree, left, path.order, made, size)
+    return made
 
 
 def _scattered(
-    near: Scaled, degree: int, points: NDArray[np.int64], size: int
-) -> Iterator[tuple[NDArray[np.int64], Sheet]]:
+    near: Scaled,
+    degree: int,
+    points: NDArray[np.int64],
+    places: NDArray[np.int64],
+    made: Sheet,
+    size: int,
+) -> None:
     """Some points from nothing, the others from the roots of the nearest of these."""
-    every = -(-len(points) // COLD)
+    every = max(len(points) // COLD, 1)
     seeds = points[::every]
     solved = from_nothing(coefficients(near, degree, seeds))
-    yield seeds, solved
+    made.copy_from(solved, places[seeds])
     known = np.flatnonzero(solved.real != UNKNOWN)
     for chosen in _batches(np.delete(points, slice(None, None, every)), size):
         c = coefficients(near, degree, chosen)
         if len(known):
             beside = known[nearest(near.columns, chosen, seeds[known])]
-            yield chosen, from_similar(c, solved.at(beside))
+            found = from_similar(c, solved.at(beside))
         else:
-            yield chosen, from_nothing(c)
+            found = from_nothing(c)
+        made.copy_from(found, places[chosen])
 
 
 def _batches(points: NDArray[np.int64], size: int) -> Iterator[NDArray[np.int64]]:
     return (points[first : first + size] for first in range(0, len(points), size))
-
-
-def _carrier(ordered: Scaled, path: Path, nodes: NDArray[np.int64], degree: int) -> Carrier:
-    sheet = Sheet.unknown(degree, len(nodes))
-    for chosen, part in _sheets(ordered.at(nodes), degree, False):
-        sheet.copy_from(part, chosen)
-    return Carrier.of(ordered, path, nodes, sheet)

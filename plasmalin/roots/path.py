@@ -12,8 +12,8 @@ from numpy.typing import NDArray
 Columns: TypeAlias = list[tuple[NDArray[np.float64], NDArray[np.float64]]]
 """Real swept quantities over the points, high and low part."""
 
-FARTHEST = 64
-"""Points from node to node at most."""
+FARTHEST, FEWEST = 64, 32
+"""Points from node to node at most; intervals between nodes at least."""
 SMALL = 2.0**-100
 
 
@@ -43,7 +43,8 @@ class Path:
 
     def stride(self, far: float) -> int:
         """How many points lie within a factor exp(far) of all quantities, as a power of two."""
-        within = far / self._step if self._step * FARTHEST > far else FARTHEST
+        most = min(FARTHEST, len(self.order) / FEWEST)
+        within = far / self._step if self._step * most > far else most
         return int(2 ** np.floor(np.log2(max(within, 1.0))))
 
     @cached_property

@@ -10,7 +10,7 @@ from numpy.typing import NDArray
 from .carry import Carrier
 from .coefficients import coefficients
 from .omega import in_omega
-from .path import Columns, Path, nearest, path_of
+from .path import Columns, nearest, path_of
 from .scaling import Scaled, Table, scaled
 from .sheets import UNKNOWN, Sheet, from_nothing, from_similar, proven
 from .solved import Solved, Status
@@ -21,7 +21,7 @@ DENSE = 4
 """Points from node to node that make near nodes worth while."""
 ALONE = 48
 """So few points are solved from nothing."""
-WORK = 24576
+WORK = 49152
 """Numbers in one work array: enough to outweigh the cost of a call, few enough to stay near in cache."""
 COLD = 256
 """So many points at least are solved from nothing before others start from these."""
@@ -30,25 +30,27 @@ TERMS = 2**21
 
 
 @np.errstate(all="ignore")
-def solve_block(table: Table, columns: Columns, points: NDArray[np.int64], made: Solved) -> None:
-    """All roots at all points of the columns, put where `points` says; NOT_CERTIFIED where nothing is proven.
+def solve_block(table: Table, columns: Columns) -> Solved:
+    """All roots at all points of the columns; NOT_CERTIFIED where nothing is proven.
 
     Points that span too much for one scale are halved. Numbers that overflow on the way prove nothing, so
     floating-point warnings are off.
     """
-    near = scaled(table, columns)
+    points = len(columns[0][0])
+    made, near = Solved.empty(points, table.roots), scaled(table, columns)
     if near is not None:
         sheet = _sheet(near, table.degree, True)
-        for chosen in _batches(np.arange(len(points)), WORK // table.degree):
-            part = sheet.at(slice(int(chosen[0]), int(chosen[-1]) + 1))
-            made.put(points[chosen], in_omega(part, table.structure, near.unknown))
-    elif len(points) == 1:
-        made.state[points] = Status.NOT_CERTIFIED
+        size = max(64, WORK // table.degree)
+        for first in range(0, points, size):
+            here = slice(first, first + size)
+            in_omega(sheet.at(here), table.structure, near.unknown, made.at(here))
+    elif points == 1:
+        made.state[:] = Status.NOT_CERTIFIED
     else:
-        order, middle = path_of(columns).order, len(points) // 2
-        for part in (order[:middle], order[middle:]):
-            half = [(hi[part], lo[part]) for hi, lo in columns]
-            solve_block(table, half, points[part], made)
+        order, middle = path_of(columns).order, points // 2
+        for half in (order[:middle], order[middle:]):
+            made.put(half, solve_block(table, [(hi[half], lo[half]) for hi, lo in columns]))
+    return made
 
 
 def _sheet(near: Scaled, degree: int, dense: bool) -> Sheet:

@@ -139,7 +139,11 @@ def _block(task: tuple[Family, Table, Grid]) -> list[NDArray[Any]]:
     made.mask(np.flatnonzero(~usable))
     if len(points) >= FEW:
         columns = columns_of([(hi[points], lo[points]) for hi, lo in grid])
-        solve_block(table, columns, points, made)
+        found = solve_block(table, columns)
+        if len(points) == size:
+            made = found
+        else:
+            made.put(points, found)
         left = made.state == Status.NOT_CERTIFIED
         points = np.flatnonzero(left.any(axis=1)) if left.any() else points[:0]
     if len(points):

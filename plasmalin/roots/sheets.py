@@ -71,7 +71,7 @@ class Sheet:
         """The numbers of real roots that occur."""
         return [int(n) for n in np.flatnonzero(np.bincount(self.real - UNKNOWN)[1:])]
 
-    def at(self, points: NDArray[Any]) -> Sheet:
+    def at(self, points: NDArray[Any] | slice) -> Sheet:
         return Sheet(
             self.re[:, points], self.im[:, points], self.radius[:, points], self.real[points]
         )

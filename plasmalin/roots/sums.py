@@ -100,6 +100,11 @@ class Plan:
         return [gcd(*self.exponents[:, i].tolist()) or 1 for i in self.used]
 
     @cached_property
+    def largest(self) -> list[int]:
+        """Their largest powers."""
+        return [int(self.exponents[:, i].max()) for i in self.used]
+
+    @cached_property
     def parts(self) -> list[Part]:
         """All terms, sorted by their monomials."""
         powers = self.exponents[:, self.used] // np.array(self.steps)
@@ -124,8 +129,7 @@ class Plan:
         return total
 
     def _add(self, terms: Terms, run: Runs, columns: Columns, total: Terms) -> None:
-        largest = [int(self.exponents[:, i].max()) for i in self.used]
-        powers = [_powers(*each) for each in zip(columns, self.steps, largest, strict=True)]
+        powers = [_powers(*each) for each in zip(columns, self.steps, self.largest, strict=True)]
         for n, part in enumerate(self.parts):
             found = _sums(part, terms.at(part.terms), run, _monomials(part.chain, powers))
             more = _merged(total.at(part.sums), found) if n else found
@@ -199,7 +203,7 @@ def _sums(part: Part, terms: Terms, run: Runs, monomials: list[Array]) -> Terms:
         for kind, out in zip(terms, space[:3], strict=True):
             out[...] = kind[here] if run is None else kind[here].take(run, axis=1)
         for kind, out in zip(monomials, space[3:7], strict=True):
-            np.take(kind, which, axis=0, out=out, mode="clip")
+            kind.take(which, axis=0, out=out, mode="clip")
         _multiply(space)
         if done:
             _one_more(Terms(*(kind[rows] for kind in sums)), space)

@@ -12,18 +12,18 @@ from hypothesis import strategies as st
 from scipy.optimize import linear_sum_assignment
 
 from plasmalin.errors import ValuesError
+from plasmalin.roots.coefficients import coefficients
 from plasmalin.roots.discs import Guess, discs
 from plasmalin.roots.doubledouble import (
     UNIT,
     complex_horner,
     complex_noise,
     horner,
-    pair_noise,
     real_noise,
 )
 from plasmalin.roots.enclose import BLOCK, enclose, merge
 from plasmalin.roots.family import Family
-from plasmalin.roots.scaling import structure_of, table_of
+from plasmalin.roots.scaling import Scaled, Structure, Table, scaled, structure_of, table_of
 
 OMEGA, K, Q = sp.symbols("omega k q")
 
@@ -257,17 +257,12 @@ def test_horner_keeps_its_bounds(coefficients, x, y):
     steps = len(coefficients) - 1
     pairs = [(c, c * 2.0**-54) for c, _ in coefficients]
     imag = [(c, c * 2.0**-55) for _, c in coefficients]
-    low = x * 2.0**-54
-    real = horner(pairs, np.array([x]), (1,))
-    two = horner(pairs, np.array([x]), (1,), np.array([low]))
-    for got, at, noise in (
-        (real, F(x), real_noise(steps)),
-        (two, F(x) + F(low), pair_noise(steps)),
-    ):
-        true = size = F(0)
-        for h, lo in pairs:
-            true, size = true * at + F(h) + F(lo), size * abs(at) + abs(F(h))
-        assert abs(F(float(got[0][0])) + F(float(got[1][0])) - true) <= F(UNIT) ** 2 * noise * size
+    got = horner(pairs, np.array([x]))
+    true = size = F(0)
+    for h, lo in pairs:
+        true, size = true * F(x) + F(h) + F(lo), size * abs(F(x)) + abs(F(h))
+    error = abs(F(float(got[0][0])) + F(float(got[1][0])) - true)
+    assert error <= F(UNIT) ** 2 * real_noise(steps) * size
     re, im = complex_horner(pairs, imag, np.array([complex(x, y)]))
     true_re = true_im = F(0)
     size, magnitude = 0.0, abs(complex(x, y))
@@ -291,9 +286,6 @@ def test_discs_about_disturbed_roots_hold_the_roots(roots, digits):
     expression = sp.Mul(*(OMEGA - sp.Rational(F(a)) - sp.I * sp.Rational(F(b)) for a, b in roots))
     polynomial = family(expression, K)
     table = table_of(polynomial, plain(np.ones(1)))
-    from plasmalin.roots.coefficients import coefficients
-    from plasmalin.roots.scaling import scaled
-
     near = scaled(table, [(np.ones(1), np.zeros(1))])
     c = coefficients(near, table.degree, slice(None))
     z = np.array([complex(a, b) for a, b in roots]) * 2.0**-near.unknown
@@ -306,18 +298,36 @@ def test_discs_about_disturbed_roots_hold_the_roots(roots, digits):
         assert np.array_equal(inside.sum(axis=1), np.ones(len(z)))
 
 
-@given(st.integers(0, 2**32 - 1))
-def test_rows_that_are_not_reached_yet_change_nothing(seed):
-    """Horner steps over the rows that hold something so far give the same bits as over all rows."""
-    random = np.random.default_rng(seed)
-    starts = np.sort(random.integers(0, 5, 4))[::-1]
-    table = random.normal(size=(4, 6, 3)) * (np.arange(6)[:, None] >= starts[:, None, None])
-    x, x_low = random.normal(size=3), 1e-17 * random.normal(size=3)
-    reached = [slice(int(s), 6) for s in starts]
-    parts = [(level[rows], 1e-17 * level[rows]) for level, rows in zip(table, reached, strict=True)]
-    whole = horner([(level, 1e-17 * level) for level in table], x, (6, 3), x_low)
-    found = horner(parts, x, (6, 3), x_low, reached)
-    assert all(np.array_equal(a, b) for a, b in zip(whole, found, strict=True))
+EXPONENTS = st.lists(
+    st.tuples(*[st.integers(0, 7)] * 3, st.integers(0, 4)), min_size=1, max_size=150, unique=True
+)
+
+
+@settings(max_examples=30, deadline=None)
+@given(EXPONENTS, st.integers(0, 2**32 - 1), st.integers(0, 2))
+def test_sums_keep_their_bound(rows, seed, slow):
+    """The bound of docs/certificate.md, section 4, against exact rationals; with and without runs of points."""
+    random, places = np.random.default_rng(seed), np.array(rows)
+    numbers = [random.normal(size=len(rows)) * 4.0 ** random.integers(-5, 5, len(rows))]
+    numbers.append(numbers[0] * 2.0**-54)
+    columns = [(x := np.repeat(random.normal(size=3), 2), x * 2.0**-54) for _ in range(slow)]
+    columns += [(x := random.normal(size=6), x * 2.0**-54) for _ in range(3 - slow)]
+    table = np.zeros((2, len(rows), 5))
+    table[:, np.arange(len(rows)), places[:, 3]] = numbers
+    structure = Structure(0, 1, False, True)
+    shown = Table(structure, 4, places[:, :3], *table, np.zeros(table[0].shape, np.int64))
+    c = coefficients(Scaled(shown, (0, 1, 2), *table, columns, 0), 4, slice(None))
+    for point in range(6):
+        x = [F(hi[point]) + F(lo[point]) for hi, lo in columns]
+        true, size = [F(0)] * 5, [F(0)] * 5
+        for (*e, j), high, low in zip(rows, *numbers, strict=True):
+            monomial = x[0] ** e[0] * x[1] ** e[1] * x[2] ** e[2]
+            true[j] += (F(high) + F(low)) * monomial
+            size[j] += abs(F(high) * monomial)
+        for j in range(5):
+            found = F(c.high[j, point]) + F(c.low[j, point])
+            assert abs(found - true[j]) <= c.noise * F(UNIT) ** 2 * size[j]
+            assert abs(F(c.size[j, point]) - size[j]) <= size[j] / 2**40
 
 
 def test_coarse_and_scattered_points():
@@ -339,3 +349,17 @@ def test_pairs_of_points_that_jump_from_each_other():
     made = enclose(found, plain(np.repeat(pairs, 2), falling), points=120)
     assert (made.status == "certified").all()
     assert np.abs(made.omega.sum(axis=1)).max() < 1e-15  # no square term
+
+
+@pytest.mark.parametrize("friction", [0, sp.I / 9])
+def test_scattered_points_with_any_number_of_real_roots(friction):
+    """Two streams: real roots at some points, growth at others; neighbors have other kinds of roots."""
+    expression = OMEGA**2 * (OMEGA - K + friction) ** 2 - (OMEGA - K) ** 2 - Q * OMEGA**2
+    polynomial, random = family(expression, K, Q), np.random.default_rng(2)
+    grid = plain(random.uniform(0.2, 4, 900), random.uniform(0.01, 1, 900))
+    found = enclose(polynomial, grid, points=900)
+    assert (found.status == "certified").all()
+    assert (found.radius <= 1e-15 * np.abs(found.omega)).all()
+    if not friction:
+        assert len(np.unique((found.omega.imag == 0).sum(axis=1))) > 1
+    check(polynomial, grid, found, range(0, 900, 60))

@@ -10,9 +10,9 @@ from numpy.typing import NDArray
 from .carry import Carrier
 from .coefficients import coefficients
 from .omega import in_omega
-from .path import Columns, Path, path_of
+from .path import Columns, nearest, path_of
 from .scaling import Scaled, Table, scaled
-from .sheets import UNKNOWN, Sheet, from_nothing, proven
+from .sheets import UNKNOWN, Sheet, from_nothing, from_similar, proven
 from .solved import Solved, Status
 
 NEAR, FAR = 0.02, 0.8
@@ -21,70 +21,89 @@ DENSE = 4
 """Points from node to node that make near nodes worth while."""
 ALONE = 48
 """So few points are solved from nothing."""
-WORK = 24576
+WORK = 49152
 """Numbers in one work array: enough to outweigh the cost of a call, few enough to stay near in cache."""
 COLD = 256
-"""Points solved from nothing at a time."""
+"""So many points at least are solved from nothing before others start from these."""
+TERMS = 2**21
+"""Terms times points at a time, which bounds the memory of polynomials with very many terms."""
 
 
 @np.errstate(all="ignore")
-def solve_block(table: Table, columns: Columns, points: NDArray[np.int64], made: Solved) -> None:
-    """All roots at all points of the columns, put where `points` says; NOT_CERTIFIED where nothing is proven.
+def solve_block(table: Table, columns: Columns) -> Solved:
+    """All roots at all points of the columns; NOT_CERTIFIED where nothing is proven.
 
     Points that span too much for one scale are halved. Numbers that overflow on the way prove nothing, so
     floating-point warnings are off.
     """
-    near = scaled(table, columns)
+    points = len(columns[0][0])
+    made, near = Solved.empty(points, table.roots), scaled(table, columns)
     if near is not None:
-        for chosen, sheet in _sheets(near, table.degree, True):
-            made.put(points[chosen], in_omega(sheet, table.structure, near.unknown))
-    elif len(points) == 1:
-        made.state[points] = Status.NOT_CERTIFIED
+        sheet = _sheet(near, table.degree, True)
+        size = max(64, WORK // table.degree)
+        for first in range(0, points, size):
+            here = slice(first, first + size)
+            in_omega(sheet.at(here), table.structure, near.unknown, made.at(here))
+    elif points == 1:
+        made.state[:] = Status.NOT_CERTIFIED
     else:
-        order, middle = path_of(columns).order, len(points) // 2
-        for part in (order[:middle], order[middle:]):
-            half = [(hi[part], lo[part]) for hi, lo in columns]
-            solve_block(table, half, points[part], made)
+        order, middle = path_of(columns).order, points // 2
+        for half in (order[:middle], order[middle:]):
+            made.put(half, solve_block(table, [(hi[half], lo[half]) for hi, lo in columns]))
+    return made
 
 
-def _sheets(near: Scaled, degree: int, dense: bool) -> Iterator[tuple[NDArray[np.int64], Sheet]]:
-    """Batch by batch the points and their roots; what cannot be carried comes again at the end, from nothing.
+def _sheet(near: Scaled, degree: int, dense: bool) -> Sheet:
+    """The roots at all points; those that cannot be carried along the path are solved at the end.
 
     The nodes of the path are solved the same way, along a path of their own: on a grid of two quantities that one
     runs across.
     """
     points = len(near.columns[0][0])
+    size = max(64, min(WORK // degree, TERMS // len(near.terms.high)))
     path = path_of(near.columns)
-    ordered = near.along(path)
+    ordered, made = near.along(path), Sheet.unknown(degree, points)
     stride = path.stride(NEAR) if dense else 1
     rough = stride < DENSE
     if rough:
         stride = path.stride(FAR)
-    rest = [np.arange(points)]
-    nodes = path.nodes(stride)
+    left, nodes = np.arange(points), path.nodes(stride)
     if points > ALONE and 2 * len(nodes) <= points:  # jumps everywhere leave nothing between nodes
-        carrier = _carrier(ordered, path, nodes, degree)
-        yield path.order[carrier.nodes], carrier.sheet
-        rest.clear()
-        between = np.delete(np.arange(points), carrier.nodes)
-        for chosen in _batches(between, max(64, WORK // degree)):
-            sheet = proven(coefficients(ordered, degree, chosen), carrier.starts(chosen), rough)
-            known = sheet.real != UNKNOWN
-            rest.append(chosen[~known])
-            if known.all():
-                yield path.order[chosen], sheet
-            else:
-                yield path.order[chosen[known]], sheet.at(known)
-    for chosen in _batches(np.concatenate(rest), COLD):
-        yield path.order[chosen], from_nothing(coefficients(ordered, degree, chosen))
+        sheet = _sheet(ordered.at(nodes), degree, False)
+        made.copy_from(sheet, path.order[nodes])
+        carrier = Carrier.of(ordered, path, nodes, sheet)
+        for chosen in _batches(np.delete(left, nodes), size):
+            c = coefficients(ordered, degree, chosen)
+            made.copy_from(proven(c, carrier.starts(chosen), rough), path.order[chosen])
+        left = np.flatnonzero(made.real[path.order] == UNKNOWN)
+    if len(left):
+        _scattered(ordered, degree, left, path.order, made, size)
+    return made
+
+
+def _scattered(
+    near: Scaled,
+    degree: int,
+    points: NDArray[np.int64],
+    places: NDArray[np.int64],
+    made: Sheet,
+    size: int,
+) -> None:
+    """Some points from nothing, the others from the roots of the nearest of these."""
+    every = max(len(points) // COLD, 1)
+    seeds = points[::every]
+    solved = from_nothing(coefficients(near, degree, seeds))
+    made.copy_from(solved, places[seeds])
+    known = np.flatnonzero(solved.real != UNKNOWN)
+    for chosen in _batches(np.delete(points, slice(None, None, every)), size):
+        c = coefficients(near, degree, chosen)
+        if len(known):
+            beside = known[nearest(near.columns, chosen, seeds[known])]
+            found = from_similar(c, solved.at(beside))
+        else:
+            found = from_nothing(c)
+        made.copy_from(found, places[chosen])
 
 
 def _batches(points: NDArray[np.int64], size: int) -> Iterator[NDArray[np.int64]]:
     return (points[first : first + size] for first in range(0, len(points), size))
-
-
-def _carrier(ordered: Scaled, path: Path, nodes: NDArray[np.int64], degree: int) -> Carrier:
-    sheet = Sheet.unknown(degree, len(nodes))
-    for chosen, part in _sheets(ordered.at(nodes), degree, False):
-        sheet.copy_from(part, chosen)
-    return Carrier.of(ordered, path, nodes, sheet)

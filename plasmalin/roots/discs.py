@@ -209,7 +209,7 @@ def _smallest(a: Array) -> Array:
 def _real_values(c: Coefficients, x: Array) -> tuple[Array, Array, NDArray[np.bool_]]:
     if not len(x):
         return x, x, np.ones(x.shape[1], bool)
-    value = np.add(*horner(c.real_pairs(), x, x.shape))
+    value = np.add(*horner(c.real_pairs(), x))
     return value, *_error(c, np.abs(x), real_noise(c.degree))
 
 

@@ -3,7 +3,7 @@
 A step takes value*x + c with the rounding error of the product and of the sum recovered exactly (Dekker 1971, Numer.
 Math. 18, 224; Knuth, TAOCP vol. 2, 4.2.2). The errors travel along in a second array, as in the compensated Horner
 scheme (Graillat, Langlois and Louvet 2009, Japan J. Indust. Appl. Math. 26, 191; from memory). ``high + low`` at the
-end is as good as Horner in twice the precision; docs/certificate.md proves the bounds that `REAL` and `COMPLEX` state.
+end is as good as Horner in twice the precision; docs/certificate.md proves the bounds that the `noise` functions state.
 """
 
 from __future__ import annotations
@@ -25,13 +25,8 @@ LEADING = np.int64(-1 << 27)
 
 
 def real_noise(steps: int) -> int:
-    """Error of `horner` in units of UNIT^2 sum |c_j x^j|, for x a plain double."""
+    """Error of `horner` in units of UNIT^2 sum |c_j x^j|."""
     return 8 * steps**2 + 12 * steps + 6
-
-
-def pair_noise(steps: int) -> int:
-    """The same for x in high and low part."""
-    return 18 * steps**2 + 36 * steps + 8
 
 
 def complex_noise(steps: int) -> int:
@@ -53,17 +48,28 @@ def two_sum(a: Array, b: Array) -> tuple[Array, Array]:
     return total, (a - (total - virtual)) + (b - virtual)
 
 
+def quick_two_sum(a: Array, b: Array) -> tuple[Array, Array]:
+    """The same for |b| <= |a|."""
+    total = a + b
+    return total, b - (total - a)
+
+
 def two_product(a: Array, b: Array) -> tuple[Array, Array]:
     """The rounded product and its error, exactly."""
     product = a * b
-    (ah, al), (bh, bl) = split(a), split(b)
-    return product, ((ah * bh - product) + ah * bl + al * bh) + al * bl
+    high, rest = np.empty_like(a), np.empty_like(a)
+    error, work = np.empty_like(product), np.empty_like(product)
+    cut(a, high, rest)
+    product_error((high, rest), split(b), product, error, work)
+    return product, error
 
 
 def times(x: Pair, y: Pair) -> tuple[Array, Array]:
     """A product to a relative 8 UNIT^2."""
     product, error = two_product(x[0], y[0])
-    return two_sum(product, error + (x[0] * y[1] + x[1] * y[0]))
+    for a, b in ((x[0], y[1]), (x[1], y[0])):
+        error += a * b
+    return quick_two_sum(product, error)
 
 
 def plus(x: Pair, y: Pair) -> tuple[Any, Any]:
@@ -88,13 +94,13 @@ def power(x: Pair, n: int) -> tuple[Array, Array]:
     return result
 
 
-def _cut(value: Array, high: Array, rest: Array) -> None:
+def cut(value: Array, high: Array, rest: Array) -> None:
     """value = high + rest, 26 and 27 bits."""
     np.bitwise_and(value.view(np.int64), LEADING, out=high.view(np.int64))
     np.subtract(value, high, out=rest)
 
 
-def _product_error(
+def product_error(
     cut: tuple[Array, Array], x: tuple[Array, Array], product: Array, out: Array, work: Array
 ) -> None:
     """out = value * x - product; every partial sum is exact in this order."""
@@ -106,7 +112,7 @@ def _product_error(
         out += work
 
 
-def _sum_error(a: Array, b: Any, total: Array, out: Array, work: Array) -> None:
+def sum_error(a: Array, b: Any, total: Array, out: Array, work: Array) -> None:
     """out = (a + b) - total, exactly."""
     np.subtract(total, a, out=work)
     np.subtract(total, work, out=out)
@@ -115,46 +121,22 @@ def _sum_error(a: Array, b: Any, total: Array, out: Array, work: Array) -> None:
     out += work
 
 
-def horner(
-    coefficients: Sequence[Pair],
-    x: Array,
-    shape: tuple[int, ...],
-    x_low: Array | None = None,
-    reached: Sequence[slice] | None = None,
-) -> tuple[Array, Array]:
-    """sum_j c_j x^j, highest power first, coefficients and x broadcast to one shape.
-
-    Where many leading coefficients are zero, `reached` names the rows that a step has to take and the coefficients
-    hold these rows alone; every slice holds the one before, and the result is the same.
-    """
-    reached = reached or [slice(None)] * len(coefficients)
-    value, low = np.zeros(shape), np.zeros(shape)
-    work = [np.empty(shape) for _ in range(5)]
-    parts = [x, *split(x)] if x_low is None else [x, *split(x), x_low]
-    if x.shape != shape:
-        parts = [np.broadcast_to(part, shape) for part in parts]
-    value[reached[0]], low[reached[0]] = coefficients[0]
-    for rows, pair in zip(reached[1:], coefficients[1:], strict=True):
-        here = [part[rows] for part in parts]
-        _step(value[rows], low[rows], pair, here, [w[rows] for w in work])
+def horner(coefficients: Sequence[Pair], x: Array) -> tuple[Array, Array]:
+    """sum_j c_j x^j, highest power first, coefficients broadcast to the shape of x."""
+    value, low, product, error, work, high, rest = (np.empty(x.shape) for _ in range(7))
+    halves = split(x)
+    value[...], low[...] = coefficients[0]
+    for coefficient in coefficients[1:]:
+        np.multiply(value, x, out=product)
+        cut(value, high, rest)
+        product_error((high, rest), halves, product, error, work)
+        low *= x
+        low += error
+        np.add(product, coefficient[0], out=value)
+        sum_error(product, coefficient[0], value, error, work)
+        low += error
+        low += coefficient[1]
     return value, low
-
-
-def _step(value: Array, low: Array, coefficient: Pair, x: list[Array], space: list[Array]) -> None:
-    """value = value * x + coefficient, the errors in `low`; x with its halves and, if it has one, its low part."""
-    product, error, work, high, rest = space
-    np.multiply(value, x[0], out=product)
-    _cut(value, high, rest)
-    _product_error((high, rest), (x[1], x[2]), product, error, work)
-    low *= x[0]
-    low += error
-    if len(x) > 3:
-        np.multiply(value, x[3], out=work)
-        low += work
-    np.add(product, coefficient[0], out=value)
-    _sum_error(product, coefficient[0], value, error, work)
-    low += error
-    low += coefficient[1]
 
 
 def complex_horner(
@@ -181,17 +163,17 @@ def complex_horner(
     def product(cut: tuple[Array, Array], value: Array, factor: Array, out: Array) -> None:
         """out = value * factor; `error` what rounding took."""
         np.multiply(value, factor, out=out)
-        _product_error(cut, x_halves if factor is x else y_halves, out, error, work)
+        product_error(cut, x_halves if factor is x else y_halves, out, error, work)
 
     def add(a: Array, b: Any, out: Array, low: Array) -> None:
         np.add(a, b, out=out)
-        _sum_error(a, b, out, error, work)
+        sum_error(a, b, out, error, work)
         np.add(low, error, out=low)
 
     for j in range(1, len(real)):
         rotate_low()
-        _cut(re, re_high, re_rest)
-        _cut(im, im_high, im_rest)
+        cut(re, re_high, re_rest)
+        cut(im, im_high, im_rest)
         product((im_high, im_rest), im, y, first)
         np.subtract(re_low, error, out=re_low)
         np.negative(first, out=second)

@@ -92,8 +92,8 @@ class Way(Protocol):
     @property
     def words(self) -> str: ...
 
-    def prove(self, grid: Grid, points: NDArray[np.int64], made: Solved) -> None:
-        """The roots at all points, put where `points` says; NOT_CERTIFIED where nothing is proven."""
+    def prove(self, grid: Grid) -> Solved:
+        """The roots at all points; NOT_CERTIFIED where nothing is proven."""
 
 
 @dataclass(frozen=True)
@@ -104,8 +104,8 @@ class PolynomialWay:
     block: int = BLOCK
     words: str = "certified discs in twice the working precision"
 
-    def prove(self, grid: Grid, points: NDArray[np.int64], made: Solved) -> None:
-        solve_block(self.table, columns_of(grid), points, made)
+    def prove(self, grid: Grid) -> Solved:
+        return solve_block(self.table, columns_of(grid))
 
 
 def _way(family: Family | MatrixFamily, grid: Grid) -> Way:
@@ -180,7 +180,11 @@ def _block(task: tuple[Family | MatrixFamily, Way, Grid]) -> list[NDArray[Any]]:
     points = np.flatnonzero(usable)
     made.mask(np.flatnonzero(~usable))
     if len(points) >= FEW:
-        way.prove([(hi[points], lo[points]) for hi, lo in grid], points, made)
+        found = way.prove([(hi[points], lo[points]) for hi, lo in grid])
+        if len(points) == len(usable):
+            made = found
+        else:
+            made.put(points, found)
         left = made.state == Status.NOT_CERTIFIED
         points = np.flatnonzero(left.any(axis=1)) if left.any() else points[:0]
     if len(points):

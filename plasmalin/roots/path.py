@@ -12,8 +12,9 @@ from numpy.typing import NDArray
 Columns: TypeAlias = list[tuple[NDArray[np.float64], NDArray[np.float64]]]
 """Real swept quantities over the points, high and low part."""
 
-FARTHEST = 64
-"""Points from node to node at most."""
+FARTHEST, FEWEST = 64, 32
+"""Points from node to node at most; intervals between nodes at least."""
+SMALL = 2.0**-100
 
 
 @dataclass(frozen=True)
@@ -30,23 +31,26 @@ class Path:
         The quantity that grows along the path.
     breaks : ndarray of bool, shape (n,)
         Whether the path jumps before this point.
+    change : ndarray, shape (n - 1,)
+        How far the logarithm of any quantity moves from point to point, at most.
     """
 
     order: NDArray[np.int64]
     place: tuple[int, ...]
     s: NDArray[np.float64]
     breaks: NDArray[np.bool_]
+    change: NDArray[np.float64]
 
     def stride(self, far: float) -> int:
-        """How many points lie within a factor exp(far) of s, as a power of two."""
-        within = far / self._step if self._step * FARTHEST > far else FARTHEST
+        """How many points lie within a factor exp(far) of all quantities, as a power of two."""
+        most = min(FARTHEST, len(self.order) / FEWEST)
+        within = far / self._step if self._step * most > far else most
         return int(2 ** np.floor(np.log2(max(within, 1.0))))
 
     @cached_property
     def _step(self) -> float:
-        """The median of log s from point to point."""
-        steps = np.abs(np.diff(np.log(np.abs(self.s))))
-        steps = steps[np.isfinite(steps) & ~self.breaks[1:]]
+        """The median change from point to point."""
+        steps = self.change[np.isfinite(self.change) & ~self.breaks[1:]]
         return float(np.median(steps)) if len(steps) else 0.0
 
     def nodes(self, stride: int) -> NDArray[np.int64]:
@@ -75,4 +79,20 @@ def path_of(columns: Columns) -> Path:
             break
     breaks = np.zeros(points, bool)
     breaks[1:] = np.diff(s) < 0
-    return Path(order, place, s, breaks)
+    change = np.max([np.abs(np.diff(_logarithm(hi[order]))) for hi, _ in columns], axis=0)
+    return Path(order, place, s, breaks, change)
+
+
+def nearest(
+    columns: Columns, points: NDArray[np.int64], to: NDArray[np.int64]
+) -> NDArray[np.int64]:
+    """For every point the place in `to` of that among those which is nearest in all logarithms."""
+    square = np.zeros((len(points), len(to)))
+    for hi, _ in columns:
+        square += (_logarithm(hi[points])[:, None] - _logarithm(hi[to])) ** 2
+    return np.asarray(square.argmin(axis=1))
+
+
+def _logarithm(values: NDArray[np.float64]) -> NDArray[np.float64]:
+    """Of the size; scaled quantities are near 1, and much smaller ones are all alike."""
+    return np.asarray(np.log(np.maximum(np.abs(values), SMALL)))

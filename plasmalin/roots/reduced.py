@@ -48,16 +48,19 @@ class ReducedWay:
             "certified discs in twice the working precision"
         )
 
-    def prove(self, grid: Grid, points: NDArray[np.int64], made: Solved) -> None:
+    def prove(self, grid: Grid) -> Solved:
+        points = len(grid[0][0])
+        made = Solved.empty(points, self.family.degree)
         if self.standard is None:
-            made.state[points] = Status.NOT_CERTIFIED
-            return
-        whole = self.standard.entries(self.family.balls(grid), len(points))
+            made.state[:] = Status.NOT_CERTIFIED
+            return made
+        whole = self.standard.entries(self.family.balls(grid), points)
         is_real = not np.iscomplexobj(whole.high)
         structure = Structure(0, 1, self.family.turned, is_real)
-        for first in range(0, len(points), CHUNK):
+        for first in range(0, points, CHUNK):
             here = slice(first, first + CHUNK)
             sheet = eigen_sheet(
                 Ball(*(part[here] for part in whole)), self.standard.places, self.family.degree
             )
-            made.put(points[here], in_omega(sheet, structure, self.standard.unknown))
+            in_omega(sheet, structure, self.standard.unknown, made.at(here))
+        return made

@@ -9,7 +9,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass, replace
 from fractions import Fraction
-from functools import lru_cache
+from functools import cached_property, lru_cache
 from math import comb, gcd
 
 import numpy as np
@@ -17,13 +17,14 @@ from numpy.typing import NDArray
 
 from .family import Exact, Family, Grid, times_i
 from .path import Columns, Path
+from .sums import Plan, Terms
 
 SMALLEST, LARGEST = -900, 600
 """Exponents of two between which scaled coefficients must lie."""
 WIDEST, FARTHEST = 300, 900
 """The largest ones of a monomial of scaled quantities, and of the scale of the unknown."""
-STEPS = 2000
-"""Steps of all Horner schemes for the coefficients, below which their rounding is as docs/certificate.md counts it."""
+POWERS, TERMS = 2000, 2**16
+"""The degree and the number of monomials up to which rounding is as docs/certificate.md counts it."""
 
 
 @dataclass(frozen=True)
@@ -66,7 +67,7 @@ def _phase(c: Exact) -> int | None:
     return 0 if not c[1] else 1 if not c[0] else None
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Table:
     """The terms of a family as arrays: row t, column j is the term of unknown^j with the exponents t.
 
@@ -154,31 +155,58 @@ def in_binary(number: Fraction) -> tuple[float, float, int]:
     return high, rest / (below << 53), exponent
 
 
+@lru_cache(maxsize=64)
+def _plans(table: Table, place: tuple[int, ...], slow: int) -> tuple[Plan | None, Plan]:
+    """How to evaluate the table: in the first `slow` quantities (if any), then in the others."""
+    row, column = np.nonzero(table.high)
+    exponents = table.exponents[row][:, place]
+    if not slow:
+        return None, Plan(exponents, column, table.high.shape[1])
+    rest, sums = np.unique(np.c_[column, exponents[:, slow:]], axis=0, return_inverse=True)
+    inner = Plan(exponents[:, :slow], sums.reshape(-1), len(rest))
+    return inner, Plan(rest[:, 1:], rest[:, 0], table.high.shape[1])
+
+
 @dataclass(frozen=True)
 class Scaled:
     """A table and its swept quantities near 1, the unknown divided by 2^unknown.
 
     Attributes
     ----------
-    exponents : ndarray of int64, shape (terms, G)
+    table : Table
+    place : tuple of int
+        Which of its quantities comes where.
     high, low : ndarray, shape (terms, coefficients)
     columns : list of (high, low), the swept quantities
     unknown : int
     """
 
-    exponents: NDArray[np.int64]
+    table: Table
+    place: tuple[int, ...]
     high: NDArray[np.float64]
     low: NDArray[np.float64]
     columns: Columns
     unknown: int
 
+    @cached_property
+    def exponents(self) -> NDArray[np.int64]:
+        return self.table.exponents[:, self.place]
+
+    @cached_property
+    def terms(self) -> Terms:
+        """Those that are not zero."""
+        held = np.nonzero(self.table.high)
+        high, low = self.high[held][:, None], self.low[held][:, None]
+        return Terms(high, low, np.abs(high))
+
+    def plans(self, slow: int) -> tuple[Plan | None, Plan]:
+        """How to add them up, `slow` quantities first."""
+        return _plans(self.table, self.place, slow)
+
     def along(self, path: Path) -> Scaled:
         """The same with the points and the quantities in the order of the path."""
-        arranged = replace(
-            self,
-            exponents=self.exponents[:, path.place],
-            columns=[self.columns[i] for i in path.place],
-        )
+        place = tuple(self.place[i] for i in path.place)
+        arranged = replace(self, place=place, columns=[self.columns[i] for i in path.place])
         return arranged.at(path.order)
 
     def at(self, points: NDArray[np.int64]) -> Scaled:
@@ -201,10 +229,11 @@ def scaled(table: Table, columns: Columns) -> Scaled | None:
     binary = np.where(table.high != 0, binary + unknown * powers - sizes[0], 0)
     fits = binary.min() >= SMALLEST and binary.max() <= LARGEST and abs(unknown) <= FARTHEST
     highest = table.exponents.max(axis=0, initial=0)
-    if not fits or highest.sum() > STEPS or _span(highest, columns, shifts) > WIDEST:
+    fits = fits and highest.sum() <= POWERS and len(table.exponents) <= TERMS
+    if not fits or _span(highest, columns, shifts) > WIDEST:
         return None
     high, low = np.ldexp(table.high, binary), np.ldexp(table.low, binary)
-    return Scaled(table.exponents, high, low, near, unknown)
+    return Scaled(table, tuple(range(len(near))), high, low, near, unknown)
 
 
 def _middle(values: NDArray[np.float64]) -> int:

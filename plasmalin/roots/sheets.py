@@ -12,7 +12,7 @@ from .coefficients import Coefficients
 from .discs import Discs, Guess, discs
 from .doubledouble import Array
 from .settling import settled
-from .starts import cold_starts, eigenvalues
+from .starts import cold_starts, eigenvalues, similar_starts
 
 ATTEMPTS = 6
 PATIENCE = 3
@@ -71,7 +71,7 @@ class Sheet:
         """The numbers of real roots that occur."""
         return [int(n) for n in np.flatnonzero(np.bincount(self.real - UNKNOWN)[1:])]
 
-    def at(self, points: NDArray[np.bool_]) -> Sheet:
+    def at(self, points: NDArray[Any] | slice) -> Sheet:
         return Sheet(
             self.re[:, points], self.im[:, points], self.radius[:, points], self.real[points]
         )
@@ -96,32 +96,51 @@ def proven(c: Coefficients, start: Sheet, rough: bool = False) -> Sheet:
 
 def from_nothing(c: Coefficients) -> Sheet:
     """The same without starts: from eigenvalues where all are real, which is cheap, else from `cold_starts`."""
+    near = eigenvalues(c)
     if c.high_imag is not None:
-        return proven(c, _free(cold_starts(c)))
-    start = _canonical(_free(eigenvalues(c)))
+        return proven(c, _free(cold_starts(c, near)))
+    start = _canonical(_free(near))
     start.real[start.real < c.degree] = UNKNOWN
     made = proven(c, start, True)
-    for again in (_mirrored, _without_symmetry):
-        left = made.real == UNKNOWN
-        if left.any():
-            made.copy_from(again(c.at(left)), left)
+    left = made.real == UNKNOWN
+    if left.any():
+        made.copy_from(_from_cold(c.at(left), near[:, left]), left)
     return made
 
 
-def _free(z: NDArray[np.complex128]) -> Sheet:
+def from_similar(c: Coefficients, near: Sheet) -> Sheet:
+    """From the proven roots of similar polynomials; where that fails from nothing."""
+    made = Sheet.unknown(c.degree, c.points)
+    real = near.real == c.degree
+    for chosen, z in ((real, near.re), (~real, near.re + 1j * near.im)):
+        if chosen.any():
+            here = c.at(chosen)
+            start = _free(similar_starts(here, z[:, chosen]))
+            canonical = _canonical(start) if c.high_imag is None else start
+            made.copy_from(proven(here, canonical, True), chosen)
+    left = made.real == UNKNOWN
+    if left.any():
+        made.copy_from(from_nothing(c.at(left)), left)
+    return made
+
+
+def _free(z: NDArray[Any]) -> Sheet:
     return Sheet(z.real.copy(), z.imag.copy(), NEARLY_REAL * np.abs(z), np.zeros(z.shape[1], int))
 
 
-def _mirrored(c: Coefficients) -> Sheet:
-    """From cold starts, those that are nearly real taken as real."""
-    return proven(c, _canonical(_free(cold_starts(c))))
+def _from_cold(c: Coefficients, near: NDArray[np.complex128]) -> Sheet:
+    """From cold starts: those that are nearly real taken as real, then all as if the coefficients were complex.
 
-
-def _without_symmetry(c: Coefficients) -> Sheet:
-    """Proven as if the coefficients were complex first, which tells close real roots from a pair."""
-    apart = Sheet.unknown(c.degree, c.points)
-    _prove(c, _free(cold_starts(c)), False, apart, False)
-    return proven(c, _canonical(apart))
+    The latter tells close real roots from a pair.
+    """
+    start = _free(cold_starts(c, near))
+    made = proven(c, _canonical(start))
+    left = made.real == UNKNOWN
+    if left.any():
+        here, apart = c.at(left), Sheet.unknown(c.degree, int(left.sum()))
+        _prove(here, start.at(left), False, apart, False)
+        made.copy_from(proven(here, _canonical(apart)), left)
+    return made
 
 
 def _prove(c: Coefficients, start: Sheet, mirrored: bool, made: Sheet, rough: bool) -> None:

@@ -27,7 +27,8 @@ def test_plain_crossing_between_factors(parallel):
     assert len(flat) == 1
     crossed = [b for b in parallel.frequency if b[0] < plasma < b[-1]]
     assert len(crossed) == 1
-    assert parallel.events == ()
+    assert [e.kind for e in parallel.events] == ["crossing", "crossing"]
+    assert [abs(e.omega) for e in parallel.events] == pytest.approx([plasma] * 2, rel=1e-12)
 
 
 def test_branches_are_continuous(parallel):

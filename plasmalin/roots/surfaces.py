@@ -15,9 +15,9 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ..errors import ValuesError
-from .branches import Sweep
 from .enclose import ZERO, Enclosure, enclose
 from .solve import Problem, grid_of, pose
+from .sweep import Sweep
 from .values import Numbers, gather, left_out, with_defaults
 
 if TYPE_CHECKING:
@@ -188,7 +188,7 @@ class _Lines:
         line = replace(self.numbers, swept=swept, shape=s.shape)
         sweep = Sweep(self.wave, self.problem, line, self.symbols[axis].name)
         omega = self.omega[place] if axis == 1 else self.omega[:, place]
-        return sweep.tracked(family, s, omega)[0]
+        return sweep.order(family, s, omega)
 
 
 def _exceptional(

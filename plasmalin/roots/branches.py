@@ -4,24 +4,19 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from functools import cached_property
-from typing import TYPE_CHECKING, Any
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
 from ..errors import DeclarationError, ValuesError
-from ..exact.polynomial import ExactPolynomial
 from .events import Event
-from .labels import branch_labels
+from .labelled import Labelled
 from .polarization import null_vectors
-from .values import Numbers
-
-if TYPE_CHECKING:
-    from ..waves.matrix import WaveMatrix
 
 
 @dataclass(frozen=True, eq=False)
-class Branches:
+class Branches(Labelled):
     """Tracked roots along one quantity.
 
     Attributes
@@ -46,37 +41,16 @@ class Branches:
         Whether it is proven that no other branches meet from the least to the largest value.
     """
 
-    wave: WaveMatrix
-    numbers: Numbers
+    events: tuple[Event, ...]
     name: str
     along: NDArray[np.float64]
-    omega: NDArray[np.complex128]
-    radius: NDArray[np.float64]
-    status: NDArray[Any]
     slope: NDArray[np.complex128]
-    factor: tuple[int, ...]
-    events: tuple[Event, ...]
     events_complete: bool
-    method: str
-    polynomials: tuple[ExactPolynomial, ...]
-
-    def __len__(self) -> int:
-        return len(self.omega)
-
-    @cached_property
-    def label(self) -> tuple[str, ...]:
-        """For each branch "wave", "constraint", "entropy" or "vortical" (see `plasmalin.waves.labels`)."""
-        return branch_labels(self)
 
     @property
-    def frequency(self) -> NDArray[np.float64]:
-        """Re omega, rad/s, shape (branch, n)."""
-        return self.omega.real
-
-    @property
-    def growth_rate(self) -> NDArray[np.float64]:
-        """Im omega, rad/s, shape (branch, n); positive for growth."""
-        return self.omega.imag
+    def axes(self) -> dict[str, NDArray[np.float64]]:
+        """What varies, and its values."""
+        return {self.name: self.along}
 
     @cached_property
     def wave_number(self) -> NDArray[Any]:
@@ -115,11 +89,8 @@ class Branches:
         ValuesError
             When no root is finite.
         """
-        growth = np.where(np.isfinite(self.growth_rate), self.growth_rate, -np.inf)
-        if not np.isfinite(growth).any():
-            raise ValuesError("no finite root on this sweep")
-        branch, point = np.unravel_index(int(growth.argmax()), growth.shape)
-        return float(self.along[point]), complex(self.omega[branch, point]), int(branch)
+        branch, point = self._fastest()
+        return float(self.along[point]), complex(self.omega[branch, point]), branch
 
     @cached_property
     def _vectors(self) -> NDArray[np.complex128]:
@@ -176,30 +147,6 @@ class Branches:
         from ..present.plot import plot_branches
 
         return plot_branches(self, ax, **line)
-
-    def to_xarray(self) -> Any:
-        """An xarray Dataset with dimensions (branch, name); needs the extra ``labels``."""
-        from ..present.labels import to_xarray
-
-        return to_xarray(self)
-
-    def to_dataframe(self) -> Any:
-        """A pandas DataFrame, one row per branch and point; needs the extra ``labels``."""
-        from ..present.labels import to_dataframe
-
-        return to_dataframe(self)
-
-    def save(self, path: Any) -> None:
-        """Write arrays and the model's description to an npz archive (no pickles).
-
-        Parameters
-        ----------
-        path : path-like
-            Ending in ``.npz``.
-        """
-        from ..present.archive import save_branches
-
-        save_branches(self, path)
 
     def __repr__(self) -> str:
         return f"<Branches: {len(self)} branches along {self.name}, {len(self.along)} points>"

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass, replace
-from fractions import Fraction
 from itertools import combinations
 from typing import TYPE_CHECKING, Any
 
@@ -12,6 +11,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ..errors import ValuesError
+from .axis import Axis, constants
 from .branches import Branches
 from .crossings import seen_crossings
 from .enclose import ZERO, Enclosure, enclose
@@ -22,7 +22,7 @@ from .slopes import ScaledFamily
 from .solve import Problem, grid_of, pose, rates_of
 from .solved import Status, joined
 from .tracking import Solve, track
-from .values import Numbers, gather, left_out, scaled, to_si, with_defaults
+from .values import Numbers, gather, left_out, with_defaults
 
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
@@ -34,34 +34,29 @@ def find_branches(
     """All branches; see `WaveMatrix.branches`."""
     zero_modes = bool(waves.pop("zero_modes", False))
     left_out((name,), values, waves)
-    number, factor = to_si(wave, name, along)
-    points = scaled(np.asarray(number, dtype=float), factor)
+    axis = Axis.of(wave, name, along)
+    points = axis.si
     if points.ndim != 1 or not len(points):
         raise ValuesError(
             f"the values of '{name}' have shape {points.shape}; give one dimension, not empty"
         )
     numbers = gather(wave, with_defaults(wave, {**values, name: along}), waves)
-    if numbers.shape != points.shape or len(numbers.swept) > 1 + _complex_scalars(numbers, name):
+    if numbers.shape != points.shape or len(numbers.swept) > 1 + constants(numbers, (name,)):
         raise ValuesError(
             "only one quantity varies along branches; give single numbers for the others"
         )
     found = Sweep(wave, pose(wave, numbers), numbers, name).branches(points, zero_modes)
-    unit = wave.linear.units.get(name)
-    if unit is None or unit.scale == 1:
-        return found
-    return _in_unit(found, scaled(np.asarray(number, float), factor / unit.scale), unit.scale)
+    return found if axis.unit == 1 else _in_unit(found, axis)
 
 
-def _in_unit(branches: Branches, along: NDArray[np.float64], scale: Fraction) -> Branches:
-    """What varies, and the slopes along it, in a unit that is `scale` SI units."""
-    size = float(scale)
-    events = (replace(e, at=e.at / size, radius=e.radius / size) for e in branches.events)
-    return replace(branches, along=along, slope=branches.slope * size, events=tuple(events))
-
-
-def _complex_scalars(numbers: Numbers, name: str) -> int:
-    """Complex wave numbers are kept among the swept though they do not vary."""
-    return sum(s.name != name and bool((a == a.flat[0]).all()) for s, a in numbers.swept.items())
+def _in_unit(branches: Branches, axis: Axis) -> Branches:
+    """What varies, and the slopes along it, in the declared unit."""
+    size = float(axis.unit)
+    events = tuple(
+        replace(e, at=e.at / size, radius=e.radius / size + float(np.spacing(abs(e.at / size))))
+        for e in branches.events
+    )
+    return replace(branches, along=axis.shown, slope=branches.slope * size, events=events)
 
 
 @dataclass(frozen=True)
@@ -105,8 +100,8 @@ class Sweep:
         omega[:, ~np.isfinite(points)], radius[:, ~np.isfinite(points)] = np.nan, np.inf
         events, complete = self._events(tracks, s)
         return Branches(
-            self.wave, self.numbers, self.name, points, omega, radius, Status.words()[state], slope,
-            tuple(factor[b] for b in first), events, complete, parts[0].method, self.problem.polynomials,
+            self.wave, self.numbers, omega, radius, Status.words()[state], tuple(factor[b] for b in first),
+            parts[0].method, self.problem.polynomials, events, self.name, points, slope, complete,
         )  # fmt: skip
 
     @property

@@ -28,7 +28,7 @@ from .declare.files import (
 from .declare.writing import write_whole
 from .errors import ModelFileError, PlasmalinError
 from .linearize.linearized import LinearizedModel
-from .present.archive import csv_text, save_branches
+from .present.archive import csv_text, save_labelled
 from .present.report import (
     CAUTION,
     branch_table,
@@ -203,7 +203,7 @@ def _write(folder: Path, wave: WaveMatrix, branches: Branches | None) -> None:
     write_whole(folder / "derivation.md", derivation(wave, branches).encode())
     if branches is not None:
         write_whole(folder / "branches.csv", csv_text(branches).encode())
-        save_branches(branches, folder / "branches.npz")
+        save_labelled(branches, folder / "branches.npz")
         write_whole(folder / "branches.png", _figure(branches))
 
 

@@ -27,7 +27,8 @@ def test_plain_crossing_between_factors(parallel):
     assert len(flat) == 1
     crossed = [b for b in parallel.frequency if b[0] < plasma < b[-1]]
     assert len(crossed) == 1
-    assert parallel.events == ()
+    assert [e.kind for e in parallel.events] == ["crossing", "crossing"]
+    assert [abs(e.omega) for e in parallel.events] == pytest.approx([plasma] * 2, rel=1e-12)
 
 
 def test_branches_are_continuous(parallel):
@@ -268,10 +269,84 @@ def test_surfaces_follow_branches(coupled):
     [
         (("k", "nu"), ([1.0, 0.5], [1.0]), {}, "must be finite, one-dimensional and increasing"),
         (("k", "nu"), ([0.5, 1.0], [1.0]), {"nu": 2.0}, "'nu' is what varies"),
-        (("k", "nu", "g"), ([1.0], [1.0], [1.0]), {}, "a grid takes two names"),
+        (("k", "nu", "g"), ([1.0], [1.0], [1.0]), {}, "a grid takes two different names"),
+        (("k", "k"), ([1.0], [1.0]), {}, "a grid takes two different names"),
+        (("k", "nu"), ([1.0], ["a"]), {}, "must be real numbers, not"),
         (("k", "nu"), ([0.5, 1.0], [1.0, 2.0]), {"U": [1.0, 2.0]}, "only two quantities vary"),
     ],
 )
 def test_bad_grids_of_branches(coupled, names, along, values, message):
     with pytest.raises(plin.ValuesError, match=message):
         coupled.branches(names, along, {"U": 1.0, "g": 1.0, **values})
+
+
+def test_surfaces_are_labelled_data(coupled, tmp_path):
+    """What branches give, with one dimension more."""
+    pytest.importorskip("xarray")
+    pytest.importorskip("pandas")
+    k, nu = np.linspace(-1, 1, 6), np.linspace(0.5, 4, 5)
+    surfaces = coupled.branches(("k", "nu"), (k, nu), {"U": 1.0, "g": 1.0})
+    assert surfaces.label == ("wave", "wave")
+    (at, damping), omega, branch = surfaces.most_unstable()
+    assert omega == surfaces.omega[branch, list(k).index(at), list(nu).index(damping)]
+    assert omega.imag == surfaces.growth_rate.max()
+    data = surfaces.to_xarray()
+    assert data.omega.dims == ("branch", "k", "nu")
+    assert np.array_equal(data.omega.values, surfaces.omega)
+    frame = surfaces.to_dataframe()
+    assert list(frame.columns) == ["branch", "k", "nu", "frequency", "growth_rate", "radius"]
+    last = frame[(frame.branch == 1) & (frame.k == k[2]) & (frame.nu == nu[4])]
+    assert last.frequency.item() == surfaces.frequency[1, 2, 4]
+    surfaces.save(tmp_path / "grid.npz")
+    with np.load(tmp_path / "grid.npz", allow_pickle=False) as archive:
+        assert np.array_equal(archive["omega"], surfaces.omega)
+        assert np.array_equal(archive["along_2"], nu)
+        assert np.array_equal(archive["cut"], surfaces.cut)
+        header = json.loads(str(archive["header"]))
+    assert header["varies"] == ["k", "nu"]
+    assert [e["kind"] for e in header["events"]] == ["exceptional point"]
+
+
+def test_maps_of_surfaces(coupled):
+    import matplotlib
+
+    matplotlib.use("Agg")
+    from matplotlib import pyplot
+
+    k, nu = np.linspace(-1, 1, 10), np.linspace(0.5, 4, 12)
+    surfaces = coupled.branches(("k", "nu"), (k, nu), {"U": 1.0, "g": 1.0})
+    ax = surfaces.plot()
+    assert (ax.get_xlabel(), ax.get_ylabel()) == ("k (rad/m)", "nu")
+    assert [t.get_text() for t in ax.get_legend().get_texts()] == ["cut", "exceptional point"]
+    (place,) = np.transpose(ax.lines[0].get_data())
+    assert np.allclose(place, [np.mean(sides) for sides in surfaces.events[0].cell])
+    cuts = ax.collections[1].get_segments()
+    assert len(cuts) == surfaces.cut[surfaces.most_unstable()[2]].sum()
+    given = pyplot.subplots()[1]
+    assert surfaces.plot(1, "frequency", given, cmap="gray") is given
+    mesh = given.collections[0].get_array()
+    assert np.array_equal(mesh.reshape(12, 10).T, surfaces.frequency[1])
+    with pytest.raises(plin.ValuesError, match="there is no branch 2; there are 2, from 0"):
+        surfaces.plot(2)
+    with pytest.raises(plin.ValuesError, match="give one of growth_rate, frequency"):
+        surfaces.plot(0, "phase")
+    pyplot.close("all")
+
+
+def test_grids_in_declared_units():
+    """A temperature in eV and wave numbers: what is shown is in eV, what is solved in SI."""
+    model = plin.FluidModel("ion sound", axes="x")
+    n, v = model.scalar("n", background="n_0"), model.vector("v")
+    t = model.parameter("T", unit="eV", positive=True)
+    m = model.parameter("m", unit="kg", positive=True)
+    model.law("continuity", partial_t(n) + plin.div(n * v))
+    model.law("momentum", m * n * (partial_t(v) + plin.advect(v, v)), -grad(t * n))
+    wave = model.linearize().plane_wave("x")
+    k, temperature = np.array([1.0, 2.0]), np.array([1.0, 4.0, 9.0])
+    surfaces = wave.branches(("k", "T"), (k, temperature), {"m": 1e-27, "n_0": 1.0})
+    assert np.array_equal(surfaces.along[1], temperature)
+    speed = np.sqrt(temperature * plin.constants.e / 1e-27)
+    assert np.allclose(surfaces.omega[1], k[:, None] * speed, rtol=1e-14)
+    branches = wave.branches("T", temperature, {"m": 1e-27, "n_0": 1.0}, k=2.0)
+    assert np.array_equal(branches.omega, surfaces.omega[:, 1])
+    assert np.allclose(branches.slope[1], branches.omega[1] / (2 * temperature), rtol=1e-14)

@@ -14,10 +14,9 @@ from typing import Any, TypeAlias
 import flint
 
 from .clusters import fraction
+from .eliminants import Term
 from .univariate import real_ball
 
-Term: TypeAlias = tuple[int, int, tuple[Fraction, Fraction]]
-"""Powers of x and s, and an exact complex coefficient."""
 Point: TypeAlias = tuple[Fraction, Fraction]
 """Real and imaginary part."""
 

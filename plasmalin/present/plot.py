@@ -8,6 +8,7 @@ import numpy as np
 
 if TYPE_CHECKING:
     from ..roots.branches import Branches
+    from ..roots.labelled import Labelled
 
 COLORS = ("#0072B2", "#D55E00", "#009E73", "#CC79A7", "#E69F00", "#56B4E9", "#000000")
 """Colors that color-blind readers tell apart (Okabe and Ito 2008, Color Universal Design)."""
@@ -48,14 +49,6 @@ def _axes() -> Any:
 
 def _dress(branches: Branches, upper: Any, lower: Any, scale: float) -> None:
     s = branches.along[np.isfinite(branches.along)]
-    declared = branches.wave.linear.units.get(branches.name)
-    unit = (
-        " (rad/m)"
-        if branches.name in {k.name for k in branches.wave.wave_symbols if "k" in k.name}
-        else f" ({declared})"
-        if declared
-        else ""
-    )
     if len(s) and s.min() > 0 and s.max() > WIDE * s.min():
         upper.set_xscale("log")
         lower.set_xscale("log")
@@ -70,9 +63,17 @@ def _dress(branches: Branches, upper: Any, lower: Any, scale: float) -> None:
         )
     upper.set_ylabel(r"frequency $\mathrm{Re}\,\omega$ (rad/s)")
     lower.set_ylabel(r"growth rate $\mathrm{Im}\,\omega$ (rad/s)")
-    lower.set_xlabel(f"{branches.name}{unit}")
+    lower.set_xlabel(axis_label(branches, branches.name))
     for axis in (upper, lower):
         axis.axhline(0.0, color="0.7", linewidth=0.6, zorder=0)
+
+
+def axis_label(roots: Labelled, name: str) -> str:
+    """The name of what varies, with its unit where it is known."""
+    wave_numbers = {k.name for k in roots.wave.wave_symbols if "k" in k.name}
+    declared = roots.wave.linear.units.get(name)
+    unit = "rad/m" if name in wave_numbers else str(declared) if declared else ""
+    return f"{name} ({unit})" if unit else name
 
 
 def _signed_decades(axis: Any, sizes: Any) -> None:

@@ -13,10 +13,10 @@ from .solve import in_numbers
 
 if TYPE_CHECKING:
     from ..waves.labels import Modes
-    from .branches import Branches
+    from .labelled import Labelled
 
 
-def branch_labels(branches: Branches) -> tuple[str, ...]:
+def branch_labels(branches: Labelled) -> tuple[str, ...]:
     """For each branch its label; see `Branches.label`.
 
     The modes at the root of a factor are counted for the branches' own numbers. Where a factor was left in square-free
@@ -54,7 +54,7 @@ def _told(modes: Modes, factor: Expr, multiplicity: int) -> list[str]:
     return list(Counter(labels).elements())
 
 
-def _nearest(branches: Branches, mine: list[int], linear: ExactPolynomial) -> list[int]:
+def _nearest(branches: Labelled, mine: list[int], linear: ExactPolynomial) -> list[int]:
     """Branches of a factor, those nearest to the root of one of its factors first."""
     if len(mine) == 1 or linear in branches.polynomials:
         return mine
@@ -62,11 +62,11 @@ def _nearest(branches: Branches, mine: list[int], linear: ExactPolynomial) -> li
     root = -powers.get(0, 0) / powers[1]
     symbols: list[Any] = sorted(root.free_symbols, key=str)
     columns = (branches.numbers.doubles(s) for s in symbols)
-    omega = np.broadcast_to(lambdify(symbols, root, "numpy")(*columns), branches.along.shape)
+    omega = np.broadcast_to(lambdify(symbols, root, "numpy")(*columns), branches.omega.shape[1:])
     return sorted(mine, key=lambda b: np.nanmax(np.abs(branches.omega[b] - omega), initial=0.0))
 
 
-def _at_zero(branches: Branches, modes: Modes, count: int) -> list[str]:
+def _at_zero(branches: Labelled, modes: Modes, count: int) -> list[str]:
     """Zero modes that are kept, and those that only these numbers bring."""
     wave = branches.wave
     here, in_general = (Counter(m.labels([(wave.omega, None)])[0]) for m in (modes, wave.modes))

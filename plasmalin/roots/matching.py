@@ -16,14 +16,19 @@ COINCIDE = 2.0**-44
 
 @dataclass(frozen=True)
 class Ends:
-    """Roots and slopes at one end of some intervals: s of shape (m,), the others (m, roots)."""
+    """Roots and slopes at one end of some intervals: s of shape (m,), the others (m, roots).
+
+    `mirrored` says that roots are real or come as pairs of conjugates, so that none leaves or crosses the real axis without
+    meeting another.
+    """
 
     s: NDArray[np.float64]
     omega: NDArray[np.complex128]
     slope: NDArray[np.complex128]
+    mirrored: bool = False
 
     def at(self, which: Any) -> Ends:
-        return Ends(self.s[which], self.omega[which], self.slope[which])
+        return Ends(self.s[which], self.omega[which], self.slope[which], self.mirrored)
 
     @property
     def real(self) -> bool:
@@ -35,6 +40,7 @@ class Ends:
             np.concatenate([self.s, other.s]),
             np.concatenate([self.omega, other.omega]),
             np.concatenate([self.slope, other.slope]),
+            self.mirrored,
         )
 
 
@@ -93,13 +99,22 @@ def _square(z: NDArray[Any]) -> NDArray[np.float64]:
 def _ranks_change(
     left: Ends, right: Ends, step: NDArray[np.int64] | None = None
 ) -> NDArray[np.bool_]:
-    """Whether branches that are real at both ends swap their order across an interval."""
+    """Whether branches that are real at both ends swap their order across an interval, or one changes its side."""
     after = right.omega if step is None else np.take_along_axis(right.omega, step, axis=1)
-    real = (left.omega.imag == 0) & (after.imag == 0)
-    before, behind = (np.where(real, w.real, np.inf) for w in (left.omega, after))
-    if all((w[:, 1:] >= w[:, :-1]).all() for w in (before, behind)):
+    if left.mirrored:
+        sides = (np.sign(left.omega.imag) != np.sign(after.imag)).any(axis=1)
+        return np.asarray(sides | _order_changes(left.omega, after))
+    return _order_changes(left.omega, after)
+
+
+def _order_changes(
+    before: NDArray[np.complex128], after: NDArray[np.complex128]
+) -> NDArray[np.bool_]:
+    real = (before.imag == 0) & (after.imag == 0)
+    ends = [np.where(real, w.real, np.inf) for w in (before, after)]
+    if all((w[:, 1:] >= w[:, :-1]).all() for w in ends):
         return np.zeros(len(real), bool)
-    ranks = (np.argsort(np.argsort(w, axis=1), axis=1) for w in (before, behind))
+    ranks = (np.argsort(np.argsort(w, axis=1), axis=1) for w in ends)
     return np.asarray((real & (next(ranks) != next(ranks))).any(axis=1))
 
 

@@ -15,9 +15,11 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ..errors import ValuesError
-from .branches import Sweep
+from .axis import Axis, constants
 from .enclose import ZERO, Enclosure, enclose
+from .labelled import Labelled
 from .solve import Problem, grid_of, pose
+from .sweep import Sweep
 from .values import Numbers, gather, left_out, with_defaults
 
 if TYPE_CHECKING:
@@ -44,7 +46,7 @@ class Exceptional:
 
 
 @dataclass(frozen=True, eq=False)
-class Surfaces:
+class Surfaces(Labelled):
     """Labelled roots over a grid of two quantities.
 
     Attributes
@@ -52,44 +54,92 @@ class Surfaces:
     names : (str, str)
         What varies.
     along : (ndarray, ndarray), shapes (n,) and (m,)
-        Their values.
+        Their values; rad/m for a wave number, for a parameter in the unit that it declares.
     omega : ndarray of complex128, shape (branch, n, m), rad/s
     radius : ndarray of float64, shape (branch, n, m), rad/s
         Proven error bounds.
     status : ndarray of str, shape (branch, n, m)
     factor : tuple of int
         For each branch the irreducible factor that it belongs to (−1: a zero mode).
+    polynomials : tuple of ExactPolynomial
+        These factors, with the fixed numbers put in.
     events : tuple of Exceptional
         Cells around which labels permute; empty where labels are consistent everywhere.
     cut : ndarray of bool, shape (branch, n - 1, m)
         Where a label does not go on from one value of the first quantity to the next.
     method : str
+
+    Examples
+    --------
+    Two coupled modes, one drifting and damped; they coalesce at one point of the plane:
+
+    >>> import numpy as np
+    >>> import plasmalin as plin
+    >>> from plasmalin import components, dot, grad, partial_t
+    >>> model = plin.FluidModel("two coupled modes", axes="x")
+    >>> u, nu, g = model.parameters("U nu g")
+    >>> a, b = model.scalar("a"), model.scalar("b")
+    >>> _ = model.law("a", partial_t(a) + u * dot(components(1), grad(a)) + nu * a, g * b)
+    >>> _ = model.law("b", partial_t(b), -g * a)
+    >>> wave = model.linearize().plane_wave("x")
+    >>> axes = np.linspace(-1, 1, 10), np.linspace(0.5, 4, 12)
+    >>> surfaces = wave.branches(("k", "nu"), axes, {"U": 1.0, "g": 1.0})
+    >>> surfaces
+    <Surfaces: 2 branches over k, nu, 10 x 12 points>
+    >>> [event.kind for event in surfaces.events]
+    ['exceptional point']
     """
 
-    wave: WaveMatrix
-    numbers: Numbers
+    events: tuple[Exceptional, ...]
     names: tuple[str, str]
     along: tuple[NDArray[np.float64], NDArray[np.float64]]
-    omega: NDArray[np.complex128]
-    radius: NDArray[np.float64]
-    status: NDArray[Any]
-    factor: tuple[int, ...]
-    events: tuple[Exceptional, ...]
     cut: NDArray[np.bool_]
-    method: str
-
-    def __len__(self) -> int:
-        return len(self.omega)
 
     @property
-    def frequency(self) -> NDArray[np.float64]:
-        """Re omega, rad/s, shape (branch, n, m)."""
-        return self.omega.real
+    def axes(self) -> dict[str, NDArray[np.float64]]:
+        """What varies, and its values."""
+        return dict(zip(self.names, self.along, strict=True))
 
-    @property
-    def growth_rate(self) -> NDArray[np.float64]:
-        """Im omega, rad/s, shape (branch, n, m); positive for growth."""
-        return self.omega.imag
+    def most_unstable(self) -> tuple[tuple[float, float], complex, int]:
+        """The grid point of largest growth: (values of what varies, omega, branch).
+
+        Raises
+        ------
+        ValuesError
+            When no root is finite.
+        """
+        branch, i, j = self._fastest()
+        point = float(self.along[0][i]), float(self.along[1][j])
+        return point, complex(self.omega[branch, i, j]), branch
+
+    def plot(
+        self, branch: int | None = None, of: str | None = None, ax: Any = None, **mesh: Any
+    ) -> Any:
+        """A map of one branch, with exceptional cells as circles and cuts as lines.
+
+        Parameters
+        ----------
+        branch : int, optional
+            The one that grows most without.
+        of : {"growth_rate", "frequency"}, optional
+            What is drawn; without, the growth rate where the branch grows or is damped, else the frequency.
+        ax : matplotlib Axes, optional
+            A new figure without.
+        **mesh
+            Passed on to matplotlib's ``pcolormesh``.
+
+        Returns
+        -------
+        matplotlib Axes
+
+        Raises
+        ------
+        ValuesError
+            For a branch or a quantity that there is not.
+        """
+        from ..present.maps import plot_surface
+
+        return plot_surface(self, branch, of, ax, **mesh)
 
     def __repr__(self) -> str:
         shape = " x ".join(str(len(a)) for a in self.along)
@@ -105,14 +155,18 @@ def find_surfaces(
 ) -> Surfaces:
     """All surfaces; see `WaveMatrix.branches`."""
     zero_modes = bool(waves.pop("zero_modes", False))
-    if len(names) != 2 or len(along) != 2:
-        raise ValuesError("a grid takes two names and, in the same order, the values of both")
+    if len(names) != 2 or len(along) != 2 or names[0] == names[1]:
+        raise ValuesError(
+            "a grid takes two different names and, in the same order, the values of both"
+        )
     left_out(names, values, waves)
-    x, y = (_rising(n, a) for n, a in zip(names, along, strict=True))
-    numbers = gather(
-        wave, with_defaults(wave, {**values, names[0]: x[:, None], names[1]: y}), waves
-    )
-    if numbers.shape != (len(x), len(y)) or len(numbers.swept) != 2:
+    axes = [Axis.of(wave, n, a) for n, a in zip(names, along, strict=True)]
+    for name, axis in zip(names, axes, strict=True):
+        _require_rising(name, axis.given)
+    x, y = (axis.shown for axis in axes)
+    given = {names[0]: x[:, None], names[1]: y}
+    numbers = gather(wave, with_defaults(wave, {**values, **given}), waves)
+    if numbers.shape != (len(x), len(y)) or len(numbers.swept) > 2 + constants(numbers, names):
         raise ValuesError(
             "only two quantities vary over a grid; give single numbers for the others"
         )
@@ -135,20 +189,18 @@ def find_surfaces(
         for n in ("omega", "radius", "status")
     )
     cut = np.moveaxis(arrived != np.arange(len(factor)), 2, 0)
-    events = tuple(_exceptional(arrived, x, y))
     return Surfaces(
-        wave, numbers, (names[0], names[1]), (x, y), omega, radius, status, tuple(factor), events, cut, parts[0].method
+        wave, numbers, omega, radius, status, tuple(factor), parts[0].method, problem.polynomials,
+        tuple(_exceptional(arrived, x, y)), (names[0], names[1]), (x, y), cut,
     )  # fmt: skip
 
 
-def _rising(name: str, values: Any) -> NDArray[np.float64]:
-    array = np.asarray(values, dtype=float)
-    rising = array.ndim == 1 and array.size > 0 and bool((np.diff(array) > 0).all())
-    if not rising or not np.isfinite(array).all():
+def _require_rising(name: str, values: NDArray[np.float64]) -> None:
+    rising = values.ndim == 1 and values.size > 0 and bool((np.diff(values) > 0).all())
+    if not rising or not np.isfinite(values).all():
         raise ValuesError(
             f"the values of '{name}' must be finite, one-dimensional and increasing for a grid of two quantities"
         )
-    return array
 
 
 def _own(first: int, count: int, shape: tuple[int, int]) -> NDArray[np.int64]:
@@ -188,7 +240,7 @@ class _Lines:
         line = replace(self.numbers, swept=swept, shape=s.shape)
         sweep = Sweep(self.wave, self.problem, line, self.symbols[axis].name)
         omega = self.omega[place] if axis == 1 else self.omega[:, place]
-        return sweep.tracked(family, s, omega)[0]
+        return sweep.order(family, s, omega)
 
 
 def _exceptional(

@@ -2,50 +2,34 @@
 
 Both ends of an interval are extrapolated to its midpoint with their slopes and matched as mutual nearest neighbors.
 Intervals where that is ambiguous are halved, all at once, until they are clear or so short that the branches meet
-there.
+there. Where the places of all meetings are known beforehand, points ever nearer to them are added instead.
 """
 
 from __future__ import annotations
 
-from collections.abc import Callable
-from dataclasses import dataclass
+from collections.abc import Callable, Sequence
 
 import numpy as np
 from numpy.typing import NDArray
 
+from .across import Order, across, assigned
+from .events import Event, distinct
 from .matching import Ends, coincide, matched, pairwise_clear
 
-DEEPEST = 44
+DEEPEST = 36
 """Halvings of an interval before two branches count as meeting."""
 UNEVEN = 0.4871
 """Where an interval is halved: off its middle, since meetings like to sit on round numbers."""
 BATCH = 512
+NEARER = np.array([4.0**-n for n in range(1, 15)])
+"""Points beside a place where branches meet, as parts of the way to the next point."""
+ENOUGH = 4.0**-8
+"""The least of them where more than two branches may meet, since slopes of nearly triple roots are soon lost."""
+NEAREST = 2.0**-34
+"""Relative distance to a place that is near enough."""
 
 Solve = Callable[[NDArray[np.float64]], tuple[NDArray[np.complex128], NDArray[np.complex128]]]
 """Parameter values -> roots and slopes, each of shape (points, roots)."""
-
-
-@dataclass(frozen=True)
-class Event:
-    """Two branches of one factor meet.
-
-    Attributes
-    ----------
-    kind : str
-        "crossing" (both go on as before) or "onset" (they coalesce, and the difference of the two turns by a
-        right angle: two real roots become a growing and a damped one, or back).
-    at : float
-        The value of the swept quantity.
-    omega : complex
-        rad/s
-    radius : float
-        The exact value is not farther from `at`; infinite where `at` was found by halving intervals, to about ten digits.
-    """
-
-    kind: str
-    at: float
-    omega: complex
-    radius: float = np.inf
 
 
 def track(
@@ -53,7 +37,10 @@ def track(
     s: NDArray[np.float64],
     omega: NDArray[np.complex128],
     slope: NDArray[np.complex128],
-) -> tuple[NDArray[np.int64], list[Event]]:
+    known: Sequence[Event] | None = None,
+    *,
+    mirrored: bool = False,
+) -> tuple[Order, list[Event]]:
     """Branches through increasing s.
 
     Parameters
@@ -64,37 +51,78 @@ def track(
         Increasing.
     omega, slope : ndarray, shape (n, d)
         Roots sorted by (Re, Im) at every point.
+    known : sequence of Event, optional
+        All meetings, when they are known.
+    mirrored : bool
+        Whether roots are real or come as pairs of conjugates.
 
     Returns
     -------
     order : ndarray of int, shape (n, d)
         ``omega[i, order[i, b]]`` is branch b at point i; at the first point sorted by (Re, Im).
     events : list of Event
+        `known`, or those that were seen.
     """
-    n, d = omega.shape
-    order = np.empty((n, d), np.int64)
-    points, meeting = Ends(s, omega, slope), coincide(omega)
+    meeting = coincide(omega)
+    if known is not None:
+        meeting |= np.isin(s, [e.at for e in known])
     meeting &= not meeting.all()
-    if not meeting.any():
-        order, events = _through(solve, points)
-        return order, _distinct(events)
-    kept = np.flatnonzero(~meeting)
-    order[kept], events = _through(solve, points.at(kept))
+    points = Ends(s, omega, slope, mirrored)
+    points = points.at(~meeting) if meeting.any() else points
+    places = _alone(s, meeting)
+    if known:
+        places = np.union1d(places, [e.at for e in known])
+    if len(places) and len(points.s):
+        pairs = known is not None and all(e.roots == 2 for e in known)
+        points = _with_nearer(solve, points, places, NEARER if pairs else NEARER[ENOUGH <= NEARER])
+    place = np.searchsorted(points.s, places)
+    inside = places[(place > 0) & (place < len(points.s))]
+    found, events = _through(solve, points, inside, known)
+    if not len(places) and not meeting.any():
+        return found, distinct(events) if known is None else []
+    order = found[np.minimum(np.searchsorted(points.s, s), len(points.s) - 1)]
     for i in np.flatnonzero(meeting):
         # Where roots coincide they are not told apart; the point takes its order from a neighbor.
-        near = kept[max(int(np.searchsorted(kept, i)) - 1, 0)]
-        ahead = omega[near] + (s[i] - s[near]) * slope[near]
-        order[i] = _assigned(np.abs(ahead[:, None] - omega[i][None, :]))[order[near]]
-    return order, _distinct(events)
+        near = int(np.abs(points.s - s[i]).argmin())
+        ahead = points.omega[near] + (s[i] - points.s[near]) * points.slope[near]
+        order[i] = assigned(np.abs(ahead[:, None] - omega[i][None, :]))[found[near]]
+    return order, list(known) if known is not None else distinct(events)
 
 
-def _through(solve: Solve, points: Ends) -> tuple[NDArray[np.int64], list[Event]]:
+def _alone(s: NDArray[np.float64], meeting: NDArray[np.bool_]) -> NDArray[np.float64]:
+    """Points at which roots coincide, except inside of stretches where they do all along within rounding."""
+    beside = np.pad(meeting, 1)
+    return s[meeting & ~(beside[:-2] & beside[2:])]
+
+
+def _with_nearer(
+    solve: Solve, points: Ends, places: NDArray[np.float64], nearer: NDArray[np.float64]
+) -> Ends:
+    """With points ever nearer to the places, as far as doubles and roots tell them apart."""
+    ends = np.concatenate([[-np.inf], points.s, [np.inf]])
+    right = np.searchsorted(ends, places)
+    low, high, between = ends[right - 1], ends[right], 0.5 * (places[1:] + places[:-1])
+    low[1:], high[:-1] = np.maximum(low[1:], between), np.minimum(high[:-1], between)
+    low, high = (np.where(np.isfinite(end), end, places) for end in (low, high))
+    steps = np.concatenate([nearer[:, None] * (end - places) for end in (low, high)])
+    added = (places + steps)[np.abs(steps) > NEAREST * np.abs(places)]
+    s = np.setdiff1d(added, np.concatenate([points.s, places]))
+    between_ends = Ends(s, *solve(s))
+    whole = points.and_then(between_ends.at(~coincide(between_ends.omega)))
+    return whole.at(np.argsort(whole.s))
+
+
+def _through(
+    solve: Solve, points: Ends, places: NDArray[np.float64], known: Sequence[Event] | None
+) -> tuple[Order, list[Event]]:
     """Branches through points at which all roots differ."""
     order = np.empty(points.omega.shape, np.int64)
     if len(order):
         order[0] = np.lexsort((points.omega[0].imag, points.omega[0].real))
-    moved = np.flatnonzero(~_unmoved(points))
-    steps, events = _followed(solve, points.at(moved), points.at(moved + 1))
+    clear = _unmoved(points)
+    clear[np.searchsorted(points.s, places) - 1] = False
+    moved = np.flatnonzero(~clear)
+    steps, events = _followed(solve, points.at(moved), points.at(moved + 1), places, known)
     before = 0
     for i, step in zip(moved.tolist(), steps, strict=True):
         order[before + 1 : i + 1] = order[before]
@@ -115,20 +143,28 @@ def _unmoved(points: Ends) -> NDArray[np.bool_]:
     return clear
 
 
-def _followed(solve: Solve, left: Ends, right: Ends) -> tuple[list[NDArray[np.int64]], list[Event]]:
+def _followed(
+    solve: Solve,
+    left: Ends,
+    right: Ends,
+    places: NDArray[np.float64],
+    known: Sequence[Event] | None,
+) -> tuple[list[Order], list[Event]]:
     """For each interval the permutation from left to right; all that are ambiguous are halved together."""
     events: list[Event] = []
-    pieces: list[list[tuple[float, NDArray[np.int64]]]] = [[] for _ in left.s]
+    pieces: list[list[tuple[float, Order]]] = [[] for _ in left.s]
     owner = np.arange(len(left.s))
     for depth in range(DEEPEST + 1):
         step, clear = matched(left, right)
-        doubtful = np.flatnonzero(~clear)
+        meets = _hold(left.s, right.s, places)
+        doubtful = np.flatnonzero(~clear & ~meets)
         s = left.s[doubtful] + UNEVEN * (right.s - left.s)[doubtful]
-        between = Ends(s, *solve(s))
+        between = Ends(s, *solve(s), left.mirrored)
         inside = (left.s[doubtful] < s) & (s < right.s[doubtful]) & (depth < DEEPEST)
         inside &= ~coincide(between.omega)
-        for i in doubtful[~inside]:
-            step[i] = _met(left.at(i), right.at(i), events)
+        for i in (*doubtful[~inside].tolist(), *np.flatnonzero(meets).tolist()):
+            at = places[np.searchsorted(places, left.s[i])] if meets[i] else s[doubtful == i][0]
+            step[i] = across(left.at(i), right.at(i), float(at), known, events)
         go_on = doubtful[inside]
         for i in np.setdiff1d(np.arange(len(owner)), go_on):
             pieces[owner[i]].append((float(left.s[i]), step[i]))
@@ -140,75 +176,15 @@ def _followed(solve: Solve, left: Ends, right: Ends) -> tuple[list[NDArray[np.in
     return [_composed(p) for p in pieces], events
 
 
+def _hold(
+    left: NDArray[np.float64], right: NDArray[np.float64], places: NDArray[np.float64]
+) -> NDArray[np.bool_]:
+    """Whether an interval holds a place."""
+    return np.asarray(np.searchsorted(places, left) < np.searchsorted(places, right))
+
+
 def _composed(pieces: list[tuple[float, NDArray[np.int64]]]) -> NDArray[np.int64]:
     (_, whole), *others = sorted(pieces, key=lambda piece: piece[0])
     for _, step in others:
         whole = step[whole]
     return whole
-
-
-def _met(left: Ends, right: Ends, events: list[Event]) -> NDArray[np.int64]:
-    """The permutation across a short interval in which roots meet; each meeting is an event.
-
-    Roots that cross come out on the other side of their mean. At a coalescence labels are a convention: the root
-    that grows more goes on as the one that grows more, and among real ones as the one with the larger real part.
-    """
-    half = 0.5 * (right.s - left.s)
-    ahead, back = left.omega + half * left.slope, right.omega - half * right.slope
-    step = _assigned(np.abs(ahead[:, None] - back[None, :]))
-    for group in _meetings(left, float(right.s - left.s)):
-        partners = step[group]
-        before, after = (w - w.mean() for w in (left.omega[group], right.omega[partners]))
-        onset = bool((((after[1] - after[0]) * np.conj(before[1] - before[0])) ** 2).real < 0)
-        if onset:
-            ranked = (np.lexsort((w.real, w.imag)) for w in (before, after))
-            step[group[next(ranked)]] = partners[next(ranked)]
-        else:
-            sizes = (np.abs(w).max() or 1.0 for w in (before, after))
-            opposite = before[:, None] / next(sizes) + after[None, :] / next(sizes)
-            step[group] = partners[_assigned(np.abs(opposite))]
-        at, omega = 0.5 * (left.s + right.s), left.omega[group].mean()
-        events.append(Event("onset" if onset else "crossing", float(at), complex(omega)))
-    return step
-
-
-def _meetings(left: Ends, length: float) -> list[NDArray[np.int64]]:
-    """Groups of roots that their relative slopes bring together within the interval.
-
-    Two that cross are as far apart as their slopes take them until then; two that coalesce, like a square root,
-    are twice as far.
-    """
-    apart = np.abs(left.omega[:, None] - left.omega[None, :])
-    near = apart <= 3 * length * np.abs(left.slope[:, None] - left.slope[None, :])
-    rest, groups = set(np.flatnonzero(np.isfinite(left.omega)).tolist()), []
-    while rest:
-        group, new = set[int](), {rest.pop()}
-        while new:
-            group |= new
-            new = {j for i in new for j in rest if near[i, j]}
-            rest -= new
-        if len(group) > 1:
-            groups.append(np.array(sorted(group)))
-    return groups
-
-
-def _assigned(cost: NDArray[np.float64]) -> NDArray[np.int64]:
-    """The permutation of least total cost."""
-    from scipy.optimize import linear_sum_assignment
-
-    finite = np.isfinite(cost)
-    largest = float(cost[finite].max(initial=0.0)) or 1.0
-    scaled = np.where(finite, cost / largest, 2.0 * len(cost))
-    return np.asarray(linear_sum_assignment(scaled)[1], np.int64)
-
-
-def _distinct(events: list[Event]) -> list[Event]:
-    """Meetings that differ by rounding only, once; a coalescence counts before a crossing."""
-    kept: list[Event] = []
-    for event in sorted(events, key=lambda e: e.kind, reverse=True):
-        if not any(
-            np.isclose(event.at, k.at, 1e-9) and np.isclose(event.omega, k.omega, 1e-6)
-            for k in kept
-        ):
-            kept.append(event)
-    return sorted(kept, key=lambda e: e.at)

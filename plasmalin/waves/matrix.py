@@ -310,8 +310,8 @@ class WaveMatrix:
         ValuesError, UnitError, BackgroundError
             As `roots`; also when `along` is not one-dimensional.
         """
-        from ..roots.branches import find_branches
         from ..roots.surfaces import find_surfaces
+        from ..roots.sweep import find_branches
 
         if not isinstance(name, str):
             return find_surfaces(self, tuple(name), tuple(along), values or {}, waves)

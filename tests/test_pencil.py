@@ -24,9 +24,11 @@ from plasmalin.roots.eigendiscs import eigen_sheet
 from plasmalin.roots.enclose import enclose
 from plasmalin.roots.family import exact_value, times
 from plasmalin.roots.pointwise import solved_exactly
+from plasmalin.roots.reduced import ReducedWay
 from plasmalin.roots.replay import Ball, minus_product, quotient
 from plasmalin.roots.roots import solve
 from plasmalin.roots.solve import LONGEST, filled_in, grid_of, pose, what_is_known
+from plasmalin.roots.solved import Solved, Status
 from plasmalin.roots.values import gather, with_defaults
 from tests.benchmarks.models import dusty_numbers, electromagnetic, numbers
 
@@ -221,6 +223,18 @@ def test_points_that_are_not_finite_are_masked():
     assert (found.status[~masked] == "certified").all()
     every, known = posed(wave, numbers(2), k=np.full(20, np.nan), theta=0.3)
     assert (solve(every, known).status == "masked").all()
+
+
+def test_numbers_that_overflow_prove_nothing():
+    wave = electromagnetic(2).linearize().plane_wave(("k_x", 0, "k_z"))
+    k = np.array([1e-280, 1e-200, 1e2, 1e3, 1e160, 1e250])
+    matrices, known = posed(wave, numbers(2), k_x=k, k_z=k)
+    (matrix,), grid = matrices.matrices, grid_of(matrices, known)
+    made = Solved.empty(6, matrix.degree)
+    ReducedWay.of(matrix, grid, np.arange(6)).prove(grid, np.arange(6), made)
+    proven = (made.state == Status.CERTIFIED).all(axis=1)
+    assert proven[2:4].all()
+    assert not proven[[0, 5]].any()
 
 
 def test_complex_wave_numbers():

@@ -112,7 +112,9 @@ def basis_of(matrix: NDArray[Any]) -> Basis:
         return Basis(values.real, values.imag, vectors, partner)
     lower = values.imag[:, None, :] < 0
     real = np.where(lower, -vectors.imag, vectors.real)
-    return Basis(values.real, values.imag, real, partner + np.sign(values.imag).astype(np.int64))
+    step = np.sign(np.nan_to_num(values.imag)).astype(np.int64)
+    partner = np.clip(partner + step, 0, values.shape[1] - 1)
+    return Basis(values.real, values.imag, real, partner)
 
 
 def corrected(basis: Basis, e: Uncertain) -> Basis:

@@ -62,13 +62,20 @@ class Coefficients:
     def at(self, points: Any) -> Coefficients:
         """A selection of points."""
         return Coefficients(
-            self.high[:, points],
-            self.low[:, points],
-            None if self.high_imag is None else self.high_imag[:, points],
-            None if self.low_imag is None else self.low_imag[:, points],
-            self.size[:, points],
+            chosen(self.high, points),
+            chosen(self.low, points),
+            None if self.high_imag is None else chosen(self.high_imag, points),
+            None if self.low_imag is None else chosen(self.low_imag, points),
+            chosen(self.size, points),
             self.noise,
         )
+
+
+def chosen(rows: NDArray[Any], points: NDArray[Any] | slice) -> NDArray[Any]:
+    """rows[:, points] with rows in one piece; NumPy's own result has columns in one piece, which slows all that follows."""
+    if isinstance(points, slice):
+        return rows[:, points]
+    return rows.compress(points, axis=1) if points.dtype == bool else rows.take(points, axis=1)
 
 
 def coefficients(scaled: Scaled, degree: int, points: Any) -> Coefficients:

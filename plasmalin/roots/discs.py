@@ -17,7 +17,7 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from .coefficients import Coefficients
+from .coefficients import Coefficients, chosen
 from .doubledouble import UNIT, Array, complex_horner, complex_noise, horner, real_noise
 
 FAIR, SHARP = 2.0**-53, 2.0**-56
@@ -53,7 +53,7 @@ class Guess:
         return len(self.x) + len(self.z) * (2 if self.mirrored else 1)
 
     def at(self, points: NDArray[Any]) -> Guess:
-        return Guess(self.x[:, points], self.z[:, points], self.mirrored)
+        return Guess(chosen(self.x, points), chosen(self.z, points), self.mirrored)
 
 
 @dataclass(frozen=True)
@@ -162,10 +162,10 @@ class Discs:
 
     def at(self, points: NDArray[np.bool_]) -> Discs:
         return Discs(
-            self.x_step[:, points],
-            self.z_step[:, points],
-            self.x_radius[:, points],
-            self.z_radius[:, points],
+            chosen(self.x_step, points),
+            chosen(self.z_step, points),
+            chosen(self.x_radius, points),
+            chosen(self.z_radius, points),
             self.fair[points],
             self.sharp[points],
         )

@@ -10,7 +10,7 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from .coefficients import Coefficients
+from .coefficients import Coefficients, chosen
 from .discs import Guess, spread
 from .doubledouble import Array
 
@@ -29,13 +29,13 @@ def settled(c: Coefficients, guess: Guess) -> Guess:
     active, before = np.arange(c.points), np.full(c.points, np.inf)
     for _ in range(ROUGH_STEPS):
         everything = len(active) == c.points
-        here = guess if everything else Guess(x[:, active], z[:, active], guess.mirrored)
+        here = guess if everything else guess.at(active)
         apart = spread(here)
         x[:, active], x_share = _stepped(plain, here.x, apart.x_product, apart.x_gap)
         z[:, active], z_share = _stepped(plain, here.z, apart.z_product, apart.z_gap)
         share = np.maximum(x_share, z_share)
         going = (share > SHORT) & ((share < 0.5 * before) | (share > LONGEST))
-        active, plain, before = active[going], plain[:, going], share[going]
+        active, plain, before = active[going], chosen(plain, going), share[going]
         if not len(active):
             break
         guess = Guess(x, z, guess.mirrored)

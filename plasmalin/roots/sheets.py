@@ -8,7 +8,7 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from .coefficients import Coefficients
+from .coefficients import Coefficients, chosen
 from .discs import Discs, Guess, discs
 from .doubledouble import Array
 from .settling import settled
@@ -50,9 +50,10 @@ class Sheet:
         """The points with that many real roots, as numbers near the roots."""
         rest = len(self.re) - real
         others = slice(real, real + rest // 2 if mirrored else None)
-        z = np.empty(self.re[others, points].shape, np.complex128)
-        z.real, z.imag = self.re[others, points], self.im[others, points]
-        return Guess(self.re[:real, points], z, mirrored)
+        re = chosen(self.re[others], points)
+        z = np.empty(re.shape, np.complex128)
+        z.real, z.imag = re, chosen(self.im[others], points)
+        return Guess(chosen(self.re[:real], points), z, mirrored)
 
     def put(self, points: NDArray[np.int64] | slice, guess: Guess, found: Discs) -> None:
         """Store corrected roots with their radii."""
@@ -72,9 +73,8 @@ class Sheet:
         return [int(n) for n in np.flatnonzero(np.bincount(self.real - UNKNOWN)[1:])]
 
     def at(self, points: NDArray[Any] | slice) -> Sheet:
-        return Sheet(
-            self.re[:, points], self.im[:, points], self.radius[:, points], self.real[points]
-        )
+        re, im, radius = (chosen(rows, points) for rows in (self.re, self.im, self.radius))
+        return Sheet(re, im, radius, self.real[points])
 
     def copy_from(self, other: Sheet, points: NDArray[Any]) -> None:
         for mine, theirs in zip(
@@ -104,7 +104,7 @@ def from_nothing(c: Coefficients) -> Sheet:
     made = proven(c, start, True)
     left = made.real == UNKNOWN
     if left.any():
-        made.copy_from(_from_cold(c.at(left), near[:, left]), left)
+        made.copy_from(_from_cold(c.at(left), chosen(near, left)), left)
     return made
 
 
@@ -112,12 +112,12 @@ def from_similar(c: Coefficients, near: Sheet) -> Sheet:
     """From the proven roots of similar polynomials; where that fails from nothing."""
     made = Sheet.unknown(c.degree, c.points)
     real = near.real == c.degree
-    for chosen, z in ((real, near.re), (~real, near.re + 1j * near.im)):
-        if chosen.any():
-            here = c.at(chosen)
-            start = _free(similar_starts(here, z[:, chosen]))
+    for mine, z in ((real, near.re), (~real, near.re + 1j * near.im)):
+        if mine.any():
+            here = c.at(mine)
+            start = _free(similar_starts(here, chosen(z, mine)))
             canonical = _canonical(start) if c.high_imag is None else start
-            made.copy_from(proven(here, canonical, True), chosen)
+            made.copy_from(proven(here, canonical, True), mine)
     left = made.real == UNKNOWN
     if left.any():
         made.copy_from(from_nothing(c.at(left)), left)

@@ -14,7 +14,7 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from .coefficients import Coefficients
+from .coefficients import Coefficients, chosen
 from .doubledouble import UNIT, Array
 
 GOLDEN = np.pi * (3 - np.sqrt(5))
@@ -92,8 +92,8 @@ def _iterated(c: NDArray[Any], z: NDArray[Any]) -> NDArray[Any]:
     active = np.arange(c.shape[1])
     for _ in range(SWEEPS):
         whole = len(active) == c.shape[1]
-        here = z if whole else z[:, active]
-        step, quiet = _aberth_step(c if whole else c[:, active], here)
+        here = z if whole else chosen(z, active)
+        step, quiet = _aberth_step(c if whole else chosen(c, active), here)
         z[:, active] = here - step
         active = active[~quiet]
         if not len(active):

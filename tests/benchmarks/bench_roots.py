@@ -168,6 +168,23 @@ def show_accuracy(case):
     print(f"accuracy, dusty plasma, |omega| from {small:.1e} to {large:.1e} rad/s: {worst:.1e}")
 
 
+def show_scattered(count, names, points=4096):
+    """Wave number, angle and more at random points: no two share anything."""
+    random, values = np.random.default_rng(1), numbers(count, drift=True)
+    values.pop("u_1")  # from no net current
+    values |= {n: values[n] * random.uniform(0.7, 1.4, points) for n in names}
+    wave = electromagnetic(count, drift=True).linearize().plane_wave(angle="theta")
+    waves = {"k": np.geomspace(*RANGE, points), "theta": random.uniform(0.1, 1.4, points)}
+    given = gather(wave, with_defaults(wave, values), waves)
+    problem = pose(wave, given)
+    ((family, _),), grid = problem.factors, grid_of(problem, given)
+    took = seconds(lambda: enclose(family, grid, points=points)) / points * 1e6
+    swept, terms = ", ".join(["k", "theta", *names]), len(family.exponents)
+    print(
+        f"drift, {len(wave.rows)} unknowns, scattered {swept}: {terms} terms, {took:.1f} us a point"
+    )
+
+
 def show_many(case, points=10_000_000):
     family, _ = case.problem.factors[0]
     k = np.geomspace(*RANGE, points)
@@ -214,6 +231,9 @@ def main():
         show(name, case, target)
         if name == "warm, ray":
             warm = case
+    show_scattered(2, ["B_0"])
+    show_scattered(2, ["B_0", "T_0", "T_1", "m_1"])
+    show_scattered(5, ["B_0"])
     show_tracking(warm)
     show_polarization()
     show_accuracy(Case(electromagnetic(3).linearize(), dusty_numbers(), 2000))

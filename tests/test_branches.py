@@ -72,12 +72,17 @@ def test_points_that_are_not_finite_are_masked():
     branches = wave.branches("k", [0.1, np.nan, 0.3], {"wp0": 1.0, "V": 1.0})
     assert np.isnan(branches.omega[:, 1]).all()
     assert np.isfinite(branches.omega[:, [0, 2]]).all()
+    assert (branches.status[:, 1] == "masked").all()
+    none = wave.branches("k", [np.nan, np.inf], {"wp0": 1.0, "V": 1.0})
+    assert (none.status == "masked").all()
+    with pytest.raises(plin.ValuesError, match="no finite root on this sweep"):
+        none.most_unstable()
 
 
 def test_any_parameter_may_vary():
     wave = CASES["counterstreaming-cold-beams"]()
     branches = wave.branches("V", np.linspace(0.1, 3.0, 40), {"wp0": 1.0}, k=1.0)
-    assert branches.name == "V"
+    assert branches.name == wave.branches(wave.linear.symbols["V"], [1.0], {"wp0": 1.0}, k=1.0).name
     assert branches.events[0].at == pytest.approx(np.sqrt(2), rel=1e-9)
     with pytest.raises(plin.ValuesError, match="group_velocity needs a sweep over a wave number"):
         _ = branches.group_velocity
@@ -138,6 +143,8 @@ def test_zero_modes_on_request():
     [
         ([[1.0]], {}, "give one dimension"),
         ([], {}, "not empty"),
+        (["a"], {}, "the values of 'k', which varies, must be real numbers"),
+        ([1.0, 2j], {}, "the values of 'k', which varies, must be real numbers"),
         ([1.0], {"k": 1.0}, "'k' is what varies"),
         ([1.0, 2.0], {"V": np.array([1.0, 2.0])}, "only one quantity varies"),
     ],

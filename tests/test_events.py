@@ -122,6 +122,33 @@ def test_angles_are_left_to_tracking():
     assert not branches.events_complete
 
 
+def test_branches_through_infinity():
+    """omega = c k/(1 - k²) beside a coupled mode: one root comes back from the other side, the other one goes on."""
+    model = plin.FluidModel("a pole", axes="x")
+    a, b = model.scalar("a"), model.scalar("b")
+    model.law("a", partial_t(plin.multiplier(a, 1 - plin.k_x**2)), dot(components(1), grad(a)) + b)
+    model.law("b", partial_t(b) + dot(components(1), grad(b)), a / 10)
+    wave = model.linearize().plane_wave("x")
+    for k in (np.linspace(0.5, 2.0, 7), np.linspace(0.5, 2.05, 7)):
+        branches = wave.branches("k", k)
+        far = int(np.abs(branches.omega[:, np.abs(k - 1).argmin()]).argmax())
+        through, other = branches.omega[far].real, branches.omega[1 - far].real
+        assert (through[k < 1] < 0).all()
+        assert (through[k > 1] > 1.5).all()
+        assert np.abs(np.diff(other)).max() < 0.4
+        assert branches.events_complete
+        assert branches.events == ()
+    assert (wave.branches("k", [0.5, 1.0, 2.0]).status == "at infinity").sum() == 1
+
+
+def test_more_than_two_factors_at_one_place():
+    """Sound, whistlers and ion cyclotron waves along the field, three factors: all are zero at k = 0."""
+    wave = CASES["hall-mhd-parallel"]()
+    values = read("hall-mhd-parallel")["parameters"]
+    branches = wave.branches("k", np.linspace(-1.0, 1.0, 6), values)
+    assert [(e.kind, e.at, e.roots) for e in branches.events] == [("crossing", 0.0, 6)]
+
+
 # On polynomials ----------------------------------------------------------------------------------
 
 RATIONAL = st.fractions(-4, 4, max_denominator=6)

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Sequence
 from contextlib import contextmanager
 from fractions import Fraction
-from itertools import combinations
+from itertools import combinations, takewhile
 from math import log
 from typing import Any
 
@@ -114,6 +114,18 @@ class Local:
                 table.pop()
             found = complex_roots(table, 60) if len(table) > 1 else []
             return [(re, im) for re, im, _, m in found for _ in range(m)]
+
+    def infinite(self, at: Fraction) -> int:
+        """How many roots go to infinity at a place."""
+        with _precision():
+            s = real_ball(at)
+            tops = zip(self.rows[:0:-1], self.sizes[:0:-1], strict=True)
+            return len(list(takewhile(lambda top: _vanishes(top[0](s), top[1](abs(s))), tops)))
+
+    def count(self, at: Fraction, x: Point) -> int:
+        """How many roots are at a point."""
+        with _precision():
+            return sum(_distance(x, y) <= self.near for y in self.roots(at))
 
     def shared(self, other: Local, at: Fraction) -> list[Point]:
         """The roots that are roots of another polynomial, at a place."""

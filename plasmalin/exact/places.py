@@ -68,6 +68,12 @@ def shared_places(
     return _places(lowered, between)
 
 
+def infinite_places(terms: Sequence[Term], between: Interval) -> list[Place]:
+    """Where the coefficient of the highest power of x vanishes, so that a root goes to infinity; exact, as it is cheap."""
+    highest = max(i for i, _, _ in terms)
+    return _roots_of([(j, c) for i, j, c in terms if i == highest], between)
+
+
 def _places(polynomials: list[list[Term]], between: Interval) -> list[Place] | None:
     """By the discriminant of one polynomial or the resultant of two, in s^2 where only that occurs."""
     even = all(j % 2 == 0 for terms in polynomials for _, j, _ in terms)

@@ -47,7 +47,8 @@ def _nearest(omega: NDArray[np.complex128], events: Sequence[Event]) -> list[Ord
     """For each event the roots that meet in it."""
     groups, free = [], np.arange(len(omega))
     for event in events:
-        distance = np.abs(omega[free] - event.omega)
+        away = omega[free] if event.kind == "pole" else omega[free] - event.omega
+        distance = -np.abs(away) if event.kind == "pole" else np.abs(away)
         groups.append(
             free[np.sort(np.argsort(np.where(np.isnan(distance), np.inf, distance))[: event.roots])]
         )
@@ -82,7 +83,7 @@ def _pass(left: Ends, right: Ends, group: Order, step: Order, kind: str, power: 
     """
     partners = step[group].copy()
     before, after = (w - w.mean() for w in (left.omega[group], right.omega[partners]))
-    if kind == "onset":
+    if kind in {"onset", "pole"}:
         ranked = (np.lexsort((w.real, w.imag)) for w in (before, after))
         step[group[next(ranked)]] = partners[next(ranked)]
         return

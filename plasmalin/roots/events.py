@@ -36,13 +36,35 @@ class Event:
 
 def distinct(events: Iterable[Event], near: float = 1e-9) -> list[Event]:
     """In order, and meetings that differ by rounding only, once; a coalescence counts before a crossing."""
-    kept: list[Event] = []
-    for event in sorted(events, key=lambda e: (e.kind, -e.radius), reverse=True):
-        if not any(_same(event, other, near) for other in kept):
+    found = sorted(events, key=lambda e: (e.kind, e.roots, -e.radius), reverse=True)
+    size, kept = _size(found), list[Event]()
+    for event in found:
+        if not any(_same(event, other, near, size) for other in kept):
             kept.append(event)
-    return sorted(kept, key=lambda e: (e.at, e.omega.real, e.omega.imag))
+    return in_order(kept)
 
 
-def _same(a: Event, b: Event, near: float) -> bool:
-    same_place = np.isclose(a.at, b.at, near)
-    return bool(same_place and np.isclose(a.omega, b.omega, max(near, 1e-6)))
+def joined_events(inside: Iterable[Event], between: Iterable[Event]) -> list[Event]:
+    """Those of all factors and those between factors; where more cross between factors, only these."""
+    ours, others = list(inside), list(between)
+    size = _size([*ours, *others])
+    kept = [
+        e for e in ours if not any(e.kind == o.kind and _same(e, o, 1e-13, size) for o in others)
+    ]
+    return in_order([*kept, *others])
+
+
+def in_order(events: Iterable[Event]) -> list[Event]:
+    """By place, then by omega."""
+    return sorted(events, key=lambda e: (e.at, e.omega.real, e.omega.imag))
+
+
+def _size(events: Iterable[Event]) -> tuple[float, float]:
+    """The largest values of what varies and of |omega|."""
+    pairs = [(abs(e.at), abs(e.omega)) for e in events]
+    return max((at for at, _ in pairs), default=0.0), max((w for _, w in pairs), default=0.0)
+
+
+def _same(a: Event, b: Event, near: float, size: tuple[float, float]) -> bool:
+    apart = 1e-12 * size[1] + max(near, 1e-6) * max(abs(a.omega), abs(b.omega))
+    return abs(a.at - b.at) <= near * size[0] and abs(a.omega - b.omega) <= apart

@@ -16,7 +16,7 @@ from numpy.typing import NDArray
 from ..exact.coalescence import meeting
 from ..exact.eliminants import Term
 from ..exact.local import Local
-from ..exact.places import Place, meeting_places, shared_places
+from ..exact.places import Place, infinite_places, meeting_places, shared_places
 from .events import Event, distinct
 from .family import Family
 
@@ -49,6 +49,16 @@ def all_meetings(family: Family, s: NDArray[np.float64], largest: float) -> list
     return [_event(kind, place, x, n) for place, (x, n, kind) in found]
 
 
+def all_poles(family: Family, s: NDArray[np.float64]) -> list[Event]:
+    """Where roots go to infinity, for tracking: between a first and a last value these are no meetings."""
+    if len(s) < 2:
+        return []
+    terms = terms_of(family)
+    local = Local(terms, Fraction(1), Fraction(1))
+    places = [at for at, _ in infinite_places(terms, _ends(s))]
+    return [Event("pole", float(at), complex(np.inf), roots=local.infinite(at)) for at in places]
+
+
 def all_crossings(
     families: Sequence[Family], s: NDArray[np.float64], largest: float
 ) -> list[Event] | None:
@@ -56,12 +66,17 @@ def all_crossings(
     if len(s) < 2:
         return []
     between, found = _ends(s), list[Event]()
-    for pair in combinations(map(terms_of, families), 2):
-        places = shared_places(*pair, between)
+    terms = [terms_of(family) for family in families]
+    width = between[1] - between[0]
+    locals_ = [Local(t, Fraction(largest), width) for t in terms] if len(terms) > 1 else []
+    for first, second in combinations(range(len(terms)), 2):
+        places = shared_places(terms[first], terms[second], between)
         if places is None:
             return None
-        first, second = (Local(terms, Fraction(largest), between[1] - between[0]) for terms in pair)
-        found += [_event("crossing", p, x) for p in places for x in first.shared(second, p[0])]
+        for place in places:
+            for x in locals_[first].shared(locals_[second], place[0]):
+                meet = sum(local.count(place[0], x) for local in locals_)
+                found.append(_event("crossing", place, x, meet))
     return distinct(found, SAME)
 
 

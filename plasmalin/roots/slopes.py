@@ -80,8 +80,8 @@ class ScaledFamily:
         for first in range(0, len(omega), BATCH):
             part = slice(first, first + BATCH)
             z = omega[part].T
-            z = np.ldexp(1.0, -self.scales[0]) * (z if z.imag.any() else z.real)
             with np.errstate(all="ignore"):
+                z = np.ldexp(1.0, -self.scales[0]) * (z if z.imag.any() else z.real)
                 slope = self._mirrored_slope(z, [x[part] for x in g], [x[part] for x in ds])
                 slope[~np.isfinite(slope)] = 0.0
             slopes[part] = slope.T

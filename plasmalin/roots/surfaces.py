@@ -149,13 +149,14 @@ class Surfaces(Labelled):
 def find_surfaces(
     wave: WaveMatrix,
     names: tuple[str, ...],
-    along: tuple[Any, ...],
+    along: Any,
     values: Mapping[Any, Any],
     waves: dict[str, Any],
 ) -> Surfaces:
     """All surfaces; see `WaveMatrix.branches`."""
     zero_modes = bool(waves.pop("zero_modes", False))
-    if len(names) != 2 or len(along) != 2 or names[0] == names[1]:
+    pair = isinstance(along, tuple | list) and len(along) == 2
+    if len(names) != 2 or not pair or names[0] == names[1]:
         raise ValuesError(
             "a grid takes two different names and, in the same order, the values of both"
         )

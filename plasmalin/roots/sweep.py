@@ -15,9 +15,9 @@ from .axis import Axis, constants
 from .branches import Branches
 from .crossings import seen_crossings
 from .enclose import ZERO, Enclosure, enclose
-from .events import Event
+from .events import Event, joined_events
 from .family import Family
-from .meetings import all_crossings, all_meetings, placed
+from .meetings import all_crossings, all_meetings, all_poles, placed
 from .slopes import ScaledFamily
 from .solve import Problem, grid_of, pose, rates_of
 from .solved import Status, joined
@@ -82,8 +82,10 @@ class Sweep:
         return replace(self.numbers, swept={**others, self.symbol: s}, shape=s.shape)
 
     def branches(self, points: NDArray[np.float64], zero_modes: bool) -> Branches:
-        s = np.unique(points[np.isfinite(points)])
-        place = np.searchsorted(s, np.where(np.isfinite(points), points, s[0] if len(s) else 0.0))
+        finite = np.isfinite(points)
+        # Points that are not finite are masked in the end; until then any value does.
+        known = np.where(finite, points, points[finite][0] if finite.any() else 1.0)
+        s, place = np.unique(known, return_inverse=True)
         tracks = [self._factor(family, s) for family, _ in self.problem.factors]
         times = [m for _, m in self.problem.factors]
         parts = [t.found for t, m in zip(tracks, times, strict=True) for _ in range(m)]
@@ -94,10 +96,11 @@ class Sweep:
         slopes.append(np.zeros((len(s), zeros), complex))
         factor += [-1] * zeros
         omega, radius, _, state = joined([p.arrays() for p in parts], 1)
-        first = np.lexsort((omega[0].imag, omega[0].real)) if len(s) else np.arange(len(factor))
+        first = np.lexsort((omega[0].imag, omega[0].real))
         arrays = omega, radius, state, np.concatenate(slopes, axis=1)
         omega, radius, state, slope = (_placed(a, place, first) for a in arrays)
-        omega[:, ~np.isfinite(points)], radius[:, ~np.isfinite(points)] = np.nan, np.inf
+        omega[:, ~finite] = slope[:, ~finite] = complex(np.nan, np.nan)
+        radius[:, ~finite], state[:, ~finite] = np.inf, Status.MASKED
         events, complete = self._events(tracks, s)
         return Branches(
             self.wave, self.numbers, omega, radius, Status.words()[state], tuple(factor[b] for b in first),
@@ -116,10 +119,13 @@ class Sweep:
     def _factor(self, family: Family, s: NDArray[np.float64]) -> Track:
         found = self._enclosed(family, s)
         known = all_meetings(family, s, largest(found.omega)) if self._plain else None
+        places = None if known is None else [*known, *all_poles(family, s)]
         solve, slopes = self._solver(family, s, found.omega)
         slope = slopes(found.omega, s)
-        order, events = track(solve, s, found.omega, slope, known, mirrored=self._mirrored(family))
-        if events and known is None and self._plain:
+        order, events = track(solve, s, found.omega, slope, places, mirrored=self._mirrored(family))
+        if known is not None:
+            events = known
+        elif events and self._plain:
             events = placed(family, events, (largest(found.omega), float(np.abs(s).max())))
         if not (order == np.arange(order.shape[1])).all():
             found, slope = found.reordered(order), np.take_along_axis(slope, order, axis=1)
@@ -136,8 +142,8 @@ class Sweep:
         if between is None:
             parts = [(t.found.omega, t.slope, t.solve) for t in tracks]
             between = [e for a, b in combinations(parts, 2) for e in seen_crossings(s, a, b)]
-        whole = [*(e for t in tracks for e in t.events), *between]
-        return tuple(sorted(whole, key=lambda e: (e.at, e.omega.real, e.omega.imag))), complete
+        inside = [e for t in tracks for e in t.events]
+        return tuple(joined_events(inside, between)), complete
 
     def order(
         self, family: Family, s: NDArray[np.float64], omega: NDArray[np.complex128]

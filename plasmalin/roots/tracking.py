@@ -52,7 +52,7 @@ def track(
     omega, slope : ndarray, shape (n, d)
         Roots sorted by (Re, Im) at every point.
     known : sequence of Event, optional
-        All meetings, when they are known.
+        All meetings, and the poles between them, when they are known.
     mirrored : bool
         Whether roots are real or come as pairs of conjugates.
 
@@ -63,7 +63,7 @@ def track(
     events : list of Event
         `known`, or those that were seen.
     """
-    meeting = coincide(omega)
+    meeting = coincide(omega) | ~np.isfinite(omega).all(axis=1)
     if known is not None:
         meeting |= np.isin(s, [e.at for e in known])
     meeting &= not meeting.all()

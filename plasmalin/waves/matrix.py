@@ -313,9 +313,10 @@ class WaveMatrix:
         from ..roots.surfaces import find_surfaces
         from ..roots.sweep import find_branches
 
-        if not isinstance(name, str):
-            return find_surfaces(self, tuple(name), tuple(along), values or {}, waves)
-        return find_branches(self, name, along, values or {}, waves)
+        if isinstance(name, tuple | list):
+            names = tuple(str(getattr(n, "name", n)) for n in name)
+            return find_surfaces(self, names, along, values or {}, waves)
+        return find_branches(self, getattr(name, "name", name), along, values or {}, waves)
 
     def advice(self, values: Mapping[Any, Any] | None = None, **waves: Any) -> Advice:
         """Where the fluid description is outside its range at these numbers, in words.

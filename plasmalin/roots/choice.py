@@ -14,6 +14,7 @@ from ..exact.determinant import determinant
 from ..exact.minors import TooLong
 from ..exact.pencil import Block, Circle, block_of, circles_of, diagonal_parts
 from ..exact.polynomial import ExactPolynomial
+from .circular import filled_up
 from .matrixfamily import MatrixFamily
 from .solve import (
     LONGEST,
@@ -82,7 +83,7 @@ def by_blocks(
     matrices = tuple(_matrix(block, size, circles, swept) for block, size in blocks)
     degree, zero_modes = general_degree(wave)
     return Problem(
-        tuple((family_of(p, swept), m) for p, m in kept),
+        tuple((filled_up(family_of(p, swept), swept), m) for p, m in kept),
         swept,
         zeros + sum(m.zeros for m in matrices) - zero_modes,
         degree,

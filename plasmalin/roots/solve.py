@@ -24,6 +24,7 @@ from ..exact.determinant import determinant
 from ..exact.minors import TooLong
 from ..exact.polynomial import ExactPolynomial
 from ..exact.sines import on_circle
+from .circular import filled_up, with_partners
 from .family import Family, Grid
 from .matrixfamily import MatrixFamily
 from .values import high_precision
@@ -116,8 +117,8 @@ def _written_out(wave: WaveMatrix, fixed: Fixed, solved: Solved, longest: float)
     filled = filled_in(wave, fixed, solved)
     whole = determinant(filled, len(wave.rows), wave.omega, longest=longest)
     kept, lowest = factors_of(whole)
-    swept = tuple(g for g in whole.generators if g.free_symbols)
-    factors = tuple((family_of(p, swept), m) for p, m in kept)
+    swept = with_partners(g for g in whole.generators if g.free_symbols)
+    factors = tuple((filled_up(family_of(p, swept), swept), m) for p, m in kept)
     zeros, allowed = lowest - zero_modes, zero_modes - wave.forbidden_modes
     return Problem(factors, swept, zeros, degree, allowed, tuple(p for p, _ in kept))
 

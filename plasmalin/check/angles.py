@@ -9,6 +9,7 @@ from typing import Any
 from sympy import Abs, Expr, Symbol, cos, expand_trig, sin, sqrt
 from sympy import tan as tangent
 
+from ..declare.operators import omega
 from ..exact.polynomial import ExactPolynomial
 
 
@@ -34,7 +35,7 @@ class Angles:
             plain = f if f.args[0] in self.forms or f.args[0].is_Symbol else expand_trig(f)
             replaced[f] = plain.xreplace({g: self._image(g) for g in plain.atoms(sin, cos)})
         for a in expr.atoms(Abs):
-            replaced[a] = a.args[0] if a.args[0].is_Symbol else a
+            replaced[a] = a.args[0] if a.args[0].is_Symbol and a.args[0] != omega else a
         return expr.xreplace(replaced) if replaced else expr
 
     def _image(self, function: Expr) -> Expr:

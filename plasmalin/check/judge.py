@@ -18,12 +18,15 @@ from .claim import WaveNames, make_claim, make_rate
 from .compare import compare, covered, has_only_roots_of
 from .convention import Convention, in_si, to_si
 from .limit import verify_limit
+from .places import changed, sign_edits
 from .rates import rate_order
 from .roles import roles
 from .series import series_order, series_slip
+from .sheets import NOWHERE, sheet_of
 from .slips import repairs, repairs_as_limit
 from .somewhere import LEADING, Somewhere, limit_notes, where_right
 from .stated import read_stated
+from .telling import cost, told
 from .verdict import Slip, Verdict
 
 if TYPE_CHECKING:
@@ -73,7 +76,7 @@ def judge(
 
 
 def _answer(case: Case) -> Verdict:
-    for question in (_same, _as_stated):
+    for question in (_same, _on_no_sheet, _as_stated):
         found = question(case)
         if found is not None:
             return found
@@ -99,6 +102,25 @@ def _answer(case: Case) -> Verdict:
     late = " within the time given" if case.time == 0 else ""
     proof = f"no common divisor takes up the claim; no single repair was found{late}"
     return case.verdict("differs", proof, notes=(*notes, *(_almost(case) or side_by_side(case))))
+
+
+def _on_no_sheet(case: Case) -> Verdict | None:
+    """A claim that has no solution with the principal values of its roots, with the sign that gives it one."""
+    stated = case.as_stated()
+    if sheet_of(stated.claim, stated.fitting).possible:
+        return None
+    slips = []
+    for edit in sign_edits(case.whole):
+        turned = changed(case.whole, edit.changes(S.NegativeOne))
+        there = replace(case, claim=turned, whole=turned)
+        if _same(there) or _as_stated(there):
+            slips.append((cost(edit, S.NegativeOne), told(edit, S.NegativeOne)))
+    if not slips:
+        slips = [
+            (r.cost, s) for r in repairs(case.claim, case.fitting, case.time / 2) for s in r.slips
+        ]
+    found = tuple(s for _, s in sorted(slips, key=lambda s: s[0]))
+    return case.verdict("differs", NOWHERE, slips=found, notes=case.used)
 
 
 def _almost(case: Case) -> tuple[str, ...]:
@@ -175,12 +197,13 @@ def _same(case: Case) -> Verdict | None:
     """Identical, a factor or a branch, with the conditions of the background where they are needed."""
     found = compare(case.claim, case.plain)
     if found is not None:
-        notes = (*case.extra_zeros(case.plain), *case.unused)
+        notes = (*found.notes, *case.extra_zeros(case.plain), *case.unused)
         return case.verdict(found.kind, found.proof, agrees=True, notes=notes)
     if case.derived.conditions:
         found = compare(case.claim, case.derived)
         if found is not None:
-            notes = (*in_words(case.derived), *case.extra_zeros(case.derived), *case.unused)
+            zeros = case.extra_zeros(case.derived)
+            notes = (*found.notes, *in_words(case.derived), *zeros, *case.unused)
             return case.verdict(found.kind, found.proof, agrees=True, notes=notes)
     return None
 
@@ -193,7 +216,7 @@ def _as_stated(case: Case) -> Verdict | None:
     if values:
         found = compare(stated.claim, stated.derived)
         if found is not None:
-            notes = (*stated.used, *case.contradicted(named))
+            notes = (*found.notes, *stated.used, *case.contradicted(named))
             return case.verdict("special", found.proof, agrees=True, conditions=named, notes=notes)
     if not ratios:
         return None

@@ -78,6 +78,15 @@ def edits(claim: Claim) -> list[Edit]:
     return found
 
 
+def sign_edits(claim: Claim) -> list[Edit]:
+    """Every term of a side, with another factor."""
+    return [e for e in edits(claim) if e.kind == "times" and _is_term_of_side(e)]
+
+
+def _is_term_of_side(edit: Edit) -> bool:
+    return all(part in ("left", "right") and len(path) < 2 for part, path in edit.spots)
+
+
 def grouped(claim: Claim) -> list[tuple[list[Spot], Expr]]:
     """The terms of a claim; those that are equal up to their sign are taken together."""
     found: dict[Expr, list[Spot]] = {}

@@ -79,9 +79,14 @@ def _by_shorthands(search: Search) -> Iterator[Repair]:
 
 
 def _repaired(search: Search, edit: Edit) -> Iterator[Repair]:
+    """Of two values that differ in sign, as they do under a square, the plain one if it will do."""
     values = solve_one(search, edit.changes(unknown))
-    signs = [v for v in values if not (-v in values and v.could_extract_minus_sign())]
-    yield from _known(search, edit, signs)
+    done: set[Expr] = set()
+    for value in sorted(values, key=lambda v: bool(v.could_extract_minus_sign())):
+        if -value not in done:
+            found = list(_known(search, edit, [value]))
+            done |= {value} if found or value == 1 else set()
+            yield from found
 
 
 def _known(search: Search, edit: Edit, values: Iterable[Expr]) -> Iterator[Repair]:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Mapping
+from collections.abc import Collection, Mapping
 from dataclasses import dataclass
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
@@ -76,6 +76,17 @@ class Claim:
             meaning(symbol)
         return found
 
+    @property
+    def used(self) -> set[Symbol]:
+        """The shorthands that the sides hold, by themselves or through others."""
+        found: set[Symbol] = set()
+        new = (self.left - self.right).free_symbols & set(self.definitions)
+        while new:
+            found |= new
+            new = {s for n in new for s in self.definitions[n].free_symbols}
+            new = new & set(self.definitions) - found
+        return found
+
     def mapped(self, change: Any) -> Claim:
         """The claim with a function applied to both sides and to every definition."""
         made = {s: change(d) for s, d in self.definitions.items()}
@@ -84,8 +95,12 @@ class Claim:
     @property
     def solved(self) -> bool:
         """Whether it gives ω itself, alone on one side."""
+        return self.solved_for({omega})
+
+    def solved_for(self, symbols: Collection[Expr]) -> bool:
+        """Whether it gives one of some symbols, alone on one side."""
         sides = (self.left, self.right), (self.right, self.left)
-        return any(a == omega and not self.written_out(b).has(omega) for a, b in sides)
+        return any(a in symbols and not self.written_out(b).has(a) for a, b in sides)
 
     @property
     def reading(self) -> str:

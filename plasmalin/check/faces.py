@@ -89,6 +89,14 @@ class Faces:
         others = (v for v in self.claimed if v not in on)
         return Face(tuple(on), zeros, tuple(minus(self.space.order(v), first) for v in others))
 
+    def inside(self, face: Face) -> Vector | None:
+        """Sizes at which the terms of a face balance and all others of the claim are smaller."""
+        return weights(self.space.sized, [*self.cone, *face.above], face.zeros)
+
+    def can_be_small(self, v: Vector, face: Face) -> bool:
+        """Whether a monomial is small at some sizes at which a face balances."""
+        return weights(self.space.sized, [*self.cone, v], face.zeros, face.above) is not None
+
     def _weights(self, face: Face, weak: Sequence[Vector] = ()) -> Vector | None:
         return weights(self.space.sized, self.cone, face.zeros, [*face.above, *weak])
 
@@ -190,20 +198,24 @@ class Faces:
             return False
         return product(here, self.claimed[anchor]) == product(there, self.claimed[term])
 
+    def pairs(self, face: Face) -> Iterator[Face]:
+        """Where two terms of a face balance, with different powers of ω, and the others are smaller."""
+        for a, b in combinations(face.on, 2) if len(face.on) > 2 else ():
+            pair = self._face((a, b))
+            if a[0] != b[0] and time.monotonic() < self.end and self._weights(pair) is not None:
+                yield pair
+
     def apart(self, face: Face, answer: Leading) -> list[tuple[Vector, Face]]:
         """What must be small besides where only two of the face's terms balance and the others are smaller."""
         found: list[tuple[Vector, Face]] = []
-        for a, b in combinations(face.on, 2) if len(face.on) > 2 else ():
-            pair = self._face((a, b))
-            if a[0] == b[0] or time.monotonic() > self.end or self._weights(pair) is None:
-                continue
+        for pair in self.pairs(face):
             part = {v: self.claimed[v] for v in pair.on}
             more = self._followed(pair, part, answer.shifts)
             found += [(v, pair) for v, _ in more.needed] if more else []
         return found
 
     def correction(self, term: Vector, face: Face, answer: Leading) -> list[Vector] | None:
-        """Ratios that must be small for a claimed term beyond the face to stand; None where it is not derived."""
+        """Ratios that must be small for a claimed term beyond the face to stand; None where it is not plain that it does."""
         if not all(self._same(s, term, face) for s in answer.shifts):
             return None
         quotient = Quotient(face.zeros)
@@ -211,7 +223,9 @@ class Faces:
         above = [quotient.reduced(v) for v in face.above]
         size = self._reduced(minus(term, face.on[0]), quotient)
         ratios = {minus(v, size) for v in answer.rays}
-        return extreme(v for v in sorted(ratios) if any(v) and not implied(v, cone, above))
+        if any(not any(v) for v in ratios):
+            return None
+        return extreme(v for v in sorted(ratios) if not implied(v, cone, above))
 
 
 def slopes(claimed: Terms, w: Vector, space: Space) -> Iterator[Vector]:

@@ -11,13 +11,14 @@ from typing import TYPE_CHECKING, Any
 from sympy import Add, Rational, S, Symbol, cancel, factor, sqrt
 
 from ..declare.notation import paper
+from ..declare.operators import omega
 from ..errors import NonPolynomialError
 from ..waves.coefficients import normalized_coefficients
 from .case import Case, in_words
 from .claim import WaveNames, make_claim, make_rate
 from .compare import compare, covered, has_only_roots_of
 from .convention import Convention, in_si, to_si
-from .limit import verify_limit
+from .limit import LimitFound, verify_limit
 from .places import changed, sign_edits
 from .rates import rate_order
 from .roles import roles
@@ -142,7 +143,8 @@ def _slips(case: Case, somewhere: Somewhere | None) -> tuple[tuple[Slip, ...], b
     if len(case.derived.polynomial) > SEARCHED:
         case.reasons.append("the relation is too long to be searched for slips")
         return (), False
-    if case.claim.solved and somewhere is None and (later := _later_term(case)):
+    solved = case.claim.solved_for({omega, *case.derived.wave_symbols})
+    if solved and somewhere is None and (later := _later_term(case)):
         return later, False
     answered = somewhere is not None and not somewhere.doubtful
     budget = min(case.time / 2, ASIDE) if answered else case.time / 2
@@ -151,7 +153,7 @@ def _slips(case: Case, somewhere: Somewhere | None) -> tuple[tuple[Slip, ...], b
     exact = any(n.is_number and n not in (0, 1) for n in numbers)
     if not found and case.time > 0 and not answered:
         found = repairs_as_limit(case.claim, case.fitting, case.time / 2)
-    if not found and not answered and not case.claim.solved:
+    if not found and not answered and not solved:
         return _later_term(case), False
     return tuple(s for repair in found for s in repair.slips), exact
 
@@ -225,17 +227,23 @@ def _as_stated(case: Case) -> Verdict | None:
     angles = stated.derived.angles.symbols
     if not isinstance(limit, str) and any(g.free_symbols & angles for g in limit.besides):
         limit = "a term that the claim keeps is right in one direction only"
-    if not isinstance(limit, str):
-        notes = (*also, *limit_notes(limit))
-        return case.verdict("limit", LEADING, agrees=True, conditions=limit.groups, notes=notes)
+    if not isinstance(limit, str) and not limit.corrected:
+        return _limit(case, limit, also)
     series = series_order(stated.whole, stated.derived, ratios, case.values, case.time / 3)
     if series is not None:
         notes = (*also, *series.notes)
         return case.verdict(
             "series", series.proof, agrees=True, conditions=series.groups, notes=notes
         )
+    if not isinstance(limit, str):
+        return _limit(case, limit, also)
     case.reasons.append(f"under the stated conditions: {limit}")
     return None
+
+
+def _limit(case: Case, limit: LimitFound, also: tuple[str, ...]) -> Verdict:
+    notes = (*also, *limit_notes(limit))
+    return case.verdict("limit", LEADING, agrees=True, conditions=limit.groups, notes=notes)
 
 
 def side_by_side(case: Case) -> Iterator[str]:

@@ -8,19 +8,21 @@ memory). A claim is a limit when it is such a face, up to factors that do not va
 from __future__ import annotations
 
 import time
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import replace
 from itertools import product
 
-from sympy import Expr, S
+from sympy import Add, Expr, S
 
 from ..declare.notation import paper
+from ..declare.operators import omega
 from .claim import Claim
 from .cones import weights
 from .derived import Derived
-from .leading import LimitFound, Question, apart, best_of, question
+from .leading import BEYOND, LimitFound, Question, apart, best_of, question
 from .monomials import CHARGE_NUMBER, conditions
 from .orderings import find_limits
+from .reference import about, from_reference, references
 
 __all__ = ["LimitFound", "find_limits", "verify_limit"]
 
@@ -34,6 +36,8 @@ def verify_limit(
 ) -> LimitFound | str:
     """The claim as the leading part wherever an author's ratios are small; or the reason why it is not.
 
+    Where it is that in ω but not beyond, it may be one in the distance of ω from a frequency that it names.
+
     Parameters
     ----------
     claim : Claim
@@ -44,6 +48,65 @@ def verify_limit(
         As for `find_limits`.
     """
     given, end = list(ratios), time.monotonic() + budget
+    found = _with_charges(claim, derived, given, values, end)
+    for reference in references(claim) if isinstance(found, str) else ():
+        near = _near(claim, derived, reference, given, values, end)
+        if near is not None:
+            return near
+    return found
+
+
+def _near(
+    claim: Claim,
+    derived: Derived,
+    reference: Expr,
+    given: list[Expr],
+    values: Mapping[str, float] | None,
+    end: float,
+) -> LimitFound | None:
+    """The same in the distance of ω from a reference frequency, where the claim is no wrong leading part in ω."""
+    moved, there = about(claim, derived, reference)
+    near = [from_reference(r, reference) for r in given]
+    plain = [r for r in given if not _is_sum_with_omega(claim.written_out(r))]
+    wide = _with_charges(claim, derived, plain, values, end)
+    if isinstance(wide, str) and not wide.startswith(BEYOND):
+        return None
+    found = _with_charges(moved, there, near, values, end)
+    if isinstance(found, str):
+        return None
+    small = tuple(map(question(claim, derived, values).small, given))
+    return replace(
+        found, groups=small, notes=(f"in powers of ω − {paper(reference)}", *found.notes)
+    )
+
+
+def _is_sum_with_omega(ratio: Expr) -> bool:
+    """Whether a condition is on a distance from a frequency, which is no size in ω."""
+    return any(a.has(omega) for a in ratio.atoms(Add))
+
+
+def limits_about(
+    claim: Claim, derived: Derived, values: Mapping[str, float] | None, budget: float
+) -> Iterator[LimitFound]:
+    """Orderings under which a claim is a leading part in the distance of ω from a frequency that it names."""
+    end = time.monotonic() + budget
+    for reference in references(claim):
+        moved, there = about(claim, derived, reference)
+        for found in find_limits(moved, there, values, end - time.monotonic()):
+            groups = [g.group.xreplace({omega: omega - reference}) for g in found.groups]
+            limit = verify_limit(claim, derived, groups, values, end - time.monotonic())
+            if not isinstance(limit, str):
+                yield replace(limit, groups=found.groups)
+
+
+def _with_charges(
+    claim: Claim,
+    derived: Derived,
+    given: list[Expr],
+    values: Mapping[str, float] | None,
+    end: float,
+) -> LimitFound | str:
+    """With charge numbers of any size, else of order one."""
     found = _verified(question(claim, derived, values), derived, given, end)
     charges = sorted(
         (s for s in derived.symbols if CHARGE_NUMBER.match(s.name)), key=lambda s: s.name
@@ -67,6 +130,7 @@ def _verified(asked: Question, derived: Derived, given: list[Expr], end: float) 
     notes: list[str] = []
     besides: list[Expr] = []
     left_out: list[Expr] = []
+    corrected = False
     for part, cone in product(asked.parts, cones):
         answer = best_of(asked, part, cone, end)
         if isinstance(answer, str):
@@ -77,6 +141,8 @@ def _verified(asked: Question, derived: Derived, given: list[Expr], end: float) 
         besides += answer.besides
         notes += apart(asked, answer)
         left_out += answer.neglected
+        corrected = corrected or answer.corrected
     groups = tuple(asked.small(r) for r in given)
     neglected = left_out[0] if left_out else S.Zero
-    return LimitFound(groups, neglected, tuple(dict.fromkeys(notes)), tuple(besides))
+    said = tuple(dict.fromkeys(notes))
+    return LimitFound(groups, neglected, said, tuple(besides), corrected)

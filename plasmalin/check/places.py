@@ -78,6 +78,16 @@ def edits(claim: Claim) -> list[Edit]:
     return found
 
 
+def addends(claim: Claim) -> Iterator[Spot]:
+    """The sides, and every term of a sum in them and in the definitions that they use."""
+    used = {n.name for n in claim.used}
+    yield from ((part, ()) for part in ("left", "right") if parts(claim)[part] != 0)
+    for part, expr in parts(claim).items():
+        for path, node in nodes(expr) if part in ("left", "right", *used) else ():
+            if isinstance(node, Add):
+                yield from ((part, (*path, i)) for i in range(len(node.args)))
+
+
 def sign_edits(claim: Claim) -> list[Edit]:
     """Every term of a side, with another factor."""
     return [e for e in edits(claim) if e.kind == "times" and _is_term_of_side(e)]

@@ -1,4 +1,4 @@
-"""A claim that gives ω, or ω², as a sum of terms of falling size: an expansion of one derived branch.
+"""A claim that gives ω or ω², or k or k², as a sum of terms of falling size: an expansion of one derived branch.
 
 With ω = f + δ the derived relation is a polynomial in δ. When symbols scale with powers of a small ε, the lower edge of
 its Newton polygon at the constant term gives the order and the leading part of the smallest δ exactly (Newton; Puiseux
@@ -29,7 +29,7 @@ from sympy import factor as factored
 from ..declare.constants import CODATA
 from ..declare.notation import paper
 from ..declare.operators import omega
-from ..errors import PlasmalinError
+from ..errors import NonPolynomialError, PlasmalinError
 from ..exact.polynomial import ExactPolynomial, polynomial
 from .claim import Claim
 from .cones import extreme
@@ -95,9 +95,14 @@ class SeriesSlip:
 
 @dataclass(frozen=True)
 class Expansion:
-    """The claimed sum, as an author writes its terms too, and the derived factors, both for ω or for its square."""
+    """The claimed sum, as an author writes its terms too, and the derived factors, both for what it gives.
+
+    That is ω or a wave number, `main`, or the square of it.
+    """
 
     claim: Claim
+    derived: Derived
+    main: Symbol
     value: Expr
     terms: tuple[Expr, ...]
     written: tuple[Expr, ...]
@@ -121,7 +126,7 @@ def series_order(
     Parameters
     ----------
     claim : Claim
-        With ω, or ω², times a factor free of ω, alone on one side.
+        With ω, or ω², times a factor free of ω, alone on one side; else with a wave number so.
     derived : Derived
     ratios : iterable of Expr, optional
         What the author says is small; else every wave number and parameter is tried, small and large.
@@ -175,7 +180,7 @@ def _searched(
     slips: list[SeriesSlip] = []
     right: SeriesFound | None = None
     given = None if ratios is None else [derived.using(claim.written_out(r)) for r in ratios]
-    for weights in paths(expansion.terms, expansion.symbols, derived, given):
+    for weights in paths(expansion.terms, expansion.symbols, derived, given, expansion.main):
         here: list[SeriesSlip] = []
         for f in expansion.factors:
             found = _judged(expansion, f, weights, end)
@@ -201,27 +206,39 @@ def _searched(
 
 
 def _expansion(claim: Claim, derived: Derived) -> Expansion | None:
-    """The claim solved for ω or ω², its value expanded into terms."""
+    """The claim solved for ω or ω², else for a wave number or its square, its value expanded into terms."""
+    angles = {*derived.angles.symbols, *derived.angles.forms}
+    waves = sorted(derived.wave_symbols - angles, key=str)
+    return next((e for main in (omega, *waves) if (e := _solved(claim, derived, main))), None)
+
+
+def _solved(claim: Claim, derived: Derived, main: Symbol) -> Expansion | None:
     for left, right in ((claim.left, claim.right), (claim.right, claim.left)):
         held, value = claim.written_out(left), claim.written_out(right)
-        power = next((n for n in (1, 2) if not (held / omega**n).has(omega)), None)
-        if power is None or value.has(omega) or not held.has(omega):
+        power = next((n for n in (1, 2) if not (held / main**n).has(main)), None)
+        if power is None or value.has(main) or not held.has(main):
             continue
-        made = expand(derived.rational(value * omega**power / held))
-        short = Add.make_args(expand(right * omega**power / held))
-        factors = tuple(f for p, _ in derived.factors if (f := _in_power(p, power)) is not None)
-        return Expansion(claim, made, Add.make_args(made), short, factors) if factors else None
+        made = expand(derived.rational(value * main**power / held))
+        short = Add.make_args(expand(right * main**power / held))
+        parts_of = (_in_power(p, main, power) for p, _ in derived.factors)
+        factors = tuple(f for f in parts_of if f is not None)
+        terms = Add.make_args(made)
+        return Expansion(claim, derived, main, made, terms, short, factors) if factors else None
     return None
 
 
-def _in_power(factor: ExactPolynomial, power: int) -> ExactPolynomial | None:
-    """The factor as a polynomial in that power of ω, where it is one."""
-    if power == 1:
+def _in_power(factor: ExactPolynomial, main: Symbol, power: int) -> ExactPolynomial | None:
+    """The factor as a polynomial in a power of ω or of a wave number, where it is one."""
+    if main == omega and power == 1:
         return factor
-    coefficients = factor.coefficients()
-    if any(n % power for n in coefficients):
+    try:
+        solved = factor if main == omega else polynomial(factor.as_expr(), main)
+    except NonPolynomialError:
         return None
-    return polynomial(Add(*(c * omega ** (n // power) for n, c in coefficients.items())), omega)
+    coefficients = solved.coefficients()
+    if solved.degree < 1 or any(n % power for n in coefficients):
+        return None
+    return polynomial(Add(*(c * main ** (n // power) for n, c in coefficients.items())), main)
 
 
 def _judged(
@@ -294,7 +311,8 @@ def _sizes(expansion: Expansion, found: SeriesFound) -> list[Expr]:
         side = [t for t in ordered if is_imaginary(t) == is_imaginary(found.next)] or ordered
         top, bottom = found.next.as_numer_denom()
         sizes += [t / bottom / side[-1] for t in Add.make_args(expand(top))]
-    space = space_of(expansion.factors, expansion.symbols)
+    relation = (f for f, _ in expansion.derived.factors)
+    space = space_of(relation, expansion.symbols - {omega})
     wording = Wording(space, expansion.claim, CODATA)
     vectors = [wording.exponents(_positive(s)) for s in sizes]
     groups = [wording.group(v, ()) for v in extreme(v for v in vectors if v is not None and any(v))]

@@ -15,7 +15,7 @@ from .case import Case
 from .claim import Claim
 from .compare import compare
 from .convention import under_other_conventions
-from .limit import LimitFound, find_limits
+from .limit import LimitFound, find_limits, limits_about
 from .series import series_order
 from .special import MOST_TERMS, special_values
 from .verdict import shown_conditions
@@ -136,7 +136,8 @@ def _limit(case: Case) -> Somewhere | None:
     claimed, _ = case.derived.numerator(case.claim.residual)
     if len(claimed) > len(case.derived.polynomial):
         return None  # a leading part is shorter than the whole
-    for limit in find_limits(case.whole, case.derived, case.values, case.time / 3):
+    given = case.whole, case.derived, case.values, case.time / 3
+    for limit in find_limits(*given) or limits_about(*given):
         doubtful = bool(limit.besides) or not limit.physical  # right in part only, or nowhere
         return Somewhere("limit", LEADING, limit.groups, limit_notes(limit), doubtful)
     return None

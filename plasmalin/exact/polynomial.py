@@ -166,6 +166,18 @@ class ExactPolynomial:
         ring, a, b = self._joined(other)
         return ExactPolynomial(ring, a.over(b))
 
+    def pseudo_remainder(self, other: ExactPolynomial) -> tuple[ExactPolynomial, ExactPolynomial]:
+        """The rest that `other` leaves of this times a power of the leading coefficient of `other`, and that power."""
+        ring, a, b = self._joined(other)
+        rest, divisor = ExactPolynomial(ring, a), ExactPolynomial(ring, b)
+        lead = divisor._slices()[divisor.degree]
+        gen, scale = _real(ring.context.gens()[0]), ring.constant(1)
+        while rest.degree >= divisor.degree:
+            top = rest._slices()[rest.degree] * gen ** (rest.degree - divisor.degree)
+            rest = ExactPolynomial(ring, rest._value * lead - top * b)
+            scale = scale * lead
+        return rest, ExactPolynomial(ring, scale)
+
     def primitive(self) -> tuple[ExactPolynomial, ExactPolynomial]:
         """The content, free of `main`, and the primitive part with its sign normalized."""
         parts = sorted(self._slices().values(), key=lambda p: len(p.re) + len(p.im))

@@ -8,8 +8,10 @@ cleared is of no importance. The roots of the claim are off by the rest that its
 from __future__ import annotations
 
 import time
-from collections.abc import Iterator, Sequence
+from collections.abc import Sequence
+from functools import reduce
 from math import comb
+from operator import mul
 
 from sympy import S
 
@@ -26,16 +28,26 @@ MOST_WORK = 200_000
 """Terms of the relation times monomials in the terms of the claim, of a degree of the steps of the division."""
 
 
-def without_one_term(claim: Claim, derived: Derived) -> Iterator[ExactPolynomial]:
-    """The claim without one of its typed terms, for each of them."""
+def without_one_term(claim: Claim, derived: Derived) -> tuple[ExactPolynomial, ...] | None:
+    """The claim without one of its typed terms, for each of them; None where that cannot be compared with the claim.
+
+    A radical may go with a term: then the claim without it is taken to the power that has as many roots.
+    """
+    whole, sheets = derived.numerator(claim.residual)
+    made: list[ExactPolynomial] = []
     for spot in addends(claim):
         try:
             shorter = changed(claim, {spot: ("times", S.Zero)})
             found, _ = derived.numerator(shorter.residual)
         except (PlasmalinError, ArithmeticError, ValueError):
             continue  # without it the claim is none, so it is leading
-        if found:
-            yield found
+        if found.degree < 1:
+            continue
+        times_more, rest = divmod(whole.degree, found.degree)
+        if sheets > 1 and rest:
+            return None
+        made.append(reduce(mul, [found] * times_more) if sheets > 1 and times_more > 1 else found)
+    return tuple(made)
 
 
 class Accuracy:
@@ -81,6 +93,7 @@ class Accuracy:
         if steps < 1 or len(factor) * comb(steps + len(part), steps) > MOST_WORK:
             return None
         rest, scale = (self.space.terms(p) for p in factor.pseudo_remainder(part))
+        power = self._multiplicity(face)
         first = plus(answer.shifts[0], face.on[0])
         for there in (face, *self.faces.pairs(face)):
             w = self.faces.inside(there)
@@ -88,10 +101,20 @@ class Accuracy:
                 continue
             lead = next(iter(initial(scale, w, self.space)))
             errors = [minus(v, plus(first, lead)) for v in rest]
-            ratios = self._ratios(there, w, asserted, errors)
+            ratios = self._ratios(there, w, asserted, errors, power)
             if ratios is not None:
                 return there, ratios
         return None
+
+    def _multiplicity(self, face: Face) -> int:
+        """How often the derived relation begins with the claim's leading part: its roots meet there."""
+        w = self.faces.inside(face)
+        part = {v: self.faces.claimed[v] for v in face.on}
+        begun = {} if w is None else initial(self.faces.derived, w, self.space)
+        rest, count = divided(begun, part) if begun else None, 0
+        while rest:
+            rest, count = divided(rest, part), count + 1
+        return max(count, 1)
 
     def _asserted(self, face: Face) -> list[list[Vector]]:
         """For each asserted correction the terms by which it changes the claim, relative to its first."""
@@ -111,26 +134,29 @@ class Accuracy:
         ]
 
     def _ratios(
-        self, there: Face, w: Vector, asserted: list[list[Vector]], errors: list[Vector]
+        self,
+        there: Face,
+        w: Vector,
+        asserted: list[list[Vector]],
+        errors: list[Vector],
+        power: int,
     ) -> list[Vector] | None:
-        """The largest errors over the asserted corrections that need not be small; None where one cannot be."""
+        """The largest errors over the asserted corrections that need not be small; None where one cannot be.
+
+        Where several derived roots begin alike, an error moves them by its root of that index.
+        """
         quotient = Quotient(there.zeros)
         cone = [quotient.reduced(v) for v in self.faces.cone]
         above = [quotient.reduced(v) for v in there.above]
         corrections = {self._largest(sizes, w, quotient) for sizes in asserted}
         reduced = dict.fromkeys(quotient.reduced(self.space.order(v)) for v in errors)
-        ratios = sorted(
-            {minus(e, c) for e in reduced for c in corrections}, key=lambda v: times(w, v)
-        )
+        found = {plus(e, c, -power) for e in reduced for c in corrections}
         needed: list[Vector] = []
-        for v in ratios:
+        for v in sorted(found, key=lambda v: (times(w, v), v)):
             if any(v) and implied(v, [*cone, *needed], above):
                 continue
-            if (
-                not any(v)
-                or not self.faces.can_be_small(v, there)
-                or time.monotonic() > self.faces.end
-            ):
+            late = time.monotonic() > self.faces.end
+            if late or not any(v) or not self.faces.can_be_small(v, there):
                 return None
             needed.append(v)
         return extreme(needed)

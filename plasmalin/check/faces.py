@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import time
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from fractions import Fraction
 from itertools import combinations
@@ -273,7 +273,9 @@ def matched_shifts(part: Terms, whole: Terms) -> Iterator[tuple[Vector, ...]]:
             yield tuple(places)
 
 
-def divided(whole: Terms, part: Terms) -> dict[Vector, tuple[Fraction, Fraction]] | None:
+def divided(
+    whole: Mapping[Vector, tuple[Fraction | int, Fraction | int]], part: Terms
+) -> dict[Vector, tuple[Fraction, Fraction]] | None:
     """The quotient of two polynomials, or None where there is a rest."""
     rest = {v: (Fraction(a), Fraction(b)) for v, (a, b) in whole.items()}
     least = _least(whole)
@@ -301,5 +303,5 @@ def divided(whole: Terms, part: Terms) -> dict[Vector, tuple[Fraction, Fraction]
     return made
 
 
-def _least(terms: Terms) -> Vector:
+def _least(terms: Iterable[Vector]) -> Vector:
     return tuple(min(column) for column in zip(*terms, strict=True))

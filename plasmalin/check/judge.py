@@ -8,19 +8,19 @@ from dataclasses import replace
 from functools import partial
 from typing import TYPE_CHECKING, Any
 
-from sympy import Add, Rational, S, Symbol, cancel, factor, sqrt
+from sympy import Add, Expr, Rational, S, Symbol, cancel, factor, sqrt
 
 from ..declare.notation import paper
 from ..declare.operators import omega
 from ..errors import NonPolynomialError
 from ..waves.coefficients import normalized_coefficients
 from .case import Case, in_words
-from .claim import WaveNames, make_claim, make_rate
+from .claim import REAL_PART, WaveNames, make_claim, make_part
 from .compare import compare, covered, has_only_roots_of
 from .convention import Convention, in_si, to_si
 from .limit import LimitFound, verify_limit
 from .places import changed, sign_edits
-from .rates import rate_order
+from .rates import RateFound, is_exact, rate_order
 from .roles import roles
 from .series import series_order, series_slip
 from .sheets import NOWHERE, sheet_of
@@ -33,6 +33,9 @@ from .verdict import Slip, Verdict
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
 
+EXACT_PART = (
+    "with this part of ω the real and the imaginary part of the derived relation have a common zero"
+)
 SHOWN = 150
 """Terms of a relation whose coefficients are shown side by side."""
 SEARCHED = 20_000
@@ -58,8 +61,8 @@ def judge(
     """Judge a claimed relation; see `WaveMatrix.check`."""
     deadline = time.monotonic() + budget_s
     names = WaveNames(wave, where or {})
-    rate = make_rate(names, claim)
-    written = rate or make_claim(wave, claim, where or {})
+    part = make_part(names, claim)
+    written = part or make_claim(wave, claim, where or {})
     convention, model = convention or Convention(), roles(wave)
     held = written.residual.free_symbols
     meant = partial(to_si, convention=convention, found=model)
@@ -71,7 +74,7 @@ def judge(
     )
     case = Case(wave, written, made, whole, stated, convention, model, numbers, deadline)
     try:
-        return _answer(case) if rate is None else _rate(case)
+        return _answer(case) if part is None else _part(case)
     except NonPolynomialError as error:
         return case.verdict("undecided", f"the claim cannot be made polynomial: {error}")
 
@@ -171,27 +174,50 @@ def _later_term(case: Case) -> tuple[Slip, ...]:
     return (Slip(found.term, multiplier, words),)
 
 
-def _rate(case: Case) -> Verdict:
-    """A growth or damping rate given by itself."""
+def _part(case: Case) -> Verdict:
+    """A growth or damping rate, or a real frequency, given by itself; where all of ω is real that is ω."""
+    real = case.written.left == REAL_PART
+    if not real:
+        return _rate(case, real)
+    claim, whole = (replace(c, left=omega) for c in (case.claim, case.whole))
+    there = replace(case, claim=claim, whole=whole)
+    whole_frequency = _same(there) or _on_no_sheet(there) or _as_stated(there)
+    if whole_frequency is not None and whole_frequency.agrees:
+        return whole_frequency
+    found = _rate(case, real)
+    return found if found.agrees or found.slips else _answer(there)
+
+
+def _rate(case: Case, real: bool) -> Verdict:
+    """The imaginary or the real part of a root."""
     stated = case.as_stated()
     ratios = list(case.stated.ratios) or None
+
+    def found(value: Expr, budget: float) -> RateFound | None:
+        return rate_order(value, stated.whole, stated.derived, ratios, case.values, budget, real)
+
     value = stated.whole.right
-    found = rate_order(value, stated.whole, stated.derived, ratios, case.values, case.time / 2)
-    if found is not None:
+    if is_exact(value, stated.whole, stated.derived, real):
+        values = {s.name: v for s, v in case.stated.values.items()}
+        kind = "special" if values else "branch"
+        return case.verdict(kind, EXACT_PART, agrees=True, conditions=values, notes=case.used)
+    right = found(value, case.time / 2)
+    if right is not None:
         notes = (*case.stated_values, *case.used)
-        stated_so = ratios is not None
+        agrees = ratios is not None
         return case.verdict(
-            "series", found.proof, agrees=stated_so, conditions=found.groups, notes=notes
+            "series", right.proof, agrees=agrees, conditions=right.groups, notes=notes
         )
-    for number in RATE_SLIPS:
+    what = "frequency" if real else "rate"
+    for number in () if isinstance(value, Add) else RATE_SLIPS:
         if case.time < 1:
             break
-        right = number * value
-        if rate_order(right, stated.whole, stated.derived, ratios, case.values, case.time / 4):
-            words = f"the rate should carry the factor {paper(number)}"
+        if found(number * value, case.time / 4):
+            words = f"the {what} should carry the factor {paper(number)}"
             slip = Slip(case.written.right, number, words)
-            return case.verdict("differs", "the repaired rate was proved", slips=(slip,))
-    proof = "it is no leading imaginary part of a derived root in the orderings that were tried"
+            return case.verdict("differs", f"the repaired {what} was proved", slips=(slip,))
+    part = "real" if real else "imaginary"
+    proof = f"it is no leading {part} part of a derived root in the orderings that were tried"
     return case.verdict("differs", proof)
 
 

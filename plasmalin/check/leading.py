@@ -77,7 +77,7 @@ class Question:
         whole, _ = self.derived.numerator(self.claim.residual)
         if len(self.parts) != 1 or self.parts[0].degree != whole.degree:
             return None
-        return tuple(without_one_term(self.claim, self.derived))
+        return without_one_term(self.claim, self.derived)
 
     def small(self, group: Expr, physical: bool = True) -> Small:
         return Small(group, number_of(group, self.values, self.claim), physical)

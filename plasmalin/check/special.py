@@ -110,8 +110,8 @@ def _unknown(polynomial: ExactPolynomial, derived: Derived) -> list[Symbol]:
 
 
 def _is_plain(symbol: Symbol, polynomial: ExactPolynomial) -> bool:
-    """Whether it enters by itself or by its powers, not within functions."""
-    return all(base_and_power(g)[0] == symbol for g in polynomial.generators if g.has(symbol))
+    """Whether it enters by its whole powers only, not by roots or within functions."""
+    return all(g == symbol for g in polynomial.generators if g.has(symbol))
 
 
 def _simplicity(values: Values) -> tuple[Any, ...]:

@@ -166,6 +166,10 @@ class ExactPolynomial:
         ring, a, b = self._joined(other)
         return ExactPolynomial(ring, a.over(b))
 
+    def parts(self) -> tuple[ExactPolynomial, ExactPolynomial]:
+        """The polynomials of the real and of the imaginary parts of the coefficients."""
+        return self._with(_real(self._value.re)), self._with(_real(self._value.im))
+
     def pseudo_remainder(self, other: ExactPolynomial) -> tuple[ExactPolynomial, ExactPolynomial]:
         """The rest that `other` leaves of this times a power of the leading coefficient of `other`, and that power."""
         ring, a, b = self._joined(other)

@@ -289,3 +289,26 @@ def test_a_verdict_is_immutable_and_shows_its_reading(check):
 def test_a_parameter_that_enters_by_its_root_is_no_unknown(check):
     """Hall MHD holds sqrt(ρ_0), which a claim need not hold."""
     assert check("hall", "omega = 1").kind == "differs"
+
+
+def test_what_was_not_asked_of_a_long_relation_is_said():
+    """Six densities and speeds of three species with Maxwell's equations: 2,689 terms."""
+    ions = [
+        plin.Species(
+            f"i{j}",
+            charge_number=1,
+            mass=(j + 1) * plin.constants.m_p,
+            density=1e16,
+            gamma=3,
+            temperature_eV=1.0,
+        )
+        for j in range(2)
+    ]
+    electrons = plin.Species(
+        "e", charge_number=-1, mass=plin.constants.m_e, density=2e16, gamma=1, temperature_eV=1.0
+    )
+    field = {"field": "electromagnetic", "magnetic_field": (0, 0, 0.02)}
+    wave = plin.mixture([electrons, *ions], **field).linearize().plane_wave(("k_x", 0, "k_z"))
+    verdict = wave.check("omega^2 = c^2 (k_x^2 + k_z^2)", budget_s=2)
+    assert (verdict.kind, verdict.agrees) == ("differs", False)
+    assert any("expansions were not searched for" in n for n in verdict.notes)

@@ -75,6 +75,8 @@ def test_right_claims(check, model, claim, where, under, kind):
         ("cold_across", LOWER.replace("Omega_e Omega_i", "Omega_e^2"), COLD, SHORT_WAVES),
         ("cold_across", LOWER, COLD, ["m_e << m_i"]),
         ("beam", "delta^3 = (n_b/n_0) omega_pe^3", RESONANT, WEAK),
+        ("beam", "1 = omega_p^2/omega^2 + omega_b^2/(omega (omega - k u))", BEAM, "n_b << n_0"),
+        ("beam", "1 = omega_p^2/omega^2 + 2 omega_b^2/(omega - k u)^2", BEAM, "n_b << n_0"),
         ("beam", "delta^3 = -(n_b/(2 n_0)) omega_pe^3", RESONANT, WEAK),
         ("beam", "delta^3 = (n_b/(2 n_0))^2 omega_pe^3", RESONANT, WEAK),
         ("beam", "delta^3 = (n_b/(2 n_0)) omega_pe^3", RESONANT, ["k u = omega_pe"]),

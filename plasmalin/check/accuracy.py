@@ -1,7 +1,7 @@
 """What a claim asserts beyond its leading part, and whether its roots are as near to the derived ones as that.
 
-A typed term asserts a correction where the claim begins alike without it wherever its author's conditions hold. A term
-that is leading somewhere asserts none: 1/(ω_pi² + Ω_i²) holds for either, and what arises with it when denominators are
+A typed term asserts a correction where the claim begins alike whatever number the term has, wherever its author's
+conditions hold. A term that is leading somewhere asserts none: 1/(ω_pi² + Ω_i²) holds for either, and what arises with it when denominators are
 cleared is of no importance. The roots of the claim are off by the rest that its polynomial leaves of the derived one.
 """
 
@@ -9,11 +9,9 @@ from __future__ import annotations
 
 import time
 from collections.abc import Sequence
-from functools import reduce
 from math import comb
-from operator import mul
 
-from sympy import S
+from sympy import Integer
 
 from ..errors import PlasmalinError
 from ..exact.polynomial import ExactPolynomial
@@ -23,30 +21,24 @@ from .derived import Derived
 from .faces import Face, Faces, Leading, divided, initial, product
 from .monomials import Terms
 from .places import addends, changed
+from .sizes import DIVIDED
 
-MOST_WORK = 200_000
-"""Terms of the relation times monomials in the terms of the claim, of a degree of the steps of the division."""
+OTHER = Integer(7)
+"""By what a term is multiplied to see where it counts: no number that makes it cancel another."""
 
 
-def without_one_term(claim: Claim, derived: Derived) -> tuple[ExactPolynomial, ...] | None:
-    """The claim without one of its typed terms, for each of them; None where that cannot be compared with the claim.
+def with_one_term_changed(claim: Claim, derived: Derived) -> tuple[ExactPolynomial, ...]:
+    """The claim with another number on one of its typed terms, for each of them.
 
-    A radical may go with a term: then the claim without it is taken to the power that has as many roots.
+    It has as many roots and the same denominators as the claim, which it would not have without the term.
     """
-    whole, sheets = derived.numerator(claim.residual)
     made: list[ExactPolynomial] = []
     for spot in addends(claim):
         try:
-            shorter = changed(claim, {spot: ("times", S.Zero)})
-            found, _ = derived.numerator(shorter.residual)
+            other = changed(claim, {spot: ("times", OTHER)})
+            made.append(derived.numerator(other.residual)[0])
         except (PlasmalinError, ArithmeticError, ValueError):
-            continue  # without it the claim is none, so it is leading
-        if found.degree < 1:
-            continue
-        times_more, rest = divmod(whole.degree, found.degree)
-        if sheets > 1 and rest:
-            return None
-        made.append(reduce(mul, [found] * times_more) if sheets > 1 and times_more > 1 else found)
+            continue  # where it stands alone below a line it counts
     return tuple(made)
 
 
@@ -58,15 +50,15 @@ class Accuracy:
     faces : Faces
     found : sequence of Face
         All faces on which it can balance.
-    shorter : sequence of ExactPolynomial
-        The claim without one of its terms, each.
+    others : sequence of ExactPolynomial
+        The claim with another number on one of its terms, each.
     """
 
     def __init__(
-        self, faces: Faces, found: Sequence[Face], shorter: Sequence[ExactPolynomial]
+        self, faces: Faces, found: Sequence[Face], others: Sequence[ExactPolynomial]
     ) -> None:
         self.faces, self.space = faces, faces.space
-        terms = [self.space.terms(p) for p in shorter if self.space.holds(p)]
+        terms = [self.space.terms(p) for p in others if self.space.holds(p)]
         self.corrected = [t for t in terms if all(self._begins(t, f) is not None for f in found)]
 
     def _begins(self, terms: Terms, face: Face) -> Vector | None:
@@ -77,33 +69,47 @@ class Accuracy:
         return next(iter(quotient), None) if quotient else None
 
     def competing(
-        self, part: ExactPolynomial, factor: ExactPolynomial, face: Face, answer: Leading
+        self,
+        part: ExactPolynomial,
+        factor: ExactPolynomial,
+        face: Face,
+        answer: Leading,
+        stands: bool,
     ) -> tuple[Face, list[Vector]] | None:
-        """What must be small for the corrections that the claim asserts to stand, at least where two terms balance.
+        """What must be small for the corrections that the claim asserts to stand.
+
+        Parameters
+        ----------
+        part, factor : ExactPolynomial
+            Of the claim and of the relation.
+        face : Face
+        answer : Leading
+        stands : bool
+            Whether all terms of the claim are derived with their coefficients, so that others can only be missing. Then
+            it is enough that nothing is missing where two terms balance and the others are smaller.
 
         Returns
         -------
         (Face, list of Vector) or None
-            Nothing where no correction is asserted; None where one is not derived.
+            Where they stand, and what must be small there: nothing where no correction is asserted. None where one is
+            not derived.
         """
         asserted = self._asserted(face)
         if not asserted:
             return face, []
         steps = _steps(factor, part)
-        if steps < 1 or len(factor) * comb(steps + len(part), steps) > MOST_WORK:
+        if steps < 1 or len(factor) * comb(steps + len(part), steps) > DIVIDED:
             return None
         rest, scale = (self.space.terms(p) for p in factor.pseudo_remainder(part))
-        power = self._multiplicity(face)
-        first = plus(answer.shifts[0], face.on[0])
-        for there in (face, *self.faces.pairs(face)):
+        first, power = plus(answer.shifts[0], face.on[0]), self._multiplicity(face)
+        for there in (face, *(self.faces.pairs(face) if stands else ())):
             w = self.faces.inside(there)
-            if w is None:
-                continue
-            lead = next(iter(initial(scale, w, self.space)))
-            errors = [minus(v, plus(first, lead)) for v in rest]
-            ratios = self._ratios(there, w, asserted, errors, power)
-            if ratios is not None:
-                return there, ratios
+            if w is not None:
+                lead = next(iter(initial(scale, w, self.space)))
+                errors = [minus(v, plus(first, lead)) for v in rest]
+                needed = self._needed(there, w, asserted, errors, power)
+                if needed is not None:
+                    return there, needed
         return None
 
     def _multiplicity(self, face: Face) -> int:
@@ -133,7 +139,7 @@ class Accuracy:
             if product(claimed.get(v, zero), other) != product(moved.get(v, zero), one)
         ]
 
-    def _ratios(
+    def _needed(
         self,
         there: Face,
         w: Vector,
@@ -141,7 +147,7 @@ class Accuracy:
         errors: list[Vector],
         power: int,
     ) -> list[Vector] | None:
-        """The largest errors over the asserted corrections that need not be small; None where one cannot be.
+        """The errors over the corrections that need not be small under the conditions; None where one cannot be.
 
         Where several derived roots begin alike, an error moves them by its root of that index.
         """
@@ -150,9 +156,9 @@ class Accuracy:
         above = [quotient.reduced(v) for v in there.above]
         corrections = {self._largest(sizes, w, quotient) for sizes in asserted}
         reduced = dict.fromkeys(quotient.reduced(self.space.order(v)) for v in errors)
-        found = {plus(e, c, -power) for e in reduced for c in corrections}
+        ratios = {plus(e, c, -power) for e in reduced for c in corrections}
         needed: list[Vector] = []
-        for v in sorted(found, key=lambda v: (times(w, v), v)):
+        for v in sorted(ratios, key=lambda v: (times(w, v), v)):
             if any(v) and implied(v, [*cone, *needed], above):
                 continue
             late = time.monotonic() > self.faces.end

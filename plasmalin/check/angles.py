@@ -38,6 +38,13 @@ class Angles:
             replaced[a] = a.args[0] if a.args[0].is_Symbol and a.args[0] != omega else a
         return expr.xreplace(replaced) if replaced else expr
 
+    def written(self, expr: Expr) -> Expr:
+        """An expression with the sine or the cosine of an angle for what stands for it."""
+        functions = {"sin": sin, "cos": cos}
+        return expr.xreplace(
+            {symbol_of(a, f): functions[f](a) for a, f in self.forms.items() if f in functions}
+        )
+
     def _image(self, function: Expr) -> Expr:
         angle = function.args[0]
         form = self.forms.get(angle, "half")

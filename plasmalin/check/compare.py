@@ -17,11 +17,7 @@ from ..exact.polynomial import ExactPolynomial
 from .claim import Claim
 from .derived import Derived, bare
 from .sheets import Sheet, sheet_of
-
-LONGEST_POLE = 150
-"""Characters of a pole that is shown."""
-LONGEST = 1000
-"""Terms of a claim freed of its roots that is searched for repeated factors."""
+from .sizes import FACTORED, SHOWN_BESIDE
 
 
 @dataclass(frozen=True)
@@ -57,7 +53,7 @@ def compare(claim: Claim, derived: Derived) -> Match | None:
     if found.degree < 0:
         raise DeclarationError("claim: both sides are the same, so it says nothing of a wave")
     polynomial, poles = without_poles(found, claim, derived)
-    if sheets > 1 and len(polynomial) < LONGEST:
+    if sheets > 1 and len(polynomial) < FACTORED:
         polynomial = without_repeats(polynomial)
     made = match(bare(polynomial), sheets, derived, claim.solved)
     if made is None or (made.kind != "identical" and _loses(claim, polynomial, derived)):
@@ -72,7 +68,7 @@ def _poles_in_words(poles: Sequence[ExactPolynomial]) -> str:
     if not poles:
         return ""
     texts = (f"{paper(p.as_expr())} = 0" for p in poles)
-    shown = dict.fromkeys(t if len(t) < LONGEST_POLE else "zeros of a long sum" for t in texts)
+    shown = dict.fromkeys(t if len(t) < SHOWN_BESIDE else "zeros of a long sum" for t in texts)
     return f"; {', '.join(shown)}: there the claim as arranged is infinite on both sides, no wave"
 
 
@@ -133,7 +129,7 @@ def still_factors(claim: Claim) -> list[Expr]:
 def _is_rest_of(still: Expr, factor: ExactPolynomial) -> bool:
     """Whether a sum is what a factor of the relation leaves without its powers of ω."""
     rest = factor.coefficients().get(0, S.Zero)
-    return rest != 0 and len(factor) < LONGEST and not cancel(rest / still).has(Add)
+    return rest != 0 and len(factor) < FACTORED and not cancel(rest / still).has(Add)
 
 
 def has_only_roots_of(claim: Claim, derived: Derived) -> bool:

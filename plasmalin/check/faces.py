@@ -97,6 +97,13 @@ class Faces:
         """Whether a monomial is small at some sizes at which a face balances."""
         return weights(self.space.sized, [*self.cone, v], face.zeros, face.above) is not None
 
+    def is_small(self, v: Vector, face: Face) -> bool:
+        """Whether a monomial is small wherever a face balances under the conditions."""
+        quotient = Quotient(face.zeros)
+        cone, above = ([quotient.reduced(x) for x in xs] for xs in (self.cone, face.above))
+        reduced = quotient.reduced(v)
+        return any(reduced) and implied(reduced, cone, above)
+
     def _weights(self, face: Face, weak: Sequence[Vector] = ()) -> Vector | None:
         return weights(self.space.sized, self.cone, face.zeros, [*face.above, *weak])
 
@@ -214,9 +221,13 @@ class Faces:
             found += [(v, pair) for v, _ in more.needed] if more else []
         return found
 
+    def stands(self, term: Vector, face: Face, answer: Leading) -> bool:
+        """Whether a claimed term beyond the face stands in the derived relation with its coefficient."""
+        return all(self._same(s, term, face) for s in answer.shifts)
+
     def correction(self, term: Vector, face: Face, answer: Leading) -> list[Vector] | None:
         """Ratios that must be small for a claimed term beyond the face to stand; None where it is not plain that it does."""
-        if not all(self._same(s, term, face) for s in answer.shifts):
+        if not self.stands(term, face, answer):
             return None
         quotient = Quotient(face.zeros)
         cone = [quotient.reduced(v) for v in self.cone]

@@ -24,6 +24,7 @@ from .rates import RateFound, is_exact, rate_order
 from .roles import roles
 from .series import series_order, series_slip
 from .sheets import NOWHERE, sheet_of
+from .sizes import MENDED, SHOWN, SHOWN_TERMS
 from .slips import repairs, repairs_as_limit
 from .somewhere import LEADING, Somewhere, limit_notes, where_right
 from .stated import read_stated
@@ -36,14 +37,8 @@ if TYPE_CHECKING:
 EXACT_PART = (
     "with this part of ω the real and the imaginary part of the derived relation have a common zero"
 )
-SHOWN = 150
-"""Terms of a relation whose coefficients are shown side by side."""
-SEARCHED = 20_000
-"""Terms of a relation in which slips are searched for."""
 ASIDE = 4.0
 """Seconds for the slips of a claim that is right somewhere."""
-LONGEST = 400
-"""Characters of a coefficient that is shown."""
 RATE_SLIPS = [
     S(n) for n in (-1, 2, S.Half, sqrt(2), 1 / sqrt(2), 2 ** Rational(1, 3), 2 ** Rational(-1, 3))
 ] + [2 ** Rational(2, 3), 2 ** Rational(-2, 3), sqrt(3), 1 / sqrt(3), S(4) / 3, S(3) / 4]
@@ -80,14 +75,13 @@ def judge(
 
 
 def _answer(case: Case) -> Verdict:
-    for question in (_same, _on_no_sheet, _as_stated):
-        found = question(case)
-        if found is not None:
-            return found
-    case = case.as_stated()
+    found = _same(case) or _on_no_sheet(case) or _as_stated(case)
+    if isinstance(found, Verdict):
+        return found
+    case = replace(case.as_stated(), reasons=(found,) if found else ())
     somewhere = where_right(case)
     slips, exact = _slips(case, somewhere)
-    notes = (*case.reasons, *case.used)
+    notes = (*case.doubts, *case.used)
     doubtful = somewhere is not None and (
         somewhere.doubtful or (exact and somewhere.kind != "convention")
     )
@@ -96,7 +90,7 @@ def _answer(case: Case) -> Verdict:
             somewhere.kind,
             somewhere.proof,
             conditions=somewhere.conditions,
-            notes=(*case.reasons, *somewhere.notes),
+            notes=(*case.doubts, *somewhere.notes),
             slips=slips,
         )
     if slips:
@@ -117,7 +111,7 @@ def _on_no_sheet(case: Case) -> Verdict | None:
     for edit in sign_edits(case.whole):
         turned = changed(case.whole, edit.changes(S.NegativeOne))
         there = replace(case, claim=turned, whole=turned)
-        if _same(there) or _as_stated(there):
+        if _same(there) or isinstance(_as_stated(there), Verdict):
             slips.append((cost(edit, S.NegativeOne), told(edit, S.NegativeOne)))
     if not slips:
         slips = [
@@ -129,9 +123,7 @@ def _on_no_sheet(case: Case) -> Verdict | None:
 
 def _almost(case: Case) -> tuple[str, ...]:
     """What is wrong with a claim that is wrong though all its roots are right."""
-    if len(case.derived.polynomial) > SEARCHED:
-        return (f"the derived relation has {len(case.derived.polynomial)} terms",)
-    if not has_only_roots_of(case.claim, case.derived):
+    if len(case.derived.polynomial) > MENDED or not has_only_roots_of(case.claim, case.derived):
         return ()
     return (
         "its roots are roots of the laws, but not as often, or with ω = 0 or no wave where the laws have one",
@@ -143,8 +135,7 @@ def _slips(case: Case, somewhere: Somewhere | None) -> tuple[tuple[Slip, ...], b
 
     The second tells that a sign or a number in one place makes the claim exact, as no truncation is mended.
     """
-    if len(case.derived.polynomial) > SEARCHED:
-        case.reasons.append("the relation is too long to be searched for slips")
+    if len(case.derived.polynomial) > MENDED:
         return (), False
     solved = case.claim.solved_for({omega, *case.derived.wave_symbols})
     if solved and somewhere is None and (later := _later_term(case)):
@@ -182,7 +173,7 @@ def _part(case: Case) -> Verdict:
     claim, whole = (replace(c, left=omega) for c in (case.claim, case.whole))
     there = replace(case, claim=claim, whole=whole)
     whole_frequency = _same(there) or _on_no_sheet(there) or _as_stated(there)
-    if whole_frequency is not None and whole_frequency.agrees:
+    if isinstance(whole_frequency, Verdict) and whole_frequency.agrees:
         return whole_frequency
     found = _rate(case, real)
     return found if found.agrees or found.slips else _answer(there)
@@ -236,8 +227,8 @@ def _same(case: Case) -> Verdict | None:
     return None
 
 
-def _as_stated(case: Case) -> Verdict | None:
-    """Right under the conditions that the author states."""
+def _as_stated(case: Case) -> Verdict | str:
+    """Right under the conditions that the author states, or why not."""
     stated = case.as_stated()
     values, ratios = case.stated.values, list(case.stated.ratios)
     named = {s.name: v for s, v in values.items()}
@@ -247,7 +238,7 @@ def _as_stated(case: Case) -> Verdict | None:
             notes = (*found.notes, *stated.used, *case.contradicted(named))
             return case.verdict("special", found.proof, agrees=True, conditions=named, notes=notes)
     if not ratios:
-        return None
+        return ""
     also = (*case.stated_values, *stated.used, *case.contradicted(named))
     limit = verify_limit(stated.whole, stated.derived, ratios, case.values, case.time / 3)
     angles = stated.derived.angles.symbols
@@ -263,8 +254,7 @@ def _as_stated(case: Case) -> Verdict | None:
         )
     if not isinstance(limit, str):
         return _limit(case, limit, also)
-    case.reasons.append(f"under the stated conditions: {limit}")
-    return None
+    return f"under the stated conditions: {limit}"
 
 
 def _limit(case: Case, limit: LimitFound, also: tuple[str, ...]) -> Verdict:
@@ -274,10 +264,12 @@ def _limit(case: Case, limit: LimitFound, also: tuple[str, ...]) -> Verdict:
 
 def side_by_side(case: Case) -> Iterator[str]:
     """The coefficients of every power of ω that differ, both normalized by the highest."""
+    if len(case.derived.polynomial) > MENDED:
+        return
     claimed, _ = case.derived.numerator(case.claim.residual)
     factors = [f for f, _ in case.derived.factors if not covered(f, claimed)]
     same = [f for f in factors if f.degree == claimed.degree] or [case.derived.polynomial]
-    if max(len(same[0]), len(claimed)) > SHOWN:
+    if max(len(same[0]), len(claimed)) > SHOWN_TERMS:
         yield f"the derived relation has {len(same[0])} terms, the claim {len(claimed)}"
         return
     right, theirs = (normalized_coefficients(p) for p in (same[0], claimed))
@@ -285,5 +277,5 @@ def side_by_side(case: Case) -> Iterator[str]:
     for power in sorted({*right, *theirs}, reverse=True):
         a, b = right.get(power, S.Zero), theirs.get(power, S.Zero)
         if cancel(a - b) != 0:
-            shown = (text if len(text := paper(x)) < LONGEST else "a long sum" for x in (a, b))
+            shown = (text if len(text := paper(x)) < SHOWN else "a long sum" for x in (a, b))
             yield f"{paper(Symbol('omega') ** power)}: " + " | ".join(shown)

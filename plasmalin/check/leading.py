@@ -12,7 +12,7 @@ from sympy import Expr, Symbol
 from ..declare.constants import CODATA
 from ..declare.notation import paper
 from ..exact.polynomial import ExactPolynomial
-from .accuracy import Accuracy, without_one_term
+from .accuracy import Accuracy, with_one_term_changed
 from .claim import Claim
 from .cones import Vector
 from .derived import Derived
@@ -72,12 +72,12 @@ class Question:
     derived: Derived
 
     @cached_property
-    def shorter(self) -> tuple[ExactPolynomial, ...] | None:
-        """The claim without one of its terms, for each of them; None where it is a product of several parts."""
+    def others(self) -> tuple[ExactPolynomial, ...] | None:
+        """The claim with another number on one of its terms, each; None where it is a product of several parts."""
         whole, _ = self.derived.numerator(self.claim.residual)
         if len(self.parts) != 1 or self.parts[0].degree != whole.degree:
             return None
-        return without_one_term(self.claim, self.derived)
+        return with_one_term_changed(self.claim, self.derived)
 
     def small(self, group: Expr, physical: bool = True) -> Small:
         return Small(group, number_of(group, self.values, self.claim), physical)
@@ -162,8 +162,9 @@ def verified(
         graded = {r: faces.correction(r, face, answer) for r in beyond}
         if None in graded.values():
             refused = next(r for r, ratios in graded.items() if ratios is None)
-            exact = asked.shorter and Accuracy(faces, found, asked.shorter)
-            there = exact.competing(part, factor, face, answer) if exact else None
+            stands = all(faces.stands(r, face, answer) for r in beyond)
+            exact = asked.others and Accuracy(faces, found, asked.others)
+            there = exact.competing(part, factor, face, answer, stands) if exact else None
             if there is None:
                 return _unconfirmed(asked, faces, refused)
             corrected = True

@@ -10,7 +10,7 @@ from __future__ import annotations
 import time
 from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import replace
-from itertools import product
+from itertools import combinations, product
 
 from sympy import Add, Expr, S
 
@@ -19,10 +19,12 @@ from ..declare.operators import omega
 from .claim import Claim
 from .cones import weights
 from .derived import Derived
-from .leading import BEYOND, LimitFound, Question, apart, best_of, question
+from .leading import BEYOND, Checked, LimitFound, Question, apart, best_of, question
 from .monomials import CHARGE_NUMBER, conditions
 from .orderings import find_limits
 from .reference import about, from_reference, references
+from .sizes import ORDERED
+from .verdict import Small
 
 __all__ = ["LimitFound", "find_limits", "verify_limit"]
 
@@ -48,12 +50,33 @@ def verify_limit(
         As for `find_limits`.
     """
     given, end = list(ratios), time.monotonic() + budget
+    if len(derived.polynomial) > ORDERED:
+        return "the derived relation is too long for its leading part to be sought"
     found = _with_charges(claim, derived, given, values, end)
+    if isinstance(found, str) and found.startswith(BEYOND):
+        for fewer in _fewer(given):
+            wider = _with_charges(claim, derived, fewer, values, end)
+            if not isinstance(wider, str):
+                return replace(wider, groups=_groups(claim, derived, given, values))
     for reference in references(claim) if isinstance(found, str) else ():
         near = _near(claim, derived, reference, given, values, end)
         if near is not None:
             return near
     return found
+
+
+def _groups(
+    claim: Claim, derived: Derived, given: list[Expr], values: Mapping[str, float] | None
+) -> tuple[Small, ...]:
+    """The author's own conditions."""
+    return tuple(map(question(claim, derived, values).small, given))
+
+
+def _fewer(given: list[Expr]) -> Iterator[list[Expr]]:
+    """The conditions without one of them or two: what is leading under fewer, a correction under all, is right."""
+    for left_out in (1, 2):
+        if left_out < len(given):
+            yield from map(list, combinations(given, len(given) - left_out))
 
 
 def _near(
@@ -71,12 +94,23 @@ def _near(
     wide = _with_charges(claim, derived, plain, values, end)
     if isinstance(wide, str) and not wide.startswith(BEYOND):
         return None
-    found = _with_charges(moved, there, near, values, end)
+    found = _with_charges(moved, there, near, values, end, reference)
     if isinstance(found, str):
         return None
-    small = tuple(map(question(claim, derived, values).small, given))
+    small = _groups(claim, derived, given, values)
     return replace(
         found, groups=small, notes=(f"in powers of ω − {paper(reference)}", *found.notes)
+    )
+
+
+def _is_near(asked: Question, answer: Checked, reference: Expr) -> bool:
+    """Whether the distance from a reference frequency is small beside it wherever the claim balances."""
+    small = conditions(asked.claim, asked.space, [omega / reference])
+    if isinstance(small, str):
+        return False
+    return all(
+        any(all(answer.faces.is_small(v, face) for v in case) for case in small)
+        for face, _ in answer.led
     )
 
 
@@ -105,21 +139,24 @@ def _with_charges(
     given: list[Expr],
     values: Mapping[str, float] | None,
     end: float,
+    reference: Expr | None = None,
 ) -> LimitFound | str:
     """With charge numbers of any size, else of order one."""
-    found = _verified(question(claim, derived, values), derived, given, end)
+    found = _verified(question(claim, derived, values), derived, given, end, reference)
     charges = sorted(
         (s for s in derived.symbols if CHARGE_NUMBER.match(s.name)), key=lambda s: s.name
     )
     if not isinstance(found, str) or not charges:
         return found
-    wider = _verified(question(claim, derived, values, charges), derived, given, end)
+    wider = _verified(question(claim, derived, values, charges), derived, given, end, reference)
     if isinstance(wider, str):
         return found
     return replace(wider, notes=(*wider.notes, f"with {', '.join(map(paper, charges))} of order 1"))
 
 
-def _verified(asked: Question, derived: Derived, given: list[Expr], end: float) -> LimitFound | str:
+def _verified(
+    asked: Question, derived: Derived, given: list[Expr], end: float, reference: Expr | None = None
+) -> LimitFound | str:
     claim = asked.claim
     cones = conditions(claim, asked.space, [derived.using(claim.written_out(r)) for r in given])
     if isinstance(cones, str):
@@ -137,6 +174,8 @@ def _verified(asked: Question, derived: Derived, given: list[Expr], end: float) 
             return answer
         if answer.needed:
             return answer.reason
+        if reference is not None and not _is_near(asked, answer, reference):
+            return "its roots are not near the reference frequency"
         notes += answer.notes
         besides += answer.besides
         notes += apart(asked, answer)

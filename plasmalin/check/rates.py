@@ -18,6 +18,7 @@ from .corrections import edges, parts
 from .derived import Derived
 from .monomials import number_of
 from .scalings import Weights, paths, scaled
+from .sizes import ORDERED, SEARCHED
 from .verdict import Small
 
 DEEPEST = 3
@@ -95,6 +96,8 @@ def rate_order(
     -------
     RateFound or None
     """
+    if len(derived.polynomial) > ORDERED:
+        return None
     end = time.monotonic() + budget
     rate = derived.rational(claim.written_out(value))
     given = None if ratios is None else [claim.written_out(r) for r in ratios]
@@ -114,6 +117,8 @@ def is_exact(value: Expr, claim: Claim, derived: Derived, real: bool) -> bool:
 
     With ω = x + iγ the real and the imaginary part of the derived relation have a common zero in the other part.
     """
+    if len(derived.polynomial) > SEARCHED:
+        return False
     given = derived.rational(claim.written_out(value))
     root = given + I * omega if real else omega + I * given
     for factor, _ in derived.factors:

@@ -37,6 +37,7 @@ from .corrections import correction, parts
 from .derived import Derived
 from .monomials import PURE_NUMBER, Wording, number_of, space_of
 from .scalings import Weights, even, is_imaginary, order, paths, scaled
+from .sizes import SEARCHED
 from .verdict import Small
 
 MOST_STEPS = 4
@@ -207,6 +208,8 @@ def _searched(
 
 def _expansion(claim: Claim, derived: Derived) -> Expansion | None:
     """The claim solved for ω or ω², else for a wave number or its square, its value expanded into terms."""
+    if len(derived.polynomial) > SEARCHED:
+        return None
     angles = {*derived.angles.symbols, *derived.angles.forms}
     waves = sorted(derived.wave_symbols - angles, key=str)
     return next((e for main in (omega, *waves) if (e := _solved(claim, derived, main))), None)

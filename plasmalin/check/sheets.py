@@ -17,9 +17,8 @@ from ..exact.radicals import LinearInRoots, linear_in_roots
 from .claim import Claim
 from .derived import Derived
 from .monomials import base_and_power
+from .sizes import SHOWN_BESIDE
 
-LONGEST = 80
-"""Characters of what must be positive, where it is said."""
 NOWHERE = "a principal root has no negative real part, so the claim as written has no solution"
 OPEN = "signs do not decide which of its roots lie on the principal sheet"
 
@@ -83,7 +82,7 @@ def _where(
         side = f"{paper(Mul(*sign.symbols))} {'>' if sign.number > 0 else '<'} 0"
         return (f"with the principal root it holds for {side}",) if sign.symbols else ()
     value = paper(cancel(-rest.as_expr() / part.as_expr()))
-    if len(value) > LONGEST or "_root" in value:
+    if len(value) > SHOWN_BESIDE or "_root" in value:
         return (OPEN,)
     return (f"with the principal root it holds where the real part of {value} is positive",)
 

@@ -17,12 +17,11 @@ from .compare import compare
 from .convention import under_other_conventions
 from .limit import LimitFound, find_limits, limits_about
 from .series import series_order
-from .special import MOST_TERMS, special_values
+from .sizes import SEARCHED
+from .special import special_values
 from .verdict import shown_conditions
 
 LEADING = "its terms are a face of the Newton polytope of the derived relation"
-LONG = 800
-"""Terms of a relation in which special values and orderings are searched for."""
 
 
 @dataclass(frozen=True)
@@ -63,11 +62,7 @@ def where_right(case: Case) -> Somewhere | None:
     found = _other_convention(case)
     if found is not None:
         return found
-    if len(case.derived.polynomial) > LONG:
-        case.reasons.append(
-            f"the derived relation has {len(case.derived.polynomial)} terms: "
-            "special values and orderings were not searched for"
-        )
+    if len(case.derived.polynomial) > SEARCHED:
         return None
     special = _special(case)
     if special is None or special.asks > 1:
@@ -144,7 +139,7 @@ def _limit(case: Case) -> Somewhere | None:
 
 
 def _series(case: Case) -> Somewhere | None:
-    if _has_long_roots(case.claim) or len(case.derived.polynomial) > MOST_TERMS:
+    if _has_long_roots(case.claim):
         return None
     found = series_order(case.whole, case.derived, None, case.values, case.time / 4)
     if found is None:

@@ -108,18 +108,13 @@ class ExactPolynomial:
 
     # Arithmetic --------------------------------------------------------------------------------
 
-    def _key(self) -> tuple[Any, ...]:
-        return self.main, self.generators, frozenset(self.terms())
-
     def __eq__(self, other: object) -> bool:
-        return isinstance(other, ExactPolynomial) and self._key() == other._key()
+        if not isinstance(other, ExactPolynomial) or self._ring != other._ring:
+            return False
+        return self._value == other._value
 
     def __hash__(self) -> int:
-        return self._hash
-
-    @cached_property
-    def _hash(self) -> int:
-        return hash(self._key())
+        return hash((self.main, self.generators, len(self), self.degree))
 
     def __reduce__(self) -> tuple[Any, ...]:
         return _restored, (self.main, self.generators, tuple(self.terms()))

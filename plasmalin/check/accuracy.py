@@ -18,7 +18,8 @@ from ..exact.polynomial import ExactPolynomial
 from .claim import Claim
 from .cones import Quotient, Vector, extreme, implied, minus, plus, times
 from .derived import Derived
-from .faces import Face, Faces, Leading, divided, initial, product
+from .faces import Face, Faces, Leading
+from .forms import divided, initial, product
 from .monomials import Terms
 from .places import addends, changed
 from .sizes import DIVIDED

@@ -18,7 +18,8 @@ from .claim import Claim
 from .compare import covered
 from .cones import Quotient, Vector, extreme, implied, minus, smallest, times, weights
 from .derived import Derived
-from .faces import Faces, divided, initial, matched_shifts, slopes
+from .faces import Faces
+from .forms import divided, initial, matched_shifts, slopes
 from .leading import Checked, LimitFound, Question, apart, best_of, largest, question, verified
 from .monomials import ELECTRON_MASS, MASS, Space, Terms
 from .sizes import MULTIPLIED

@@ -152,7 +152,7 @@ SLIPS = {
     "ideal-mhd-shear-fast-slow": (
         ("special", "p0", "gamma"),  # gamma dropped in the sound speed; right multiplier 5/3
         (
-            "limit",
+            "differs",
             "-B0**2*gamma*kx**2*kz**2*p0/(mu0*rho0**2)",
             "1",
         ),  # kz**4 instead of k**2*kz**2 in the constant term
@@ -273,7 +273,7 @@ SLIPS = {
     ),
     "lower-hybrid-perp": (
         (
-            "limit",
+            "differs",
             "-B0**2*e**2/me**2",
             "me**2/mi**2",
         ),  # electron cyclotron frequency used for the ions; right is Omega_i = e*B0/mi

@@ -66,6 +66,7 @@ RIGHT = [
     ("langmuir", "v_ph^2 = omega_pe^2/k^2 + gamma_e v_te^2", LANGMUIR | {"v_ph": "omega/k"}, None, "identical"),
     ("langmuir", "omega^2 = omega_pe^2 + 3 k^2 v_te^2", LANGMUIR, {"gamma_e": 3}, "special"),
     ("langmuir", "omega^2 = omega_pe^2 + (3/2) k^2 v_te^2", ROOT_2, ["gamma_e = 3"], "special"),
+    ("langmuir", "omega = omega_pe (1 + 3/2 k^2 lambda_De^2)", LANGMUIR, ["gamma_e = 3", "k lambda_De << 1"], "series"),
     ("langmuir", "omega = omega_pe (1 + (3/2) k^2 lambda_De^2)", LANGMUIR, ["gamma_e = 3", "k lambda_De << 1"], "series"),
     ("langmuir", "omega = omega_pe", LANGMUIR, ["k lambda_De << 1"], "limit"),
     ("langmuir", "omega = omega_pe", LANGMUIR, ["k lambda_De -> 0"], "limit"),
@@ -188,6 +189,11 @@ def test_conditions_are_read_in_the_units_of_the_author(check):
     assert (verdict.kind, verdict.agrees) == ("limit", True)
 
 
+def test_the_reading_shows_a_tight_fraction_as_a_coefficient(check):
+    reading = check("langmuir", "omega^2 = omega_pe^2 + 3/2 k^2 v_te^2", ROOT_2).reading
+    assert r"\frac{3\,k^{2}\,v_{\mathrm{te}}^{2}}{2}" in reading
+
+
 def test_special_values_are_named(check):
     verdict = check("langmuir", "omega^2 = omega_pe^2 + 3 k^2 v_te^2", LANGMUIR)
     assert verdict.conditions == {"gamma_e": 3}
@@ -278,3 +284,31 @@ def test_a_verdict_is_immutable_and_shows_its_reading(check):
     assert paper(sympy.Symbol("omega_pi")) == "ω_pi"  # of the ions, no pion
     for text in (str(verdict), verdict.latex(), verdict._repr_html_()):
         assert "limit" in text
+
+
+def test_a_parameter_that_enters_by_its_root_is_no_unknown(check):
+    """Hall MHD holds sqrt(ρ_0), which a claim need not hold."""
+    assert check("hall", "omega = 1").kind == "differs"
+
+
+def test_what_was_not_asked_of_a_long_relation_is_said():
+    """Six densities and speeds of three species with Maxwell's equations: 2,689 terms."""
+    ions = [
+        plin.Species(
+            f"i{j}",
+            charge_number=1,
+            mass=(j + 1) * plin.constants.m_p,
+            density=1e16,
+            gamma=3,
+            temperature_eV=1.0,
+        )
+        for j in range(2)
+    ]
+    electrons = plin.Species(
+        "e", charge_number=-1, mass=plin.constants.m_e, density=2e16, gamma=1, temperature_eV=1.0
+    )
+    field = {"field": "electromagnetic", "magnetic_field": (0, 0, 0.02)}
+    wave = plin.mixture([electrons, *ions], **field).linearize().plane_wave(("k_x", 0, "k_z"))
+    verdict = wave.check("omega^2 = c^2 (k_x^2 + k_z^2)", budget_s=2)
+    assert (verdict.kind, verdict.agrees) == ("differs", False)
+    assert any("expansions were not searched for" in n for n in verdict.notes)

@@ -8,12 +8,14 @@ import random
 from collections import Counter
 from functools import cache
 
+import check_models
 import published
 import published_more
 import pytest
 import slip_generator
 from slip_table import SLIPS
 from sympy import Poly, Rational, S, Symbol, fraction, together
+from test_check import COLD
 from typed_claims import TYPED, shorthands
 
 from plasmalin.check.claim import Claim, make_claim
@@ -26,6 +28,11 @@ MODULES = {n: m for m in (published, published_more) for n in m.CASES}
 FORMULAS = [n for n, m in MODULES.items() if m.read(n)["kind"] == "formula"]
 LISTED = [(n, i) for n in MODULES for i in range(len(MODULES[n].read(n).get("slips", [])))]
 BUDGET = 10.0
+
+
+@pytest.fixture(scope="module")
+def oblique():
+    return check_models.cold()
 
 
 @cache
@@ -148,6 +155,34 @@ def test_the_contract_of_a_multiplier():
     wave = published.langmuir_bohm_gross()
     slip = first(wave, "omega^2 = wpe^2 + 3 k^2 e Te_eV/me", {"wpe": "sqrt(n0 e^2/(eps0 me))"})
     assert (str(slip.term), str(slip.multiplier)) == ("3*Te_eV*e*k**2/me", "gamma/3")
+
+
+STIX = COLD | {"A": "S sin^2 theta + P cos^2 theta", "b": "R L sin^2 theta + P S (1 + cos^2 theta)"}
+
+
+@pytest.mark.parametrize(
+    ("name", "wrong", "term", "right"),
+    [
+        ("A", "S sin^2 theta + P cos^4 theta", "cos(theta)**4", "cos(theta)**(-2)"),
+        ("A", "S sin^4 theta + P cos^2 theta", "sin(theta)**4", "sin(theta)**(-2)"),
+        ("b", "R L sin^2 theta + P S (1 + cos^4 theta)", "cos(theta)**4", "cos(theta)**(-2)"),
+        ("b", "R L sin^2 theta + P S (1 + cos theta)", "cos(theta)", "cos(theta)"),
+    ],
+)
+def test_a_wrong_power_of_a_sine_is_located(oblique, name, wrong, term, right):
+    """Stix 1992, Waves in Plasmas, ch. 1: A n^4 - B n^2 + C = 0, with its nested forms (from memory)."""
+    verdict = oblique.check("A n^4 - b n^2 + P R L = 0", where=STIX | {name: wrong})
+    assert (verdict.kind, verdict.agrees) == ("differs", False)
+    assert term in str(verdict.slips[0].term)
+    assert str(verdict.slips[0].multiplier) == right
+
+
+def test_a_wrong_power_below_two_roots_is_located(oblique):
+    root = "sqrt((R L - P S)^2 sin^4 theta + 4 P^2 D^2 cos^4 theta)"
+    verdict = oblique.check("n^2 = (b + F)/(2 A)", where=STIX | {"F": root})
+    assert [(str(s.term), str(s.multiplier)) for s in verdict.slips] == [
+        ("cos(theta)**4", "cos(theta)**(-2)")
+    ]
 
 
 def test_both_repairs_of_a_thermal_speed_are_offered():

@@ -10,6 +10,7 @@ from typing import Any
 from sympy import Abs, Expr, Symbol, cos, expand_trig, sin, sqrt
 from sympy import tan as tangent
 
+from ..declare.operators import omega
 from ..exact.polynomial import ExactPolynomial
 from .conics import Conic, conics_of
 
@@ -39,7 +40,7 @@ class Angles:
             plain = f if f.args[0] in self.forms or f.args[0].is_Symbol else expand_trig(f)
             replaced[f] = plain.xreplace({g: self._image(g) for g in plain.atoms(sin, cos)})
         for a in expr.atoms(Abs):
-            replaced[a] = a.args[0] if a.args[0].is_Symbol else a
+            replaced[a] = a.args[0] if a.args[0].is_Symbol and a.args[0] != omega else a
         made = expr.xreplace(replaced) if replaced else expr
         for conic in self.conics:
             made = conic.rational(made)
@@ -50,6 +51,13 @@ class Angles:
         for conic in reversed(self.conics):
             ratio = conic.restored(ratio)
         return ratio
+
+    def written(self, expr: Expr) -> Expr:
+        """An expression with the sine or the cosine of an angle for what stands for it."""
+        functions = {"sin": sin, "cos": cos}
+        return expr.xreplace(
+            {symbol_of(a, f): functions[f](a) for a, f in self.forms.items() if f in functions}
+        )
 
     def _image(self, function: Expr) -> Expr:
         angle = function.args[0]

@@ -14,18 +14,17 @@ from ..exact.polynomial import ExactPolynomial
 from ..exact.polynomial import polynomial as read_exact
 from ..waves.ordering import leading_balances
 from .derived import Derived, bare
+from .sizes import BALANCED
 
 MOST_PARTS = 40
 """Leading parts that are tried."""
-LONGEST = 600
-"""Terms of a factor whose leading parts are listed."""
 
 
 def leading_parts(derived: Derived, degree: int, deadline: float) -> list[ExactPolynomial]:
     """The leading balances of a degree in ω under one symbol, or two, becoming small or large, the longest first."""
     found: dict[Expr, ExactPolynomial] = {}
     for factor, _ in derived.factors:
-        if factor.degree <= degree or len(factor) > LONGEST:
+        if factor.degree <= degree or len(factor) > BALANCED:
             continue
         for weights in _weightings(factor):
             if time.monotonic() > deadline:

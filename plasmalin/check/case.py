@@ -17,14 +17,12 @@ from .convention import Convention
 from .derived import Derived, derive
 from .monomials import number_of
 from .roles import Roles
+from .sizes import WITH_CONDITIONS, too_long
 from .stated import Stated
 from .verdict import Verdict
 
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
-
-LONGEST = 10_000
-"""Terms of a relation that the conditions of the background are put into."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -48,7 +46,7 @@ class Case:
     values : mapping of str to number
     deadline : float
         On the monotonic clock.
-    reasons : list of str
+    reasons : tuple of str
         Why the author's own conditions do not make the claim right.
     put_in : mapping of Symbol to Expr
         Stated values that are put into the claim and the relation.
@@ -63,7 +61,7 @@ class Case:
     roles: Roles
     values: Mapping[str, Any]
     deadline: float
-    reasons: list[str] = field(default_factory=list)
+    reasons: tuple[str, ...] = ()
     put_in: Mapping[Symbol, Expr] = field(default_factory=dict)
 
     def as_stated(self) -> Case:
@@ -87,10 +85,7 @@ class Case:
     @cached_property
     def derived(self) -> Derived:
         """The derived relation with the conditions of the background used, unless it is too long for that."""
-        if len(self.wave.relation.exact) > LONGEST:
-            self.reasons.append(
-                "the relation is too long for the background's conditions to be used"
-            )
+        if len(self.wave.relation.exact) > WITH_CONDITIONS:
             return self.plain
         return self._derived(True)
 
@@ -113,6 +108,11 @@ class Case:
     def used(self) -> tuple[str, ...]:
         """The conditions of the background that were used, in words."""
         return in_words(self.fitting)
+
+    @property
+    def doubts(self) -> tuple[str, ...]:
+        """Why a claim that is not right as it stands was not found right otherwise."""
+        return (*self.reasons, *too_long(len(self.derived.polynomial)))
 
     @property
     def stated_values(self) -> tuple[str, ...]:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Mapping
+from collections.abc import Collection, Mapping
 from dataclasses import dataclass
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
@@ -16,6 +16,7 @@ from sympy import (
     I,
     Matrix,
     MatrixBase,
+    Pow,
     Symbol,
     sqrt,
     sympify,
@@ -30,7 +31,9 @@ from .names import Names
 if TYPE_CHECKING:
     from ..waves.matrix import WaveMatrix
 
-RATE_NAMES = ("gamma", "Imomega")
+PART_NAMES = {"gamma": "gamma", "Imomega": "gamma", "omega_r": "omega_r", "Reomega": "omega_r"}
+"""How Im ω and Re ω are written where they stand alone."""
+REAL_PART = Symbol("omega_r")
 
 
 @dataclass(frozen=True)
@@ -77,6 +80,17 @@ class Claim:
             meaning(symbol)
         return found
 
+    @property
+    def used(self) -> set[Symbol]:
+        """The shorthands that the sides hold, by themselves or through others."""
+        found: set[Symbol] = set()
+        new = (self.left - self.right).free_symbols & set(self.definitions)
+        while new:
+            found |= new
+            new = {s for n in new for s in self.definitions[n].free_symbols}
+            new = new & set(self.definitions) - found
+        return found
+
     def mapped(self, change: Any) -> Claim:
         """The claim with a function applied to both sides and to every definition."""
         made = {s: change(d) for s, d in self.definitions.items()}
@@ -85,8 +99,12 @@ class Claim:
     @property
     def solved(self) -> bool:
         """Whether it gives ω itself, alone on one side."""
+        return self.solved_for({omega})
+
+    def solved_for(self, symbols: Collection[Expr]) -> bool:
+        """Whether it gives one of some symbols, alone on one side."""
         sides = (self.left, self.right), (self.right, self.left)
-        return any(a == omega and not self.written_out(b).has(omega) for a, b in sides)
+        return any(a in symbols and not self.written_out(b).has(a) for a, b in sides)
 
     @property
     def reading(self) -> str:
@@ -120,22 +138,26 @@ def make_claim(wave: WaveMatrix, claim: Any, where: Mapping[Any, Any]) -> Claim:
     return made
 
 
-def make_rate(names: WaveNames, claim: Any) -> Claim | None:
-    """A claim that gives Im ω alone, "gamma = ..." or "Im(omega) = ..."; None for any other.
+def make_part(names: WaveNames, claim: Any) -> Claim | None:
+    """A claim that gives Im ω or Re ω alone, or squared, "gamma = ..." or "Re(omega)^2 = ..."; None for any other.
 
-    The name gamma means Im ω only where neither the model nor `where` has it.
+    The names gamma and omega_r mean these only where neither the model nor `where` has them.
     """
-    if isinstance(claim, Eq) and isinstance(claim.lhs, Symbol):
-        left, value = claim.lhs.name, claim.rhs
+    if isinstance(claim, Eq) and isinstance(claim.lhs, Symbol | Pow):
+        left, value = str(claim.lhs), claim.rhs
     elif isinstance(claim, str) and claim.count("=") == 1:
         left, value = (part.strip() for part in typed_text(claim).split("="))
     else:
         return None
-    plain = re.sub(r"[\s()*]", "", left).replace("ω", "omega").replace("γ", "gamma")
-    if plain not in RATE_NAMES or plain in names.names:
+    plain = re.sub(r"[\s()*]", "", left.replace("**", "^"))
+    for glyph, name in (("ω", "omega"), ("γ", "gamma"), ("ᵣ", "_r"), ("{r}", "r")):
+        plain = plain.replace(glyph, name)
+    plain, squared = re.sub(r"(\^2|²)$", "", plain), plain.endswith(("^2", "²"))
+    if plain not in PART_NAMES or plain in names.names:
         return None
     right = names.expression(value, "claim")
-    return Claim(Symbol("gamma"), right, names.used(right))
+    right = sqrt(right) if squared else right
+    return Claim(Symbol(PART_NAMES[plain]), right, names.used(right))
 
 
 class WaveNames(Names):

@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
 from functools import reduce
 from operator import mul
 
@@ -15,9 +16,8 @@ from ..exact.divisibility import may_divide
 from ..exact.polynomial import ExactPolynomial
 from .claim import Claim
 from .derived import Derived, bare
-
-LONGEST = 1000
-"""Terms of a claim freed of its roots that is searched for repeated factors."""
+from .sheets import Sheet, sheet_of
+from .sizes import FACTORED, SHOWN_BESIDE
 
 
 @dataclass(frozen=True)
@@ -30,14 +30,19 @@ class Match:
         "identical", "factor" or "branch".
     proof : str
         How the polynomials compare.
+    notes : tuple of str
+        Which of a claim's solutions lie on the principal sheet of its roots, where not all do.
     """
 
     kind: str
     proof: str
+    notes: tuple[str, ...] = ()
 
 
 def compare(claim: Claim, derived: Derived) -> Match | None:
     """How a claim agrees with the derived relation, or None where it does not.
+
+    A claim with roots stands for their principal values, and does not agree where it has no solution with them.
 
     Raises
     ------
@@ -47,28 +52,36 @@ def compare(claim: Claim, derived: Derived) -> Match | None:
     found, sheets = derived.with_zeros(claim.residual)
     if found.degree < 0:
         raise DeclarationError("claim: both sides are the same, so it says nothing of a wave")
-    polynomial, extraneous = without_poles(found, claim, derived)
-    if sheets > 1 and len(polynomial) < LONGEST:
+    polynomial, poles = without_poles(found, claim, derived)
+    if sheets > 1 and len(polynomial) < FACTORED:
         polynomial = without_repeats(polynomial)
     made = match(bare(polynomial), sheets, derived, claim.solved)
     if made is None or (made.kind != "identical" and _loses(claim, polynomial, derived)):
         return None
-    if extraneous is None:
-        return made
-    note = f"; {paper(extraneous.as_expr())} = 0 is where the claim as arranged is infinite on both sides, no wave"
-    return Match(made.kind, made.proof + note)
+    sheet = sheet_of(claim, derived) if sheets > 1 else Sheet()
+    if not sheet.possible:
+        return None
+    return replace(made, proof=made.proof + _poles_in_words(poles), notes=sheet.notes)
+
+
+def _poles_in_words(poles: Sequence[ExactPolynomial]) -> str:
+    if not poles:
+        return ""
+    texts = (f"{paper(p.as_expr())} = 0" for p in poles)
+    shown = dict.fromkeys(t if len(t) < SHOWN_BESIDE else "zeros of a long sum" for t in texts)
+    return f"; {', '.join(shown)}: there the claim as arranged is infinite on both sides, no wave"
 
 
 def without_poles(
     polynomial: ExactPolynomial, claim: Claim, derived: Derived
-) -> tuple[ExactPolynomial, ExactPolynomial | None]:
-    """The claim without roots that are poles of parts of it, and these roots.
+) -> tuple[ExactPolynomial, list[ExactPolynomial]]:
+    """The claim without roots that are poles of parts of it, and what vanishes at these.
 
     1/A = 1/B holds where A and B are both infinite: such roots come with the arrangement.
     """
-    taken: ExactPolynomial | None = None
+    taken: list[ExactPolynomial] = []
     if polynomial.degree < 1 or covered(polynomial, derived.polynomial):
-        return polynomial, None
+        return polynomial, taken
     poles = {p.base for e in _expressions(claim) for p in e.atoms(Pow) if p.exp.is_negative}
     for base in poles:
         if not base.has(omega) or base == omega:
@@ -79,7 +92,7 @@ def without_poles(
             if common.degree < 1 or not derived.polynomial.gcd(common).degree < 1:
                 break
             polynomial = polynomial.exact_div(common)
-            taken = common if taken is None else taken * common
+            taken += [common] if common not in taken else []
     return polynomial, taken
 
 
@@ -116,7 +129,7 @@ def still_factors(claim: Claim) -> list[Expr]:
 def _is_rest_of(still: Expr, factor: ExactPolynomial) -> bool:
     """Whether a sum is what a factor of the relation leaves without its powers of ω."""
     rest = factor.coefficients().get(0, S.Zero)
-    return rest != 0 and len(factor) < LONGEST and not cancel(rest / still).has(Add)
+    return rest != 0 and len(factor) < FACTORED and not cancel(rest / still).has(Add)
 
 
 def has_only_roots_of(claim: Claim, derived: Derived) -> bool:

@@ -17,7 +17,6 @@ from sympy import (
     expand,
 )
 
-from ..declare.operators import omega
 from ..exact.polynomial import ExactPolynomial, polynomial
 from .scalings import Weights, order
 
@@ -33,7 +32,7 @@ class Step:
 @lru_cache(maxsize=64)
 def _shifted(factor: ExactPolynomial, value: Expr) -> ExactPolynomial:
     """The factor as a polynomial in what is added to a value."""
-    return factor.substitute({omega: value + omega})
+    return factor.substitute({factor.main: value + factor.main})
 
 
 def lowest_terms(
@@ -76,8 +75,8 @@ def edges(
         levels = {i: level + slope * i for i, (level, _) in lowest.items()}
         on = sorted(i for i, level in levels.items() if level == min(levels.values()))
         if len(on) > 1:
-            terms = (lowest[i][1] * omega ** (i - on[0]) for i in on)
-            yield slope, polynomial(Add(*terms), omega)
+            terms = (lowest[i][1] * factor.main ** (i - on[0]) for i in on)
+            yield slope, polynomial(Add(*terms), factor.main)
 
 
 def parts(value: Expr) -> tuple[Expr, Expr]:

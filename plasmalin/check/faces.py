@@ -9,7 +9,8 @@ from fractions import Fraction
 from itertools import combinations
 
 from .cones import Quotient, Vector, extreme, implied, minus, plus, times, weights
-from .monomials import Coefficient, Space, Terms
+from .forms import divided, initial, matched_shifts, product, slopes
+from .monomials import Space, Terms
 
 
 @dataclass(frozen=True)
@@ -88,6 +89,21 @@ class Faces:
         zeros = tuple(minus(self.space.order(v), first) for v in on[1:])
         others = (v for v in self.claimed if v not in on)
         return Face(tuple(on), zeros, tuple(minus(self.space.order(v), first) for v in others))
+
+    def inside(self, face: Face) -> Vector | None:
+        """Sizes at which the terms of a face balance and all others of the claim are smaller."""
+        return weights(self.space.sized, [*self.cone, *face.above], face.zeros)
+
+    def can_be_small(self, v: Vector, face: Face) -> bool:
+        """Whether a monomial is small at some sizes at which a face balances."""
+        return weights(self.space.sized, [*self.cone, v], face.zeros, face.above) is not None
+
+    def is_small(self, v: Vector, face: Face) -> bool:
+        """Whether a monomial is small wherever a face balances under the conditions."""
+        quotient = Quotient(face.zeros)
+        cone, above = ([quotient.reduced(x) for x in xs] for xs in (self.cone, face.above))
+        reduced = quotient.reduced(v)
+        return any(reduced) and implied(reduced, cone, above)
 
     def _weights(self, face: Face, weak: Sequence[Vector] = ()) -> Vector | None:
         return weights(self.space.sized, self.cone, face.zeros, [*face.above, *weak])
@@ -190,102 +206,40 @@ class Faces:
             return False
         return product(here, self.claimed[anchor]) == product(there, self.claimed[term])
 
+    def pairs(self, face: Face) -> Iterator[Face]:
+        """Where two terms of a face balance, with different powers of ω, and the others are smaller."""
+        for a, b in combinations(face.on, 2) if len(face.on) > 2 else ():
+            pair = self._face((a, b))
+            if a[0] != b[0] and time.monotonic() < self.end and self._weights(pair) is not None:
+                yield pair
+
     def apart(self, face: Face, answer: Leading) -> list[tuple[Vector, Face]]:
         """What must be small besides where only two of the face's terms balance and the others are smaller."""
         found: list[tuple[Vector, Face]] = []
-        for a, b in combinations(face.on, 2) if len(face.on) > 2 else ():
-            pair = self._face((a, b))
-            if a[0] == b[0] or time.monotonic() > self.end or self._weights(pair) is None:
-                continue
+        for pair in self.pairs(face):
             part = {v: self.claimed[v] for v in pair.on}
             more = self._followed(pair, part, answer.shifts)
             found += [(v, pair) for v, _ in more.needed] if more else []
         return found
 
+    def stands(self, term: Vector, face: Face, answer: Leading) -> bool:
+        """Whether a claimed term beyond the face stands in the derived relation with its coefficient."""
+        return all(self._same(s, term, face) for s in answer.shifts)
+
     def correction(self, term: Vector, face: Face, answer: Leading) -> list[Vector] | None:
-        """Ratios that must be small for a claimed term beyond the face to stand; None where it is not derived."""
-        if not all(self._same(s, term, face) for s in answer.shifts):
+        """Ratios that must be small for a claimed term beyond the face to stand; None where it is not plain that it does."""
+        if not self.stands(term, face, answer):
             return None
         quotient = Quotient(face.zeros)
         cone = [quotient.reduced(v) for v in self.cone]
         above = [quotient.reduced(v) for v in face.above]
         size = self._reduced(minus(term, face.on[0]), quotient)
         ratios = {minus(v, size) for v in answer.rays}
-        return extreme(v for v in sorted(ratios) if any(v) and not implied(v, cone, above))
-
-
-def slopes(claimed: Terms, w: Vector, space: Space) -> Iterator[Vector]:
-    """The weights with every weight of ω for which terms with different powers of ω are leading."""
-    lowest: dict[Fraction, Fraction] = {}
-    for v in claimed:
-        order = times(w, space.order(v)) - w[0] * v[0]
-        lowest[v[0]] = min(order, lowest.get(v[0], order))
-    found = {(lowest[b] - lowest[a]) / (a - b) for a, b in combinations(lowest, 2)}
-    for slope in sorted(found):
-        turned = (slope, *w[1:])
-        if len({v[0] for v in initial(claimed, turned, space)}) > 1:
-            yield turned
-
-
-def initial(terms: Terms, w: Vector, space: Space) -> Terms:
-    """The terms of the lowest weight."""
-    levels = {v: times(w, space.order(v)) for v in terms}
-    low = min(levels.values())
-    return {v: terms[v] for v, level in levels.items() if level == low}
+        if any(not any(v) for v in ratios):
+            return None
+        return extreme(v for v in sorted(ratios) if not implied(v, cone, above))
 
 
 def _fewest(needed: list[tuple[Vector, Vector]]) -> list[tuple[Vector, Vector]]:
     kept = extreme(v for v, _ in needed)
     return [n for n in needed if n[0] in kept]
-
-
-def product(a: Coefficient, b: Coefficient) -> Coefficient:
-    return a[0] * b[0] - a[1] * b[1], a[0] * b[1] + a[1] * b[0]
-
-
-def matched_shifts(part: Terms, whole: Terms) -> Iterator[tuple[Vector, ...]]:
-    """The places where a multiple of `part` by one term stands in `whole`."""
-    anchor, *others = part
-    for v, c in whole.items():
-        shift = minus(v, anchor)
-        places = [v]
-        for o in others:
-            place = plus(shift, o)
-            found = whole.get(place)
-            if found is None or product(found, part[anchor]) != product(c, part[o]):
-                break
-            places.append(place)
-        else:
-            yield tuple(places)
-
-
-def divided(whole: Terms, part: Terms) -> dict[Vector, tuple[Fraction, Fraction]] | None:
-    """The quotient of two polynomials, or None where there is a rest."""
-    rest = {v: (Fraction(a), Fraction(b)) for v, (a, b) in whole.items()}
-    least = _least(whole)
-    base = _least(part)
-    lead = max(part)
-    a, b = part[lead]
-    norm = a * a + b * b
-    made: dict[Vector, tuple[Fraction, Fraction]] = {}
-    while rest:
-        top = max(rest)
-        shift = minus(top, lead)
-        if any(s < x - y for s, x, y in zip(shift, least, base, strict=True)):
-            return None
-        c, d = rest[top]
-        q = (c * a + d * b) / norm, (d * a - c * b) / norm
-        made[shift] = q
-        for v, (x, y) in part.items():
-            place = plus(shift, v)
-            old = rest.get(place, (Fraction(0), Fraction(0)))
-            new = old[0] - (q[0] * x - q[1] * y), old[1] - (q[0] * y + q[1] * x)
-            if any(new):
-                rest[place] = new
-            else:
-                rest.pop(place, None)
-    return made
-
-
-def _least(terms: Terms) -> Vector:
-    return tuple(min(column) for column in zip(*terms, strict=True))

@@ -5,12 +5,14 @@ from __future__ import annotations
 import time
 from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass
+from functools import cached_property
 
 from sympy import Expr, Symbol
 
 from ..declare.constants import CODATA
 from ..declare.notation import paper
 from ..exact.polynomial import ExactPolynomial
+from .accuracy import Accuracy, with_one_term_changed
 from .claim import Claim
 from .cones import Vector
 from .derived import Derived
@@ -33,12 +35,15 @@ class LimitFound:
         Where two small groups compete, the ratio that decides.
     besides : tuple of Expr
         What must be small as well for terms of the claim beyond the leading order to stand.
+    corrected : bool
+        Whether there are such terms that do not stand so in the derived relation; the roots are right to their order.
     """
 
     groups: tuple[Small, ...]
     neglected: Expr
     notes: tuple[str, ...] = ()
     besides: tuple[Expr, ...] = ()
+    corrected: bool = False
 
     @property
     def proof(self) -> str:
@@ -64,6 +69,15 @@ class Question:
     wording: Wording
     waves: frozenset[Symbol]
     values: Mapping[str, float]
+    derived: Derived
+
+    @cached_property
+    def others(self) -> tuple[ExactPolynomial, ...] | None:
+        """The claim with another number on one of its terms, each; None where it is a product of several parts."""
+        whole, _ = self.derived.numerator(self.claim.residual)
+        if len(self.parts) != 1 or self.parts[0].degree != whole.degree:
+            return None
+        return with_one_term_changed(self.claim, self.derived)
 
     def small(self, group: Expr, physical: bool = True) -> Small:
         return Small(group, number_of(group, self.values, self.claim), physical)
@@ -83,7 +97,8 @@ def question(
     used = {s for d in claim.definitions.values() for s in d.free_symbols} & derived.symbols
     space = space_of([*parts, *factors], used, of_order_one)
     wording = Wording(space, claim, CODATA)
-    return Question(claim, parts, factors, space, wording, derived.wave_symbols, values or {})
+    waves = derived.wave_symbols
+    return Question(claim, parts, factors, space, wording, waves, values or {}, derived)
 
 
 @dataclass(frozen=True)
@@ -97,8 +112,11 @@ class Checked:
     reason: str
     faces: Faces
     led: tuple[tuple[Face, Leading], ...]
+    corrected: bool = False
 
 
+BEYOND = "beyond the leading order, "
+"""How the reason begins where the leading part is right."""
 UNLIKE = "under the stated conditions the derived relation has no such leading part"
 
 
@@ -127,7 +145,7 @@ def verified(
     neglected: list[Expr] = []
     needed: list[Vector] = []
     led: list[tuple[Face, Leading]] = []
-    reason = ""
+    reason, corrected = "", False
     found = faces.balanced()
     if not found:
         return "the terms of the claim cannot balance under the stated conditions"
@@ -140,16 +158,34 @@ def verified(
             needed += [asked.wording.vector(v, face.zeros) for v, _ in answer.needed]
         led.append((face, answer))
         neglected += [asked.wording.group(v, face.zeros) for v in answer.rays[:1]]
-        for r in (v for v in faces.claimed if not any(v in f.on for f in found)):
-            graded = faces.correction(r, face, answer)
-            if graded is None:
-                return _unconfirmed(asked, faces, r)
-            groups = competing(asked, graded, face.zeros)
+        beyond = [v for v in faces.claimed if not any(v in f.on for f in found)]
+        graded = {r: faces.correction(r, face, answer) for r in beyond}
+        if None in graded.values():
+            refused = next(r for r, ratios in graded.items() if ratios is None)
+            stands = all(faces.stands(r, face, answer) for r in beyond)
+            exact = asked.others and Accuracy(faces, found, asked.others)
+            there = exact.competing(part, factor, face, answer, stands) if exact else None
+            if there is None:
+                return _unconfirmed(asked, faces, refused)
+            corrected = True
+            groups = competing(asked, there[1], there[0].zeros)
+            besides += groups
+            notes += [f"its corrections are confirmed where also {paper(g)} ≪ 1" for g in groups]
+            continue
+        for r, ratios in graded.items():
+            groups = competing(asked, ratios or [], face.zeros)
             besides += groups
             shown = paper(space.term(r, faces.claimed[r]))
             notes += [f"the term {shown} is confirmed where also {paper(g)} ≪ 1" for g in groups]
     return Checked(
-        tuple(notes), tuple(besides), tuple(neglected), tuple(needed), reason, faces, tuple(led)
+        tuple(notes),
+        tuple(besides),
+        tuple(neglected),
+        tuple(needed),
+        reason,
+        faces,
+        tuple(led),
+        corrected,
     )
 
 
@@ -172,7 +208,7 @@ def _needed(
 
 def _unconfirmed(asked: Question, faces: Faces, term: Vector) -> str:
     shown = paper(asked.space.term(term, faces.claimed[term]))
-    return f"beyond the leading order, the term {shown} is not in the derived relation in this form"
+    return f"{BEYOND}the term {shown} is not in the derived relation in this form"
 
 
 def competing(asked: Question, ratios: Sequence[Vector], zeros: Sequence[Vector]) -> list[Expr]:
@@ -196,4 +232,5 @@ def apart(asked: Question, checked: Checked) -> list[str]:
     return [
         f"where the terms that the claim keeps differ much in size, also {paper(g)} ≪ 1"
         for g in groups
+        if g != 1
     ]

@@ -70,6 +70,10 @@ class Space:
             made[tuple(v)] = (re_, im)
         return made
 
+    def holds(self, polynomial: ExactPolynomial) -> bool:
+        """Whether all that a polynomial is made of has a column."""
+        return {base_and_power(g)[0] for g in polynomial.generators} <= set(self.columns)
+
     def exponents(self, monomial: Expr) -> Vector | None:
         """Exponents of a product of powers of the columns (a number in front is dropped); None for anything else."""
         place = {c: i for i, c in enumerate(self.columns)}

@@ -18,13 +18,13 @@ from .claim import Claim
 from .compare import covered
 from .cones import Quotient, Vector, extreme, implied, minus, smallest, times, weights
 from .derived import Derived
-from .faces import Faces, divided, initial, matched_shifts, slopes
+from .faces import Faces
+from .forms import divided, initial, matched_shifts, slopes
 from .leading import Checked, LimitFound, Question, apart, best_of, largest, question, verified
 from .monomials import ELECTRON_MASS, MASS, Space, Terms
+from .sizes import MULTIPLIED
 from .verdict import Small
 
-LONG = 40
-"""Terms of a claim beyond which what it may be multiplied by is not tried."""
 MOST_TERMS, MOST_RATIOS, MOST_FOUND = 40, 60, 4
 
 
@@ -57,7 +57,7 @@ def find_limits(
     asked = question(claim, derived, values)
     end = time.monotonic() + budget
     longest = max(map(len, asked.factors))
-    if not asked.parts or any(len(p) > max(LONG, longest - 1) for p in asked.parts):
+    if not asked.parts or any(len(p) > max(MULTIPLIED, longest - 1) for p in asked.parts):
         return []  # a face has fewer terms than the whole
     found = _together(asked, asked.parts, end)
     if not found and len(asked.parts) > 1:
@@ -152,7 +152,7 @@ def _orderings(asked: Question, part: ExactPolynomial, end: float) -> Iterator[O
 def _multiples(part: ExactPolynomial) -> Iterator[ExactPolynomial]:
     """The part, with its mirror image −ω, and squared: what a relation may begin with where it holds the part."""
     yield part
-    if len(part) > LONG:
+    if len(part) > MULTIPLIED:
         return
     turned = part.turned_sign(part.main)
     if not covered(part, turned):

@@ -32,6 +32,8 @@ WAYS: dict[str, Callable[[Any, Any, Any], Any]] = {
     "squared": lambda node, base, u: node**2,
     "once more": lambda node, base, u: node * base,
     "once less": lambda node, base, u: node / base,
+    "twice more": lambda node, base, u: node * base**2,
+    "twice less": lambda node, base, u: node / base**2,
 }
 """What stands at a place (where it is a power, with its base) and the unknown, to what should stand there.
 
@@ -78,6 +80,25 @@ def edits(claim: Claim) -> list[Edit]:
     return found
 
 
+def addends(claim: Claim) -> Iterator[Spot]:
+    """The sides, and every term of a sum in them and in the definitions that they use."""
+    used = {n.name for n in claim.used}
+    yield from ((part, ()) for part in ("left", "right") if parts(claim)[part] != 0)
+    for part, expr in parts(claim).items():
+        for path, node in nodes(expr) if part in ("left", "right", *used) else ():
+            if isinstance(node, Add):
+                yield from ((part, (*path, i)) for i in range(len(node.args)))
+
+
+def sign_edits(claim: Claim) -> list[Edit]:
+    """Every term of a side, with another factor."""
+    return [e for e in edits(claim) if e.kind == "times" and _is_term_of_side(e)]
+
+
+def _is_term_of_side(edit: Edit) -> bool:
+    return all(part in ("left", "right") and len(path) < 2 for part, path in edit.spots)
+
+
 def grouped(claim: Claim) -> list[tuple[list[Spot], Expr]]:
     """The terms of a claim; those that are equal up to their sign are taken together."""
     found: dict[Expr, list[Spot]] = {}
@@ -103,16 +124,32 @@ def exchanges(claim: Claim) -> Iterator[tuple[Expr, Expr, Claim]]:
         yield a, b, claim.mapped(lambda e, swap=swap: e.xreplace(swap))
 
 
-POWERS = ("inverted", "squared", "once more", "once less")
+POWERS = ("inverted", "squared", "once more", "once less", "twice more", "twice less")
 
 
-def powers(claim: Claim) -> Iterator[Edit]:
+def powers_of_sums(claim: Claim) -> Iterator[Edit]:
     """Every sum, or power of one, with another power."""
+    for part, path, node, base in _bases(claim):
+        if isinstance(base, Add):
+            for kind in POWERS[:2] if node == base else POWERS[:4]:
+                yield Edit(node, kind, _label(part), ((part, path),))
+
+
+def powers_of_sines(claim: Claim) -> Iterator[Edit]:
+    """Every sine or cosine, or power of one, with another power; that of a symbol is a factor on its term."""
+    for part, path, node, base in _bases(claim):
+        if isinstance(base, sin | cos):
+            for kind in POWERS[2:]:
+                yield Edit(node, kind, _label(part), ((part, path),))
+
+
+def _bases(claim: Claim) -> Iterator[tuple[str, Path, Expr, Expr]]:
+    """Every node that is no base of a power, with its part, its path, and its own base where it is a power."""
     for part, expr in parts(claim).items():
         for path, node in nodes(expr):
-            if isinstance(node, Add) or (isinstance(node, Pow) and isinstance(node.base, Add)):
-                for kind in POWERS[:2] if isinstance(node, Add) else POWERS:
-                    yield Edit(node, kind, _label(part), ((part, path),))
+            above = _node(expr, path[:-1]) if path else None
+            if not isinstance(above, Pow) or isinstance(node, Add):
+                yield part, path, node, node.base if isinstance(node, Pow) else node
 
 
 def parts(claim: Claim) -> dict[str, Expr]:

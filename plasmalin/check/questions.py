@@ -14,7 +14,19 @@ from ..errors import PlasmalinError
 from .claim import Claim
 from .compare import Match, compare
 from .missing import Shapes, missing
-from .places import Changes, Edit, Spot, apart, at, changed, edits, exchanges, grouped, powers
+from .places import (
+    Changes,
+    Edit,
+    Spot,
+    apart,
+    at,
+    changed,
+    edits,
+    exchanges,
+    grouped,
+    powers_of_sines,
+    powers_of_sums,
+)
 from .search import Search, second, solve_one, solve_two, unknown
 from .telling import cost, is_idle, shortened, told
 from .verdict import Slip
@@ -79,16 +91,22 @@ def _by_shorthands(search: Search) -> Iterator[Repair]:
 
 
 def _repaired(search: Search, edit: Edit) -> Iterator[Repair]:
+    """Of two values that differ in sign, as they do under a square, the plain one if it will do."""
     values = solve_one(search, edit.changes(unknown))
-    signs = [v for v in values if not (-v in values and v.could_extract_minus_sign())]
-    yield from _known(search, edit, signs)
+    done: set[Expr] = set()
+    for value in sorted(values, key=lambda v: bool(v.could_extract_minus_sign())):
+        if -value not in done:
+            found = list(_known(search, edit, [value]))
+            done |= {value} if found or value == 1 else set()
+            yield from found
 
 
 def _known(search: Search, edit: Edit, values: Iterable[Expr]) -> Iterator[Repair]:
     """What the unknown may be, in the author's symbols, proved."""
     inside = {part for part, _ in edit.spots} - {"left", "right"}
     for value in values:
-        made = value if inside else shortened(search.claim, value)
+        plain = search.derived.angles.written(value)
+        made = plain if inside else shortened(search.claim, plain)
         if not is_idle(edit, made):
             slips = (told(edit, made),)
             yield from _proved(search, edit.changes(made), slips, cost(edit, made))
@@ -117,7 +135,16 @@ def _wholesale(search: Search) -> Iterator[Repair]:
         if not search.late and search.holds_for(claim):
             slip = Slip(a, b / a, f"{paper(a)} and {paper(b)} are exchanged")
             yield from _proved_claim(search, claim, (slip,), 1.5)
-    for edit in powers(search.claim):
+    yield from _raised(search, powers_of_sums(search.claim))
+
+
+def _sines(search: Search) -> Iterator[Repair]:
+    """Powers of sines and cosines."""
+    yield from _raised(search, powers_of_sines(search.claim))
+
+
+def _raised(search: Search, listed: Iterator[Edit]) -> Iterator[Repair]:
+    for edit in listed:
         if not search.late and search.holds(edit.changes(S.One)):
             yield from _proved(search, edit.changes(S.One), (told(edit, S.One),), 1.2)
 
@@ -169,7 +196,7 @@ def _named(search: Search, spots: list[Spot]) -> Edit:
 
 
 QUESTIONS = (
-    (single, divided, _by_shorthands, _wholesale),
+    (single, _sines, divided, _by_shorthands, _wholesale),
     (_missing,),
     (_alike,),
     (_double,),

@@ -29,10 +29,17 @@ SCALES = (1, 4)
 
 
 def paths(
-    terms: Sequence[Expr], symbols: set[Symbol], derived: Derived, ratios: Sequence[Expr] | None
+    terms: Sequence[Expr],
+    symbols: set[Symbol],
+    derived: Derived,
+    ratios: Sequence[Expr] | None,
+    main: Symbol = omega,
 ) -> Iterator[Weights]:
-    """Powers of ε for symbols, under which the claim's terms are of different order."""
-    found = _single(terms, symbols, derived) if ratios is None else _stated(ratios, derived)
+    """Powers of ε for symbols but the one that is solved for, under which the claim's terms are of different order."""
+    if ratios is None:
+        found = _single(terms, symbols - {main}, derived)
+    else:
+        found = _stated(ratios, derived, main)
     for weights in found:
         if not terms or len({order(t, weights) for t in terms}) > 1:
             yield weights
@@ -64,9 +71,9 @@ def _single(terms: Sequence[Expr], symbols: set[Symbol], derived: Derived) -> It
             yield {s: sign}
 
 
-def _stated(ratios: Sequence[Expr], derived: Derived) -> Iterator[Weights]:
+def _stated(ratios: Sequence[Expr], derived: Derived, main: Symbol) -> Iterator[Weights]:
     """For every ratio one of its symbols scales; several ratios are of one size, or one is smaller still."""
-    choices = [_carriers(r, derived) for r in ratios]
+    choices = [_carriers(r, derived, main) for r in ratios]
     scales = dict.fromkeys(
         p for base in ((1,) * len(ratios), *_mixed(len(ratios))) for p in permutations(base)
     )
@@ -82,12 +89,13 @@ def _mixed(count: int) -> Iterator[tuple[int, ...]]:
         yield (SCALES[0],) * i + (SCALES[1],) * (count - i)
 
 
-def _carriers(ratio: Expr, derived: Derived) -> list[tuple[Symbol, Fraction]]:
-    """The symbols of a ratio with their powers, wave numbers first, then those above the line."""
-    symbols = sorted(ratio.free_symbols - {omega}, key=lambda s: s.name)
+def _carriers(ratio: Expr, derived: Derived, main: Symbol) -> list[tuple[Symbol, Fraction]]:
+    """The symbols of a ratio with their powers, wave numbers and ω first, then those above the line."""
+    symbols = sorted(ratio.free_symbols - {main}, key=lambda s: s.name)
     powers = {s: order(ratio, {s: Fraction(1)}) for s in symbols}
     made = [(s, n) for s, n in powers.items() if n]
-    return sorted(made, key=lambda m: (m[0] not in derived.wave_symbols, m[1] < 0))
+    waves = {omega, *derived.wave_symbols}
+    return sorted(made, key=lambda m: (m[0] not in waves, m[1] < 0))
 
 
 def order(expr: Expr, weights: Weights) -> Fraction:

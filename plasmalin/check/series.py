@@ -1,4 +1,4 @@
-"""A claim that gives ω, or ω², as a sum of terms of falling size: an expansion of one derived branch.
+"""A claim that gives ω or ω², or k or k², as a sum of terms of falling size: an expansion of one derived branch.
 
 With ω = f + δ the derived relation is a polynomial in δ. When symbols scale with powers of a small ε, the lower edge of
 its Newton polygon at the constant term gives the order and the leading part of the smallest δ exactly (Newton; Puiseux
@@ -19,7 +19,6 @@ from sympy import (
     I,
     Mul,
     S,
-    Symbol,
     cancel,
     expand,
     powsimp,
@@ -30,11 +29,12 @@ from ..declare.constants import CODATA
 from ..declare.notation import paper
 from ..declare.operators import omega
 from ..errors import PlasmalinError
-from ..exact.polynomial import ExactPolynomial, polynomial
+from ..exact.polynomial import ExactPolynomial
 from .claim import Claim
 from .cones import extreme
 from .corrections import correction, parts
 from .derived import Derived
+from .expansion import Expansion, expansion_of
 from .monomials import PURE_NUMBER, Wording, number_of, space_of
 from .scalings import Weights, even, is_imaginary, order, paths, scaled
 from .verdict import Small
@@ -93,22 +93,6 @@ class SeriesSlip:
     order: Fraction
 
 
-@dataclass(frozen=True)
-class Expansion:
-    """The claimed sum, as an author writes its terms too, and the derived factors, both for ω or for its square."""
-
-    claim: Claim
-    value: Expr
-    terms: tuple[Expr, ...]
-    written: tuple[Expr, ...]
-    factors: tuple[ExactPolynomial, ...]
-
-    @property
-    def symbols(self) -> set[Symbol]:
-        held: set[Symbol] = {s for f in self.factors for g in f.generators for s in g.free_symbols}
-        return held.union(self.value.free_symbols)
-
-
 def series_order(
     claim: Claim,
     derived: Derived,
@@ -121,7 +105,7 @@ def series_order(
     Parameters
     ----------
     claim : Claim
-        With ω, or ω², times a factor free of ω, alone on one side.
+        With ω, or ω², times a factor free of ω, alone on one side; else with a wave number so.
     derived : Derived
     ratios : iterable of Expr, optional
         What the author says is small; else every wave number and parameter is tried, small and large.
@@ -134,7 +118,7 @@ def series_order(
     SeriesFound or None
         None when the claim is no sum of terms of different size, or is wrong before or at its last term.
     """
-    expansion = _expansion(claim, derived)
+    expansion = expansion_of(claim, derived)
     found = _searched(expansion, claim, derived, ratios, budget)
     if expansion is None or not isinstance(found, SeriesFound):
         return None
@@ -153,7 +137,7 @@ def series_slip(
 
     Parameters are those of `series_order`.
     """
-    found = _searched(_expansion(claim, derived), claim, derived, ratios, budget)
+    found = _searched(expansion_of(claim, derived), claim, derived, ratios, budget)
     return found if isinstance(found, SeriesSlip) else None
 
 
@@ -175,7 +159,7 @@ def _searched(
     slips: list[SeriesSlip] = []
     right: SeriesFound | None = None
     given = None if ratios is None else [derived.using(claim.written_out(r)) for r in ratios]
-    for weights in paths(expansion.terms, expansion.symbols, derived, given):
+    for weights in paths(expansion.terms, expansion.symbols, derived, given, expansion.main):
         here: list[SeriesSlip] = []
         for f in expansion.factors:
             found = _judged(expansion, f, weights, end)
@@ -195,33 +179,6 @@ def _searched(
         if time.monotonic() > end:
             break
     return right if right is not None else slips[0] if slips else None
-
-
-# The claim ---------------------------------------------------------------------------------------
-
-
-def _expansion(claim: Claim, derived: Derived) -> Expansion | None:
-    """The claim solved for ω or ω², its value expanded into terms."""
-    for left, right in ((claim.left, claim.right), (claim.right, claim.left)):
-        held, value = claim.written_out(left), claim.written_out(right)
-        power = next((n for n in (1, 2) if not (held / omega**n).has(omega)), None)
-        if power is None or value.has(omega) or not held.has(omega):
-            continue
-        made = expand(derived.rational(value * omega**power / held))
-        short = Add.make_args(expand(right * omega**power / held))
-        factors = tuple(f for p, _ in derived.factors if (f := _in_power(p, power)) is not None)
-        return Expansion(claim, made, Add.make_args(made), short, factors) if factors else None
-    return None
-
-
-def _in_power(factor: ExactPolynomial, power: int) -> ExactPolynomial | None:
-    """The factor as a polynomial in that power of ω, where it is one."""
-    if power == 1:
-        return factor
-    coefficients = factor.coefficients()
-    if any(n % power for n in coefficients):
-        return None
-    return polynomial(Add(*(c * omega ** (n // power) for n, c in coefficients.items())), omega)
 
 
 def _judged(
@@ -294,7 +251,8 @@ def _sizes(expansion: Expansion, found: SeriesFound) -> list[Expr]:
         side = [t for t in ordered if is_imaginary(t) == is_imaginary(found.next)] or ordered
         top, bottom = found.next.as_numer_denom()
         sizes += [t / bottom / side[-1] for t in Add.make_args(expand(top))]
-    space = space_of(expansion.factors, expansion.symbols)
+    relation = (f for f, _ in expansion.derived.factors)
+    space = space_of(relation, expansion.symbols - {omega})
     wording = Wording(space, expansion.claim, CODATA)
     vectors = [wording.exponents(_positive(s)) for s in sizes]
     groups = [wording.group(v, ()) for v in extreme(v for v in vectors if v is not None and any(v))]

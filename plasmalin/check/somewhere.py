@@ -15,14 +15,13 @@ from .case import Case
 from .claim import Claim
 from .compare import compare
 from .convention import under_other_conventions
-from .limit import LimitFound, find_limits
+from .limit import LimitFound, find_limits, limits_about
 from .series import series_order
-from .special import MOST_TERMS, special_values
+from .sizes import SEARCHED
+from .special import special_values
 from .verdict import shown_conditions
 
 LEADING = "its terms are a face of the Newton polytope of the derived relation"
-LONG = 800
-"""Terms of a relation in which special values and orderings are searched for."""
 
 
 @dataclass(frozen=True)
@@ -63,11 +62,7 @@ def where_right(case: Case) -> Somewhere | None:
     found = _other_convention(case)
     if found is not None:
         return found
-    if len(case.derived.polynomial) > LONG:
-        case.reasons.append(
-            f"the derived relation has {len(case.derived.polynomial)} terms: "
-            "special values and orderings were not searched for"
-        )
+    if len(case.derived.polynomial) > SEARCHED:
         return None
     special = _special(case)
     if special is None or special.asks > 1:
@@ -136,14 +131,15 @@ def _limit(case: Case) -> Somewhere | None:
     claimed, _ = case.derived.numerator(case.claim.residual)
     if len(claimed) > len(case.derived.polynomial):
         return None  # a leading part is shorter than the whole
-    for limit in find_limits(case.whole, case.derived, case.values, case.time / 3):
+    given = case.whole, case.derived, case.values, case.time / 3
+    for limit in find_limits(*given) or limits_about(*given):
         doubtful = bool(limit.besides) or not limit.physical  # right in part only, or nowhere
         return Somewhere("limit", LEADING, limit.groups, limit_notes(limit), doubtful)
     return None
 
 
 def _series(case: Case) -> Somewhere | None:
-    if _has_long_roots(case.claim) or len(case.derived.polynomial) > MOST_TERMS:
+    if _has_long_roots(case.claim):
         return None
     found = series_order(case.whole, case.derived, None, case.values, case.time / 4)
     if found is None:

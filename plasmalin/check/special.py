@@ -38,13 +38,12 @@ from .claim import Claim
 from .compare import Match, compare, covered, still_factors
 from .derived import Derived
 from .monomials import MASS, PURE_NUMBER, base_and_power
+from .sizes import SEARCHED
 
 Values = dict[Symbol, Expr]
 
 MOST_VALUES = 4
 MOST_UNKNOWNS = 12
-MOST_TERMS = 1000
-"""Of the relation or the claim; longer ones are not searched for values, as the remainders take too long."""
 FIRST_PRIME = 30
 LARGEST_NUMBER = 100
 SAMPLES = 8
@@ -69,7 +68,7 @@ def special_values(claim: Claim, derived: Derived, budget: float = 3.0) -> list[
         the claim is right for no such values. Values that change the number of modes are no values but limits.
     """
     polynomial, _ = derived.numerator(claim.residual)
-    long = max(map(len, (polynomial, derived.polynomial))) > MOST_TERMS
+    long = max(map(len, (polynomial, derived.polynomial))) > SEARCHED
     if polynomial.degree < 1 or still_factors(claim) or long:
         return []
     end = time.monotonic() + budget
@@ -110,8 +109,8 @@ def _unknown(polynomial: ExactPolynomial, derived: Derived) -> list[Symbol]:
 
 
 def _is_plain(symbol: Symbol, polynomial: ExactPolynomial) -> bool:
-    """Whether it enters by itself or by its powers, not within functions."""
-    return all(base_and_power(g)[0] == symbol for g in polynomial.generators if g.has(symbol))
+    """Whether it enters by its whole powers only, not by roots or within functions."""
+    return all(g == symbol for g in polynomial.generators if g.has(symbol))
 
 
 def _simplicity(values: Values) -> tuple[Any, ...]:

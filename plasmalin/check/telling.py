@@ -77,6 +77,8 @@ def _slip(edit: Edit, value: Expr) -> tuple[Expr, Expr]:
         "squared": edit.term,
         "once more": _base(edit.term),
         "once less": 1 / _base(edit.term) if edit.term != 0 else value,
+        "twice more": _base(edit.term) ** 2,
+        "twice less": _base(edit.term) ** -2 if edit.term != 0 else value,
     }
     if edit.kind in made:
         return edit.term, made[edit.kind]

@@ -4,7 +4,9 @@
     operand    = number | name | "|" sum "|" | ("(" | "[" | "{") sum (")" | "]" | "}")
                | function [ power ] ( "(" sum { "," sum } ")" | operand )
 
-Refused as ambiguous: a factor beside a denominator, what is joined to a bare exponent, and whatever may
+A tight fraction of two whole numbers with a blank behind it is a coefficient: 3/2 k^2 is (3/2) k^2.
+
+Refused as ambiguous: any other factor beside a denominator, what is joined to a bare exponent, and whatever may
 belong to the argument of a function without parentheses.
 """
 
@@ -22,6 +24,8 @@ from .glyphs import CLOSING, OPERAND_KINDS, Mark
 from .latex import typed_text
 from .operators import Operator, rank_of
 from .words import SIDE_BY_SIDE, SIGN_ADVICE, Names
+
+BEFORE_A_TERM = ("+", "-", "*", "=", "(", "[", "{", "|(", ",", "<<", ">>", "->")
 
 
 class TypedReader(WordReader):
@@ -80,7 +84,7 @@ class TypedReader(WordReader):
     def _below(self, factor: Expr, token: Mark, first: Mark) -> Expr:
         """One over a factor; what stands beside it would be above or below the line."""
         below_end = self.end
-        if self.follows():
+        if self.follows() and not self._is_coefficient(token):
             while self.follows():
                 self._no_number()
                 self.unary()
@@ -90,6 +94,16 @@ class TypedReader(WordReader):
             readings = (f"{above}/({below}{gap}{more})", f"({above}/{below}){gap}{more}")
             self.ambiguous("what follows a division", below_end, *readings)
         return self.below(factor, token)
+
+    def _is_coefficient(self, slash: Mark) -> bool:
+        """Whether a tight fraction of two whole numbers ends here before a blank, as in 3/2 k^2: (3/2) k^2 in print."""
+        at = self.tokens.index(slash)
+        above, below, after = self.tokens[at - 1], self.tokens[at + 1], self.peek()
+        whole = above.text.isdigit() and below.text.isdigit() and self.place == at + 2
+        tight = above.end == slash.position and slash.end == below.position and after.spaced
+        before = [t.text for t in self.tokens[max(at - 3, 0) : at - 1]]
+        first = not before or (before[-1] in BEFORE_A_TERM and before[0] != "^")
+        return whole and tight and first
 
     def _numerator(self, slash: Mark) -> str:
         """What stands above the line: back from the slash to where its term begins."""

@@ -1,7 +1,7 @@
 """Claims as an author types them: ordinary mathematics with implicit products, read exactly or refused.
 
 Beside the grammar of laws (`reader`) this one takes `3 k^2 v_te^2`, `k² λ_De²`, `(a + b)(c + d)`, `sin^2 theta`,
-`|k v - omega|`, `∂_t² n`, `∂²n/∂t²` and brackets of three kinds. What can be read in two ways, such as `a/b c` or
+`|k v - omega|`, `∂_t² n`, `∂²n/∂t²`, `3/2 k^2` and brackets of three kinds. What can be read in two ways, such as `a/b c` or
 `sin 2 theta`, is never guessed: `AmbiguousText` shows both readings.
 """
 

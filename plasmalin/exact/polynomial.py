@@ -97,18 +97,13 @@ class ExactPolynomial:
 
     # Arithmetic --------------------------------------------------------------------------------
 
-    def _key(self) -> tuple[Any, ...]:
-        return self.main, self.generators, frozenset(self.terms())
-
     def __eq__(self, other: object) -> bool:
-        return isinstance(other, ExactPolynomial) and self._key() == other._key()
+        if not isinstance(other, ExactPolynomial) or self._ring != other._ring:
+            return False
+        return self._value == other._value
 
     def __hash__(self) -> int:
-        return self._hash
-
-    @cached_property
-    def _hash(self) -> int:
-        return hash(self._key())
+        return hash((self.main, self.generators, len(self), self.degree))
 
     def __reduce__(self) -> tuple[Any, ...]:
         return _restored, (self.main, self.generators, tuple(self.terms()))
@@ -141,6 +136,22 @@ class ExactPolynomial:
         """
         ring, a, b = self._joined(other)
         return ExactPolynomial(ring, a.over(b))
+
+    def parts(self) -> tuple[ExactPolynomial, ExactPolynomial]:
+        """The polynomials of the real and of the imaginary parts of the coefficients."""
+        return self._with(real(self._value.re)), self._with(real(self._value.im))
+
+    def pseudo_remainder(self, other: ExactPolynomial) -> tuple[ExactPolynomial, ExactPolynomial]:
+        """The rest that `other` leaves of this times a power of the leading coefficient of `other`, and that power."""
+        ring, a, b = self._joined(other)
+        rest, divisor = ExactPolynomial(ring, a), ExactPolynomial(ring, b)
+        lead = divisor._value.by_power(0)[divisor.degree]
+        gen, scale = real(ring.context.gens()[0]), ring.constant(1)
+        while rest.degree >= divisor.degree:
+            top = rest._value.by_power(0)[rest.degree] * gen ** (rest.degree - divisor.degree)
+            rest = ExactPolynomial(ring, rest._value * lead - top * b)
+            scale = scale * lead
+        return rest, ExactPolynomial(ring, scale)
 
     def primitive(self) -> tuple[ExactPolynomial, ExactPolynomial]:
         """The content, free of `main`, and the primitive part with its sign normalized."""

@@ -27,6 +27,25 @@ class Radical:
     base: sp.Expr
 
 
+@dataclass(frozen=True)
+class LinearInRoots:
+    """A sum of coefficients times roots that hold the main symbol.
+
+    Attributes
+    ----------
+    rest : ExactPolynomial or None
+        What stands without such a root; None where a power or a product of them occurs.
+    parts : tuple of ExactPolynomial
+        The coefficient of each of these roots.
+    radicals : tuple of Radical
+        All roots of the expression; those without the main symbol stand in the coefficients.
+    """
+
+    rest: ExactPolynomial | None
+    parts: tuple[ExactPolynomial, ...]
+    radicals: tuple[Radical, ...]
+
+
 def isolated(
     expr: sp.Expr, *mains: sp.Symbol, numbers: bool = False
 ) -> tuple[sp.Expr, list[Radical]]:
@@ -83,8 +102,8 @@ def rational_numerator(
         1 where no root had to be removed.
     """
     plain, radicals = isolated(expr, main, numbers=numbers)
-    ring = ring_of([plain, *(r.base for r in radicals)], main)
-    reader = Reader(ring)
+    reader = _reader(plain, radicals, main)
+    ring = reader.ring
     value = reader.ratio(plain).lowest().top
     sheets = 1
     for radical in reversed(radicals):
@@ -95,6 +114,31 @@ def rational_numerator(
             value = _norm(value, variable, radical.index, reader.ratio(radical.base).lowest(), ring)
             sheets *= radical.index if value.holds(0) else 1
     return ExactPolynomial(_without(ring, radicals), _moved(value, ring, radicals)), sheets
+
+
+def linear_in_roots(expr: sp.Expr, main: sp.Symbol) -> LinearInRoots | None:
+    """The numerator of an expression that holds roots of `main`; None where it holds none."""
+    plain, radicals = isolated(expr, main)
+    holding: set[sp.Symbol] = {main}
+    for radical in radicals:
+        holding |= {radical.symbol} if radical.base.free_symbols & holding else set()
+    reader = _reader(plain, radicals, main)
+    rest = reader.ratio(plain).lowest().top
+    names = reader.ring.generators
+    places = [1 + names.index(s) for s in holding if s in names]
+    parts: list[Gaussian] = []
+    for place in (p for p in places if rest.holds(p)):
+        slices = rest.by_power(place)
+        if not set(slices) <= {0, 1} or any(slices[1].holds(p) for p in places):
+            return LinearInRoots(None, (), tuple(radicals))
+        parts.append(slices[1])
+        rest = slices.get(0, reader.ring.constant(0))
+    made = [ExactPolynomial(reader.ring, p) for p in (rest, *parts)]
+    return LinearInRoots(made[0], tuple(made[1:]), tuple(radicals)) if parts else None
+
+
+def _reader(plain: sp.Expr, radicals: list[Radical], main: sp.Symbol) -> Reader:
+    return Reader(ring_of([plain, *(r.base for r in radicals)], main))
 
 
 def _norm(value: Gaussian, variable: int, index: int, base: Ratio, ring: Ring) -> Gaussian:

@@ -162,7 +162,7 @@ class Accuracy:
         for v in sorted(ratios, key=lambda v: (times(w, v), v)):
             if any(v) and implied(v, [*cone, *needed], above):
                 continue
-            late = time.monotonic() > self.faces.end
+            late = time.process_time() > self.faces.end
             if late or not any(v) or not self.faces.can_be_small(v, there):
                 return None
             needed.append(v)

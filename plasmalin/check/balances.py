@@ -27,7 +27,7 @@ def leading_parts(derived: Derived, degree: int, deadline: float) -> list[ExactP
         if factor.degree <= degree or len(factor) > BALANCED:
             continue
         for weights in _weightings(factor):
-            if time.monotonic() > deadline:
+            if time.process_time() > deadline:
                 break
             for balance in leading_balances(factor, weights, None):
                 if balance.roots == degree and balance.expr not in found:

@@ -54,7 +54,7 @@ class Faces:
         """The largest sets of terms with more than one power of ω that can be leading together."""
         found: list[Face] = []
         for a, b in combinations(self.claimed, 2):
-            if time.monotonic() > self.end:
+            if time.process_time() > self.end:
                 return []
             if a[0] == b[0] or any(a in f.on and b in f.on for f in found):
                 continue
@@ -147,7 +147,7 @@ class Faces:
             lower = [self._reduced(minus(s, shift), quotient) for s in answer.shifts if s != shift]
             if implied(v, [*cone, *(n for n, _ in answer.needed)], [*above, *lower]):
                 continue
-            if time.monotonic() > self.end:
+            if time.process_time() > self.end:
                 return None
             w = self._weights(face, [tuple(-x for x in v), *lower])
             more = None if w is None else divided(initial(self.derived, w, self.space), part)
@@ -210,7 +210,7 @@ class Faces:
         """Where two terms of a face balance, with different powers of ω, and the others are smaller."""
         for a, b in combinations(face.on, 2) if len(face.on) > 2 else ():
             pair = self._face((a, b))
-            if a[0] != b[0] and time.monotonic() < self.end and self._weights(pair) is not None:
+            if a[0] != b[0] and time.process_time() < self.end and self._weights(pair) is not None:
                 yield pair
 
     def apart(self, face: Face, answer: Leading) -> list[tuple[Vector, Face]]:

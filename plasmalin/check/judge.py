@@ -56,7 +56,7 @@ def judge(
     budget_s: float = 30.0,
 ) -> Verdict:
     """Judge a claimed relation; see `WaveMatrix.check`."""
-    deadline = time.monotonic() + budget_s
+    deadline = time.process_time() + budget_s
     names = WaveNames(wave, where or {})
     part = make_part(names, claim)
     written = part or make_claim(wave, claim, where or {})

@@ -128,7 +128,7 @@ def best_of(
     checked = [a for a in answers if isinstance(a, Checked)]
     if checked:
         return min(checked, key=lambda a: len(a.needed))
-    if time.monotonic() > end:
+    if time.process_time() > end:
         return "not decided within the time given"
     reasons = [a for a in answers if isinstance(a, str)]
     return max(reasons, key=lambda r: (r != UNLIKE, -len(r)), default=UNLIKE)

@@ -49,7 +49,7 @@ def verify_limit(
     values, budget
         As for `find_limits`.
     """
-    given, end = list(ratios), time.monotonic() + budget
+    given, end = list(ratios), time.process_time() + budget
     if len(derived.polynomial) > ORDERED:
         return "the derived relation is too long for its leading part to be sought"
     found = _with_charges(claim, derived, given, values, end)
@@ -123,12 +123,12 @@ def limits_about(
     claim: Claim, derived: Derived, values: Mapping[str, float] | None, budget: float
 ) -> Iterator[LimitFound]:
     """Orderings under which a claim is a leading part in the distance of ω from a frequency that it names."""
-    end = time.monotonic() + budget
+    end = time.process_time() + budget
     for reference in references(claim):
         moved, there = about(claim, derived, reference)
-        for found in find_limits(moved, there, values, end - time.monotonic()):
+        for found in find_limits(moved, there, values, end - time.process_time()):
             groups = [g.group.xreplace({omega: omega - reference}) for g in found.groups]
-            limit = verify_limit(claim, derived, groups, values, end - time.monotonic())
+            limit = verify_limit(claim, derived, groups, values, end - time.process_time())
             if not isinstance(limit, str):
                 yield replace(limit, groups=found.groups)
 

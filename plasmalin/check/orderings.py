@@ -55,7 +55,7 @@ def find_limits(
         Physical ones first, then those with fewer groups; empty when the claim is no limit.
     """
     asked = question(claim, derived, values)
-    end = time.monotonic() + budget
+    end = time.process_time() + budget
     longest = max(map(len, asked.factors))
     if not asked.parts or any(len(p) > max(MULTIPLIED, longest - 1) for p in asked.parts):
         return []  # a face has fewer terms than the whole
@@ -63,14 +63,14 @@ def find_limits(
     if not found and len(asked.parts) > 1:
         found = _together(asked, (reduce(mul, asked.parts),), end)
     if not found:
-        found = list(_scaled(asked, min(end, time.monotonic() + SEARCH)))
+        found = list(_scaled(asked, min(end, time.process_time() + SEARCH)))
     if not found:
-        found = list(_searched(asked, min(end, time.monotonic() + SEARCH)))
+        found = list(_searched(asked, min(end, time.process_time() + SEARCH)))
     found.sort(key=_simplicity)
-    late = min(end, time.monotonic() + 3 * SEARCH)
+    late = min(end, time.process_time() + 3 * SEARCH)
     pruned = [_irredundant(asked, f, late) for f in found[:MOST_FOUND]]
     widest = sorted(_widest(asked, pruned), key=_simplicity)
-    return [_noted(asked, f, min(end, time.monotonic() + SEARCH)) for f in widest[:1]] + widest[1:]
+    return [_noted(asked, f, min(end, time.process_time() + SEARCH)) for f in widest[:1]] + widest[1:]
 
 
 def _noted(asked: Question, found: LimitFound, end: float) -> LimitFound:
@@ -94,7 +94,7 @@ def _irredundant(asked: Question, found: LimitFound, end: float) -> LimitFound:
         rest = [asked.wording.exponents(g.group) for g in kept if g is not small]
         cone = [v for v in rest if v is not None]
         answers = [_checked(asked, p, cone, end) for p in asked.parts] if cone else [None]
-        if time.monotonic() > end:
+        if time.process_time() > end:
             return found
         if all(a is not None and not a.needed for a in answers):
             kept.remove(small)
@@ -139,7 +139,7 @@ def _orderings(asked: Question, part: ExactPolynomial, end: float) -> Iterator[O
     for claimed, factor in product(_multiples(part), asked.factors):
         terms = space.terms(factor)
         for on in matched_shifts(space.terms(claimed), terms):
-            if time.monotonic() > end:
+            if time.process_time() > end:
                 return
             ordering = _ordering(space, on, terms)
             if ordering is not None and ordering.rays not in seen:
@@ -165,7 +165,7 @@ def _scaled(asked: Question, end: float) -> Iterator[LimitFound]:
     space = asked.space
     for w in _scalings(asked):
         orderings = [_begun(space, p, asked.factors, w) for p in asked.parts]
-        if time.monotonic() > end:
+        if time.process_time() > end:
             return
         made = [o for o in orderings if o is not None]
         found = _joined(asked, made) if len(made) == len(orderings) else None
@@ -213,7 +213,7 @@ def _searched(asked: Question, end: float) -> Iterator[LimitFound]:
     """One small group at a time, taken from the terms of the derived factors, and what it needs besides."""
     for v in _ratios(asked):
         answers = [_checked(asked, p, [v], end) for p in asked.parts]
-        if time.monotonic() > end:
+        if time.process_time() > end:
             return
         if any(a is None for a in answers):
             continue

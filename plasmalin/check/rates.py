@@ -98,12 +98,12 @@ def rate_order(
     """
     if len(derived.polynomial) > ORDERED:
         return None
-    end = time.monotonic() + budget
+    end = time.process_time() + budget
     rate = derived.rational(claim.written_out(value))
     given = None if ratios is None else [claim.written_out(r) for r in ratios]
     for weights in paths((), derived.symbols, derived, given):
         for factor in (f for f, _ in derived.factors):
-            if time.monotonic() > end:
+            if time.process_time() > end:
                 return None
             if any(r.equals(rate) for r in _rates(factor, weights, S.Zero, None, 0, real)):
                 groups = [] if ratios is None else list(ratios)

@@ -155,7 +155,7 @@ def _searched(
     """
     if expansion is None or len(expansion.terms) < 2:
         return None
-    end = time.monotonic() + budget
+    end = time.process_time() + budget
     slips: list[SeriesSlip] = []
     right: SeriesFound | None = None
     given = None if ratios is None else [derived.using(claim.written_out(r)) for r in ratios]
@@ -174,9 +174,9 @@ def _searched(
         if right is not None and given is None:
             return right
         if here and not slips:
-            end = min(end, time.monotonic() + SECOND_THOUGHTS)
+            end = min(end, time.process_time() + SECOND_THOUGHTS)
         slips += [max(here, key=lambda s: s.order)] if here else []
-        if time.monotonic() > end:
+        if time.process_time() > end:
             break
     return right if right is not None else slips[0] if slips else None
 
@@ -190,7 +190,7 @@ def _judged(
     value = even(expansion.value, weights)
     found: list[Expr | None] = [None, None]
     for _ in range(MOST_STEPS):
-        if time.monotonic() > end:
+        if time.process_time() > end:
             return None
         try:
             step = correction(factor, value, weights)

@@ -43,7 +43,7 @@ def repairs(claim: Claim, derived: Derived, budget: float) -> list[Repair]:
     list of Repair
         Each proved; empty where none was found.
     """
-    deadline = time.monotonic() + budget
+    deadline = time.process_time() + budget
     found = _by_factors(claim, derived, deadline) or _whole(claim, derived, deadline)
     found = _distinct(sorted(found, key=lambda r: r.cost))
     return [r for r in found if r.cost <= found[0].cost + WORSE][:MOST]
@@ -51,7 +51,7 @@ def repairs(claim: Claim, derived: Derived, budget: float) -> list[Repair]:
 
 def repairs_as_limit(claim: Claim, derived: Derived, budget: float) -> list[Repair]:
     """Repairs after which the claim is a leading part of the derived relation, one or two symbols scaling."""
-    deadline = time.monotonic() + budget
+    deadline = time.process_time() + budget
     polynomial, _ = derived.numerator(claim.residual)
     shared: dict[Any, Any] = {}
     for target in leading_parts(derived, polynomial.degree, deadline):
@@ -91,7 +91,7 @@ def _by_factors(claim: Claim, derived: Derived, deadline: float) -> list[Repair]
     for f in factors:
         part = Claim(f, S.Zero, claim.definitions)
         if compare(part, derived) is None:
-            found = _whole(part, derived, time.monotonic() + (deadline - time.monotonic()) / 3)
+            found = _whole(part, derived, time.process_time() + (deadline - time.process_time()) / 3)
             if not found:
                 return []
             best = min(found, key=lambda r: r.cost)

@@ -71,11 +71,11 @@ def special_values(claim: Claim, derived: Derived, budget: float = 3.0) -> list[
     long = max(map(len, (polynomial, derived.polynomial))) > SEARCHED
     if polynomial.degree < 1 or still_factors(claim) or long:
         return []
-    end = time.monotonic() + budget
+    end = time.process_time() + budget
     unknown = _unknown(polynomial, derived)
     found: list[Values] = []
     for values in sorted(_candidates(polynomial, derived, unknown, end), key=_simplicity):
-        if any(f.items() <= values.items() for f in found) or time.monotonic() > end:
+        if any(f.items() <= values.items() for f in found) or time.process_time() > end:
             continue
         if holds_under(claim, derived, values) is not None and _same_degree(derived, values):
             found.append(values)
@@ -227,7 +227,7 @@ def _solutions(
     """Triangular solutions: one factor of the shortest equation at a time, with backtracking."""
     stack: list[tuple[list[Poly], dict[Symbol, Expr]]] = [(_echelon(equations, unknown), {})]
     seen: set[frozenset[Any]] = set()
-    while stack and time.monotonic() < end:
+    while stack and time.process_time() < end:
         left, numbers = stack.pop(0)
         key = frozenset(numbers.items())
         if key in seen or any(e.is_ground for e in left):

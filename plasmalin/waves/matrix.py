@@ -381,7 +381,7 @@ class WaveMatrix:
         values : mapping of str to number, optional
             Numbers, SI, at which the size of what a limit neglects is given.
         budget_s : float, default 30.0
-            How long the search for conditions and slips may take, s; what was not decided then is said.
+            Processor time that the search for conditions and slips may take, s; what was not decided then is said.
 
         Returns
         -------

@@ -46,6 +46,10 @@ class Angles:
             made = conic.rational(made)
         return made
 
+    def leading(self, ratio: Expr) -> Expr:
+        """A small ratio with the symbols of the roots by their parameters, which they are in proportion to there."""
+        return ratio.xreplace({c.symbol: 2 * c.size * c.parameter for c in self.conics})
+
     def restored(self, ratio: Expr) -> Expr:
         """A ratio of polynomials with its square roots written as such again; angles stay."""
         for conic in reversed(self.conics):

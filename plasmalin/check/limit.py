@@ -158,7 +158,8 @@ def _verified(
     asked: Question, derived: Derived, given: list[Expr], end: float, reference: Expr | None = None
 ) -> LimitFound | str:
     claim = asked.claim
-    cones = conditions(claim, asked.space, [derived.using(claim.written_out(r)) for r in given])
+    ratios = (derived.using(claim.written_out(r)) for r in given)
+    cones = conditions(claim, asked.space, [derived.angles.leading(r) for r in ratios])
     if isinstance(cones, str):
         return cones
     cones = [c for c in cones if weights(asked.space.sized, c) is not None]

@@ -70,7 +70,9 @@ def find_limits(
     late = min(end, time.process_time() + 3 * SEARCH)
     pruned = [_irredundant(asked, f, late) for f in found[:MOST_FOUND]]
     widest = sorted(_widest(asked, pruned), key=_simplicity)
-    return [_noted(asked, f, min(end, time.process_time() + SEARCH)) for f in widest[:1]] + widest[1:]
+    return [_noted(asked, f, min(end, time.process_time() + SEARCH)) for f in widest[:1]] + widest[
+        1:
+    ]
 
 
 def _noted(asked: Question, found: LimitFound, end: float) -> LimitFound:

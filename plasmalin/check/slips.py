@@ -91,7 +91,9 @@ def _by_factors(claim: Claim, derived: Derived, deadline: float) -> list[Repair]
     for f in factors:
         part = Claim(f, S.Zero, claim.definitions)
         if compare(part, derived) is None:
-            found = _whole(part, derived, time.process_time() + (deadline - time.process_time()) / 3)
+            found = _whole(
+                part, derived, time.process_time() + (deadline - time.process_time()) / 3
+            )
             if not found:
                 return []
             best = min(found, key=lambda r: r.cost)

@@ -128,9 +128,11 @@ POWERS = ("inverted", "squared", "once more", "once less", "twice more", "twice 
 
 
 def powers_of_sums(claim: Claim) -> Iterator[Edit]:
-    """Every sum, or power of one, with another power."""
+    """Every sum, or power of one, with another power; not a whole side that is set equal to zero."""
+    vanishes = claim.left == 0 or claim.right == 0
     for part, path, node, base in _bases(claim):
-        if isinstance(base, Add):
+        whole = vanishes and not path and part in ("left", "right")
+        if isinstance(base, Add) and not whole:
             for kind in POWERS[:2] if node == base else POWERS[:4]:
                 yield Edit(node, kind, _label(part), ((part, path),))
 

@@ -160,13 +160,13 @@ def find_surfaces(
         raise ValuesError(
             "a grid takes two different names and, in the same order, the values of both"
         )
-    left_out(names, values, waves)
+    left_out(names, waves)
     axes = [Axis.of(wave, n, a) for n, a in zip(names, along, strict=True)]
     for name, axis in zip(names, axes, strict=True):
         _require_rising(name, axis.given)
     x, y = (axis.shown for axis in axes)
     given = {names[0]: x[:, None], names[1]: y}
-    numbers = gather(wave, with_defaults(wave, {**values, **given}), waves)
+    numbers = gather(wave, {**with_defaults(wave, values), **given}, waves)
     if numbers.shape != (len(x), len(y)) or len(numbers.swept) > 2 + constants(numbers, names):
         raise ValuesError(
             "only two quantities vary over a grid; give single numbers for the others"

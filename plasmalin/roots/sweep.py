@@ -33,14 +33,14 @@ def find_branches(
 ) -> Branches:
     """All branches; see `WaveMatrix.branches`."""
     zero_modes = bool(waves.pop("zero_modes", False))
-    left_out((name,), values, waves)
+    left_out((name,), waves)
     axis = Axis.of(wave, name, along)
     points = axis.si
     if points.ndim != 1 or not len(points):
         raise ValuesError(
             f"the values of '{name}' have shape {points.shape}; give one dimension, not empty"
         )
-    numbers = gather(wave, with_defaults(wave, {**values, name: along}), waves)
+    numbers = gather(wave, {**with_defaults(wave, values), name: along}, waves)
     if numbers.shape != points.shape or len(numbers.swept) > 1 + constants(numbers, (name,)):
         raise ValuesError(
             "only one quantity varies along branches; give single numbers for the others"

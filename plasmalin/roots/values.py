@@ -190,11 +190,10 @@ def with_defaults(wave: WaveMatrix, values: Mapping[Any, Any]) -> dict[Any, Any]
     return {**defaults, **values}
 
 
-def left_out(names: tuple[str, ...], values: Mapping[Any, Any], waves: Mapping[str, Any]) -> None:
-    """Raises where what varies is also among the other values."""
-    given = {key.name if isinstance(key, Symbol) else key for key in values} | set(waves)
-    for name in given.intersection(names):
-        raise ValuesError(f"'{name}' is what varies; leave it out of the other values")
+def left_out(names: tuple[str, ...], waves: Mapping[str, Any]) -> None:
+    """Raises where what varies is also among the other wave numbers."""
+    for name in set(waves).intersection(names):
+        raise ValuesError(f"'{name}' is what varies; leave it out of the other wave numbers")
 
 
 def needed_symbols(wave: WaveMatrix) -> set[Symbol]:

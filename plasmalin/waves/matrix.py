@@ -297,6 +297,7 @@ class WaveMatrix:
         along : array_like, shape (n,), or tuple of two
             Rad/m for a wave number, else in the unit of the parameter. For a grid both increase.
         values : mapping of str to number, optional
+            A value of what varies is set aside.
         **waves : number
             The other wave numbers, by name.
 

@@ -66,6 +66,13 @@ def test_wrong_lorentz_factors_are_not(linear, claim):
     assert verdict.kind in ("differs", "limit")  # a factor 1/gamma left out is right for slow beams
 
 
+def test_a_wrong_power_of_the_lorentz_factor_is_found(linear):
+    claim = "1 = omega_p^2/omega^2 + omega_b^2/(gamma^2 (omega - k u_b)^2)"
+    verdict = linear.plane_wave("z").check(claim, where=NAMES)
+    assert verdict.kind == "differs"
+    assert verdict.slips[0].text == "1/γ² should be 1/γ³"
+
+
 @pytest.mark.parametrize("slow", ["u_b/c << 1", "u_b^2/c^2 << 1", "u_b << c"])
 def test_the_slow_beam_is_a_stated_limit(linear, slow):
     """Buneman 1959, Phys. Rev. 115, 503, without Lorentz factors (from memory)."""

@@ -128,11 +128,14 @@ POWERS = ("inverted", "squared", "once more", "once less", "twice more", "twice 
 
 
 def powers_of_sums(claim: Claim) -> Iterator[Edit]:
-    """Every sum, or power of one, with another power; not a whole side that is set equal to zero."""
+    """Every sum or shorthand of one, or power of it, with another power; not a whole side that is set equal to zero."""
     vanishes = claim.left == 0 or claim.right == 0
     for part, path, node, base in _bases(claim):
         whole = vanishes and not path and part in ("left", "right")
-        if isinstance(base, Add) and not whole:
+        is_sum = isinstance(base, Add) or (
+            base in claim.definitions and claim.written_out(base).has(Add)
+        )
+        if is_sum and not whole:
             for kind in POWERS[:2] if node == base else POWERS[:4]:
                 yield Edit(node, kind, _label(part), ((part, path),))
 

@@ -79,6 +79,7 @@ class ClaimAtPoint:
         """Whether SymPy may make it simpler when shorthands, conditions and angles are put in."""
         base = node.base if isinstance(node, Pow) else node
         named = base in self.claim.definitions or base in self.conditions
+        named |= any(base == c.symbol for c in self.derived.angles.conics)
         return named or _is_root(node) or isinstance(node, sin | cos | tangent | Abs)
 
     def joined(self, node: Expr, operands: list[Quotient], passing: Roots | None) -> Quotient:

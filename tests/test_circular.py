@@ -12,7 +12,7 @@ from plasmalin.roots.family import Family
 
 
 def plasma():
-    """Two cold magnetized species of an invented plasma."""
+    """Two warm magnetized species of an invented plasma."""
     u = plin.constants.u
     species = [
         plin.Species("e", -1, plin.constants.m_e, 1e18, temperature_eV=5.0),

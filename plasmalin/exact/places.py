@@ -10,6 +10,7 @@ from typing import Any
 import flint
 
 from .eliminants import Bivariate, Eliminant, Term, square_free
+from .rational import times_i
 from .realroots import isolated, refined
 
 BITS = 320
@@ -91,7 +92,7 @@ def _eliminated(eliminant: Eliminant, between: Interval) -> list[Place] | None:
     if images is None:
         return None
     lowest = min(_valuation(image) for image in images)
-    common = _divided(images[0].gcd(images[1]), lowest)
+    common = images[0].gcd(images[1]).right_shift(lowest)
     at_zero = [(Fraction(0), Fraction(0))] if lowest and between[0] <= 0 <= between[1] else []
     if common.degree() < 1:
         return at_zero
@@ -228,20 +229,11 @@ def _real_forms(polynomials: Sequence[Sequence[Term]]) -> list[list[Term]]:
 
 def _turned(terms: Sequence[Term]) -> list[Term] | None:
     for unit in (0, 3):
-        made = [(i, j, _times_i(c, i + unit)) for i, j, c in terms]
+        made = [(i, j, times_i(c, i + unit)) for i, j, c in terms]
         if not any(c[1] for _, _, c in made):
             return made
     return None
 
 
-def _times_i(c: tuple[Fraction, Fraction], power: int) -> tuple[Fraction, Fraction]:
-    re, im = c
-    return ((re, im), (-im, re), (-re, -im), (im, -re))[power % 4]
-
-
 def _valuation(image: Any) -> int:
     return next(n for n, c in enumerate(image.coeffs()) if int(c)) if image else 0
-
-
-def _divided(image: Any, power: int) -> Any:
-    return image.right_shift(power)

@@ -57,3 +57,9 @@ def _binary(x: sp.Float) -> Fraction:
     sign, mantissa, exponent, _ = x._mpf_
     value = Fraction(int(mantissa)) * Fraction(2) ** int(exponent)
     return -value if sign else value
+
+
+def times_i(c: tuple[Fraction, Fraction], power: int) -> tuple[Fraction, Fraction]:
+    """A complex number, real and imaginary part, times i^power."""
+    re, im = c
+    return ((re, im), (-im, re), (-re, -im), (im, -re))[power % 4]

@@ -10,6 +10,7 @@ import flint
 
 from .clusters import Box, fraction, parted
 from .gaussian import Gaussian
+from .rational import times_i
 from .yun import squarefree_parts
 
 Root: TypeAlias = tuple[Fraction, Fraction, Fraction, int]
@@ -153,17 +154,12 @@ def _listed(p: Gaussian) -> list[tuple[Fraction, Fraction]]:
 
 def _real_when_turned(coefficients: list[tuple[Fraction, Fraction]]) -> list[Fraction] | None:
     """Coefficients in s of the polynomial at z = i s, times a unit, when they are all real."""
-    turned = [_times_i(c, n) for n, c in enumerate(coefficients)]
+    turned = [times_i(c, n) for n, c in enumerate(coefficients)]
     for unit in (0, 3):
-        made = [_times_i(c, unit) for c in turned]
+        made = [times_i(c, unit) for c in turned]
         if not any(im for _, im in made):
             return [re for re, _ in made]
     return None
-
-
-def _times_i(c: tuple[Fraction, Fraction], power: int) -> tuple[Fraction, Fraction]:
-    re, im = c
-    return ((re, im), (-im, re), (-re, -im), (im, -re))[power % 4]
 
 
 def _simple_roots(

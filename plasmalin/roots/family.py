@@ -81,12 +81,6 @@ def times(a: Exact, b: Exact) -> Exact:
     return a[0] * b[0] - a[1] * b[1], a[0] * b[1] + a[1] * b[0]
 
 
-def times_i(c: Exact, power: int) -> Exact:
-    """c times i^power."""
-    re, im = c
-    return ((re, im), (-im, re), (-re, -im), (im, -re))[power % 4]
-
-
 def _power(base: Exact, n: int) -> Exact:
     if not base[1]:
         return base[0] ** n, base[1]

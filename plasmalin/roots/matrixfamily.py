@@ -9,7 +9,8 @@ from functools import cached_property
 import numpy as np
 
 from ..exact.pencil import Image, Place, circle_point, determinant_of
-from .family import Exact, Family, Grid, exact_value, times_i
+from ..exact.rational import times_i
+from .family import Exact, Family, Grid, exact_value
 from .replay import TINY, Ball
 from .scaling import in_binary
 

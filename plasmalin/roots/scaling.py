@@ -15,7 +15,8 @@ from math import comb, gcd
 import numpy as np
 from numpy.typing import NDArray
 
-from .family import Exact, Family, Grid, times_i
+from ..exact.rational import times_i
+from .family import Exact, Family, Grid
 from .path import Columns, Path
 from .sums import Plan, Terms
 
